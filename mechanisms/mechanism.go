@@ -1,0 +1,117 @@
+// Package mechanisms holds the physical mechanisms of ligand binding: their
+// constants, the curves they imply, the Hill coefficients of those curves, and
+// the exact derivatives of all of it.
+//
+// Everything is in the ligand's own unit or dimensionless; units, files and
+// fitting are other packages' business.
+package mechanisms
+
+import "gonum.org/v1/gonum/mat"
+
+// Scale is the axis on which a constant is fitted.
+type Scale uint8
+
+const (
+	// Log fits θ = ln v of a positive constant v.
+	Log Scale = iota
+	// Linear fits θ = v ≥ 0, so that v may be exactly zero.
+	Linear
+	// Logit fits θ = ln(v/(1−v)) of a share 0 < v < 1.
+	Logit
+)
+
+// Constant describes one constant of a mechanism.
+type Constant struct {
+	Name   string // symbol of the trade: "K_R", "L", "Kd1", "n_H"
+	Site   string // class of site, species or part it belongs to; "" where there is only one
+	Ligand string // effector it belongs to; "" for the varied ligand
+
+	Scale     Scale
+	Dimension int // power of the ligand's unit (of the effector's, if Ligand is set): K_R 1, L 0, β_i −i
+
+	// Low and High bound the constant in reduced units: the constant divided by
+	// (ligand at half response)^Dimension. They are wide; an optimum on one of
+	// them is a result (exclusive binding, β = 0), named by Edge.
+	Low, High float64
+	// StartLow and StartHigh is the range, in reduced units, in which starts are drawn.
+	StartLow, StartHigh float64
+	// EdgeLow and EdgeHigh say in words what the mechanism becomes on a bound
+	// ("exclusive binding: only R binds"); "" where a bound means nothing but itself.
+	EdgeLow, EdgeHigh string
+
+	Meaning string // one phrase for tables: "dissociation constant of conformation R"
+}
+
+// Environment is what holds for one curve beside the varied ligand.
+type Environment struct {
+	Effectors []float64 // concentrations, in the order of Mechanism.Effectors; zero is allowed
+	Protomers float64   // total concentration of protomers (sites), for mechanisms that assemble
+}
+
+// Mechanism is a family with its numbers of sites, classes and contacts settled.
+// It is immutable and safe for concurrent use.
+type Mechanism interface {
+	Family() string        // "mwc"
+	Sites() int            // sites on one molecule; 0 where the word has no meaning (Hill equation)
+	Constants() []Constant // their order fixes the layout of θ
+	Effectors() []string   // names, in the order Environment.Effectors expects
+	Curve() Curve          // a fresh workspace, for one goroutine
+}
+
+// Curve is a mechanism at given constants: a workspace that is bound to θ once
+// and then evaluated at many ligand activities without allocating.
+type Curve interface {
+	// Bind settles everything that depends on θ and the environment alone.
+	Bind(theta []float64, env Environment)
+	// Saturation writes Ȳ at each ln x into dst and, where grad is not nil
+	// (len(lnx) × len(θ)), ∂Ȳ/∂θ.
+	Saturation(dst, lnx []float64, grad *mat.Dense)
+	// At writes saturation, Hill coefficient and their derivatives at one ln x.
+	At(lnx float64, p *Point)
+}
+
+// Watched is a Curve whose response is not its saturation: a velocity with a
+// turnover per conformation, a signal from some states.
+type Watched interface {
+	Curve
+	// Watch returns what the response sees, sharing the bound state. Its
+	// Saturation is the raw average ⟨o⟩; its At measures n_H between the
+	// response's own limits at x → 0 and x → ∞ (NaN where it leaves them).
+	Watch() Curve
+}
+
+// Point is a curve at one ligand activity.
+type Point struct {
+	Y      float64 // saturation Ȳ
+	Empty  float64 // 1 − Ȳ, summed directly so that it keeps its digits near full saturation
+	DY     float64 // dȲ/d ln x
+	NH     float64 // Hill coefficient d ln[Ȳ/(1−Ȳ)]/d ln x
+	DNH    float64 // dn_H/d ln x
+	GradY  []float64
+	GradNH []float64
+}
+
+// Restated is a mechanism whose constants, as the trade quotes them, are not
+// those that are fitted (Adair: intrinsic dissociation constants of fitted β).
+type Restated interface {
+	Mechanism
+	Restate(theta []float64) []Restatement
+}
+
+// Restatement is one quoted constant.
+type Restatement struct {
+	Constant Constant
+	// Value is the constant; +Inf or 0 where it does not exist at these θ.
+	Value float64
+	// GradLn is ∂ ln Value/∂θ; nil where Value does not exist.
+	GradLn []float64
+	// Why says why Value does not exist, or what else is to be known of it.
+	Why string
+}
+
+// Measure is a number derived from a bound curve, with its gradient.
+type Measure struct {
+	Value float64
+	Grad  []float64
+	Why   string // not empty: the number does not exist, and why (Value is NaN)
+}
