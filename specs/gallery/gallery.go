@@ -5,7 +5,7 @@ package gallery
 import (
 	"embed"
 	"io/fs"
-	"testing/fstest"
+	"slices"
 )
 
 //go:embed studies
@@ -14,15 +14,15 @@ var studies embed.FS
 // Names lists the studies, in the order in which they are worth reading.
 func Names() []string { return []string{"clam", "oyster", "crab"} }
 
-// Files returns the files of one study: NAME.yaml and its tables.
-func Files(name string) (fs.FS, error) {
-	out := fstest.MapFS{}
-	for _, ext := range []string{".yaml", ".csv"} {
-		b, err := studies.ReadFile("studies/" + name + ext)
-		if err != nil {
-			return nil, err
-		}
-		out[name+ext] = &fstest.MapFile{Data: b, Mode: 0o644}
+// Files returns the files of one study, NAME.yaml and its table, or nil where
+// there is no study of that name.
+func Files(name string) fs.FS {
+	if !slices.Contains(Names(), name) {
+		return nil
 	}
-	return out, nil
+	sub, err := fs.Sub(studies, "studies/"+name)
+	if err != nil {
+		panic("gallery: embedded studies are missing")
+	}
+	return sub
 }
