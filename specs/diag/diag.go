@@ -71,6 +71,7 @@ type Diagnostic struct {
 	Notes    []string `json:"notes,omitempty"`    // why, or what there is instead; whole sentences
 	Remedies []Remedy `json:"remedies,omitempty"` // what to write
 	Source   string   `json:"source,omitempty"`   // the line, as it stands in the file
+	From     int      `json:"from,omitempty"`     // bytes of the line that Source leaves out before it
 }
 
 func (d Diagnostic) Error() string { return d.Position.String() + ": " + d.Problem }
@@ -115,4 +116,27 @@ func (l List) Sorted() List {
 	return slices.CompactFunc(s, func(a, b Diagnostic) bool {
 		return a.Position == b.Position && a.Code == b.Code && a.Problem == b.Problem
 	})
+}
+
+// Capped keeps the first few complaints of each code and file, and says on the
+// last of them how many there are more.
+func (l List) Capped(each int) List {
+	type kind struct{ file, code string }
+	seen, last := map[kind]int{}, map[kind]int{}
+	var kept List
+	for _, d := range l {
+		k := kind{d.File, d.Code}
+		if seen[k]++; seen[k] > each {
+			continue
+		}
+		last[k] = len(kept)
+		kept = append(kept, d)
+	}
+	for k, n := range seen {
+		if n > each {
+			d := &kept[last[k]]
+			d.Notes = append(slices.Clone(d.Notes), fmt.Sprintf("There are %d more of this kind in %s.", n-each, k.file))
+		}
+	}
+	return kept
 }
