@@ -43,7 +43,8 @@ type Result struct {
 	Objective float64   // see Problem
 	SS        []float64 // per block
 	Residuals []float64 // all blocks in order
-	N         int       // residuals
+	N         int       // residuals, collapsed ones counted in full
+	Constants int       // parameters that are not fixed: ν = N − Constants
 	Free      int       // parameters neither fixed nor on an edge
 	Offset    float64   // relative offset ‖Q₁ᵀr‖/‖r‖ at the end
 	Starts    int       // starts tried
@@ -68,3 +69,7 @@ type Interval struct {
 	Method            string  // "profile", "covariance", "bootstrap"
 	Why               string  // why an end is missing, or what was not reached
 }
+
+var statusNames = [...]string{"no answer", "converged", "at an edge", "stopped"}
+
+func (s Status) String() string { return statusNames[s] }

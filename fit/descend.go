@@ -1,0 +1,216 @@
+package fit
+
+import "math"
+
+const (
+	enough    = 1e-6  // relative offset at which a fit has converged
+	hardly    = 1e-4  // least share of the predicted gain that is a gain
+	tiniest   = 1e-15 // least radius relative to ‖D θ‖
+	roundings = 1e-13 // residuals below this part of ‖D θ‖ are rounding
+)
+
+// ending says how a descent ended.
+type ending uint8
+
+const (
+	failed      ending = iota // the start cannot be evaluated
+	stationary                // relative offset small enough
+	rounding                  // residuals at the level of rounding
+	stalled                   // no step lowers the objective any more
+	exhausted                 // out of iterations
+	interrupted               // told to stop
+)
+
+// begun evaluates the current point at theta, clamped into the box, and settles
+// its linear parameters.
+func (s *solver) begun(theta []float64) bool {
+	for j, v := range theta {
+		s.cur.theta[j] = min(max(v, s.low[j]), s.high[j])
+	}
+	clear(s.span)
+	if !s.evaluate(s.cur) {
+		return false
+	}
+	if s.joint {
+		s.setFloor(s.cur)
+	}
+	if len(s.linear) == 0 {
+		return true
+	}
+	s.settle(s.cur)
+	return s.evaluate(s.cur)
+}
+
+// setFloor keeps the logarithm of a vanishing sum of squares finite.
+func (s *solver) setFloor(pt *point) {
+	for b, ss := range pt.ss {
+		s.floor[b] = max(1e-28*ss, math.SmallestNonzeroFloat64*1e20)
+	}
+	s.measure(pt)
+}
+
+// descend goes from the current point to a minimum by Gauss–Newton steps in a
+// trust region whose axes are scaled by the longest that each column of the
+// Jacobian has been. It ends at a relative offset of tol.
+//
+// Moré JJ (1978) Lecture Notes in Mathematics 630, 105–116.
+func (s *solver) descend(done <-chan struct{}, tol float64, most int) ending {
+	radius := -1.0
+	for iter := 0; ; iter++ {
+		s.factor()
+		if s.offset <= tol {
+			return stationary
+		}
+		if s.atRounding() {
+			return rounding
+		}
+		if iter >= most {
+			return exhausted
+		}
+		select {
+		case <-done:
+			return interrupted
+		default:
+		}
+		if radius < 0 {
+			radius = s.firstRadius()
+		}
+		for first := true; ; first = false {
+			length, ratio := s.attempt(radius)
+			radius = s.resize(radius, length, ratio, iter == 0 && first)
+			if ratio >= hardly {
+				break
+			}
+			if radius <= tiniest*s.size() || length == 0 {
+				return stalled
+			}
+		}
+		s.cur, s.try = s.try, s.cur
+	}
+}
+
+// firstRadius is ‖D θ‖, or ‖D‖ where θ is zero.
+func (s *solver) firstRadius() float64 {
+	if r := s.size(); r > 0 {
+		return r
+	}
+	var d float64
+	for _, j := range s.free[s.lin:] {
+		d = math.Hypot(d, s.span[j])
+	}
+	return d
+}
+
+// size is ‖D θ‖ of the free curved parameters.
+func (s *solver) size() float64 {
+	var d float64
+	for _, j := range s.free[s.lin:] {
+		v := s.span[j] * s.cur.theta[j]
+		d += v * v
+	}
+	return math.Sqrt(d)
+}
+
+// atRounding says whether the residuals are no more than rounding of what they
+// are the differences of.
+func (s *solver) atRounding() bool {
+	t := s.total(s.cur)
+	if t == 0 {
+		return true
+	}
+	return false
+}
+
+// attempt takes a step within the radius, evaluates the trial point there and
+// returns the length of the step and the share of the predicted gain that came
+// true; −Inf where the trial is not finite.
+func (s *solver) attempt(radius float64) (length, ratio float64) {
+	s.propose(radius)
+	length = norm(s.step.t[:s.f.m-s.lin])
+	if s.step.gain <= 0 {
+		return 0, math.Inf(-1)
+	}
+	if !s.evaluate(s.try) {
+		return length, math.Inf(-1)
+	}
+	if moved := s.settle(s.try); moved > 1e-4*s.total(s.try) {
+		if s.try.obj < s.cur.obj && !s.evaluate(s.try) {
+			return length, math.Inf(-1)
+		}
+	}
+	return length, (s.cur.obj - s.try.obj) / s.step.gain
+}
+
+// propose writes the θ of the trial point.
+func (s *solver) propose(radius float64) {
+	f, b, q := s.f, s.step, s.lin
+	m := f.m - q
+	for k := 0; k < m; k++ {
+		j := s.free[q+k]
+		d := s.span[j]
+		b.z[k] = f.z[q+k]
+		b.low[k], b.high[k] = (s.low[j]-s.cur.theta[j])*d, (s.high[j]-s.cur.theta[j])*d
+		var inv float64
+		if d > 0 {
+			inv = 1 / d
+		}
+		for i := 0; i <= k; i++ {
+			b.s[i*m+k] = f.r[(q+i)*f.most+q+k] * inv
+		}
+	}
+	b.solve(m, m, radius)
+	copy(s.try.theta, s.cur.theta)
+	for k := 0; k < m; k++ {
+		j := s.free[q+k]
+		s.change[q+k] = 0
+		if s.span[j] > 0 {
+			s.change[q+k] = b.t[k] / s.span[j]
+		}
+	}
+	s.follow()
+	for k, j := range s.free {
+		v := min(max(s.cur.theta[j]+s.change[k], s.low[j]), s.high[j])
+		if k >= q {
+			switch b.stop[k-q] {
+			case -1:
+				v = s.low[j]
+			case 1:
+				v = s.high[j]
+			}
+		}
+		s.try.theta[j] = v
+	}
+}
+
+// follow completes the change of the curved parameters by that of the linear
+// ones that keeps the linearised residuals least.
+func (s *solver) follow() {
+	f, q := s.f, s.lin
+	for i := q - 1; i >= 0; i-- {
+		row := f.r[i*f.most : i*f.most+f.m]
+		s.change[i] = 0
+		if row[i] != 0 {
+			s.change[i] = -(f.z[i] + dot(row[i+1:], s.change[i+1:f.m])) / row[i]
+		}
+	}
+}
+
+// resize is the radius after a step of that length and ratio.
+func (s *solver) resize(radius, length, ratio float64, first bool) float64 {
+	if first {
+		radius = min(radius, length)
+	}
+	switch {
+	case math.IsInf(ratio, -1):
+		return 0.25 * min(radius, length)
+	case ratio <= 0.25:
+		shrink := 0.5
+		if actual := ratio * s.step.gain; actual < 0 {
+			shrink = s.step.slope / (2*s.step.slope + actual)
+		}
+		return min(max(shrink, 0.1), 0.5) * min(radius, 10*length)
+	case ratio >= 0.75 || s.step.lambda == 0:
+		return 2 * length
+	}
+	return radius
+}

@@ -1,0 +1,89 @@
+package fit
+
+import (
+	"fmt"
+	"math"
+)
+
+// result reports the current point.
+func (s *solver) result(end ending) *Result {
+	pt := s.cur
+	r := &Result{
+		Theta:     append([]float64(nil), pt.theta...),
+		Edges:     make([]Edge, s.p),
+		Objective: pt.obj,
+		SS:        append([]float64(nil), pt.ss...),
+		Residuals: append([]float64(nil), pt.res...),
+		Offset:    s.offset,
+		Evals:     s.evals,
+	}
+	for _, c := range s.count {
+		r.N += int(c)
+	}
+	edges := 0
+	for j := range r.Edges {
+		switch {
+		case s.low[j] == s.high[j]:
+			continue
+		case pt.theta[j] == s.low[j]:
+			r.Edges[j], edges = OnLow, edges+1
+		case pt.theta[j] == s.high[j]:
+			r.Edges[j], edges = OnHigh, edges+1
+		default:
+			r.Free++
+		}
+		r.Constants++
+	}
+	switch end {
+	case stationary, rounding:
+		r.Status = Converged
+		if edges > 0 {
+			r.Status = AtEdge
+		}
+	default:
+		r.Status = Stopped
+	}
+	s.scatter(r)
+	s.covariance(r)
+	return r
+}
+
+// scatter estimates the standard deviation of each block.
+func (s *solver) scatter(r *Result) {
+	r.Sigma = make([]float64, len(s.blocks))
+	n := float64(r.N)
+	nu := n - float64(r.Constants)
+	for b := range s.blocks {
+		switch {
+		case s.known[b]:
+			r.Sigma[b] = 1
+		case nu > 0 && s.count[b] > 0:
+			r.Sigma[b] = math.Sqrt(r.SS[b] / s.count[b] * n / nu)
+		}
+	}
+	if nu <= 0 {
+		r.warn("as many parameters as residuals: the scatter cannot be estimated")
+	}
+}
+
+func (r *Result) warn(format string, a ...any) {
+	r.Warnings = append(r.Warnings, fmt.Sprintf(format, a...))
+}
+
+// count says how many runs reached the minimum of r.
+func (r *Result) count(runs []run) {
+	r.Evals = 0
+	for _, a := range runs {
+		if a.end == failed && a.evals == 0 {
+			continue
+		}
+		r.Starts++
+		r.Evals += a.evals
+		if a.end != failed && same(a.obj, r.Objective) {
+			r.Agreeing++
+		}
+	}
+}
+
+// same says whether two objectives are those of one minimum.
+func same(a, b float64) bool { return a-b <= 1e-6*math.Abs(b) }
