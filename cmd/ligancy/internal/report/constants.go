@@ -1,0 +1,144 @@
+package report
+
+import (
+	"math"
+	"slices"
+
+	"ligancy/fit/saturation"
+)
+
+// constants writes CONSTANTS, AND HOW FIRMLY THEY ARE HELD for one mechanism:
+// its constants, the ends of the response that were fitted, combinations that
+// are held better than their parts, and ratios between curves.
+func (p *page) constants(mechanism string) {
+	rows := p.constantRows(mechanism)
+	if len(rows) == 0 {
+		return
+	}
+	p.heading("CONSTANTS, AND HOW FIRMLY THEY ARE HELD", "")
+	g := &grid{gap: 2}
+	g.add("", "value", "", "from", "to", "held within")
+	for _, q := range rows[:min(len(rows), mostConstants)] {
+		g.add(p.constantCells(q)...)
+	}
+	for _, l := range g.lines(Width - 2) {
+		p.line("  %s", l)
+	}
+	if n := len(rows) - mostConstants; n > 0 {
+		p.line("  and %d more: quantities.csv", n)
+	}
+	p.line("")
+}
+
+// constantRows collects the rows of the table: contrasts of a constant follow
+// its last level.
+func (p *page) constantRows(mechanism string) []*saturation.QuantityRow {
+	var rows, contrasts []*saturation.QuantityRow
+	for i := range p.d.Quantities {
+		q := &p.d.Quantities[i]
+		if q.Mechanism != mechanism {
+			continue
+		}
+		switch q.Of {
+		case "constant", "combination":
+			rows = append(rows, q)
+		case "response":
+			if q.Held != "fixed" {
+				rows = append(rows, q)
+			}
+		case "contrast":
+			contrasts = append(contrasts, q)
+		}
+	}
+	for _, q := range contrasts {
+		last := -1
+		for i, r := range rows {
+			if r.Name == q.Name {
+				last = i
+			}
+		}
+		if last >= 0 {
+			rows = slices.Insert(rows, last+1, q)
+		}
+	}
+	return rows
+}
+
+// constantCells writes one row: name, value, unit, ends, how firmly held.
+func (p *page) constantCells(q *saturation.QuantityRow) []string {
+	mark := p.marks(q)
+	label := constantLabel(q)
+	value := float64(q.Value)
+	if q.Held == "fixed" {
+		return []string{label, plain(value), unitWord(q.Unit), "", "", "fixed in the study", mark}
+	}
+	if !finite(value) {
+		return []string{label, "–", unitWord(q.Unit), "", "", "not held alone", mark}
+	}
+	v, lo, hi := figures(value, float64(q.Low), float64(q.High))
+	if lo == "" {
+		lo = "and below"
+	}
+	if hi == "" {
+		hi = "and beyond"
+	}
+	if q.Interval == "none" || q.Interval == "" {
+		lo, hi = "", ""
+	}
+	return []string{label, v, unitWord(q.Unit), lo, hi, held(q), mark}
+}
+
+// constantLabel writes "K_R", "L, pH 7.6", "L 7.0 / 7.6", "K_T of alanine", "Kd (tight)".
+func constantLabel(q *saturation.QuantityRow) string {
+	label := q.Name
+	if q.Site != nil && *q.Site != "" {
+		label += " (" + *q.Site + ")"
+	}
+	switch {
+	case q.Curve == "all" || q.Curve == "":
+	case q.Of == "contrast":
+		label += " " + shortContrast(q.Curve)
+	default:
+		label += ", " + q.Curve
+	}
+	return cut(label, 34)
+}
+
+// held says in words how firmly a number is held.
+func held(q *saturation.QuantityRow) string {
+	low, high := float64(q.Low), float64(q.High)
+	hasLow, hasHigh := finite(low), finite(high)
+	switch {
+	case hasLow && hasHigh && low > 0:
+		return "a factor " + factor(low, high)
+	case hasLow && hasHigh:
+		u := (high - low) / 2
+		return "± " + atPlace(u, lastPlace(u, 0), false)
+	case hasLow:
+		return "its low end only"
+	case hasHigh:
+		return "its high end only"
+	case q.Held == "neither":
+		return "neither end"
+	}
+	return ""
+}
+
+// unitWord is the unit as a column shows it; a pure number has none.
+func unitWord(unit string) string {
+	if unit == "1" {
+		return ""
+	}
+	return cut(unit, 16)
+}
+
+// plain writes a number as it was given.
+func plain(x float64) string {
+	if !finite(x) {
+		return "–"
+	}
+	if x == math.Trunc(x) && math.Abs(x) < 1e6 {
+		return atPlace(x, 0, false)
+	}
+	return axisNumber(x)
+}

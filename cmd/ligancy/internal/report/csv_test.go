@@ -1,0 +1,103 @@
+package report
+
+import (
+	"bytes"
+	"encoding/csv"
+	"encoding/json"
+	"math"
+	"slices"
+	"strings"
+	"testing"
+
+	"ligancy/fit/saturation"
+)
+
+func TestDocumentAsJSON(t *testing.T) {
+	d := clamDocument(t)
+	d.Points, d.Quantities = d.Points[:1], d.Quantities[9:11]
+	d.Mechanisms, d.Correlations, d.Objections = d.Mechanisms[:1], d.Correlations[:1], d.Objections[:1]
+	var b bytes.Buffer
+	if err := WriteJSON(&b, d); err != nil {
+		t.Fatal(err)
+	}
+	golden(t, "clam.json", b.Bytes())
+	if strings.Contains(b.String(), `\u003c`) {
+		t.Error("markup is escaped: JSON is no HTML")
+	}
+}
+
+// An outcome without rows still has every list, each a list.
+func TestEmptyOutcomeHasEveryList(t *testing.T) {
+	d := New(&saturation.Analysis{}, &saturation.Outcome{}, Source{})
+	var b bytes.Buffer
+	if err := WriteJSON(&b, d); err != nil {
+		t.Fatal(err)
+	}
+	var doc map[string]json.RawMessage
+	if err := json.Unmarshal(b.Bytes(), &doc); err != nil {
+		t.Fatal(err)
+	}
+	for _, k := range []string{"data", "mechanisms", "quantities", "points", "curves", "correlations", "objections"} {
+		if string(doc[k]) != "[]" {
+			t.Errorf("%s is %s", k, doc[k])
+		}
+	}
+	if bytes.Contains(b.Bytes(), []byte("null")) {
+		t.Errorf("null in\n%s", b.String())
+	}
+	if err := d.WriteText(&b, false); err != nil {
+		t.Error(err)
+	}
+}
+
+func TestTablesHaveTheKeysOfTheJSONAndTheSameNumbers(t *testing.T) {
+	d := clamDocument(t)
+	d.Curves = []saturation.CurveRow{{Mechanism: "a, \"b\"", Curve: "all", X: 0.1, Saturation: saturation.Real(math.NaN()), NH: 1e-300}}
+	for _, table := range d.Tables() {
+		var b bytes.Buffer
+		if err := table.WriteCSV(&b); err != nil {
+			t.Fatal(err)
+		}
+		records, err := csv.NewReader(&b).ReadAll()
+		if err != nil {
+			t.Fatal(err)
+		}
+		encoded, err := json.Marshal(table.rows)
+		if err != nil {
+			t.Fatal(err)
+		}
+		var rows []map[string]any
+		if err := json.Unmarshal(encoded, &rows); err != nil {
+			t.Fatal(err)
+		}
+		if len(records) != len(rows)+1 || len(rows) == 0 {
+			t.Fatalf("%s: %d records for %d rows", table.Name, len(records), len(rows))
+		}
+		for i, row := range rows {
+			if len(row) != len(records[0]) {
+				t.Errorf("%s: %d keys, %d columns", table.Name, len(row), len(records[0]))
+			}
+			for k, v := range row {
+				c := slices.Index(records[0], k)
+				if c < 0 {
+					t.Fatalf("%s has no column %s", table.Name, k)
+				}
+				got := records[i+1][c]
+				switch v := v.(type) {
+				case nil:
+					if got != "" {
+						t.Errorf("%s, %s: null is written %q", table.Name, k, got)
+					}
+				case string:
+					if got != v {
+						t.Errorf("%s, %s: %q for %q", table.Name, k, got, v)
+					}
+				case float64:
+					if parse(t, got) != v {
+						t.Errorf("%s, %s: %s for %v", table.Name, k, got, v)
+					}
+				}
+			}
+		}
+	}
+}

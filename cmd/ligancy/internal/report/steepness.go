@@ -1,0 +1,281 @@
+package report
+
+import (
+	"fmt"
+	"math"
+	"slices"
+	"strconv"
+	"strings"
+
+	"ligancy/fit/saturation"
+)
+
+// Bounds of what one section prints; the tables hold the rest.
+const (
+	mostCurves    = 12
+	mostConstants = 30
+	mostStanding  = 20
+	labelColumns  = 22
+)
+
+// steepness writes HOW STEEP, AND WHERE for one mechanism: the ruler of each
+// curve, then half saturation and the Hill coefficients, each by its own name.
+func (p *page) steepness(mechanism string) {
+	curves := p.d.curvesOf(mechanism)
+	if len(curves) == 0 {
+		return
+	}
+	p.heading("HOW STEEP, AND WHERE", p.basis(mechanism))
+	shown := curves[:min(len(curves), mostCurves)]
+	p.ruler(mechanism, shown)
+	p.line("")
+	p.slopes(mechanism, shown)
+	if n := len(curves) - len(shown); n > 0 {
+		p.line("  and %d more curves: quantities.csv", n)
+	}
+	p.line("")
+}
+
+// basis says which mechanism the numbers come from and how their intervals were made.
+func (p *page) basis(mechanism string) string {
+	for i := range p.d.Quantities {
+		q := &p.d.Quantities[i]
+		if q.Mechanism == mechanism && q.Interval != "" && q.Interval != "none" && finite(float64(q.Level)) {
+			return fmt.Sprintf("%s; %s %% %s intervals", cut(mechanism, 36), percent(float64(q.Level)), q.Interval)
+		}
+	}
+	return cut(mechanism, 60)
+}
+
+func percent(share float64) string { return strconv.FormatFloat(100*share, 'g', 4, 64) }
+
+// ruler draws the tested points and the reach of each curve on one axis.
+func (p *page) ruler(mechanism string, curves []string) {
+	tested := p.testedPoints(mechanism)
+	reaches := make([]reach, len(curves))
+	var all, ends []float64
+	label := width("tested")
+	for i, c := range curves {
+		reaches[i] = p.reach(mechanism, c, tested[c])
+		ends = append(ends, reaches[i].x01, reaches[i].x99, reaches[i].half)
+		all = append(all, tested[c]...)
+		label = max(label, width(cut(curveLabel(c), labelColumns)))
+	}
+	a, ok := newAxis(all, ends, Width-2-label-2-14)
+	if !ok {
+		return
+	}
+	p.line("  %s  %s", pad(cut(p.d.analysis.Ligand.Unit, label), label), a.scale())
+	if len(all) > 0 {
+		zero := ""
+		if slices.Contains(all, 0) {
+			zero = "and 0"
+		}
+		p.line("  %s  %s", pad("tested", label), strings.TrimRight(pad(a.marks(distinct(all)), a.columns+2)+zero, " "))
+	}
+	for i, c := range curves {
+		if !finite(reaches[i].half) {
+			continue
+		}
+		decades := ""
+		if r := reaches[i]; finite(r.x10) && finite(r.x90) && r.x10 > 0 {
+			decades = strconv.FormatFloat(math.Log10(r.x90/r.x10), 'f', 2, 64) + " decades"
+		}
+		bar := pad(a.bar(reaches[i]), a.columns)
+		p.line("  %s  %s  %s", pad(cut(curveLabel(c), labelColumns), label), p.ink.curve(i, bar), decades)
+	}
+	p.legend(a, reaches, label)
+}
+
+// legend names the strokes that were used.
+func (p *page) legend(a axis, reaches []reach, label int) {
+	of := "%"
+	if kind := p.kind(); kind == "saturation" || kind == "bound" {
+		of = "% bound"
+	}
+	text := fmt.Sprintf("%c 10 to 90 %s   %c 1 to 99 %%   %c half", thick, of, thin, upright)
+	for _, r := range reaches {
+		drawn := a.bar(r)
+		if strings.ContainsRune(drawn, thinBeyond) || strings.ContainsRune(drawn, thickBeyond) {
+			text += fmt.Sprintf("   %c %c beyond the tested points", thinBeyond, thickBeyond)
+			break
+		}
+	}
+	p.line("  %s  %s", pad("", label), p.ink.dim(text))
+}
+
+// kind of the first response.
+func (p *page) kind() string {
+	if len(p.d.analysis.Data) == 0 {
+		return ""
+	}
+	return p.d.analysis.Data[0].Response.Kind
+}
+
+// testedPoints collects the ligand values of kept points by curve.
+func (p *page) testedPoints(mechanism string) map[string][]float64 {
+	tested := map[string][]float64{}
+	for i := range p.d.Points {
+		r := &p.d.Points[i]
+		if r.Mechanism == mechanism && r.LeftOut == nil {
+			tested[r.Curve] = append(tested[r.Curve], float64(r.X))
+		}
+	}
+	return tested
+}
+
+// reach reads where a curve lies.
+func (p *page) reach(mechanism, curve string, tested []float64) reach {
+	at := func(name string) float64 {
+		if q := p.rows[key{mechanism, curve, "position", name}]; q != nil {
+			return float64(q.Value)
+		}
+		return math.NaN()
+	}
+	r := reach{x01: at("x_01"), x10: at("x_10"), half: at("x_half"), x90: at("x_90"), x99: at("x_99")}
+	low, high := span(tested)
+	r.from, r.to = math.Pow(10, low), math.Pow(10, high)
+	return r
+}
+
+// curveLabel is what stands in front of a curve's row.
+func curveLabel(curve string) string {
+	if curve == "all" {
+		return "curve"
+	}
+	return curve
+}
+
+// slopes writes the table of half saturation and Hill coefficients.
+func (p *page) slopes(mechanism string, curves []string) {
+	g := &grid{gap: 2}
+	half := p.d.halfSymbol()
+	if unit := p.d.analysis.Ligand.Unit; unit != "" {
+		half += " / " + cut(unit, 12)
+	}
+	readings := p.readings(mechanism)
+	header := []string{"", half, "n_H at half saturation"}
+	if readings.steepest {
+		header = append(header, "steepest n_H")
+	}
+	if readings.hill {
+		header = append(header, "a Hill fit would say")
+	}
+	g.add(header...)
+	var halves, slopes []*saturation.QuantityRow
+	for _, c := range curves {
+		halves = append(halves, p.rows[key{mechanism, c, "position", "x_half"}])
+		slopes = append(slopes, p.rows[key{mechanism, c, "hill", "n_H_half"}])
+	}
+	pairs := p.d.contrastsOf(mechanism)
+	for _, c := range pairs {
+		halves = append(halves, p.rows[key{mechanism, c, "contrast", "x_half"}])
+		slopes = append(slopes, p.rows[key{mechanism, c, "contrast", "n_H"}])
+	}
+	halfCells, slopeCells := stacked(halves), stacked(slopes)
+	for i, c := range curves {
+		row := []string{cut(curveLabel(c), labelColumns), halfCells[i], slopeCells[i]}
+		if readings.steepest {
+			row = append(row, p.steepest(mechanism, c))
+		}
+		if readings.hill {
+			row = append(row, p.hillReading(mechanism, c))
+		}
+		g.add(row...)
+	}
+	for i, c := range pairs {
+		h, s := halfCells[len(curves)+i], slopeCells[len(curves)+i]
+		if h != "" || s != "" {
+			g.add(cut(shortContrast(c), labelColumns), h, s)
+		}
+	}
+	for _, l := range g.lines(Width - 2) {
+		p.line("  %s", l)
+	}
+}
+
+// readings says which further Hill coefficients tell the reader anything.
+type readings struct{ steepest, hill bool }
+
+// readings leaves out columns without numbers, and both columns for a Hill
+// equation, whose slope is the same everywhere.
+func (p *page) readings(mechanism string) readings {
+	var r readings
+	if m := p.d.mechanism(mechanism); m != nil && m.Family == "hill" {
+		return r
+	}
+	for i := range p.d.Quantities {
+		q := &p.d.Quantities[i]
+		if q.Mechanism != mechanism || q.Of != "hill" || !finite(float64(q.Value)) {
+			continue
+		}
+		r.steepest = r.steepest || q.Name == "n_H_max"
+		r.hill = r.hill || q.Name == "n_H_hill_reading"
+	}
+	return r
+}
+
+// steepest writes "2.88 at 41 %".
+func (p *page) steepest(mechanism, curve string) string {
+	q := p.rows[key{mechanism, curve, "hill", "n_H_max"}]
+	if q == nil || !finite(float64(q.Value)) {
+		return "–"
+	}
+	v, _, _ := figures(float64(q.Value), float64(q.Low), float64(q.High))
+	if at := p.rows[key{mechanism, curve, "position", "n_H_max_at"}]; at != nil && finite(float64(at.Value)) {
+		v += " at " + strconv.FormatFloat(100*float64(at.Value), 'f', 0, 64) + " %"
+	}
+	return v
+}
+
+// hillReading writes what a Hill fit of these data would say, and the number
+// of its caution.
+func (p *page) hillReading(mechanism, curve string) string {
+	q := p.rows[key{mechanism, curve, "hill", "n_H_hill_reading"}]
+	if q == nil || !finite(float64(q.Value)) {
+		return "–"
+	}
+	v, _, _ := figures(float64(q.Value), float64(q.Low), float64(q.High))
+	return strings.TrimRight(v+"  "+p.marks(q), " ")
+}
+
+// stacked writes values with their intervals so that the intervals begin in
+// one column: "5.44   (5.38 to 5.50)". A missing row is an empty cell.
+func stacked(rows []*saturation.QuantityRow) []string {
+	values, intervals := make([]string, len(rows)), make([]string, len(rows))
+	widest := 0
+	for i, q := range rows {
+		if q == nil {
+			continue
+		}
+		v, lo, hi := figures(float64(q.Value), float64(q.Low), float64(q.High))
+		values[i] = v
+		if v == "" {
+			values[i] = "does not exist"
+			continue
+		}
+		intervals[i] = intervalWords(lo, hi)
+		widest = max(widest, width(v))
+	}
+	cells := make([]string, len(rows))
+	for i := range rows {
+		cells[i] = values[i]
+		if intervals[i] != "" {
+			cells[i] = pad(values[i], widest) + "  " + intervals[i]
+		}
+	}
+	return cells
+}
+
+// intervalWords writes "(5.38 to 5.50)", or what there is of it.
+func intervalWords(low, high string) string {
+	switch {
+	case low == "" && high == "":
+		return ""
+	case low == "":
+		return "(up to " + high + ")"
+	case high == "":
+		return "(" + low + " and beyond)"
+	}
+	return "(" + low + " to " + high + ")"
+}
