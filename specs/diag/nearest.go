@@ -16,6 +16,9 @@ func Nearest(word string, valid []string) string {
 	best, least := "", 1+max(1, len([]rune(w))/3)
 	for _, v := range valid {
 		d := slips(w, strings.ToLower(v))
+		if d >= len([]rune(w)) {
+			continue // nothing in common
+		}
 		if d < least || d == least && best != "" && commonStart(w, v) > commonStart(w, best) {
 			best, least = v, d
 		}
