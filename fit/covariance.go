@@ -18,7 +18,7 @@ func (s *solver) covariance(r *Result) {
 	}
 	s.begin(s.cur)
 	for _, j := range interior {
-		a := s.f.next()
+		a := s.cur.f.next()
 		for b, sigma := range r.Sigma {
 			if sigma == 0 {
 				sigma = 1
@@ -27,7 +27,7 @@ func (s *solver) covariance(r *Result) {
 				a[i] = s.cur.jraw[i*s.p+j] / sigma
 			}
 		}
-		if before, after := s.f.push(); after == 0 {
+		if before, after := s.cur.f.push(); after == 0 {
 			if before == 0 {
 				r.warn("%s changes no residual", s.prob.Parameters[j].Name)
 			} else {
@@ -43,7 +43,7 @@ func (s *solver) covariance(r *Result) {
 	inv := mat.NewTriDense(m, mat.Upper, nil)
 	for i := 0; i < m; i++ {
 		for k := i; k < m; k++ {
-			inv.SetTri(i, k, s.f.r[i*s.f.most+k])
+			inv.SetTri(i, k, s.cur.f.r[i*s.cur.f.most+k])
 		}
 	}
 	if err := inv.InverseTri(inv); err != nil {

@@ -7,6 +7,12 @@ const (
 	hardly    = 1e-4  // least share of the predicted gain that is a gain
 	tiniest   = 1e-15 // least radius relative to ‖D θ‖
 	roundings = 1e-13 // residuals below this part of ‖D θ‖ are rounding
+
+	// A step that would end on a bound goes but a part of the way there until as
+	// many steps in a row have wanted to: a bound is often a saddle (equal
+	// constants of two conformations) from which no step leads away.
+	meetings = 3
+	approach = 0.5
 )
 
 // ending says how a descent ended.
@@ -28,6 +34,7 @@ func (s *solver) begun(theta []float64) bool {
 		s.cur.theta[j] = min(max(v, s.low[j]), s.high[j])
 	}
 	clear(s.span)
+	clear(s.hits)
 	if !s.evaluate(s.cur) {
 		return false
 	}
@@ -85,6 +92,13 @@ func (s *solver) descend(done <-chan struct{}, tol float64, most int) ending {
 				return stalled
 			}
 		}
+		for k, j := range s.cur.free[s.cur.lin:] {
+			if s.step.stop[k] != 0 {
+				s.hits[j]++
+			} else {
+				s.hits[j] = 0
+			}
+		}
 		s.cur, s.try = s.try, s.cur
 	}
 }
@@ -95,7 +109,7 @@ func (s *solver) firstRadius() float64 {
 		return r
 	}
 	var d float64
-	for _, j := range s.free[s.lin:] {
+	for _, j := range s.cur.free[s.cur.lin:] {
 		d = math.Hypot(d, s.span[j])
 	}
 	return d
@@ -104,7 +118,7 @@ func (s *solver) firstRadius() float64 {
 // size is ‖D θ‖ of the free curved parameters.
 func (s *solver) size() float64 {
 	var d float64
-	for _, j := range s.free[s.lin:] {
+	for _, j := range s.cur.free[s.cur.lin:] {
 		v := s.span[j] * s.cur.theta[j]
 		d += v * v
 	}
@@ -126,7 +140,7 @@ func (s *solver) atRounding() bool {
 // true; −Inf where the trial is not finite.
 func (s *solver) attempt(radius float64) (length, ratio float64) {
 	s.propose(radius)
-	length = norm(s.step.t[:s.f.m-s.lin])
+	length = norm(s.step.t[:s.cur.f.m-s.cur.lin])
 	if s.step.gain <= 0 {
 		return 0, math.Inf(-1)
 	}
@@ -143,13 +157,17 @@ func (s *solver) attempt(radius float64) (length, ratio float64) {
 
 // propose writes the θ of the trial point.
 func (s *solver) propose(radius float64) {
-	f, b, q := s.f, s.step, s.lin
+	f, b, q := s.cur.f, s.step, s.cur.lin
 	m := f.m - q
 	for k := 0; k < m; k++ {
-		j := s.free[q+k]
+		j := s.cur.free[q+k]
 		d := s.span[j]
 		b.z[k] = f.z[q+k]
 		b.low[k], b.high[k] = (s.low[j]-s.cur.theta[j])*d, (s.high[j]-s.cur.theta[j])*d
+		if s.hits[j] < meetings {
+			b.low[k] *= approach
+			b.high[k] *= approach
+		}
 		var inv float64
 		if d > 0 {
 			inv = 1 / d
@@ -161,20 +179,21 @@ func (s *solver) propose(radius float64) {
 	b.solve(m, m, radius)
 	copy(s.try.theta, s.cur.theta)
 	for k := 0; k < m; k++ {
-		j := s.free[q+k]
+		j := s.cur.free[q+k]
 		s.change[q+k] = 0
 		if s.span[j] > 0 {
 			s.change[q+k] = b.t[k] / s.span[j]
 		}
 	}
 	s.follow()
-	for k, j := range s.free {
+	for k, j := range s.cur.free {
 		v := min(max(s.cur.theta[j]+s.change[k], s.low[j]), s.high[j])
 		if k >= q {
-			switch b.stop[k-q] {
-			case -1:
+			switch {
+			case s.hits[j] < meetings:
+			case b.stop[k-q] < 0:
 				v = s.low[j]
-			case 1:
+			case b.stop[k-q] > 0:
 				v = s.high[j]
 			}
 		}
@@ -185,7 +204,7 @@ func (s *solver) propose(radius float64) {
 // follow completes the change of the curved parameters by that of the linear
 // ones that keeps the linearised residuals least.
 func (s *solver) follow() {
-	f, q := s.f, s.lin
+	f, q := s.cur.f, s.cur.lin
 	for i := q - 1; i >= 0; i-- {
 		row := f.r[i*f.most : i*f.most+f.m]
 		s.change[i] = 0

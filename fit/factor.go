@@ -3,9 +3,9 @@ package fit
 import "math"
 
 // load writes column j of the Jacobian of pt, in units of scaled residuals,
-// into the next column of f.
+// into its next column.
 func (s *solver) load(pt *point, j int) {
-	a := s.f.next()
+	a := pt.f.next()
 	if !s.joint {
 		for i, k := 0, j; i < len(a); i, k = i+1, k+s.p {
 			a[i] = pt.jraw[k]
@@ -19,14 +19,14 @@ func (s *solver) load(pt *point, j int) {
 	}
 }
 
-// begin empties f and gives it the scaled residuals of pt.
+// begin empties f of pt and gives it the scaled residuals of pt.
 func (s *solver) begin(pt *point) {
-	s.f.m, s.free, s.lin = 0, s.free[:0], 0
-	copy(s.f.rhs, pt.res)
+	pt.f.m, pt.free, pt.lin = 0, pt.free[:0], 0
+	copy(pt.f.rhs, pt.res)
 	if s.joint {
 		for b, f := range pt.scale {
 			for i := s.rows[b]; i < s.rows[b+1]; i++ {
-				s.f.rhs[i] *= f
+				pt.f.rhs[i] *= f
 			}
 		}
 	}
@@ -58,8 +58,8 @@ func (s *solver) take(pt *point, which []int) {
 	for _, j := range which {
 		if !s.pushes(pt, j) {
 			s.load(pt, j)
-			s.f.push()
-			s.free = append(s.free, j)
+			pt.f.push()
+			pt.free = append(pt.free, j)
 		}
 	}
 }
@@ -67,21 +67,24 @@ func (s *solver) take(pt *point, which []int) {
 // factor takes the current point apart: Q, R and z of its free columns, linear
 // ones first; the lengths D; the relative offset.
 func (s *solver) factor() {
-	s.begin(s.cur)
-	s.take(s.cur, s.linear)
-	s.lin = len(s.free)
-	s.take(s.cur, s.curved)
-	f := s.f
-	for k := s.lin; k < f.m; k++ {
+	pt, f := s.cur, s.cur.f
+	if !pt.solved {
+		s.begin(pt)
+		s.take(pt, s.linear)
+		pt.lin = f.m
+	}
+	pt.solved = false
+	s.take(pt, s.curved)
+	for k := pt.lin; k < f.m; k++ {
 		var d float64
-		for i := s.lin; i <= k; i++ {
+		for i := pt.lin; i <= k; i++ {
 			v := f.r[i*f.most+k]
 			d += v * v
 		}
-		j := s.free[k]
+		j := pt.free[k]
 		s.span[j] = max(s.span[j], math.Sqrt(d))
 	}
-	s.offset = relative(norm(f.z[:f.m]), math.Sqrt(s.total(s.cur)))
+	s.offset = relative(norm(f.z[:f.m]), math.Sqrt(s.total(pt)))
 }
 
 // relative is z/r, zero where both are.

@@ -13,14 +13,17 @@ func (s *solver) settle(pt *point) (moved float64) {
 	s.begin(pt)
 	for _, j := range s.linear {
 		s.load(pt, j)
-		s.f.push()
+		pt.f.push()
+		pt.free = append(pt.free, j)
 	}
-	f, m := s.f, s.f.m
+	f, m := pt.f, pt.f.m
+	pt.lin, pt.solved = m, !s.joint
 	f.solve(s.change, f.z, m)
 	for k, j := range s.linear {
 		v := pt.theta[j] + s.change[k]
-		if v < s.low[j] || v > s.high[j] {
+		if v <= s.low[j] || v >= s.high[j] {
 			s.settleInBox(pt)
+			pt.solved = false
 			break
 		}
 	}
@@ -38,6 +41,7 @@ func (s *solver) settle(pt *point) (moved float64) {
 		v := dot(f.r[i*f.most+i:i*f.most+m], s.change[i:m])
 		moved += v * v
 	}
+	clear(f.z[:m])
 	s.measure(pt)
 	return moved
 }
@@ -46,7 +50,7 @@ func (s *solver) settle(pt *point) (moved float64) {
 // an active set: clamp the bound met first, solve for the rest, release the
 // bound whose multiplier has the wrong sign.
 func (s *solver) settleInBox(pt *point) {
-	f, b := s.f, s.step
+	f, b := pt.f, s.step
 	m := f.m
 	for i := 0; i < m; i++ {
 		copy(b.s[i*m+i:i*m+m], f.r[i*f.most+i:i*f.most+m])

@@ -15,13 +15,19 @@ type point struct {
 	ss    []float64    // per block, what lies within collapsed rows included
 	obj   float64      // see Problem
 	scale []float64    // per block: √(N_b/SS_b) where several σ are unknown, else 1
+
+	f      *columns // its scaled Jacobian taken apart, linear parameters first
+	free   []int    // the parameter of each column of f
+	lin    int      // how many of them are linear
+	solved bool     // f holds the linear columns of the present θ
 }
 
-func newPoint(rows []int, p int) *point {
+func newPoint(rows []int, p, free int) *point {
 	b, n := len(rows)-1, rows[len(rows)-1]
 	pt := &point{
 		theta: make([]float64, p), res: make([]float64, n), jraw: make([]float64, n*p),
 		jac: make([]*mat.Dense, b), ss: make([]float64, b), scale: make([]float64, b),
+		f: newColumns(n, free), free: make([]int, 0, free),
 	}
 	for k := range pt.jac {
 		if rows[k+1] > rows[k] && p > 0 {
@@ -31,19 +37,11 @@ func newPoint(rows []int, p int) *point {
 	return pt
 }
 
-func (pt *point) copyFrom(o *point) {
-	copy(pt.theta, o.theta)
-	copy(pt.res, o.res)
-	copy(pt.jraw, o.jraw)
-	copy(pt.ss, o.ss)
-	copy(pt.scale, o.scale)
-	pt.obj = o.obj
-}
-
 // evaluate fills pt at its θ and says whether everything is finite. An error of
 // a block is kept in s.fault and counts as not finite.
 func (s *solver) evaluate(pt *point) bool {
 	s.evals++
+	pt.solved = false
 	clear(pt.jraw)
 	for b, block := range s.blocks {
 		if pt.jac[b] == nil {

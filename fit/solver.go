@@ -32,6 +32,7 @@ type solver struct {
 	span           []float64 // D: the longest that each column has been
 	step           *boxedStep
 	change         []float64 // of θ
+	hits           []int     // of each parameter: steps in a row that ended on its bound
 	offset         float64   // relative offset of the current point
 	evals          int
 	fault          error
@@ -135,11 +136,10 @@ func newSolver(p *Problem, clone bool) *solver {
 			s.curved = append(s.curved, j)
 		}
 	}
-	n, m := s.rows[nb], len(s.linear)+len(s.curved)
-	s.cur, s.try, s.best = newPoint(s.rows, s.p), newPoint(s.rows, s.p), newPoint(s.rows, s.p)
-	s.f = newColumns(n, m)
-	s.free = make([]int, 0, m)
+	m := len(s.linear) + len(s.curved)
+	s.cur, s.try = newPoint(s.rows, s.p, m), newPoint(s.rows, s.p, m)
 	s.span, s.change = make([]float64, s.p), make([]float64, s.p)
 	s.step = newBoxedStep(m)
+	s.hits = make([]int, s.p)
 	return s
 }
