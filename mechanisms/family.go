@@ -15,7 +15,16 @@ type Definition struct {
 	Small, Large  *Part            // `small: …`, `large: …` of an assembly
 	Conformations []Conformation   // `conformations: {A: {sites: 2, K: K_A}}`
 	States        []State          // `states: [{name: E, ligands: 0}]`
-	Constants     map[string]Given // `constants: {K_R: {start: 1}}`, keys as in Constant.Name (effector constants: "alanine.K_T"; of a class: "alpha.K_R")
+	Constants     map[string]Given // `constants: {K_R: {start: 1}}`, keys as Constant.Key writes them
+
+	// SiteScale asks for the site constants themselves to be fitted, on ln
+	// scale, where the family would fit something else (Adair: overall β;
+	// independent: ratios): set where a single one of them is to differ
+	// between curves. A start, range or fixed value does the same.
+	SiteScale bool
+	// Differs says that some constant differs between curves, so that the data
+	// hold more than one curve's worth of constants.
+	Differs bool
 }
 
 // Count is a named number of sites.

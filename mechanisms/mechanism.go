@@ -42,6 +42,20 @@ type Constant struct {
 	Meaning string // one phrase for tables: "dissociation constant of conformation R"
 }
 
+// Key is the name by which a study speaks of the constant: its class or part,
+// its effector and its symbol, joined by full stops ("alpha.K_R",
+// "alanine.K_T", "large.alanine.K_T").
+func (c Constant) Key() string {
+	key := c.Name
+	if c.Ligand != "" {
+		key = c.Ligand + "." + key
+	}
+	if c.Site != "" {
+		key = c.Site + "." + key
+	}
+	return key
+}
+
 // Environment is what holds for one curve beside the varied ligand.
 type Environment struct {
 	Effectors []float64 // concentrations, in the order of Mechanism.Effectors; zero is allowed
@@ -67,6 +81,7 @@ type Curve interface {
 	// (len(lnx) × len(θ)), ∂Ȳ/∂θ.
 	Saturation(dst, lnx []float64, grad *mat.Dense)
 	// At writes saturation, Hill coefficient and their derivatives at one ln x.
+	// It makes the slices of p where they have the wrong length, else reuses them.
 	At(lnx float64, p *Point)
 }
 
@@ -89,6 +104,11 @@ type Point struct {
 	DNH    float64 // dn_H/d ln x
 	GradY  []float64
 	GradNH []float64
+
+	// D2NH and GradDNH, d²n_H/d(ln x)² and ∂(dn_H/d ln x)/∂θ: what the place
+	// of a steepest slope needs.
+	D2NH    float64
+	GradDNH []float64
 }
 
 // Restated is a mechanism whose constants, as the trade quotes them, are not
@@ -96,12 +116,15 @@ type Point struct {
 type Restated interface {
 	Mechanism
 	Restate(theta []float64) []Restatement
+	// Quote gives one restated constant by its key, at any θ: also one that
+	// Restate lists at some θ only (the product "Kd3·Kd4" where β_3 is zero).
+	Quote(key string, theta []float64) (Restatement, bool)
 }
 
 // Restatement is one quoted constant.
 type Restatement struct {
 	Constant Constant
-	// Value is the constant; +Inf or 0 where it does not exist at these θ.
+	// Value is the constant; +Inf, 0 or NaN where it does not exist at these θ.
 	Value float64
 	// GradLn is ∂ ln Value/∂θ; nil where Value does not exist.
 	GradLn []float64

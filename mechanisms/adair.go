@@ -1,0 +1,135 @@
+package mechanisms
+
+import (
+	"fmt"
+	"math"
+)
+
+const adairDoc = `x`
+
+// adair is fitted in overall association constants β_i.
+type adair struct{ sites int }
+
+// adairSites is fitted in the logarithms of the site constants Kd_i.
+type adairSites struct{ adair }
+
+func buildAdair(d Definition) (Mechanism, error) {
+	var p problems
+	p.unread(d, "sites", "constants")
+	p.siteCount(d, 1)
+	if p.err() != nil {
+		return nil, p.err()
+	}
+	m := adairSites{adair{d.Sites}}
+	p.given(d, m.Constants())
+	if err := p.err(); err != nil {
+		return nil, err
+	}
+	if d.SiteScale || anySaid(d.Constants) {
+		return m, nil
+	}
+	return m.adair, nil
+}
+
+// siteCount complains of a number of equal sites that cannot be.
+func (p *problems) siteCount(d Definition, least int) {
+	switch {
+	case len(d.SiteClasses) > 0:
+		p.add("sites", "this family takes one number of sites, not classes", fmt.Sprintf("sites: %d", totalSites(d.SiteClasses)))
+	case d.Sites == 0:
+		p.add("sites", "the number of sites is missing", "sites: 4")
+	case d.Sites < least || d.Sites > maxSites:
+		p.add("sites", fmt.Sprintf("%d sites cannot be", d.Sites), fmt.Sprintf("a whole number from %d to %d", least, maxSites))
+	}
+}
+
+func totalSites(classes []Count) (n int) {
+	for _, c := range classes {
+		n += c.Sites
+	}
+	return n
+}
+
+func anySaid(given map[string]Given) bool {
+	for _, g := range given {
+		if g.said() {
+			return true
+		}
+	}
+	return false
+}
+
+func (m adair) Family() string      { return "adair" }
+func (m adair) Sites() int          { return m.sites }
+func (m adair) Effectors() []string { return nil }
+
+func (m adair) Constants() []Constant {
+	list := make([]Constant, m.sites)
+	for i := range list {
+		j := i + 1
+		ways := math.Exp(lnChoose[m.sites][j])
+		list[i] = Constant{Name: fmt.Sprintf("beta%d", j), Scale: Linear, Dimension: -j,
+			Low: 0, High: 1e12 * ways, StartLow: 0, StartHigh: 2 * ways,
+			EdgeLow: fmt.Sprintf("no molecule holds exactly %d", j),
+			Meaning: fmt.Sprintf("overall association constant of %s", ligands(j))}
+	}
+	last := &list[m.sites-1]
+	last.EdgeLow = "the last site never fills"
+	return list
+}
+
+func ligands(n int) string {
+	if n == 1 {
+		return "1 ligand"
+	}
+	return fmt.Sprintf("%d ligands", n)
+}
+
+func (m adair) Curve() Curve {
+	return newPolynomialCurve(m.sites, m.sites, m)
+}
+
+func (m adair) bind(c *coefficients, theta []float64, _ Environment) {
+	clear(c.d)
+	c.lnB[0] = 0
+	for i, beta := range theta {
+		row := c.row(i + 1)
+		if beta > 0 {
+			c.lnB[i+1], row[i] = math.Log(beta), 1/beta
+		} else {
+			c.lnB[i+1], row[i] = math.Inf(-1), 1
+		}
+	}
+}
+
+func (m adairSites) Constants() []Constant {
+	list := make([]Constant, m.sites)
+	for i := range list {
+		list[i] = siteConstant(fmt.Sprintf("Kd%d", i+1), fmt.Sprintf("intrinsic dissociation constant of ligand %d", i+1))
+	}
+	return list
+}
+
+// siteConstant is a dissociation constant of the varied ligand with the usual
+// bounds.
+func siteConstant(name, meaning string) Constant {
+	return Constant{Name: name, Scale: Log, Dimension: 1, Low: 1e-8, High: 1e8, StartLow: 0.02, StartHigh: 50, Meaning: meaning}
+}
+
+func (m adairSites) Curve() Curve {
+	return newPolynomialCurve(m.sites, m.sites, m)
+}
+
+func (m adairSites) bind(c *coefficients, theta []float64, _ Environment) {
+	clear(c.d)
+	c.lnB[0] = 0
+	var sum float64
+	for i, lnK := range theta {
+		sum += lnK
+		c.lnB[i+1] = lnChoose[m.sites][i+1] - sum
+		row := c.row(i + 1)
+		for k := 0; k <= i; k++ {
+			row[k] = -1
+		}
+	}
+}

@@ -1,0 +1,191 @@
+package mechanisms
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+)
+
+// concertedCurve is the closed form of two conformations R and T with n equal
+// sites each:
+//
+//	Ȳ = R̄ Ȳ_R + T̄ Ȳ_T ,  Ȳ_R = α/(1+α) ,  Ȳ_T = cα/(1+cα) ,  T̄/R̄ = L[(1+cα)/(1+α)]ⁿ
+//
+// with α = x/K. Effectors only change L, c and K; their constants follow by the
+// chain rule. Everything but whole curves of saturation comes from the
+// polynomial, bound when it is first asked for.
+type concertedCurve struct {
+	*polynomialCurve
+	model     *conformers
+	n         int
+	exclusive bool // c = 0
+
+	lnL, lnC, lnK float64
+	jac           []float64 // 3×k: ∂(ln L, ln c, ln K)/∂θ; nil where θ is just these
+	theta         []float64
+	env           Environment
+	multiplied    bool
+}
+
+// Bind settles L, c and K as the effectors leave them.
+func (c *concertedCurve) Bind(theta []float64, env Environment) {
+	copy(c.theta, theta)
+	copy(c.env.Effectors, env.Effectors)
+	c.multiplied = false
+	switch {
+	case c.jac != nil:
+		c.reduce()
+	case c.exclusive:
+		c.lnL, c.lnC, c.lnK = theta[0], math.Inf(-1), theta[1]
+	default:
+		c.lnL, c.lnC, c.lnK = theta[0], theta[1], theta[2]
+	}
+}
+
+// reduce finds L, c and K in the presence of effectors.
+func (c *concertedCurve) reduce() {
+	clear(c.jac)
+	k := len(c.theta)
+	dL, dC, dK := c.jac[:k], c.jac[k:2*k], c.jac[2*k:]
+	c.lnL, c.lnC = 0, math.Inf(-1)
+	for i, sign := range []float64{-1, 1} { // R, T
+		f := &c.model.list[i]
+		set := &f.sets[0]
+		c.lnL += sign * f.weight.at(c.theta)
+		f.weight.addTo(dL, sign)
+		for _, e := range f.effectors {
+			w := sign * float64(e.sites)
+			c.lnL += w * e.open(c.theta, c.env, dL, w)
+		}
+		clear(c.model.set)
+		lnA := crowd(set.rivals, c.theta, c.env, c.model.set)
+		c.lnL += sign * float64(c.n) * lnA
+		for m, d := range c.model.set {
+			dL[m] += sign * float64(c.n) * d
+		}
+		set.lnK.addTo(c.model.set, 1)
+		if i == 0 {
+			c.lnK = set.lnK.at(c.theta) + lnA
+			copy(dK, c.model.set)
+			copy(dC, c.model.set)
+		} else if set.binds {
+			c.lnC = c.lnK - set.lnK.at(c.theta) - lnA
+			for m, d := range c.model.set {
+				dC[m] -= d
+			}
+		}
+	}
+}
+
+// Saturation writes Ȳ and, with δ = Ȳ_R − Ȳ_T, v = Ȳ(1−Ȳ) of one conformation,
+//
+//	∂Ȳ/∂ln L = −R̄T̄δ
+//	∂Ȳ/∂ln c = T̄v_T − nR̄T̄Ȳ_Tδ
+//	∂Ȳ/∂ln K = −(R̄v_R + T̄v_T + nR̄T̄δ²) .
+func (c *concertedCurve) Saturation(dst, lnx []float64, grad *mat.Dense) {
+	if !c.safe(lnx) {
+		c.polynomial()
+		c.polynomialCurve.Saturation(dst, lnx, grad)
+		return
+	}
+	ratio, weight := math.Exp(c.lnC), math.Exp(c.lnL)
+	n := float64(c.n)
+	var data []float64
+	var stride int
+	if grad != nil {
+		raw := grad.RawMatrix()
+		data, stride = raw.Data, raw.Stride
+	}
+	for r, lx := range lnx {
+		alpha := math.Exp(lx - c.lnK)
+		beta := ratio * alpha
+		inv := 1 / ((1 + alpha) * (1 + beta))
+		eR, eT := (1+beta)*inv, (1+alpha)*inv // 1 − Ȳ_R, 1 − Ȳ_T
+		yR, yT := alpha*eR, beta*eT
+		w := weight * power((1+beta)*eR, c.n)
+		fR := 1 / (1 + w)
+		fT := w * fR
+		dst[r] = fR*yR + fT*yT
+		if grad == nil {
+			continue
+		}
+		delta := (alpha - beta) * inv
+		both := fR * fT * delta
+		vT := fT * yT * eT
+		gL := -both
+		gC := vT - n*both*yT
+		gK := -(fR*yR*eR + vT + n*both*delta)
+		row := data[r*stride : r*stride+len(c.theta)]
+		c.chain(row, gL, gC, gK)
+	}
+}
+
+// chain writes the gradient in θ.
+func (c *concertedCurve) chain(row []float64, gL, gC, gK float64) {
+	switch {
+	case c.jac != nil:
+		k := len(row)
+		for m := range row {
+			row[m] = gL*c.jac[m] + gC*c.jac[k+m] + gK*c.jac[2*k+m]
+		}
+	case c.exclusive:
+		row[0], row[1] = gL, gK
+	default:
+		row[0], row[1], row[2] = gL, gC, gK
+	}
+}
+
+// safe says whether nothing in the closed form can leave the range of a float64.
+func (c *concertedCurve) safe(lnx []float64) bool {
+	const far = 300
+	top := math.Abs(c.lnL) + float64(c.n)*math.Max(c.lnC, 0)
+	if !(top < 600) || c.lnC > far {
+		return false
+	}
+	for _, lx := range lnx {
+		if lx-c.lnK > far {
+			return false
+		}
+	}
+	return true
+}
+
+// power is qⁿ.
+func power(q float64, n int) float64 {
+	p := 1.0
+	for ; n > 0; n >>= 1 {
+		if n&1 == 1 {
+			p *= q
+		}
+		q *= q
+	}
+	return p
+}
+
+// polynomial binds the polynomial where it is not bound yet.
+func (c *concertedCurve) polynomial() *coefficients {
+	if !c.multiplied {
+		c.polynomialCurve.Bind(c.theta, c.env)
+		c.multiplied = true
+	}
+	return &c.coefficients
+}
+
+// At writes saturation and Hill coefficient at one ln x.
+func (c *concertedCurve) At(lnx float64, p *Point) {
+	c.polynomial()
+	c.polynomialCurve.At(lnx, p)
+}
+
+func (c *concertedCurve) jet(lnx float64, j *jet, grad bool) {
+	c.polynomial()
+	c.polynomialCurve.jet(lnx, j, grad)
+}
+
+func (c *concertedCurve) endSlopes() (low, high float64) { return c.polynomial().endSlopes() }
+func (c *concertedCurve) turns() (first, last float64)   { return c.polynomial().turns() }
+
+func (c *concertedCurve) ceiling() float64 {
+	c.polynomial()
+	return c.polynomialCurve.ceiling()
+}

@@ -1,0 +1,205 @@
+package mechanisms
+
+import (
+	"fmt"
+	"math"
+	"slices"
+)
+
+const mwcDoc = `x`
+
+// mwc is two conformations, R and T, in equilibrium. Its list of conformers is
+// shared by the curves and only read.
+type mwc struct {
+	sites     int
+	constants []Constant
+	effectors []string
+	list      []conformer
+	view      *view
+	closed    bool // one class of sites: the closed form holds
+	exclusive bool // c = 0
+}
+
+func buildMWC(d Definition) (Mechanism, error) {
+	var p problems
+	p.unread(d, "sites", "effectors", "turnover", "sees", "constants")
+	if len(d.SiteClasses) > 0 {
+		p.classes("sites", d.SiteClasses)
+	} else {
+		p.siteCount(d, 1)
+	}
+	p.concertedEffectors(d.Effectors)
+	p.views(d, []string{"R", "T"})
+	if err := p.err(); err != nil {
+		return nil, err
+	}
+	m := settleMWC(d)
+	p.given(withoutZeroC(d), m.constants)
+	p.identifiable(d, m)
+	if err := p.err(); err != nil {
+		return nil, err
+	}
+	return m, nil
+}
+
+// concertedEffectors complains of effectors that say nothing clear.
+func (p *problems) concertedEffectors(list []Effector) {
+	for _, e := range list {
+		if !slices.Contains([]string{"R", "T", "both"}, e.Binds) {
+			p.add("effectors."+e.Name+".binds", fmt.Sprintf("%q is not a conformation that an effector can bind", e.Binds),
+				"binds: R, binds: T or binds: both")
+		}
+	}
+}
+
+// zeroC says whether the study holds c of a class at exactly zero.
+func zeroC(d Definition, class string) bool {
+	key := Constant{Name: "c", Site: class}.Key()
+	g, ok := d.Constants[key]
+	return ok && g.settled() && g.number() == 0
+}
+
+// withoutZeroC is the definition without those c that are not constants.
+func withoutZeroC(d Definition) Definition {
+	given := map[string]Given{}
+	for key, g := range d.Constants {
+		given[key] = g
+	}
+	for _, class := range concertedClasses(d) {
+		if zeroC(d, class.Name) {
+			delete(given, Constant{Name: "c", Site: class.Name}.Key())
+		}
+	}
+	d.Constants = given
+	return d
+}
+
+// concertedClasses is the classes of sites; a single one has no name.
+func concertedClasses(d Definition) []Count {
+	if len(d.SiteClasses) > 0 {
+		return d.SiteClasses
+	}
+	return []Count{{Sites: d.Sites}}
+}
+
+// identifiable asks for constants to be fixed where the curve cannot hold all.
+func (p *problems) identifiable(d Definition, m *mwc) {
+	if d.Differs || len(m.effectors) > 0 || m.view != nil {
+		return
+	}
+	free := 0
+	for _, c := range m.constants {
+		if !d.Constants[c.Key()].settled() {
+			free++
+		}
+	}
+	if free > m.sites {
+		p.add("constants", fmt.Sprintf("one curve of %s holds at most %d constants, this mechanism has %d free ones "+
+			"(Middendorf & Aldrich 2017)", sitesInWords(m.sites), m.sites, free),
+			fmt.Sprintf("constants: {c: {fixed: 0.01}}, or another constant fixed, so that %d remain free", m.sites))
+	}
+}
+
+func sitesInWords(n int) string {
+	if n == 1 {
+		return "one site"
+	}
+	return fmt.Sprintf("%d sites", n)
+}
+
+// settleMWC lays out constants and conformers of a sound definition.
+func settleMWC(d Definition) *mwc {
+	classes := concertedClasses(d)
+	m := &mwc{sites: totalSites(classes), closed: len(classes) == 1}
+	m.constants = []Constant{allostericConstant(m.sites)}
+	r, t := conformer{name: "R"}, conformer{name: "T", weight: blend{{0, 1}}}
+	for _, class := range classes {
+		rSet, tSet := siteSet{sites: class.Sites, binds: true}, siteSet{sites: class.Sites}
+		if zeroC(d, class.Name) {
+			m.exclusive = true
+			rSet.lnK = blend{{m.constant(concertedK(class.Name)), 1}}
+		} else {
+			c := m.constant(affinityRatio(class.Name))
+			k := m.constant(concertedK(class.Name))
+			rSet.lnK, tSet.lnK, tSet.binds = blend{{k, 1}}, blend{{k, 1}, {c, -1}}, true
+		}
+		r.sets, t.sets = append(r.sets, rSet), append(t.sets, tSet)
+	}
+	for i, e := range d.Effectors {
+		m.effectors = append(m.effectors, e.Name)
+		if e.Binds != "T" {
+			r.admit(e, i, m.constant(effectorConstant(e.Name, "R")), m.sites)
+		}
+		if e.Binds != "R" {
+			t.admit(e, i, m.constant(effectorConstant(e.Name, "T")), m.sites)
+		}
+	}
+	m.list = []conformer{r, t}
+	m.view = newView(d, m.list, &m.constants)
+	return m
+}
+
+// admit lets an effector bind: one site per protomer, its own or the ligand's.
+func (c *conformer) admit(e Effector, index, constant, protomers int) {
+	lnK := blend{{constant, 1}}
+	if !e.AtLigandSite {
+		c.effectors = append(c.effectors, effectorSites{index, protomers, lnK})
+		return
+	}
+	for i := range c.sets {
+		c.sets[i].rivals = append(c.sets[i].rivals, effectorSites{index, c.sets[i].sites, lnK})
+	}
+}
+
+// constant appends a constant and returns its index.
+func (m *mwc) constant(c Constant) int {
+	m.constants = append(m.constants, c)
+	return len(m.constants) - 1
+}
+
+func allostericConstant(sites int) Constant {
+	n := float64(sites)
+	return Constant{Name: "L", Scale: Log, Low: 1e-8, High: math.Pow(10, max(8, 4*n)),
+		StartLow: 1, StartHigh: math.Pow(10, 2*n),
+		EdgeLow: "R alone: sites alike and independent",
+		Meaning: "[T]/[R] without ligands"}
+}
+
+func affinityRatio(class string) Constant {
+	return Constant{Name: "c", Site: class, Scale: Log, Low: 1e-8, High: 1, StartLow: 1e-4, StartHigh: 0.9,
+		EdgeLow: "exclusive binding: only R binds", EdgeHigh: "R and T bind alike: no cooperativity",
+		Meaning: "K_R/K_T"}
+}
+
+func concertedK(class string) Constant {
+	return Constant{Name: "K_R", Site: class, Scale: Log, Dimension: 1, Low: 1e-8, High: 1e8,
+		StartLow: 1e-3, StartHigh: 3, Meaning: "dissociation constant of conformation R"}
+}
+
+func effectorConstant(effector, conformation string) Constant {
+	return Constant{Name: "K_" + conformation, Ligand: effector, Scale: Log, Dimension: 1, Low: 1e-8, High: 1e8,
+		StartLow: 1e-2, StartHigh: 1e2,
+		EdgeHigh: effector + " does not bind " + conformation,
+		Meaning:  "dissociation constant of " + effector + " from conformation " + conformation}
+}
+
+func (m *mwc) Family() string        { return "mwc" }
+func (m *mwc) Sites() int            { return m.sites }
+func (m *mwc) Constants() []Constant { return slices.Clone(m.constants) }
+func (m *mwc) Effectors() []string   { return slices.Clone(m.effectors) }
+
+func (m *mwc) Curve() Curve {
+	k := len(m.constants)
+	model := newConformers(m.list, m.sites, k, m.view != nil)
+	poly := newPolynomialCurve(m.sites, k, model)
+	if !m.closed {
+		return m.view.watch(poly, &model.ensemble, model.of)
+	}
+	c := &concertedCurve{polynomialCurve: poly, model: model, n: m.sites,
+		exclusive: m.exclusive, theta: make([]float64, k)}
+	c.env.Effectors = make([]float64, len(m.effectors))
+	if k != 3 && !(m.exclusive && k == 2) || len(m.effectors) > 0 {
+		c.jac = make([]float64, 3*k)
+	}
+	return m.view.watch(c, &model.ensemble, model.of)
+}

@@ -1,0 +1,393 @@
+package mechanisms
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+)
+
+// average is the mean of an observable o_i over a bound polynomial,
+//
+//	⟨o⟩ = Σ o_i B_i xⁱ / Σ B_i xⁱ ,
+//
+// for saturation with o_i = i/n. Whole curves come from Horner's scheme in a
+// scaled x: with b_i = B_i e^{i s − μ} and z = x e^{−s},
+//
+//	∂⟨o⟩/∂θ_k = Q_k(z)/P(z)² ,  Q_k = Σ_{i<j} [(o_j − o_i)(E_jk b_i − E_ik b_j) + b_i b_j (o_i + o_j)′_k] z^{i+j}
+//
+// with E_ik = ∂b_i/∂θ_k: pair sums, so that nothing cancels at the ends of the
+// curve. Where the b_i span too many decades, each point is summed by itself
+// with its largest term taken out.
+type average struct {
+	c  *coefficients
+	o  []float64 // n+1
+	do []float64 // (n+1)×k: ∂o_i/∂θ_k; nil where o does not depend on θ
+
+	scaled bool // Horner's scheme is safe
+	lifted bool // q is written for the bound θ
+	s      float64
+	b, bo  []float64 // n+1: b_i and b_i o_i
+	e      []float64 // (n+1)×k: E_ik
+	q      []float64 // k×(2n+1)
+
+	lnW, p, eps []float64 // n+1, n+1, (n+1)×k: terms of one point
+	dMean, dCov []float64 // k
+	jets        jet
+}
+
+func newAverage(c *coefficients, o, do []float64) *average {
+	n, k := c.n, c.k
+	return &average{
+		c: c, o: o, do: do,
+		b: make([]float64, n+1), bo: make([]float64, n+1),
+		e: make([]float64, (n+1)*k), q: make([]float64, k*(2*n+1)),
+		lnW: make([]float64, n+1), p: make([]float64, n+1), eps: make([]float64, (n+1)*k),
+		dMean: make([]float64, k), dCov: make([]float64, k), jets: newJet(k),
+	}
+}
+
+// spread is how far below the largest a scaled coefficient may lie, in ln: the
+// products of two must stay clear of underflow.
+const spread = 230
+
+// rebind scales the coefficients of the newly bound θ.
+func (a *average) rebind() {
+	c, n := a.c, a.c.n
+	a.lifted = false
+	a.scaled = !math.IsInf(c.lnB[n], -1)
+	if !a.scaled {
+		return
+	}
+	a.s = -(c.lnB[n] - c.lnB[0]) / float64(n)
+	mu := math.Inf(-1)
+	for i, l := range c.lnB {
+		mu = math.Max(mu, l+float64(i)*a.s)
+	}
+	for i, l := range c.lnB {
+		zero := math.IsInf(l, -1)
+		if zero {
+			l = 0
+		}
+		t := l + float64(i)*a.s - mu
+		if !(t > -spread && t < spread) {
+			a.scaled = false
+			return
+		}
+		unit := math.Exp(t)
+		a.b[i] = unit
+		if zero {
+			a.b[i] = 0
+		}
+		a.bo[i] = a.b[i] * a.o[i]
+		e := a.e[i*c.k : (i+1)*c.k]
+		for k, d := range c.row(i) {
+			e[k] = unit * d
+		}
+	}
+}
+
+// lift writes the numerators Q_k of the gradient.
+func (a *average) lift() {
+	a.lifted = true
+	n, k := a.c.n, a.c.k
+	clear(a.q)
+	for i := 0; i <= n; i++ {
+		for j := i + 1; j <= n; j++ {
+			do := a.o[j] - a.o[i]
+			fi, fj := do*a.b[j], do*a.b[i]
+			for m := 0; m < k; m++ {
+				a.q[m*(2*n+1)+i+j] += fj*a.e[j*k+m] - fi*a.e[i*k+m]
+			}
+		}
+	}
+	if a.do == nil {
+		return
+	}
+	for i := 0; i <= n; i++ {
+		for j := 0; j <= n; j++ {
+			w := a.b[i] * a.b[j]
+			for m := 0; m < k; m++ {
+				a.q[m*(2*n+1)+i+j] += w * a.do[i*k+m]
+			}
+		}
+	}
+}
+
+// curve writes ⟨o⟩ and its gradient at each ln x.
+func (a *average) curve(dst, lnx []float64, grad *mat.Dense) {
+	if !a.scaled {
+		a.pointwise(dst, lnx, grad)
+		return
+	}
+	if grad == nil {
+		for r, lx := range lnx {
+			if z := lx - a.s; z <= 0 {
+				dst[r] = ascend(a.bo, a.b, math.Exp(z))
+			} else {
+				dst[r] = descend(a.bo, a.b, math.Exp(-z))
+			}
+		}
+		return
+	}
+	if !a.lifted {
+		a.lift()
+	}
+	raw := grad.RawMatrix()
+	k, w := a.c.k, 2*a.c.n+1
+	for r, lx := range lnx {
+		row := raw.Data[r*raw.Stride : r*raw.Stride+k]
+		if z := lx - a.s; z <= 0 {
+			dst[r] = ascendGrad(row, a.bo, a.b, a.q, w, math.Exp(z))
+		} else {
+			dst[r] = descendGrad(row, a.bo, a.b, a.q, w, math.Exp(-z))
+		}
+	}
+}
+
+// ascend is Σ u_i zⁱ / Σ v_i zⁱ.
+func ascend(u, v []float64, z float64) float64 {
+	var p, q float64
+	u = u[:len(v)]
+	for i := len(v) - 1; i >= 0; i-- {
+		p, q = p*z+u[i], q*z+v[i]
+	}
+	return p / q
+}
+
+// descend is ascend at 1/z.
+func descend(u, v []float64, z float64) float64 {
+	var p, q float64
+	u = u[:len(v)]
+	for i := range v {
+		p, q = p*z+u[i], q*z+v[i]
+	}
+	return p / q
+}
+
+func ascendGrad(row, u, v, q []float64, w int, z float64) float64 {
+	var a, b float64
+	u = u[:len(v)]
+	for i := len(v) - 1; i >= 0; i-- {
+		a, b = a*z+u[i], b*z+v[i]
+	}
+	b = 1 / b
+	for k := range row {
+		c, t := q[k*w:(k+1)*w], 0.0
+		for i := len(c) - 1; i >= 0; i-- {
+			t = t*z + c[i]
+		}
+		row[k] = t * b * b
+	}
+	return a * b
+}
+
+func descendGrad(row, u, v, q []float64, w int, z float64) float64 {
+	var a, b float64
+	u = u[:len(v)]
+	for i := range v {
+		a, b = a*z+u[i], b*z+v[i]
+	}
+	b = 1 / b
+	for k := range row {
+		t := 0.0
+		for _, c := range q[k*w : (k+1)*w] {
+			t = t*z + c
+		}
+		row[k] = t * b * b
+	}
+	return a * b
+}
+
+// pointwise is curve without a common scale.
+func (a *average) pointwise(dst, lnx []float64, grad *mat.Dense) {
+	for r, lx := range lnx {
+		a.jet(lx, &a.jets, grad != nil)
+		dst[r] = a.jets.y
+		if grad != nil {
+			copy(grad.RawRowView(r), a.jets.g)
+		}
+	}
+}
+
+// terms writes the populations p_i at ln x and ε_ik = p_i ∂ln B_i/∂θ_k.
+func (a *average) terms(lnx float64, grad bool) {
+	if math.IsInf(lnx, 0) {
+		a.limit(lnx < 0)
+		return
+	}
+	c := a.c
+	top := math.Inf(-1)
+	for i, l := range c.lnB {
+		a.lnW[i] = l + float64(i)*lnx
+		top = math.Max(top, a.lnW[i])
+	}
+	var z float64
+	for i, l := range a.lnW {
+		a.p[i] = math.Exp(l - top)
+		z += a.p[i]
+	}
+	for i := range a.p {
+		a.p[i] /= z
+		if !grad {
+			continue
+		}
+		unit := a.p[i]
+		if math.IsInf(c.lnB[i], -1) {
+			unit = math.Exp(float64(i)*lnx-top) / z
+		}
+		e := a.eps[i*c.k : (i+1)*c.k]
+		for k, d := range c.row(i) {
+			e[k] = unit * d
+		}
+	}
+}
+
+// limit is terms at x = 0 or x → ∞.
+func (a *average) limit(zero bool) {
+	clear(a.p)
+	clear(a.eps)
+	i := 0
+	if !zero {
+		i = a.c.highest()
+	}
+	a.p[i] = 1
+	copy(a.eps[i*a.c.k:(i+1)*a.c.k], a.c.row(i))
+}
+
+// jet writes ⟨o⟩ with its derivatives. With π = p_i p_j over pairs i < j,
+// δ = j − i, ω = o_j − o_i, ε = i + j − 2⟨i⟩ and V = Σ π δ² the variance of i,
+//
+//	d⟨o⟩ = Σ π δ ω ,  d²⟨o⟩ = Σ π δ ω ε ,  d³⟨o⟩ = Σ π δ ω (ε² − 2V) ,
+//
+// and in the gradients each π brings ∂ln π = D_i + D_j − 2⟨D⟩, with
+// ∂ε = −2 Cov(i, D).
+func (a *average) jet(lnx float64, j *jet, grad bool) {
+	a.terms(lnx, grad)
+	j.zero()
+	var mean, variance float64
+	n := a.c.n
+	for i, p := range a.p {
+		mean += float64(i) * p
+		j.y += p * a.o[i]
+		j.e += p * (1 - a.o[i])
+		for l := i + 1; l <= n; l++ {
+			variance += p * a.p[l] * float64((l-i)*(l-i))
+		}
+	}
+	for i := 0; i <= n; i++ {
+		for l := i + 1; l <= n; l++ {
+			w := a.p[i] * a.p[l] * float64(l-i) * (a.o[l] - a.o[i])
+			e := float64(i+l) - 2*mean
+			j.y1 += w
+			j.y2 += w * e
+			j.y3 += w * (e*e - 2*variance)
+		}
+	}
+	if grad {
+		a.gradients(j, mean)
+	}
+}
+
+// gradients adds the gradients of a jet; terms has been written.
+func (a *average) gradients(j *jet, mean float64) {
+	n, k := a.c.n, a.c.k
+	clear(a.dMean)
+	clear(a.dCov)
+	for i := 0; i <= n; i++ {
+		ei := a.eps[i*k : (i+1)*k]
+		for m, e := range ei {
+			a.dMean[m] += e
+		}
+		for l := i + 1; l <= n; l++ {
+			el := a.eps[l*k : (l+1)*k]
+			for m := range el {
+				a.dCov[m] += float64(l-i) * (a.p[i]*el[m] - a.p[l]*ei[m])
+			}
+		}
+	}
+	for i := 0; i <= n; i++ {
+		ei := a.eps[i*k : (i+1)*k]
+		for l := i + 1; l <= n; l++ {
+			el := a.eps[l*k : (l+1)*k]
+			pi, pl := a.p[i], a.p[l]
+			d, o, e := float64(l-i), a.o[l]-a.o[i], float64(i+l)-2*mean
+			for m := range el {
+				up, down := pi*el[m], pl*ei[m]
+				both := up + down - 2*pi*pl*a.dMean[m]
+				j.g[m] += o * (up - down)
+				j.g1[m] += d * o * both
+				j.g2[m] += d * o * (both*e - 2*pi*pl*a.dCov[m])
+			}
+		}
+	}
+	if a.do != nil {
+		a.ownGradients(j, mean)
+	}
+}
+
+// ownGradients adds what comes from the observable's own constants.
+func (a *average) ownGradients(j *jet, mean float64) {
+	n, k := a.c.n, a.c.k
+	for i := 0; i <= n; i++ {
+		di := a.do[i*k : (i+1)*k]
+		for m, d := range di {
+			j.g[m] += a.p[i] * d
+		}
+		for l := i + 1; l <= n; l++ {
+			dl := a.do[l*k : (l+1)*k]
+			w := a.p[i] * a.p[l] * float64(l-i)
+			e := float64(i+l) - 2*mean
+			for m := range dl {
+				j.g1[m] += w * (dl[m] - di[m])
+				j.g2[m] += w * (dl[m] - di[m]) * e
+			}
+		}
+	}
+}
+
+// polynomialCurve is the curve of a mechanism with a binding polynomial.
+type polynomialCurve struct {
+	coefficients
+	binder binder
+	sat    *average
+}
+
+func newPolynomialCurve(n, k int, b binder) *polynomialCurve {
+	p := &polynomialCurve{coefficients: newCoefficients(n, k), binder: b}
+	o := make([]float64, n+1)
+	for i := range o {
+		o[i] = float64(i) / float64(n)
+	}
+	p.sat = newAverage(&p.coefficients, o, nil)
+	return p
+}
+
+// Bind settles the polynomial at θ.
+func (p *polynomialCurve) Bind(theta []float64, env Environment) {
+	p.binder.bind(&p.coefficients, theta, env)
+	p.sat.rebind()
+}
+
+// Saturation writes Ȳ and its gradient at each ln x.
+func (p *polynomialCurve) Saturation(dst, lnx []float64, grad *mat.Dense) {
+	p.sat.curve(dst, lnx, grad)
+}
+
+// At writes saturation and Hill coefficient at one ln x.
+func (p *polynomialCurve) At(lnx float64, pt *Point) {
+	p.sat.jet(lnx, &p.sat.jets, true)
+	low, high := p.endSlopes()
+	p.sat.jets.point(pt, low, high)
+}
+
+func (p *polynomialCurve) jet(lnx float64, j *jet, grad bool) { p.sat.jet(lnx, j, grad) }
+
+func (p *polynomialCurve) ceiling() float64 { return float64(p.highest()) / float64(p.n) }
+
+func (p *polynomialCurve) polynomial() *coefficients { return &p.coefficients }
+
+// factored is a curve with a binding polynomial.
+type factored interface {
+	smooth
+	polynomial() *coefficients
+}

@@ -1,0 +1,129 @@
+package mechanisms
+
+import (
+	"errors"
+	"fmt"
+	"math"
+	"slices"
+	"strings"
+)
+
+// problems gathers what is wrong with a definition.
+type problems struct{ list []error }
+
+func (p *problems) add(key, problem, write string) {
+	p.list = append(p.list, &DefinitionError{Key: key, Problem: problem, Write: write})
+}
+
+func (p *problems) err() error { return errors.Join(p.list...) }
+
+// filled names the keys that a definition uses, as a study writes them.
+func (d Definition) filled() []string {
+	var keys []string
+	say := func(key string, used bool) {
+		if used {
+			keys = append(keys, key)
+		}
+	}
+	say("sites", d.Sites != 0 || len(d.SiteClasses) > 0)
+	say("classes", len(d.Classes) > 0)
+	say("contacts", d.Contacts != "" || len(d.Graph) > 0)
+	say("effectors", len(d.Effectors) > 0)
+	say("turnover", len(d.Turnover) > 0)
+	say("sees", len(d.Sees) > 0)
+	say("parts", len(d.Parts) > 0)
+	say("small", d.Small != nil)
+	say("large", d.Large != nil)
+	say("conformations", len(d.Conformations) > 0)
+	say("states", len(d.States) > 0)
+	say("constants", len(d.Constants) > 0)
+	return keys
+}
+
+// unread complains of keys that the family does not read.
+func (p *problems) unread(d Definition, reads ...string) {
+	for _, key := range d.filled() {
+		if !slices.Contains(reads, key) {
+			p.add(key, "this family has no such key", "one of its own: "+strings.Join(reads, ", "))
+		}
+	}
+}
+
+// given complains of what is said of constants that do not exist, or cannot be.
+func (p *problems) given(d Definition, constants []Constant) {
+	for _, key := range sortedKeys(d.Constants) {
+		at := slices.IndexFunc(constants, func(c Constant) bool { return c.Key() == key })
+		if at < 0 {
+			p.add("constants."+key, "this mechanism has no such constant", "one of "+keysOf(constants))
+			continue
+		}
+		p.check("constants."+key, constants[at], d.Constants[key])
+	}
+}
+
+// check complains of numbers that one constant cannot be.
+func (p *problems) check(key string, c Constant, g Given) {
+	floor, wants := "0", "a number above 0"
+	ok := func(v float64) bool { return v > 0 && !math.IsInf(v, 0) }
+	switch c.Scale {
+	case Linear:
+		ok, wants = func(v float64) bool { return v >= 0 && !math.IsInf(v, 0) }, "a number not below 0"
+	case Logit:
+		ok, wants, floor = func(v float64) bool { return v > 0 && v < 1 }, "a number between 0 and 1", "0 and 1"
+	}
+	say := func(word string, v *float64) {
+		if v != nil && !ok(*v) {
+			p.add(key+"."+word, fmt.Sprintf("%g cannot be: %s lies beyond %s", *v, c.Name, floor), wants)
+		}
+	}
+	say("start", g.Start)
+	say("fixed", g.Fixed)
+	say("value", g.Value)
+	if g.High != nil {
+		say("range", g.High)
+	}
+	if g.Low != nil && g.High != nil && !(*g.Low < *g.High) {
+		p.add(key+".range", fmt.Sprintf("the range ends at %g, not above its beginning %g", *g.High, *g.Low),
+			"the smaller number first")
+		return
+	}
+	if g.Low != nil && *g.Low < 0 {
+		p.add(key+".range", fmt.Sprintf("%g cannot be: %s lies beyond %s", *g.Low, c.Name, floor), wants)
+	}
+	if s := g.Start; s != nil && (g.Low != nil && *s < *g.Low || g.High != nil && *s > *g.High) {
+		p.add(key+".start", fmt.Sprintf("the start %g lies outside the range", *s), "a start inside it")
+	}
+}
+
+func sortedKeys[V any](m map[string]V) []string {
+	keys := make([]string, 0, len(m))
+	for k := range m {
+		keys = append(keys, k)
+	}
+	slices.Sort(keys)
+	return keys
+}
+
+func keysOf(constants []Constant) string {
+	keys := make([]string, len(constants))
+	for i, c := range constants {
+		keys[i] = c.Key()
+	}
+	return strings.Join(keys, ", ")
+}
+
+// settled says whether a constant is held at a number.
+func (g Given) settled() bool { return g.Fixed != nil || g.Value != nil }
+
+// number is the fixed or given value.
+func (g Given) number() float64 {
+	if g.Fixed != nil {
+		return *g.Fixed
+	}
+	return *g.Value
+}
+
+// said says whether anything is said of a constant.
+func (g Given) said() bool {
+	return g.settled() || g.Start != nil || g.Low != nil || g.High != nil
+}
