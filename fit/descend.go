@@ -3,10 +3,10 @@ package fit
 import "math"
 
 const (
-	enough    = 1e-6  // relative offset at which a fit has converged
-	hardly    = 1e-4  // least share of the predicted gain that is a gain
-	tiniest   = 1e-15 // least radius relative to ‖D θ‖
-	roundings = 1e-13 // residuals below this part of ‖D θ‖ are rounding
+	enough  = 1e-6  // relative offset at which a fit has converged
+	hardly  = 1e-4  // least share of the predicted gain that is a gain
+	tiniest = 1e-15 // least radius relative to ‖D θ‖
+	epsilon = 0x1p-52
 
 	// A step that would end on a bound goes but a part of the way there until as
 	// many steps in a row have wanted to: a bound is often a saddle (equal
@@ -125,14 +125,21 @@ func (s *solver) size() float64 {
 	return math.Sqrt(d)
 }
 
-// atRounding says whether the residuals are no more than rounding of what they
-// are the differences of.
+// atRounding says whether what is left of the gradient is rounding of what the
+// residuals are the differences of: ‖z‖ against ‖D θ‖, each |θ| at least a
+// quarter of its start box.
 func (s *solver) atRounding() bool {
-	t := s.total(s.cur)
-	if t == 0 {
-		return true
+	pt := s.cur
+	var scale float64
+	for k, j := range pt.free {
+		d := s.span[j]
+		if k < pt.lin {
+			d = pt.f.r[k*pt.f.most+k]
+		}
+		v := d * max(math.Abs(pt.theta[j]), s.width[j])
+		scale += v * v
 	}
-	return false
+	return s.left <= 4*epsilon*math.Sqrt(scale)
 }
 
 // attempt takes a step within the radius, evaluates the trial point there and

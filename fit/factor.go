@@ -84,7 +84,8 @@ func (s *solver) factor() {
 		j := pt.free[k]
 		s.span[j] = max(s.span[j], math.Sqrt(d))
 	}
-	s.offset = relative(norm(f.z[:f.m]), math.Sqrt(s.total(pt)))
+	s.left = norm(f.z[:f.m])
+	s.offset = relative(s.left, math.Sqrt(s.total(pt)))
 }
 
 // relative is z/r, zero where both are.

@@ -30,7 +30,7 @@ type Settings struct {
 	Starts  int    // number of starts; 0 means 20
 	Seed    uint64 // of the low-discrepancy sequence
 	Workers int    // 0 means as many as there are processors; never changes a digit
-	MaxIter int    // per start; 0 means 500
+	MaxIter int    // per start; 0 means 2000
 	// Progress, if set, is called now and then with the number of starts done.
 	Progress func(done, of int)
 }

@@ -56,7 +56,7 @@ func (set Settings) filled(p *Problem) Settings {
 		set.Starts = 20
 	}
 	if set.MaxIter <= 0 {
-		set.MaxIter = 500
+		set.MaxIter = 2000
 	}
 	if set.Workers <= 0 {
 		set.Workers = runtime.GOMAXPROCS(0)
@@ -135,8 +135,11 @@ func (s *solver) finish(ctx context.Context, r run, most int) ending {
 		s.factor()
 	}
 	s.polish()
-	if s.offset <= enough {
+	switch {
+	case s.offset <= enough:
 		return stationary
+	case s.atRounding():
+		return rounding
 	}
 	return end
 }

@@ -33,7 +33,8 @@ type solver struct {
 	step           *boxedStep
 	change         []float64 // of θ
 	hits           []int     // of each parameter: steps in a row that ended on its bound
-	offset         float64   // relative offset of the current point
+	left, offset   float64   // ‖z‖ of the current point; relative to its residuals
+	width          []float64 // a quarter of each start box, 0 where there is none
 	evals          int
 	fault          error
 }
@@ -125,9 +126,12 @@ func newSolver(p *Problem, clone bool) *solver {
 		}
 	}
 	s.joint = unknown > 0 && nb > 1
-	s.low, s.high = make([]float64, s.p), make([]float64, s.p)
+	s.low, s.high, s.width = make([]float64, s.p), make([]float64, s.p), make([]float64, s.p)
 	for j, q := range p.Parameters {
 		s.low[j], s.high[j] = q.Low, q.High
+		if q.StartLow < q.StartHigh {
+			s.width[j] = (q.StartHigh - q.StartLow) / 4
+		}
 		switch {
 		case q.Low == q.High:
 		case q.Linear:

@@ -4,8 +4,11 @@ package fittest
 
 import (
 	"context"
+	"encoding/csv"
 	"fmt"
+	"io"
 	"math"
+	"math/rand/v2"
 	"slices"
 	"strconv"
 	"strings"
@@ -164,4 +167,43 @@ func median(v []float64) float64 {
 		return 0
 	}
 	return (v[(n-1)/2] + v[n/2]) / 2
+}
+
+// Moved runs a solver from every certified start moved by up to ±5 %, draws
+// times each, and returns how many of the runs are right, and those that are not.
+func Moved(ctx context.Context, solve Solver, draws int) (right int, wrong []Row) {
+	rng := rand.New(rand.NewPCG(1, 0))
+	for _, set := range Sets() {
+		for k, start := range set.Starts {
+			for range draws {
+				moved := slices.Clone(start)
+				for j := range moved {
+					moved[j] *= 1 + 0.05*(2*rng.Float64()-1)
+				}
+				row := set.Run(ctx, solve, moved)
+				row.Start = k + 1
+				if row.Right() {
+					right++
+				} else {
+					wrong = append(wrong, row)
+				}
+			}
+		}
+	}
+	return right, wrong
+}
+
+// WriteCSV writes the rows as a table with the headings Columns.
+func WriteCSV(w io.Writer, rows []Row) error {
+	c := csv.NewWriter(w)
+	if err := c.Write(Columns); err != nil {
+		return err
+	}
+	for i := range rows {
+		if err := c.Write(rows[i].Record()); err != nil {
+			return err
+		}
+	}
+	c.Flush()
+	return c.Error()
 }

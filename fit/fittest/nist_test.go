@@ -2,6 +2,7 @@ package fittest
 
 import (
 	"context"
+	"fmt"
 	"testing"
 )
 
@@ -14,4 +15,13 @@ func TestCertified(t *testing.T) {
 		}
 	}
 	t.Logf("%+v", Summarise(rows))
+}
+
+func TestMoved(t *testing.T) {
+	right, wrong := Moved(context.Background(), Default, 20)
+	count := map[string]int{}
+	for _, r := range wrong {
+		count[fmt.Sprint(r.Dataset, r.Start, r.Status, r.Digits > 3)]++
+	}
+	t.Logf("%d %v", right, count)
 }
