@@ -102,3 +102,12 @@ func (c *hillCurve) endSlopes() (low, high float64) { return c.h, c.h }
 func (c *hillCurve) ceiling() float64               { return 1 }
 
 func (c *hillCurve) turns() (first, last float64) { return c.lnK, c.lnK }
+
+// median is K_half: the curve is symmetrical in ln x.
+func (c *hillCurve) median() Measure {
+	return Measure{Value: c.lnK, Grad: []float64{1, 0}}
+}
+
+func (c *hillCurve) interaction() Measure {
+	return nothing("the Hill equation has no first and last site")
+}
