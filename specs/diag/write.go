@@ -77,14 +77,14 @@ func writeRemedy(out io.Writer, r Remedy) {
 	say, a := screen(say)
 	code, b := screen(r.Write)
 	where, c := screen(r.Where)
-	switch {
-	case where == "":
-		fmt.Fprintf(out, "%s%s%s%s\n", indent, say, indent, code)
-	case a+b+c+4*len(indent) <= pageColumns:
-		fmt.Fprintf(out, "%s%s%s%s%s%s\n", indent, say, indent, code, indent, where)
-	default:
-		fmt.Fprintf(out, "%s%s%s%s\n%s%s\n", indent, say, indent, code, indent, where)
+	if where != "" {
+		code, b = code+indent+where, b+len(indent)+c
 	}
+	if a+b+2*len(indent) <= pageColumns {
+		fmt.Fprintf(out, "%s%s%s%s\n", indent, say, indent, code)
+		return
+	}
+	fmt.Fprintf(out, "%s%s\n%s%s%s\n", indent, say, indent, indent, code)
 }
 
 // writeSource writes the line and, under it, marks over the width of the span.
