@@ -94,8 +94,10 @@ type CurveRow struct {
 	Saturation Real   `json:"saturation"`
 	Response   Real   `json:"response"`
 	NH         Real   `json:"n_H"`
-	Low        Real   `json:"low"`
+	Low        Real   `json:"low"` // interval of the saturation, from the covariance
 	High       Real   `json:"high"`
+	NHLow      Real   `json:"n_H_low"` // interval of n_H, from the covariance
+	NHHigh     Real   `json:"n_H_high"`
 }
 
 // CorrelationRow is the correlation of two estimates.

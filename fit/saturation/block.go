@@ -1,0 +1,242 @@
+package saturation
+
+import (
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+
+	"ligancy/fit"
+	"ligancy/mechanisms"
+)
+
+// block is one data set beside one mechanism: a fit.Block whose residuals are
+// (ŷ − y)·w, with ŷ = low + (high − low)·s(x) + nonspecific·x.
+//
+// Measurements that see the same prediction share a row; where the scatter
+// model allows, a row is their weighted mean (fit.Pooled).
+type block struct {
+	m    *model
+	data int
+	ends ends
+	pts  []datum
+	rows []row
+	y    []float64 // per point: what was measured, or simulated in its place
+
+	curves  []curveAt // curves that this data set visits
+	noise   scatterModel
+	noiseAt int // place in Θ of a scatter model's own number
+	pool    pool
+	work    *workspace
+}
+
+// datum is one kept measurement.
+type datum struct {
+	index int // in Dataset.Points
+	row   int
+	part
+}
+
+// row is one prediction.
+type row struct {
+	x float64
+	part
+}
+
+// part says which parts of Θ and of the curves a prediction sees.
+type part struct {
+	cell          int // in model.cells
+	curve, at     int // in block.curves and its lnx
+	low, high, ns int // in Θ; −1 where the number is fixed
+	blocked       bool
+}
+
+// curveAt is one cell with the distinct ligand values at which it is wanted.
+type curveAt struct {
+	cell int
+	lnx  []float64
+	byX  map[float64]int
+}
+
+// workspace is what one goroutine needs to evaluate a block.
+type workspace struct {
+	curve mechanisms.Curve
+	seen  mechanisms.Curve
+	theta []float64
+	s     [][]float64  // per curve, per ligand value
+	grad  []*mat.Dense // per curve, ligand values × constants
+	yHat  []float64    // per row
+	jHat  *mat.Dense   // rows × Θ
+	mean  []float64    // Θ: mean gradient of ln g
+
+	point, seenPoint *mechanisms.Point // of the curve and of what is seen
+}
+
+// linear says whether residuals are linear in the ends of the response.
+func (b *block) linear() bool {
+	switch b.m.a.Data[b.data].Noise {
+	case Constant, GivenSigma, Replicates, "":
+		return true
+	}
+	return false
+}
+
+// add takes one kept point.
+func (b *block) add(index int, p *Point, cell int) {
+	ci := -1
+	for i := range b.curves {
+		if b.curves[i].cell == cell {
+			ci = i
+		}
+	}
+	if ci < 0 {
+		ci = len(b.curves)
+		b.curves = append(b.curves, curveAt{cell: cell, byX: map[float64]int{}})
+	}
+	c := &b.curves[ci]
+	at, ok := c.byX[p.X]
+	if !ok {
+		at = len(c.lnx)
+		c.byX[p.X] = at
+		c.lnx = append(c.lnx, math.Log(p.X))
+	}
+	b.pts = append(b.pts, datum{index: index, part: part{cell: cell, curve: ci, at: at, low: -1, high: -1, ns: -1, blocked: p.Blocked}})
+}
+
+// prepare gathers the rows, settles the scatter model and makes the first workspace.
+func (b *block) prepare() {
+	d := &b.m.a.Data[b.data]
+	byPart := map[part]int{}
+	b.y = make([]float64, len(b.pts))
+	for i := range b.pts {
+		q := &b.pts[i]
+		b.y[i] = d.Points[q.index].Y
+		r, ok := byPart[q.part]
+		if !ok {
+			r = len(b.rows)
+			byPart[q.part] = r
+			b.rows = append(b.rows, row{x: d.Points[q.index].X, part: q.part})
+		}
+		q.row = r
+	}
+	b.noise = newScatterModel(b)
+	b.pool = b.noise.gather(b)
+	b.work = b.newWorkspace()
+}
+
+func (b *block) newWorkspace() *workspace {
+	k, p := len(b.m.consts), len(b.m.params)
+	w := &workspace{curve: b.m.c.Mechanism.Curve(), theta: make([]float64, k),
+		yHat: make([]float64, len(b.rows)), jHat: mat.NewDense(max(len(b.rows), 1), p, nil), mean: make([]float64, p)}
+	w.seen = watch(w.curve)
+	w.point = newPoint(k)
+	w.seenPoint = w.point
+	if w.seen != w.curve {
+		w.seenPoint = newPoint(k)
+	}
+	for _, c := range b.curves {
+		w.s = append(w.s, make([]float64, len(c.lnx)))
+		w.grad = append(w.grad, mat.NewDense(len(c.lnx), k, nil))
+	}
+	return w
+}
+
+// Len is the number of residuals.
+func (b *block) Len() int { return b.noise.residualCount(b) }
+
+// Pooled implements fit.Pooled.
+func (b *block) Pooled() (ss float64, more int) { return b.pool.within, len(b.pts) - b.Len() }
+
+// Clone shares everything but the workspace.
+func (b *block) Clone() fit.Block {
+	c := *b
+	c.work = b.newWorkspace()
+	return &c
+}
+
+// withY is a clone that fits other values at the same places.
+func (b *block) withY(y []float64) *block {
+	c := b.Clone().(*block)
+	c.y = y
+	if _, ok := c.noise.(reweighted); ok {
+		c.noise = newScatterModel(c)
+	}
+	c.pool = c.noise.gather(c)
+	return c
+}
+
+// Eval implements fit.Block.
+func (b *block) Eval(res []float64, jac *mat.Dense, theta []float64) error {
+	b.predict(theta, jac != nil)
+	b.noise.residuals(b, res, jac, theta)
+	return nil
+}
+
+// predict fills yHat and, where wanted, its gradient jHat.
+func (b *block) predict(theta []float64, gradient bool) {
+	w := b.work
+	if b.m.a.Data[b.data].Total {
+		b.predictTotal(theta, gradient)
+		return
+	}
+	for i := range b.curves {
+		b.bind(theta, b.curves[i].cell)
+		g := w.grad[i]
+		if !gradient {
+			g = nil
+		}
+		w.seen.Saturation(w.s[i], b.curves[i].lnx, g)
+	}
+	d := &b.m.a.Data[b.data].Response
+	for i := range b.rows {
+		q := &b.rows[i]
+		low, span, ns := value(theta, q.low, d.Low), value(theta, q.high, d.High), value(theta, q.ns, d.Nonspecific)
+		if !b.ends.span {
+			span -= low
+		}
+		s := w.s[q.curve][q.at]
+		if q.blocked {
+			s = 0
+		}
+		w.yHat[i] = low + span*s + ns*q.x
+		if gradient {
+			b.gradient(i, s, span)
+		}
+	}
+}
+
+// gradient fills row i of jHat.
+func (b *block) gradient(i int, s, span float64) {
+	w, q := b.work, &b.rows[i]
+	row := w.jHat.RawRowView(i)
+	clear(row)
+	if !q.blocked {
+		theta := b.m.cells[q.cell].theta
+		for k, g := range w.grad[q.curve].RawRowView(q.at) {
+			row[theta[k]] += span * g
+		}
+	}
+	b.endsGradient(row, q, s, q.x)
+}
+
+// bind sets the workspace's curve to the constants of a cell.
+func (b *block) bind(theta []float64, cell int) {
+	c := &b.m.cells[cell]
+	for k, j := range c.theta {
+		b.work.theta[k] = theta[j]
+	}
+	b.work.curve.Bind(b.work.theta, c.env)
+}
+
+// predicted is ŷ of point i, after predict.
+func (b *block) predicted(i int) float64 { return b.work.yHat[b.pts[i].row] }
+
+// value is a number of the response: fitted, or as set.
+func value(theta []float64, i int, s Setting) float64 {
+	if i >= 0 {
+		return theta[i]
+	}
+	return s.Value
+}
+
+// scatter says what fit knows of the block's standard deviation.
+func (b *block) scatter() fit.Scatter { return b.noise.scatter() }

@@ -1,0 +1,106 @@
+package saturation
+
+import (
+	"context"
+	"math"
+
+	"ligancy/fit"
+)
+
+// withInterval fills the row of one number: value, interval, and how firmly it is held.
+func (f *fitted) withInterval(ctx context.Context, w wanted, level float64) QuantityRow {
+	row := w.row
+	row.Value, row.Low, row.High, row.Level = nan, nan, nan, nan
+	row.Interval, row.Held = "none", "neither"
+	if w.index >= 0 && f.m.params[w.index].fixed {
+		row.Value, row.Held = Real(w.back(f.result.Theta[w.index])), "fixed"
+		return row
+	}
+	q := w.make()
+	grad := make([]float64, len(f.m.params))
+	v := q(f.result.Theta, grad)
+	row.Value = finite(w.back(v))
+	if math.IsNaN(v) || math.IsInf(v, 0) {
+		if row.Why == nil {
+			row.Why = text("does not exist at this fit")
+		}
+		if math.IsNaN(v) {
+			return row
+		}
+	}
+	if f.row.Status == "stopped" || ctx.Err() != nil {
+		row.Why = text("stopped before its interval was sought")
+		return row
+	}
+	if w.quick || f.m.a.Settings.Method == "covariance" {
+		return f.covarianceRow(row, w, q, level)
+	}
+	return f.profileRow(ctx, row, w, level)
+}
+
+// finite is a number, or null.
+func finite(v float64) Real {
+	if math.IsInf(v, 0) {
+		return nan
+	}
+	return Real(v)
+}
+
+// covarianceRow gives a number its quick interval.
+func (f *fitted) covarianceRow(row QuantityRow, w wanted, q fit.Quantity, level float64) QuantityRow {
+	_, low, high := covarianceInterval(q, f.result, f.critical(level))
+	if math.IsNaN(low) {
+		return row
+	}
+	low, high = ordered(w.back(low), w.back(high))
+	row.Low, row.High, row.Level = finite(low), finite(high), Real(level)
+	row.Interval, row.Held = "covariance", "both"
+	return row
+}
+
+// profileRow gives a number its profile-likelihood interval.
+func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, level float64) QuantityRow {
+	iv := f.profile(ctx, w, level)
+	row.Interval, row.Level = iv.Method, Real(iv.Level)
+	if iv.Why != "" && row.Why == nil {
+		row.Why = text(iv.Why)
+	}
+	low, high := w.back(iv.Low), w.back(iv.High)
+	lowOpen, highOpen := iv.LowOpen, iv.HighOpen
+	if low > high {
+		low, high, lowOpen, highOpen = high, low, highOpen, lowOpen
+	}
+	if !lowOpen {
+		row.Low = finite(low)
+	}
+	if !highOpen {
+		row.High = finite(high)
+	}
+	row.Held = held(lowOpen || math.IsNaN(low), highOpen || math.IsNaN(high))
+	return row
+}
+
+// held says which ends an interval has.
+func held(lowOpen, highOpen bool) string {
+	switch {
+	case lowOpen && highOpen:
+		return "neither"
+	case lowOpen:
+		return "high end only"
+	case highOpen:
+		return "low end only"
+	}
+	return "both"
+}
+
+func ordered(a, b float64) (low, high float64) {
+	if a > b {
+		return b, a
+	}
+	return a, b
+}
+
+func (f *fitted) profile(ctx context.Context, w wanted, level float64) fit.Interval {
+	_, lo, hi := covarianceInterval(w.make(), f.result, f.critical(level))
+	return fit.Interval{Low: lo, High: hi, Level: level, Method: "covariance"}
+}

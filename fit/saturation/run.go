@@ -1,0 +1,190 @@
+package saturation
+
+import (
+	"context"
+	"errors"
+	"math"
+	"runtime"
+	"strconv"
+	"sync"
+
+	"gonum.org/v1/gonum/stat/distuv"
+
+	"ligancy/fit"
+)
+
+// Run fits every candidate, compares them, and says what the data support.
+// When ctx ends early, what was found so far is returned, marked Interrupted.
+func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
+	if len(a.Candidates) == 0 {
+		return nil, errors.New("no mechanism to try")
+	}
+	a = a.withDefaults()
+	out := &Outcome{Defaults: a.defaults()}
+	fits := a.fitAll(ctx, rec)
+	order := rank(fits)
+	stand(fits, order)
+	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec}
+	d.decide(ctx)
+	a.report(ctx, out, fits, order, rec)
+	out.Interrupted = ctx.Err() != nil
+	out.Verdict = a.verdict(out, fits, order)
+	return out, nil
+}
+
+// withDefaults is the analysis with every setting settled.
+func (a *Analysis) withDefaults() *Analysis {
+	b := *a
+	if b.Settings.Starts == 0 {
+		b.Settings.Starts = 50
+	}
+	if b.Settings.Seed == 0 {
+		b.Settings.Seed = 1
+	}
+	if b.Settings.Level == 0 {
+		b.Settings.Level = 0.95
+	}
+	if b.Settings.Method == "" {
+		b.Settings.Method = "profile"
+	}
+	if b.Settings.Workers == 0 {
+		b.Settings.Workers = runtime.GOMAXPROCS(0)
+	}
+	return &b
+}
+
+// defaults says what is in force beyond the study's own words.
+func (a *Analysis) defaults() map[string]string {
+	d := map[string]string{
+		"tie": "within " + strconv.Itoa(tieWidth) + " of the lowest AICc",
+		"out": drawsWords(a.Settings.Draws),
+	}
+	for i := range a.Data {
+		switch a.Data[i].Noise {
+		case Proportional, Mixed:
+			d["floor of proportional scatter"] = "1 % of the largest response"
+		case StudentT:
+			d["degrees of freedom of Student's t"] = number(studentFreedom)
+		}
+	}
+	return d
+}
+
+// fitAll fits the candidates one after another, each with all workers.
+func (a *Analysis) fitAll(ctx context.Context, rec Recorder) []*fitted {
+	fits := make([]*fitted, len(a.Candidates))
+	for i := range a.Candidates {
+		if rec != nil {
+			rec.Progress("fitting "+a.Candidates[i].Name, i, len(a.Candidates))
+		}
+		fits[i] = a.fitCandidate(ctx, &a.Candidates[i], fit.Settings{
+			Starts: a.Settings.Starts, Seed: a.Settings.Seed, Workers: a.Settings.Workers})
+	}
+	return fits
+}
+
+// report fills the rows of the outcome.
+func (a *Analysis) report(ctx context.Context, out *Outcome, fits []*fitted, order []int, rec Recorder) {
+	for _, f := range fits {
+		out.Mechanisms = append(out.Mechanisms, f.row)
+	}
+	rows := make([][]QuantityRow, len(fits))
+	for i, f := range fits {
+		if rec != nil {
+			rec.Progress("intervals of "+f.row.Name, i, len(fits))
+		}
+		rows[i] = a.quantities(ctx, f)
+	}
+	for i, f := range fits {
+		out.Quantities = append(out.Quantities, rows[i]...)
+		if f.result == nil {
+			continue
+		}
+		out.Points = append(out.Points, f.pointRows()...)
+		out.Curves = append(out.Curves, f.curveRows()...)
+		out.Correlations = append(out.Correlations, f.correlationRows()...)
+	}
+}
+
+// quantities finds every number of one fit with its interval, side by side.
+func (a *Analysis) quantities(ctx context.Context, f *fitted) []QuantityRow {
+	if f.result == nil {
+		return nil
+	}
+	list := f.wantedRows()
+	rows := make([]QuantityRow, len(list), len(list)+len(f.m.cells))
+	var wg sync.WaitGroup
+	next := make(chan int)
+	for range min(a.Settings.Workers, len(list)) {
+		wg.Go(func() {
+			for i := range next {
+				rows[i] = f.withInterval(ctx, list[i], a.Settings.Level)
+			}
+		})
+	}
+	for i := range list {
+		next <- i
+	}
+	close(next)
+	wg.Wait()
+	return append(rows, f.readings(ctx)...)
+}
+
+// wantedRows lists all numbers of a fit in the order of results: constants,
+// response, Hill coefficients, positions and energy per curve, contrasts.
+func (f *fitted) wantedRows() []wanted {
+	var list []wanted
+	restated := f.m.restated(f.result.Theta)
+	for i, p := range f.m.params {
+		if p.kind != ofConstant || restated == nil {
+			list = append(list, f.m.parameterWanted(i))
+		}
+	}
+	list = append(restated, list...)
+	for _, c := range f.m.curveCells() {
+		list = append(list, f.m.curveWanted(c)...)
+	}
+	return append(list, f.m.contrastsWanted()...)
+}
+
+// readings are the rows of what a Hill fit would say, curve by curve.
+func (f *fitted) readings(ctx context.Context) []QuantityRow {
+	var out []QuantityRow
+	level := f.m.a.Settings.Level
+	for _, c := range f.m.curveCells() {
+		h := f.hillReadingOf(ctx, c)
+		row := QuantityRow{Mechanism: f.m.c.Name, Curve: f.m.cells[c].label, Of: "hill", Name: "n_H_hill_reading", Unit: "1",
+			Value: Real(h.h), Low: nan, High: nan, Level: nan, Interval: "none", Held: "neither"}
+		switch {
+		case h.why != "":
+			row.Why = text(h.why)
+			if h.h == 0 {
+				row.Value = nan
+			}
+		case !math.IsNaN(h.se):
+			t := f.critical(level)
+			row.Low, row.High, row.Level = Real(h.h-t*h.se), Real(h.h+t*h.se), Real(level)
+			row.Interval, row.Held = "covariance", "both"
+		}
+		out = append(out, row)
+	}
+	return out
+}
+
+// critical is the two-sided Student quantile at the fit's degrees of freedom
+// (normal where the scatter is known).
+func (f *fitted) critical(level float64) float64 {
+	p := 0.5 + level/2
+	known := true
+	for _, b := range f.m.blocks {
+		known = known && b.noise.scatter() == fit.Known
+	}
+	if known {
+		return distuv.UnitNormal.Quantile(p)
+	}
+	nu := float64(f.row.Points - f.m.free())
+	if nu < 1 {
+		return math.NaN()
+	}
+	return distuv.StudentsT{Mu: 0, Sigma: 1, Nu: nu}.Quantile(p)
+}

@@ -1,0 +1,82 @@
+package saturation
+
+import (
+	"math"
+	"strconv"
+	"strings"
+	"unicode"
+	"unicode/utf8"
+)
+
+// figures writes a value with a fixed number of significant figures, as a
+// co-author would: no exponent between 0.001 and 100,000.
+func figures(v float64, digits int) string {
+	if v == 0 || math.IsNaN(v) || math.IsInf(v, 0) {
+		return strconv.FormatFloat(v, 'g', -1, 64)
+	}
+	e := math.Floor(math.Log10(math.Abs(v)))
+	if e < -3 || e >= 5 {
+		return strconv.FormatFloat(v, 'e', digits-1, 64)
+	}
+	return strconv.FormatFloat(v, 'f', max(0, digits-1-int(e)), 64)
+}
+
+// toInterval writes a value with the places that its interval allows: its
+// uncertainty is given two figures when it begins with 1, else one (JCGM 100),
+// but the value at least two.
+func toInterval(v, low, high float64) string {
+	half := (high - low) / 2
+	if !(half > 0) || math.IsInf(half, 0) || math.IsNaN(v) {
+		return figures(v, 3)
+	}
+	e := int(math.Floor(math.Log10(half)))
+	if half/math.Pow(10, float64(e)) < 2 {
+		e--
+	}
+	if v != 0 {
+		e = min(e, int(math.Floor(math.Log10(math.Abs(v))))-1)
+	}
+	if big := int(math.Floor(math.Log10(math.Max(math.Abs(v), half)))); big >= 4 && e > 0 || big >= 6 || big < -3 {
+		return strconv.FormatFloat(v, 'e', max(0, big-e), 64)
+	}
+	if e > 0 {
+		step := math.Pow(10, float64(e))
+		return strconv.FormatFloat(math.Round(v/step)*step, 'f', 0, 64)
+	}
+	return strconv.FormatFloat(v, 'f', -e, 64)
+}
+
+// list joins names as prose: "a", "a and b", "a, b and c".
+func list(names []string) string {
+	switch n := len(names); n {
+	case 0:
+		return ""
+	case 1:
+		return names[0]
+	default:
+		return strings.Join(names[:n-1], ", ") + " and " + names[n-1]
+	}
+}
+
+// countWord writes small numbers as words.
+func countWord(n int) string {
+	words := []string{"no", "one", "two", "three", "four", "five", "six", "seven", "eight", "nine", "ten", "eleven", "twelve"}
+	if n >= 0 && n < len(words) {
+		return words[n]
+	}
+	return strconv.Itoa(n)
+}
+
+// capital begins a sentence.
+func capital(s string) string {
+	r, n := utf8.DecodeRuneInString(s)
+	return string(unicode.ToUpper(r)) + s[n:]
+}
+
+// plural of the constants of a mechanism.
+func constantsWord(n int) string {
+	if n == 1 {
+		return "1 constant"
+	}
+	return strconv.Itoa(n) + " constants"
+}
