@@ -117,7 +117,7 @@ func (d *Document) onTies(mechanism string) []caution {
 			continue
 		}
 		p := pair{symbol(c.A), symbol(c.B)}
-		if p.a == p.b {
+		if p.a == p.b || !d.quotes(mechanism, p.a) || !d.quotes(mechanism, p.b) {
 			continue
 		}
 		if _, ok := strongest[p]; !ok {
@@ -139,6 +139,17 @@ func (d *Document) onTies(mechanism string) []caution {
 		})
 	}
 	return all
+}
+
+// quotes says whether a constant is printed under this symbol; what is fitted
+// instead of it (overall constants) is not.
+func (d *Document) quotes(mechanism, symbol string) bool {
+	for i := range d.Quantities {
+		if q := &d.Quantities[i]; q.Mechanism == mechanism && q.Of == "constant" && q.Name == symbol {
+			return true
+		}
+	}
+	return false
 }
 
 // symbol of a correlated number without its curve: "L (pH 7.6)" and "L, pH 7.6" are L.

@@ -72,8 +72,8 @@ func clamOutcome(a *saturation.Analysis) *saturation.Outcome {
 		},
 		Quantities: clamQuantities(),
 		Correlations: []saturation.CorrelationRow{
-			{Mechanism: leader, A: "L (pH 7.6)", B: "K_R", R: -0.9955},
-			{Mechanism: leader, A: "L (pH 7.0)", B: "K_R", R: -0.9962},
+			{Mechanism: leader, A: "L, pH 7.6", B: "K_R", R: -0.9955},
+			{Mechanism: leader, A: "L, pH 7.0", B: "K_R", R: -0.9962},
 			{Mechanism: leader, A: "K_R", B: "c", R: 0.62},
 		},
 		Objections: []saturation.Objection{
@@ -138,6 +138,8 @@ func clamQuantities() []saturation.QuantityRow {
 		add(c.label, "position", "x_99", "torr", c.x99, nan, nan)
 	}
 	add("pH 7.0 / pH 7.6", "contrast", "x_half", "1", 1.643, 1.619, 1.667)
+	add("pH 7.0 / pH 7.6", "contrast", "Bohr_coefficient", "1", -0.3594, -0.3698, -0.3487)
+	add("pH 7.0 − pH 7.6", "contrast", "n_H_half", "1", 0.072, -0.012, 0.155)
 	add("pH 7.0 / pH 7.6", "contrast", "L", "1", 6.13, 5.79, 6.49)
 	return rows
 }

@@ -31,7 +31,7 @@ func (p *page) constants(mechanism string) {
 }
 
 // constantRows collects the rows of the table: contrasts of a constant follow
-// its last level.
+// its last level, those of other numbers come last.
 func (p *page) constantRows(mechanism string) []*saturation.QuantityRow {
 	var rows, contrasts []*saturation.QuantityRow
 	for i := range p.d.Quantities {
@@ -47,22 +47,25 @@ func (p *page) constantRows(mechanism string) []*saturation.QuantityRow {
 				rows = append(rows, q)
 			}
 		case "contrast":
-			contrasts = append(contrasts, q)
+			if !slices.Contains(contrastsOfSlope, q.Name) {
+				contrasts = append(contrasts, q)
+			}
 		}
 	}
 	for _, q := range contrasts {
-		last := -1
+		at := len(rows)
 		for i, r := range rows {
 			if r.Name == q.Name {
-				last = i
+				at = i + 1
 			}
 		}
-		if last >= 0 {
-			rows = slices.Insert(rows, last+1, q)
-		}
+		rows = slices.Insert(rows, at, q)
 	}
 	return rows
 }
+
+// contrastsOfSlope stand in the table of slopes, not among the constants.
+var contrastsOfSlope = []string{"x_half", "n_H_half", "Bohr_coefficient"}
 
 // constantCells writes one row: name, value, unit, ends, how firmly held.
 func (p *page) constantCells(q *saturation.QuantityRow) []string {

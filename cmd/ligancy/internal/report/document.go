@@ -63,6 +63,8 @@ type Source struct {
 	File    string            // study file as the user named it
 	SHA256  string            // of the study file
 	Digests map[string]string // SHA-256 by name of data file
+	// Defaults are the settings in force that the study does not say.
+	Defaults map[string]string
 }
 
 // New assembles the document of an outcome. It copies the outcome's lists
@@ -92,6 +94,7 @@ func New(a *saturation.Analysis, o *saturation.Outcome, src Source) *Document {
 		Outcome:  &rows,
 		analysis: a,
 	}
+	maps.Copy(d.Settings.Defaults, src.Defaults)
 	maps.Copy(d.Settings.Defaults, o.Defaults)
 	for i := range a.Data {
 		d.Data = append(d.Data, describe(&a.Data[i], src.Digests))

@@ -101,6 +101,9 @@ func cut(s string, w int) string {
 	return short
 }
 
+// Short makes a text from a study safe to show in at most w columns.
+func Short(s string, w int) string { return cut(s, w) }
+
 // pad fills a text with blanks to w columns.
 func pad(s string, w int) string {
 	return s + strings.Repeat(" ", max(0, w-width(s)))
@@ -191,6 +194,9 @@ func (g *grid) lines(w int) []string {
 			to++
 		}
 		for _, row := range g.rows {
+			if from > 1 && strings.Join(row[min(from, len(row)):min(to, len(row))], "") == "" {
+				continue
+			}
 			out = append(out, g.line(row, widths, from, to))
 		}
 		from = to

@@ -35,17 +35,16 @@ func (d *Document) curvesOf(mechanism string) []string {
 	return names
 }
 
-// contrastsOf lists the pairs of curves between which a mechanism's numbers
-// are compared, in order, each once.
-func (d *Document) contrastsOf(mechanism string) []string {
-	var pairs []string
+// contrastsOf lists the rows that compare one number of a mechanism between curves.
+func (d *Document) contrastsOf(mechanism, name string) []*saturation.QuantityRow {
+	var rows []*saturation.QuantityRow
 	for i := range d.Quantities {
 		q := &d.Quantities[i]
-		if q.Mechanism == mechanism && q.Of == "contrast" && !slices.Contains(pairs, q.Curve) {
-			pairs = append(pairs, q.Curve)
+		if q.Mechanism == mechanism && q.Of == "contrast" && q.Name == name {
+			rows = append(rows, q)
 		}
 	}
-	return pairs
+	return rows
 }
 
 // row of a mechanism, or nil.
@@ -78,15 +77,32 @@ func (d *Document) halfSymbol() string {
 // shortContrast writes "pH 7.0 / pH 7.6" as "7.0 / 7.6": what both sides share
 // in front is said by the rows above.
 func shortContrast(pair string) string {
-	a, b, ok := strings.Cut(pair, " / ")
-	if !ok {
-		return pair
+	for _, sign := range []string{" / ", " − "} {
+		a, b, ok := strings.Cut(pair, sign)
+		if i := strings.LastIndex(a, " ") + 1; ok && i > 0 && len(b) > i && a[:i] == b[:i] {
+			return a[i:] + sign + b[i:]
+		}
 	}
-	i := strings.LastIndex(a, " ") + 1
-	if i == 0 || len(b) <= i || a[:i] != b[:i] {
-		return pair
+	return pair
+}
+
+// belongs says whether a measurement lies on a curve: the curve's name lists
+// levels ("pH 7.6, preparation A"), and every one of them is the point's.
+func belongs(r *saturation.PointRow, curve string) bool {
+	if curve == "all" || curve == r.Curve {
+		return true
 	}
-	return a[i:] + " / " + b[i:]
+	of := strings.Split(r.Curve, ", ")
+	of = append(of, r.Data)
+	if r.Preparation != nil {
+		of = append(of, "preparation "+*r.Preparation)
+	}
+	for _, level := range strings.Split(curve, ", ") {
+		if !slices.Contains(of, level) {
+			return false
+		}
+	}
+	return true
 }
 
 // shortList writes "pH 7.6", "pH 7.0" as "pH 7.6, 7.0".

@@ -51,7 +51,7 @@ func percent(share float64) string { return strconv.FormatFloat(100*share, 'g', 
 
 // ruler draws the tested points and the reach of each curve on one axis.
 func (p *page) ruler(mechanism string, curves []string) {
-	tested := p.testedPoints(mechanism)
+	tested := p.testedPoints(mechanism, curves)
 	reaches := make([]reach, len(curves))
 	var all, ends []float64
 	label := width("tested")
@@ -113,12 +113,17 @@ func (p *page) kind() string {
 }
 
 // testedPoints collects the ligand values of kept points by curve.
-func (p *page) testedPoints(mechanism string) map[string][]float64 {
+func (p *page) testedPoints(mechanism string, curves []string) map[string][]float64 {
 	tested := map[string][]float64{}
 	for i := range p.d.Points {
 		r := &p.d.Points[i]
-		if r.Mechanism == mechanism && r.LeftOut == nil {
-			tested[r.Curve] = append(tested[r.Curve], float64(r.X))
+		if r.Mechanism != mechanism || r.LeftOut != nil {
+			continue
+		}
+		for _, c := range curves {
+			if belongs(r, c) {
+				tested[c] = append(tested[c], float64(r.X))
+			}
 		}
 	}
 	return tested
@@ -167,11 +172,9 @@ func (p *page) slopes(mechanism string, curves []string) {
 		halves = append(halves, p.rows[key{mechanism, c, "position", "x_half"}])
 		slopes = append(slopes, p.rows[key{mechanism, c, "hill", "n_H_half"}])
 	}
-	pairs := p.d.contrastsOf(mechanism)
-	for _, c := range pairs {
-		halves = append(halves, p.rows[key{mechanism, c, "contrast", "x_half"}])
-		slopes = append(slopes, p.rows[key{mechanism, c, "contrast", "n_H"}])
-	}
+	ratios := p.d.contrastsOf(mechanism, "x_half")
+	ratios = ratios[:min(len(ratios), mostCurves)]
+	halves = append(halves, ratios...)
 	halfCells, slopeCells := stacked(halves), stacked(slopes)
 	for i, c := range curves {
 		row := []string{cut(curveLabel(c), labelColumns), halfCells[i], slopeCells[i]}
@@ -183,11 +186,28 @@ func (p *page) slopes(mechanism string, curves []string) {
 		}
 		g.add(row...)
 	}
-	for i, c := range pairs {
-		h, s := halfCells[len(curves)+i], slopeCells[len(curves)+i]
-		if h != "" || s != "" {
-			g.add(cut(shortContrast(c), labelColumns), h, s)
+	for i, q := range ratios {
+		g.add(cut(shortContrast(q.Curve), labelColumns), halfCells[len(curves)+i])
+	}
+	for _, l := range g.lines(Width - 2) {
+		p.line("  %s", l)
+	}
+	p.differences(mechanism)
+}
+
+// differences writes what else was asked for between curves, one line a number.
+func (p *page) differences(mechanism string) {
+	rows := p.d.contrastsOf(mechanism, "Bohr_coefficient")
+	rows = append(rows, p.d.contrastsOf(mechanism, "n_H_half")...)
+	rows = rows[:min(len(rows), mostCurves)]
+	cells := stacked(rows)
+	g := &grid{gap: 2}
+	for i, q := range rows {
+		name := "n_H at half saturation"
+		if q.Name == "Bohr_coefficient" {
+			name = "Bohr coefficient"
 		}
+		g.add(name, cut(shortContrast(q.Curve), labelColumns), cells[i])
 	}
 	for _, l := range g.lines(Width - 2) {
 		p.line("  %s", l)

@@ -3,7 +3,6 @@ package report
 import (
 	"fmt"
 	"io"
-	"slices"
 	"strings"
 
 	"ligancy/fit/saturation"
@@ -91,7 +90,7 @@ func (d *Document) counts() []string {
 		}
 		out = append(out, named)
 	}
-	if n := d.preparations(); n > 0 {
+	if n := preparations(d.analysis); n > 0 {
 		out = append(out, number(n, "preparation"))
 	}
 	if leftOut == 0 {
@@ -122,15 +121,14 @@ func (p *page) verdict() {
 }
 
 // preparations counts the preparations of all kept points.
-func (d *Document) preparations() int {
-	var names []string
-	for i := range d.analysis.Data {
-		for j := range d.analysis.Data[i].Points {
-			pt := &d.analysis.Data[i].Points[j]
-			if pt.LeftOut == "" && pt.Preparation != "" && !slices.Contains(names, pt.Preparation) {
-				names = append(names, pt.Preparation)
+func preparations(a *saturation.Analysis) int {
+	seen := map[string]bool{}
+	for i := range a.Data {
+		for j := range a.Data[i].Points {
+			if pt := &a.Data[i].Points[j]; pt.LeftOut == "" && pt.Preparation != "" {
+				seen[pt.Preparation] = true
 			}
 		}
 	}
-	return len(names)
+	return len(seen)
 }
