@@ -143,6 +143,7 @@ func (f *fitted) wantedRows() []wanted {
 	list = append(restated, list...)
 	for _, c := range f.m.curveCells() {
 		list = append(list, f.m.curveWanted(c)...)
+		list = append(list, f.m.totalWanted(c)...)
 	}
 	return append(list, f.m.contrastsWanted()...)
 }
