@@ -2,7 +2,6 @@ package cli
 
 import (
 	"context"
-	"errors"
 	"io"
 	"os"
 	"os/signal"
@@ -50,8 +49,9 @@ func System() Env {
 	}
 }
 
+// analyse runs an analysis.
 func analyse(ctx context.Context, a *saturation.Analysis, rec saturation.Recorder) (*saturation.Outcome, error) {
-	return nil, errors.New("analyses cannot be run yet")
+	return a.Run(ctx, rec)
 }
 
 // colour says whether standard output may be painted: on a terminal that can,

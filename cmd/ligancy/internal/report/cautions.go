@@ -84,7 +84,7 @@ func (d *Document) onEdges(mechanism string) []caution {
 		if names[*q.Why] == nil {
 			reasons = append(reasons, *q.Why)
 		}
-		names[*q.Why] = append(names[*q.Why], constantLabel(q))
+		names[*q.Why] = append(names[*q.Why], d.constantLabel(q))
 	}
 	var all []caution
 	if m := d.mechanism(mechanism); m != nil && m.Edge != nil {
@@ -120,6 +120,9 @@ func (d *Document) onTies(mechanism string) []caution {
 		if p.a == p.b || !d.quotes(mechanism, p.a) || !d.quotes(mechanism, p.b) {
 			continue
 		}
+		if _, ok := strongest[pair{p.b, p.a}]; ok {
+			p = pair{p.b, p.a}
+		}
 		if _, ok := strongest[p]; !ok {
 			order = append(order, p)
 		}
@@ -134,7 +137,7 @@ func (d *Document) onTies(mechanism string) []caution {
 			text: fmt.Sprintf("%s and %s move together (r = %s). Quote them together with this correlation, not %s alone.",
 				p.a, p.b, correlation(strongest[p]), loose),
 			about: func(q *saturation.QuantityRow) bool {
-				return q.Mechanism == mechanism && q.Of == "constant" && q.Name == loose
+				return q.Mechanism == mechanism && q.Of == "constant" && d.constantName(q) == loose
 			},
 		})
 	}
@@ -145,17 +148,16 @@ func (d *Document) onTies(mechanism string) []caution {
 // instead of it (overall constants) is not.
 func (d *Document) quotes(mechanism, symbol string) bool {
 	for i := range d.Quantities {
-		if q := &d.Quantities[i]; q.Mechanism == mechanism && q.Of == "constant" && q.Name == symbol {
+		if q := &d.Quantities[i]; q.Mechanism == mechanism && q.Of == "constant" && d.constantName(q) == symbol {
 			return true
 		}
 	}
 	return false
 }
 
-// symbol of a correlated number without its curve: "L (pH 7.6)" and "L, pH 7.6" are L.
+// symbol of a correlated number without its curve: "L, pH 7.6" is L.
 func symbol(name string) string {
-	s, _, _ := strings.Cut(name, " (")
-	s, _, _ = strings.Cut(s, ",")
+	s, _, _ := strings.Cut(name, ", ")
 	return s
 }
 
@@ -165,7 +167,7 @@ func (d *Document) looser(mechanism, a, b string) string {
 		w := 0.0
 		for i := range d.Quantities {
 			q := &d.Quantities[i]
-			if q.Mechanism == mechanism && q.Of == "constant" && q.Name == name && q.Low > 0 {
+			if q.Mechanism == mechanism && q.Of == "constant" && d.constantName(q) == name && q.Low > 0 {
 				w = max(w, float64(q.High/q.Low))
 			}
 		}

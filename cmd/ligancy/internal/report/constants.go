@@ -52,6 +52,7 @@ func (p *page) constantRows(mechanism string) []*saturation.QuantityRow {
 			}
 		}
 	}
+	rows = byName(rows)
 	for _, q := range contrasts {
 		at := len(rows)
 		for i, r := range rows {
@@ -64,13 +65,37 @@ func (p *page) constantRows(mechanism string) []*saturation.QuantityRow {
 	return rows
 }
 
+// byName brings the levels of one constant together, at the place of its first.
+func byName(rows []*saturation.QuantityRow) []*saturation.QuantityRow {
+	type name struct{ of, name, site, ligand string }
+	first := map[name]int{}
+	at := func(q *saturation.QuantityRow) int {
+		n := name{of: q.Of, name: q.Name}
+		if q.Site != nil {
+			n.site = *q.Site
+		}
+		if q.Ligand != nil {
+			n.ligand = *q.Ligand
+		}
+		if _, ok := first[n]; !ok {
+			first[n] = len(first)
+		}
+		return first[n]
+	}
+	for _, q := range rows {
+		at(q)
+	}
+	slices.SortStableFunc(rows, func(a, b *saturation.QuantityRow) int { return at(a) - at(b) })
+	return rows
+}
+
 // contrastsOfSlope stand in the table of slopes, not among the constants.
 var contrastsOfSlope = []string{"x_half", "n_H_half", "Bohr_coefficient"}
 
 // constantCells writes one row: name, value, unit, ends, how firmly held.
 func (p *page) constantCells(q *saturation.QuantityRow) []string {
 	mark := p.marks(q)
-	label := constantLabel(q)
+	label := p.d.constantLabel(q)
 	value := float64(q.Value)
 	if q.Held == "fixed" {
 		return []string{label, plain(value), unitWord(q.Unit), "", "", "fixed in the study", mark}
@@ -78,7 +103,7 @@ func (p *page) constantCells(q *saturation.QuantityRow) []string {
 	if !finite(value) {
 		return []string{label, "–", unitWord(q.Unit), "", "", "not held alone", mark}
 	}
-	v, lo, hi := figures(value, float64(q.Low), float64(q.High))
+	v, lo, hi := rowFigures(q)
 	if lo == "" {
 		lo = "and below"
 	}
@@ -91,12 +116,9 @@ func (p *page) constantCells(q *saturation.QuantityRow) []string {
 	return []string{label, v, unitWord(q.Unit), lo, hi, held(q), mark}
 }
 
-// constantLabel writes "K_R", "L, pH 7.6", "L 7.0 / 7.6", "K_T of alanine", "Kd (tight)".
-func constantLabel(q *saturation.QuantityRow) string {
-	label := q.Name
-	if q.Site != nil && *q.Site != "" {
-		label += " (" + *q.Site + ")"
-	}
+// constantLabel writes "K_R", "L, pH 7.6", "L 7.0 / 7.6", "K_T of alanine", "Kd of tight".
+func (d *Document) constantLabel(q *saturation.QuantityRow) string {
+	label := d.constantName(q)
 	switch {
 	case q.Curve == "all" || q.Curve == "":
 	case q.Of == "contrast":
@@ -105,6 +127,17 @@ func constantLabel(q *saturation.QuantityRow) string {
 		label += ", " + q.Curve
 	}
 	return cut(label, 34)
+}
+
+// constantName is a constant's symbol with the effector or the class of site it belongs to.
+func (d *Document) constantName(q *saturation.QuantityRow) string {
+	switch {
+	case q.Ligand != nil && *q.Ligand != d.analysis.Ligand.Name && *q.Ligand != "":
+		return q.Name + " of " + *q.Ligand
+	case q.Site != nil && *q.Site != q.Name && *q.Site != "":
+		return q.Name + " of " + *q.Site
+	}
+	return q.Name
 }
 
 // held says in words how firmly a number is held.

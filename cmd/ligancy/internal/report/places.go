@@ -4,6 +4,8 @@ import (
 	"math"
 	"strconv"
 	"strings"
+
+	"ligancy/fit/saturation"
 )
 
 // most digits that print, whatever an interval would allow.
@@ -15,14 +17,15 @@ const most = 6
 // The last place shown is set by half the width of the interval, rounded to
 // one significant digit, or to two where that leaves a 1 or a 2 in front (GUM,
 // JCGM 100:2008, 7.2.6: one or two digits of the uncertainty, and the value to
-// the same place). An interval that spans more than a factor of two has no
-// common place that serves both ends: each number then carries two significant
-// digits of its own. An end that is not finite is missing, "": the others then
-// carry two digits. With neither end, the value carries three.
-func figures(value, low, high float64) (v, lo, hi string) {
+// the same place). A number that is held by a factor (a constant, a position, a
+// ratio), within more than two from end to end, has no common place that serves
+// both ends: each then carries two significant digits of its own. An end that
+// is not finite is missing, "": the others then carry two digits. With neither
+// end, the value carries three.
+func figures(value, low, high float64, byFactor bool) (v, lo, hi string) {
 	hasLow, hasHigh := finite(low), finite(high)
 	switch {
-	case hasLow && hasHigh && high > low && !spansFactor(low, high):
+	case hasLow && hasHigh && high > low && !(byFactor && spansFactor(low, high)):
 		place := lastPlace((high-low)/2, max(math.Abs(low), math.Abs(high)))
 		sci := scientific(max(math.Abs(value), math.Abs(low), math.Abs(high)), place)
 		return atPlace(value, place, sci), atPlace(low, place, sci), atPlace(high, place, sci)
@@ -31,6 +34,13 @@ func figures(value, low, high float64) (v, lo, hi string) {
 	default:
 		return significant(value, 3), "", ""
 	}
+}
+
+// rowFigures writes a row's value and ends.
+func rowFigures(q *saturation.QuantityRow) (v, lo, hi string) {
+	byFactor := q.Of == "constant" || q.Of == "combination" || q.Of == "position" && q.Unit != "1" ||
+		q.Of == "contrast" && strings.Contains(q.Curve, " / ")
+	return figures(float64(q.Value), float64(q.Low), float64(q.High), byFactor)
 }
 
 // spansFactor says whether two ends of one sign lie more than a factor of two apart.

@@ -46,10 +46,17 @@ func TestFigures(t *testing.T) {
 		{nan, nan, nan, "  "},
 		{0.29, 0.29, 0.29, "0.29 0.29 0.29"},
 	} {
-		v, lo, hi := figures(c.value, c.low, c.high)
+		v, lo, hi := figures(c.value, c.low, c.high, true)
 		if got := v + " " + lo + " " + hi; got != c.want {
 			t.Errorf("figures(%v, %v, %v) = %q, want %q", c.value, c.low, c.high, got, c.want)
 		}
+	}
+}
+
+// A difference has one place for all: it is not held by a factor.
+func TestFiguresOfADifference(t *testing.T) {
+	if v, lo, hi := figures(0.079, 0.019, 0.14, false); v+" "+lo+" "+hi != "0.08 0.02 0.14" {
+		t.Error(v, lo, hi)
 	}
 }
 
@@ -61,14 +68,14 @@ func TestFiguresKeepTheNumber(t *testing.T) {
 		x := math.Pow(10, value)
 		low := x * rapid.Float64Range(0.3, 0.9999).Draw(t, "low")
 		high := x * rapid.Float64Range(1.0001, 3).Draw(t, "high")
-		v, lo, hi := figures(x, low, high)
+		v, lo, hi := figures(x, low, high, rapid.Bool().Draw(t, "by factor"))
 		for i, s := range []string{v, lo, hi} {
 			want := []float64{x, low, high}[i]
 			got, err := strconv.ParseFloat(s, 64)
 			if err != nil {
 				t.Fatal(err)
 			}
-			if math.Abs(got-want) > (high-low)/2 && math.Abs(got-want) > 0.051*want {
+			if math.Abs(got-want) > (high-low)/2 && math.Abs(got-want) > 0.051*math.Abs(want) {
 				t.Fatalf("%v prints as %s beside %v to %v", want, s, low, high)
 			}
 			if digits := strings.Trim(strings.SplitN(s, "e", 2)[0], "-0."); len(digits) > most+1 {

@@ -241,7 +241,7 @@ func (p *page) steepest(mechanism, curve string) string {
 	if q == nil || !finite(float64(q.Value)) {
 		return "–"
 	}
-	v, _, _ := figures(float64(q.Value), float64(q.Low), float64(q.High))
+	v, _, _ := rowFigures(q)
 	if at := p.rows[key{mechanism, curve, "position", "n_H_max_at"}]; at != nil && finite(float64(at.Value)) {
 		v += " at " + strconv.FormatFloat(100*float64(at.Value), 'f', 0, 64) + " %"
 	}
@@ -255,7 +255,7 @@ func (p *page) hillReading(mechanism, curve string) string {
 	if q == nil || !finite(float64(q.Value)) {
 		return "–"
 	}
-	v, _, _ := figures(float64(q.Value), float64(q.Low), float64(q.High))
+	v, _, _ := rowFigures(q)
 	return strings.TrimRight(v+"  "+p.marks(q), " ")
 }
 
@@ -268,7 +268,7 @@ func stacked(rows []*saturation.QuantityRow) []string {
 		if q == nil {
 			continue
 		}
-		v, lo, hi := figures(float64(q.Value), float64(q.Low), float64(q.High))
+		v, lo, hi := rowFigures(q)
 		values[i] = v
 		if v == "" {
 			values[i] = "does not exist"
