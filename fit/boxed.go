@@ -43,27 +43,7 @@ func (b *boxedStep) solve(m, stride int, radius float64) {
 }
 
 // leaves returns the column whose bound the step meets first, −1 for none.
-func (b *boxedStep) leaves(m int) int {
-	first, least := -1, 1.0
-	for j, t := range b.t[:m] {
-		if b.stop[j] != 0 {
-			continue
-		}
-		var share float64
-		switch {
-		case t < b.low[j]:
-			share = b.low[j] / t
-		case t > b.high[j]:
-			share = b.high[j] / t
-		default:
-			continue
-		}
-		if first < 0 || share < least {
-			first, least = j, share
-		}
-	}
-	return first
-}
+func (b *boxedStep) leaves(m int) int { return meets(b.t[:m], b.low, b.high, b.stop) }
 
 func (b *boxedStep) inBox(m, stride int, radius float64) {
 	left := radius * radius
@@ -81,10 +61,9 @@ func (b *boxedStep) inBox(m, stride int, radius float64) {
 // again solves for the columns that are not settled.
 func (b *boxedStep) again(m, stride int, radius float64) {
 	c := b.rest
-	c.m, b.index = 0, b.index[:0]
-	c.n = m
-	copy(c.rhs[:m], b.z[:m])
-	c.rhs = c.rhs[:m]
+	c.reset(m)
+	b.index = b.index[:0]
+	copy(c.rhs, b.z[:m])
 	for j := 0; j < m; j++ {
 		if b.stop[j] == 0 {
 			continue

@@ -36,6 +36,11 @@ func newColumns(n, most int) *columns {
 	}
 }
 
+// reset empties c for columns of n rows, at most as many as it was made for.
+func (c *columns) reset(n int) {
+	c.n, c.m, c.rhs = n, 0, c.rhs[:n]
+}
+
 // next is the memory of the column that push will take in.
 func (c *columns) next() []float64 { return c.q[c.m*c.n : (c.m+1)*c.n] }
 

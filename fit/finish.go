@@ -70,8 +70,8 @@ func (r *Result) warn(format string, a ...any) {
 	r.Warnings = append(r.Warnings, fmt.Sprintf(format, a...))
 }
 
-// count says how many runs reached the minimum of r.
-func (r *Result) count(runs []run) {
+// count says how many runs reached the minimum of r, up to slack.
+func (r *Result) count(runs []run, slack float64) {
 	r.Evals = 0
 	for _, a := range runs {
 		if a.end == failed && a.evals == 0 {
@@ -79,11 +79,25 @@ func (r *Result) count(runs []run) {
 		}
 		r.Starts++
 		r.Evals += a.evals
-		if a.end != failed && same(a.obj, r.Objective) {
+		if a.end != failed && a.obj-r.Objective <= slack {
 			r.Agreeing++
 		}
 	}
 }
 
-// same says whether two objectives are those of one minimum.
-func same(a, b float64) bool { return a-b <= 1e-6*math.Abs(b) }
+// slack is by how much an objective may lie above that of a minimum and still
+// be called the same: 1e-6 of the sums of squares.
+func (s *solver) slack(obj float64) float64 {
+	if !s.joint {
+		return 1e-6 * math.Abs(obj)
+	}
+	return 1e-6 * sum(s.count)
+}
+
+func sum(v []float64) float64 {
+	var t float64
+	for _, x := range v {
+		t += x
+	}
+	return t
+}

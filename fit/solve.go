@@ -47,7 +47,7 @@ func Solve(ctx context.Context, p *Problem, set Settings) (*Result, error) {
 	s := newSolver(p, false)
 	end := s.finish(ctx, runs[best], set.MaxIter)
 	res := s.result(end)
-	res.count(runs)
+	res.count(runs, s.slack(res.Objective))
 	return res, nil
 }
 
