@@ -23,7 +23,10 @@ type fitted struct {
 }
 
 // slope is the interval of n_H at half saturation of one curve, at slopeLevel.
-type slope struct{ low, high float64 }
+type slope struct {
+	curve     string
+	low, high float64
+}
 
 // fitCandidate lays a candidate over the data and fits it.
 func (a *Analysis) fitCandidate(ctx context.Context, c *Candidate, s fit.Settings) *fitted {

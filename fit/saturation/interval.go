@@ -8,7 +8,8 @@ import (
 )
 
 // withInterval fills the row of one number: value, interval, and how firmly it is held.
-func (f *fitted) withInterval(ctx context.Context, w wanted, level float64) QuantityRow {
+func (f *fitted) withInterval(ctx context.Context, w wanted, pr *fit.Profiler) QuantityRow {
+	level := f.m.a.Settings.Level
 	row := w.row
 	row.Value, row.Low, row.High, row.Level = nan, nan, nan, nan
 	row.Interval, row.Held = "none", "neither"
@@ -32,10 +33,10 @@ func (f *fitted) withInterval(ctx context.Context, w wanted, level float64) Quan
 		row.Why = text("stopped before its interval was sought")
 		return row
 	}
-	if w.quick || f.m.a.Settings.Method == "covariance" {
+	if w.quick || pr == nil {
 		return f.covarianceRow(row, w, q, level)
 	}
-	return f.profileRow(ctx, row, w, level)
+	return profileRow(ctx, row, w, pr)
 }
 
 // finite is a number, or null.
@@ -59,8 +60,13 @@ func (f *fitted) covarianceRow(row QuantityRow, w wanted, q fit.Quantity, level 
 }
 
 // profileRow gives a number its profile-likelihood interval.
-func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, level float64) QuantityRow {
-	iv := f.profile(ctx, w, level)
+func profileRow(ctx context.Context, row QuantityRow, w wanted, pr *fit.Profiler) QuantityRow {
+	var iv fit.Interval
+	if w.index >= 0 {
+		iv = pr.Parameter(ctx, w.index)
+	} else {
+		iv = pr.Quantity(ctx, w.make())
+	}
 	row.Interval, row.Level = iv.Method, Real(iv.Level)
 	if iv.Why != "" && row.Why == nil {
 		row.Why = text(iv.Why)
@@ -78,6 +84,19 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, leve
 	}
 	row.Held = held(lowOpen || math.IsNaN(low), highOpen || math.IsNaN(high))
 	return row
+}
+
+// profiler is a workspace for profile intervals; nil where the study asks for
+// covariance intervals, or the fit has no answer to start from.
+func (f *fitted) profiler(level float64) *fit.Profiler {
+	if f.m.a.Settings.Method == "covariance" {
+		return nil
+	}
+	pr, err := fit.NewProfiler(f.problem, f.result, level)
+	if err != nil {
+		return nil
+	}
+	return pr
 }
 
 // held says which ends an interval has.
@@ -98,9 +117,4 @@ func ordered(a, b float64) (low, high float64) {
 		return b, a
 	}
 	return a, b
-}
-
-func (f *fitted) profile(ctx context.Context, w wanted, level float64) fit.Interval {
-	_, lo, hi := covarianceInterval(w.make(), f.result, f.critical(level))
-	return fit.Interval{Low: lo, High: hi, Level: level, Method: "covariance"}
 }

@@ -11,6 +11,7 @@ import (
 	"gonum.org/v1/gonum/stat/distuv"
 
 	"ligancy/fit"
+	"ligancy/mechanisms"
 )
 
 // Run fits every candidate, compares them, and says what the data support.
@@ -22,11 +23,13 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	a = a.withDefaults()
 	out := &Outcome{Defaults: a.defaults()}
 	fits := a.fitAll(ctx, rec)
+	rows := a.allQuantities(ctx, fits, rec)
 	order := rank(fits)
 	stand(fits, order)
 	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec}
 	d.decide(ctx)
-	a.report(ctx, out, fits, order, rec)
+	a.slopes(ctx, fits, order)
+	report(out, fits, rows)
 	out.Interrupted = ctx.Err() != nil
 	out.Verdict = a.verdict(out, fits, order)
 	return out, nil
@@ -83,11 +86,8 @@ func (a *Analysis) fitAll(ctx context.Context, rec Recorder) []*fitted {
 	return fits
 }
 
-// report fills the rows of the outcome.
-func (a *Analysis) report(ctx context.Context, out *Outcome, fits []*fitted, order []int, rec Recorder) {
-	for _, f := range fits {
-		out.Mechanisms = append(out.Mechanisms, f.row)
-	}
+// allQuantities finds the numbers of every fit.
+func (a *Analysis) allQuantities(ctx context.Context, fits []*fitted, rec Recorder) [][]QuantityRow {
 	rows := make([][]QuantityRow, len(fits))
 	for i, f := range fits {
 		if rec != nil {
@@ -95,7 +95,39 @@ func (a *Analysis) report(ctx context.Context, out *Outcome, fits []*fitted, ord
 		}
 		rows[i] = a.quantities(ctx, f)
 	}
+	return rows
+}
+
+// slopes finds the intervals of n_H at half saturation that decide whether it
+// may be called different from 1.
+func (a *Analysis) slopes(ctx context.Context, fits []*fitted, order []int) {
+	for _, i := range order {
+		f := fits[i]
+		if f.row.Standing == "out" || ctx.Err() != nil {
+			continue
+		}
+		pr, err := fit.NewProfiler(f.problem, f.result, slopeLevel)
+		if err != nil {
+			continue
+		}
+		for _, c := range f.m.curveCells() {
+			iv := pr.Quantity(ctx, f.m.measured(c, mechanisms.HillAtHalf)())
+			s := slope{curve: f.m.cells[c].label, low: iv.Low, high: iv.High}
+			if iv.LowOpen {
+				s.low = math.Inf(-1)
+			}
+			if iv.HighOpen {
+				s.high = math.Inf(1)
+			}
+			f.slopes = append(f.slopes, s)
+		}
+	}
+}
+
+// report fills the rows of the outcome.
+func report(out *Outcome, fits []*fitted, rows [][]QuantityRow) {
 	for i, f := range fits {
+		out.Mechanisms = append(out.Mechanisms, f.row)
 		out.Quantities = append(out.Quantities, rows[i]...)
 		if f.result == nil {
 			continue
@@ -107,27 +139,81 @@ func (a *Analysis) report(ctx context.Context, out *Outcome, fits []*fitted, ord
 }
 
 // quantities finds every number of one fit with its interval, side by side.
+// Where a profile meets a better minimum, the fit moves there and all is found again.
 func (a *Analysis) quantities(ctx context.Context, f *fitted) []QuantityRow {
 	if f.result == nil {
 		return nil
 	}
-	list := f.wantedRows()
-	rows := make([]QuantityRow, len(list), len(list)+len(f.m.cells))
-	var wg sync.WaitGroup
-	next := make(chan int)
-	for range min(a.Settings.Workers, len(list)) {
-		wg.Go(func() {
-			for i := range next {
-				rows[i] = f.withInterval(ctx, list[i], a.Settings.Level)
+	for range 3 {
+		list := f.wantedRows()
+		rows := make([]QuantityRow, len(list), len(list)+len(f.m.cells))
+		better := a.sideBySide(len(list), func() worker {
+			pr := f.profiler(a.Settings.Level)
+			return worker{
+				do: func(i int) { rows[i] = f.withInterval(ctx, list[i], pr) },
+				better: func() []float64 {
+					if pr == nil {
+						return nil
+					}
+					return pr.Better()
+				},
 			}
 		})
+		if !f.moveTo(ctx, better) {
+			return append(rows, f.readings(ctx)...)
+		}
 	}
-	for i := range list {
+	return nil
+}
+
+// worker is one goroutine's share of the intervals.
+type worker struct {
+	do     func(i int)
+	better func() []float64
+}
+
+// sideBySide runs n tasks over the workers and returns the better minima that
+// they met.
+func (a *Analysis) sideBySide(n int, start func() worker) [][]float64 {
+	workers := min(a.Settings.Workers, n)
+	better := make([][]float64, workers)
+	var wg sync.WaitGroup
+	next := make(chan int)
+	for k := range workers {
+		wg.Go(func() {
+			w := start()
+			for i := range next {
+				w.do(i)
+			}
+			better[k] = w.better()
+		})
+	}
+	for i := range n {
 		next <- i
 	}
 	close(next)
 	wg.Wait()
-	return append(rows, f.readings(ctx)...)
+	return better
+}
+
+// moveTo refits from better minima and says whether the fit moved.
+func (f *fitted) moveTo(ctx context.Context, better [][]float64) bool {
+	moved := false
+	for _, theta := range better {
+		if theta == nil || ctx.Err() != nil {
+			continue
+		}
+		p := *f.problem
+		p.Starts = [][]float64{theta}
+		r, err := fit.Solve(ctx, &p, fit.Settings{Starts: 1, Workers: 1})
+		if err == nil && r != nil && r.Objective < f.result.Objective {
+			r.Starts, r.Agreeing = f.result.Starts, 1
+			f.result = r
+			f.describe()
+			moved = true
+		}
+	}
+	return moved
 }
 
 // wantedRows lists all numbers of a fit in the order of results: constants,
