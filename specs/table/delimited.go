@@ -1,6 +1,7 @@
 package table
 
 import (
+	"bytes"
 	"encoding/csv"
 	"errors"
 	"fmt"
@@ -24,19 +25,23 @@ type delimited struct {
 
 // readDelimited reads comma-, semicolon- or tab-separated text.
 func readDelimited(name string, data []byte) (*Table, diag.List) {
-	text, bom, complaints := decode(name, data)
+	if len(bytes.TrimSpace(bytes.TrimPrefix(data, []byte("\ufeff")))) == 0 {
+		return nil, whole(name, "empty-table", name+" is empty",
+			diag.Remedy{Say: "Write a first line that names the columns, as", Write: "conc_uM,response"})
+	}
+	text, marked, complaints := diag.Decode(name, data, MaxLine)
 	if complaints != nil {
 		return nil, complaints
 	}
-	d := &delimited{Table: &Table{Name: name, Text: diag.Text{Name: name, Lines: strings.Split(text, "\n")}}, next: 1}
+	d := &delimited{Table: &Table{Name: name, Text: text}, next: 1}
 	d.separator = separator(name, d.Text.Lines)
-	if bom {
+	if marked {
 		d.note("its byte-order mark was passed over")
 	}
 	if d.separator == ';' {
 		d.note("its columns are set apart by semicolons")
 	}
-	d.records(text)
+	d.records(strings.Join(text.Lines, "\n"))
 	if d.blank > 0 {
 		d.note(count(d.blank, "row") + " without any text passed over")
 	}

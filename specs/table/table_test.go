@@ -217,20 +217,20 @@ func TestComplaints(t *testing.T) {
       left_out: COLUMN   under columns.
 `},
 		{"UTF-16", "\xff\xfex\x00,\x00y\x00\n\x00", `t.csv   t.csv is saved as UTF-16
-   Save the table again as CSV with the encoding UTF-8.
+   Save the file again as plain text with the encoding UTF-8.
 `},
 		{"UTF-16 without a mark", "x\x00,\x00y\x00\n\x001\x00,\x002\x00\n\x00", `t.csv   t.csv is saved as UTF-16
-   Save the table again as CSV with the encoding UTF-8.
+   Save the file again as plain text with the encoding UTF-8.
 `},
 		{"Latin-1", "x,y\n1,2\n3,\xb5\n", `t.csv:3:3   byte 0xB5 is not UTF-8
      3 | 3,�
        |   ‾
-   Save the table again as CSV with the encoding UTF-8.
+   Save the file again as plain text with the encoding UTF-8.
 `},
 		{"binary", "x,y\n\x01\x02\x00\x03", `t.csv:2:3   t.csv is not a text file: it holds a zero byte
      2 | ␁␂␀␃
        |   ‾
-   Export the table as CSV or TSV from the program that wrote it.
+   Export it as plain text from the program that wrote it.
 `},
 		{"workbook", "PK\x03\x04...", `t.csv   t.csv is a spreadsheet workbook, which cannot be read yet
    Save the sheet as CSV (UTF-8) beside the study, and write   file: t.csv
