@@ -156,13 +156,7 @@ func (m *model) edgeWords(r *fit.Result) *string {
 		if p.curve != "all" {
 			words += " (" + p.curve + ")"
 		}
-		meaning := ""
-		if p.kind == ofConstant {
-			c := m.consts[p.constant]
-			if meaning = c.EdgeLow; e == fit.OnHigh {
-				meaning = c.EdgeHigh
-			}
-		}
+		meaning, _ := m.edgeMeaning(i, e)
 		words += " on its " + map[fit.Edge]string{fit.OnLow: "lower", fit.OnHigh: "upper"}[e] + " bound"
 		if meaning != "" {
 			words += ": " + meaning

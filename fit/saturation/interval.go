@@ -5,6 +5,7 @@ import (
 	"math"
 
 	"ligancy/fit"
+	"ligancy/mechanisms"
 )
 
 // withInterval fills the row of one number: value, interval, and how firmly it is held.
@@ -36,7 +37,7 @@ func (f *fitted) withInterval(ctx context.Context, w wanted, pr *fit.Profiler) Q
 	if w.quick || pr == nil {
 		return f.covarianceRow(row, w, q, level)
 	}
-	return profileRow(ctx, row, w, pr)
+	return f.profileRow(ctx, row, w, pr)
 }
 
 // finite is a number, or null.
@@ -60,7 +61,7 @@ func (f *fitted) covarianceRow(row QuantityRow, w wanted, q fit.Quantity, level 
 }
 
 // profileRow gives a number its profile-likelihood interval.
-func profileRow(ctx context.Context, row QuantityRow, w wanted, pr *fit.Profiler) QuantityRow {
+func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *fit.Profiler) QuantityRow {
 	var iv fit.Interval
 	if w.index >= 0 {
 		iv = pr.Parameter(ctx, w.index)
@@ -68,22 +69,98 @@ func profileRow(ctx context.Context, row QuantityRow, w wanted, pr *fit.Profiler
 		iv = pr.Quantity(ctx, w.make())
 	}
 	row.Interval, row.Level = iv.Method, Real(iv.Level)
-	if iv.Why != "" && row.Why == nil {
-		row.Why = text(iv.Why)
+	low := endOf{value: w.back(iv.Low), open: iv.LowOpen, edge: iv.LowEdge, tried: w.back(iv.Low), side: "lower"}
+	high := endOf{value: w.back(iv.High), open: iv.HighOpen, edge: iv.HighEdge, tried: w.back(iv.High), side: "upper"}
+	if w.index >= 0 {
+		low.meaning, low.linear = f.m.edgeMeaning(w.index, fit.OnLow)
+		high.meaning, high.linear = f.m.edgeMeaning(w.index, fit.OnHigh)
 	}
-	low, high := w.back(iv.Low), w.back(iv.High)
-	lowOpen, highOpen := iv.LowOpen, iv.HighOpen
-	if low > high {
-		low, high, lowOpen, highOpen = high, low, highOpen, lowOpen
+	if low.value > high.value { // the printed scale runs the other way
+		low, high = high, low
+		low.side, high.side = "lower", "upper"
 	}
-	if !lowOpen {
-		row.Low = finite(low)
+	row.Low, row.High = low.number(), high.number()
+	row.Held = held(low.loose(), high.loose())
+	if why := joinWhy(low.why(), high.why()); why != "" && row.Why == nil {
+		row.Why = text(why)
 	}
-	if !highOpen {
-		row.High = finite(high)
-	}
-	row.Held = held(lowOpen || math.IsNaN(low), highOpen || math.IsNaN(high))
 	return row
+}
+
+// endOf is one end of an interval on the printed scale.
+type endOf struct {
+	value, tried float64
+	open, edge   bool
+	linear       bool // the bound is a value like any other (zero)
+	side         string
+	meaning      string // of the bound
+}
+
+// loose says whether the end does not hold the number.
+func (e endOf) loose() bool { return e.open || e.edge || math.IsNaN(e.value) }
+
+// number is the end as results give it: null where there is none.
+func (e endOf) number() Real {
+	if e.open || e.edge && !e.linear {
+		return nan
+	}
+	return finite(e.value)
+}
+
+// why says why the end is missing.
+func (e endOf) why() string {
+	switch {
+	case e.edge && e.meaning != "":
+		return "no " + e.side + " end: its bound is reached (" + e.meaning + ")"
+	case e.edge:
+		return "no " + e.side + " end: its bound, " + figures(e.value, 3) + ", is reached"
+	case e.open && !math.IsNaN(e.tried) && !math.IsInf(e.tried, 0):
+		return "no " + e.side + " end: compatible as far as " + figures(e.tried, 2)
+	case e.open:
+		return "no " + e.side + " end"
+	}
+	return ""
+}
+
+func joinWhy(a, b string) string {
+	if a == "" || b == "" {
+		return a + b
+	}
+	return a + "; " + b
+}
+
+// edgeMeaning says what a parameter's bound means, and whether it is a value
+// like any other on the fitted scale.
+func (m *model) edgeMeaning(i int, e fit.Edge) (meaning string, linear bool) {
+	p := &m.params[i]
+	if p.kind != ofConstant {
+		return "", p.kind == ofResponse
+	}
+	c := m.consts[p.constant]
+	if e == fit.OnHigh {
+		return c.EdgeHigh, c.Scale == mechanisms.Linear
+	}
+	return c.EdgeLow, c.Scale == mechanisms.Linear
+}
+
+// held says which ends an interval has.
+func held(lowLoose, highLoose bool) string {
+	switch {
+	case lowLoose && highLoose:
+		return "neither"
+	case lowLoose:
+		return "high end only"
+	case highLoose:
+		return "low end only"
+	}
+	return "both"
+}
+
+func ordered(a, b float64) (low, high float64) {
+	if a > b {
+		return b, a
+	}
+	return a, b
 }
 
 // profiler is a workspace for profile intervals; nil where the study asks for
