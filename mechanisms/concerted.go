@@ -177,9 +177,9 @@ func (c *concertedCurve) At(lnx float64, p *Point) {
 	c.polynomialCurve.At(lnx, p)
 }
 
-func (c *concertedCurve) jet(lnx float64, j *jet, grad bool) {
+func (c *concertedCurve) jet(lnx float64, j *jet, to depth) {
 	c.polynomial()
-	c.polynomialCurve.jet(lnx, j, grad)
+	c.polynomialCurve.jet(lnx, j, to)
 }
 
 func (c *concertedCurve) endSlopes() (low, high float64) { return c.polynomial().endSlopes() }

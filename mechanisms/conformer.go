@@ -1,6 +1,9 @@
 package mechanisms
 
-import "math"
+import (
+	"fmt"
+	"math"
+)
 
 // blend is a linear combination of constants on their logarithmic scale:
 // ln K_T = ln K_R − ln c.
@@ -99,6 +102,15 @@ func newConformers(list []conformer, n, k int, watched bool) *conformers {
 		m.fold[c] = newFolding(list[c].boundSites(), k)
 	}
 	return m
+}
+
+// detail names the states of a curve.
+func (m *conformers) detail() *detail {
+	names := make([]string, len(m.of))
+	for s, c := range m.of {
+		names[s] = fmt.Sprintf("%s, %d bound", m.list[c].name, m.ligation[s])
+	}
+	return &detail{&m.ensemble, names}
 }
 
 func (m *conformers) bind(c *coefficients, theta []float64, env Environment) {

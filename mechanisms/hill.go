@@ -72,14 +72,14 @@ func logistic(u float64) (y, e float64) {
 }
 
 func (c *hillCurve) At(lnx float64, p *Point) {
-	c.jet(lnx, &c.jets, true)
+	c.jet(lnx, &c.jets, whole)
 	c.jets.point(p, c.h, c.h)
 	p.NH, p.DNH, p.D2NH = c.h, 0, 0
 	p.GradNH[0], p.GradNH[1] = 0, c.h
 	clear(p.GradDNH)
 }
 
-func (c *hillCurve) jet(lnx float64, j *jet, grad bool) {
+func (c *hillCurve) jet(lnx float64, j *jet, to depth) {
 	j.zero()
 	u := c.h * (lnx - c.lnK)
 	j.y, j.e = logistic(u)
@@ -91,7 +91,7 @@ func (c *hillCurve) jet(lnx float64, j *jet, grad bool) {
 	s := j.e - j.y
 	h, y2, y3 := c.h, v*s, v*(s*s-2*v)
 	j.y1, j.y2, j.y3 = h*v, h*h*y2, h*h*h*y3
-	if grad {
+	if to > values {
 		j.g[0], j.g[1] = -h*v, u*v
 		j.g1[0], j.g1[1] = -h*h*y2, h*(v+u*y2)
 		j.g2[0], j.g2[1] = -h*h*h*y3, h*h*(2*y2+u*y3)

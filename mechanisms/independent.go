@@ -143,6 +143,7 @@ type independentCurve struct {
 	whole       *conformers
 	coefs       coefficients
 	multiplied  bool
+	sum         *average // over the multiplied polynomial; made when asked for
 }
 
 // Bind settles the constants.
@@ -176,11 +177,11 @@ func (c *independentCurve) Saturation(dst, lnx []float64, grad *mat.Dense) {
 
 // At writes saturation and Hill coefficient at one ln x.
 func (c *independentCurve) At(lnx float64, p *Point) {
-	c.jet(lnx, &c.jets, true)
+	c.jet(lnx, &c.jets, whole)
 	c.jets.point(p, 1, 1)
 }
 
-func (c *independentCurve) jet(lnx float64, j *jet, grad bool) {
+func (c *independentCurve) jet(lnx float64, j *jet, to depth) {
 	j.zero()
 	for i, lnK := range c.lnKd {
 		y, e := logistic(lnx - lnK)
@@ -192,7 +193,7 @@ func (c *independentCurve) jet(lnx float64, j *jet, grad bool) {
 		j.y1 += v1
 		j.y2 += v2
 		j.y3 += v3
-		if grad {
+		if to > values {
 			c.m.lnK[i].addTo(j.g, -v1)
 			c.m.lnK[i].addTo(j.g1, -v2)
 			c.m.lnK[i].addTo(j.g2, -v3)
@@ -209,6 +210,15 @@ func (c *independentCurve) turns() (first, last float64) {
 		first, last = math.Min(first, l), math.Max(last, l)
 	}
 	return first, last
+}
+
+// terms is the average over the multiplied polynomial.
+func (c *independentCurve) terms() *average {
+	c.polynomial()
+	if c.sum == nil {
+		c.sum = newAverage(&c.coefs, filled(c.coefs.n), nil)
+	}
+	return c.sum
 }
 
 // polynomial multiplies the classes out.

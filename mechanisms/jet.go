@@ -2,6 +2,15 @@ package mechanisms
 
 import "math"
 
+// depth says how much of a jet is wanted.
+type depth uint8
+
+const (
+	values    depth = iota // y and its derivatives in ln x, no gradients
+	saturated              // and the gradient of y
+	whole                  // and the gradients of the derivatives
+)
+
 // jet is a curve at one ln x as it adds and multiplies: the response y between
 // 0 and 1, its complement, three derivatives in ln x, and their gradients.
 type jet struct {
@@ -82,8 +91,8 @@ func sized(s []float64, k int) []float64 {
 // smooth is a curve of this package: it has jets.
 type smooth interface {
 	Curve
-	// jet writes the curve at ln x, gradients only where grad is set.
-	jet(lnx float64, j *jet, grad bool)
+	// jet writes the curve at ln x as deep as is asked.
+	jet(lnx float64, j *jet, to depth)
 	// endSlopes are the limits of n_H at x → 0 and x → ∞.
 	endSlopes() (low, high float64)
 	// turns are the ln x between which the curve does what it does.

@@ -176,7 +176,7 @@ func (p *probe) at(lnx float64) (l, l1, l2, l3 float64) {
 		p.c.At(lnx, &p.pt)
 		return math.Log(p.pt.Y / p.pt.Empty), p.pt.NH, p.pt.DNH, p.pt.D2NH
 	}
-	p.s.jet(lnx, &p.j, false)
+	p.s.jet(lnx, &p.j, values)
 	p.j.point(&p.pt, math.NaN(), math.NaN())
 	return math.Log(p.j.y / p.j.e), p.pt.NH, p.pt.DNH, p.pt.D2NH
 }

@@ -29,6 +29,11 @@ type Constant struct {
 	Scale     Scale
 	Dimension int // power of the ligand's unit (of the effector's, if Ligand is set): K_R 1, L 0, β_i −i
 
+	// Protomers is the power of the unit of Environment.Protomers: −1 for an
+	// association constant of two species. Reduced units then are the constant
+	// divided by (protomers)^Protomers.
+	Protomers int
+
 	// Low and High bound the constant in reduced units: the constant divided by
 	// (ligand at half response)^Dimension. They are wide; an optimum on one of
 	// them is a result (exclusive binding, β = 0), named by Edge.
@@ -54,6 +59,23 @@ func (c Constant) Key() string {
 		key = c.Site + "." + key
 	}
 	return key
+}
+
+// Find is the index of the constant of that key in a list, or of the only one
+// whose symbol is key; −1 where there is none.
+func Find(constants []Constant, key string) int {
+	found := -1
+	for i, c := range constants {
+		switch {
+		case c.Key() == key:
+			return i
+		case c.Name == key && found == -1:
+			found = i
+		case c.Name == key:
+			found = -2
+		}
+	}
+	return max(found, -1)
 }
 
 // Environment is what holds for one curve beside the varied ligand.

@@ -2,6 +2,7 @@ package mechanisms
 
 import (
 	"fmt"
+	"maps"
 	"math"
 	"slices"
 )
@@ -16,8 +17,9 @@ type mwc struct {
 	effectors []string
 	list      []conformer
 	view      *view
-	closed    bool // one class of sites: the closed form holds
-	exclusive bool // c = 0
+	closed    bool     // one class of sites: the closed form holds
+	exclusive bool     // c = 0
+	zeros     []string // keys of those c
 }
 
 func buildMWC(d Definition) (Mechanism, error) {
@@ -34,8 +36,8 @@ func buildMWC(d Definition) (Mechanism, error) {
 		return nil, err
 	}
 	m := settleMWC(d)
-	p.given(withoutZeroC(d), m.constants)
-	p.identifiable(d, m)
+	p.given(m.without(d), m.constants)
+	p.countConstants(d, m.constants, m.sites, len(m.effectors) > 0 || m.view != nil)
 	if err := p.err(); err != nil {
 		return nil, err
 	}
@@ -59,20 +61,16 @@ func zeroC(d Definition, class string) bool {
 	return ok && g.settled() && g.number() == 0
 }
 
-// withoutZeroC is the definition without those c that are not constants.
-func withoutZeroC(d Definition) Definition {
-	given := map[string]Given{}
-	for key, g := range d.Constants {
-		given[key] = g
+// without is the definition less what it says of those c that are zero.
+func (m *mwc) without(d Definition) Definition {
+	d.Constants = maps.Clone(d.Constants)
+	for _, key := range m.zeros {
+		delete(d.Constants, key)
 	}
-	for _, class := range concertedClasses(d) {
-		if zeroC(d, class.Name) {
-			delete(given, Constant{Name: "c", Site: class.Name}.Key())
-		}
-	}
-	d.Constants = given
 	return d
 }
+
+func (m *mwc) heldAtZero() []string { return m.zeros }
 
 // concertedClasses is the classes of sites; a single one has no name.
 func concertedClasses(d Definition) []Count {
@@ -80,31 +78,6 @@ func concertedClasses(d Definition) []Count {
 		return d.SiteClasses
 	}
 	return []Count{{Sites: d.Sites}}
-}
-
-// identifiable asks for constants to be fixed where the curve cannot hold all.
-func (p *problems) identifiable(d Definition, m *mwc) {
-	if d.Differs || len(m.effectors) > 0 || m.view != nil {
-		return
-	}
-	free := 0
-	for _, c := range m.constants {
-		if !d.Constants[c.Key()].settled() {
-			free++
-		}
-	}
-	if free > m.sites {
-		p.add("constants", fmt.Sprintf("one curve of %s holds at most %d constants, this mechanism has %d free ones "+
-			"(Middendorf & Aldrich 2017)", sitesInWords(m.sites), m.sites, free),
-			fmt.Sprintf("constants: {c: {fixed: 0.01}}, or another constant fixed, so that %d remain free", m.sites))
-	}
-}
-
-func sitesInWords(n int) string {
-	if n == 1 {
-		return "one site"
-	}
-	return fmt.Sprintf("%d sites", n)
 }
 
 // settleMWC lays out constants and conformers of a sound definition.
@@ -117,6 +90,7 @@ func settleMWC(d Definition) *mwc {
 		rSet, tSet := siteSet{sites: class.Sites, binds: true}, siteSet{sites: class.Sites}
 		if zeroC(d, class.Name) {
 			m.exclusive = true
+			m.zeros = append(m.zeros, affinityRatio(class.Name).Key())
 			rSet.lnK = blend{{m.constant(concertedK(class.Name)), 1}}
 		} else {
 			c := m.constant(affinityRatio(class.Name))
@@ -192,6 +166,7 @@ func (m *mwc) Curve() Curve {
 	k := len(m.constants)
 	model := newConformers(m.list, m.sites, k, m.view != nil)
 	poly := newPolynomialCurve(m.sites, k, model)
+	poly.detail = model.detail()
 	if !m.closed {
 		return m.view.watch(poly, &model.ensemble, model.of)
 	}

@@ -31,7 +31,8 @@ type average struct {
 	q      []float64 // k×(2n+1)
 
 	lnW, p, eps []float64 // n+1, n+1, (n+1)×k: terms of one point
-	dMean, dCov []float64 // k
+	lnP         float64   // ln Σ B_i xⁱ
+	dMean, dCov []float64 // k: ∂ln P/∂θ and Cov(i, ∂ln B_i/∂θ)
 	jets        jet
 }
 
@@ -201,7 +202,7 @@ func descendGrad(row, u, v, q []float64, w int, z float64) float64 {
 // pointwise is curve without a common scale.
 func (a *average) pointwise(dst, lnx []float64, grad *mat.Dense) {
 	for r, lx := range lnx {
-		a.jet(lx, &a.jets, grad != nil)
+		a.jet(lx, &a.jets, depthFor(grad))
 		dst[r] = a.jets.y
 		if grad != nil {
 			copy(grad.RawRowView(r), a.jets.g)
@@ -209,7 +210,14 @@ func (a *average) pointwise(dst, lnx []float64, grad *mat.Dense) {
 	}
 }
 
-// terms writes the populations p_i at ln x and ε_ik = p_i ∂ln B_i/∂θ_k.
+func depthFor(grad *mat.Dense) depth {
+	if grad == nil {
+		return values
+	}
+	return saturated
+}
+
+// terms writes ln P, the populations p_i at ln x and ε_ik = p_i ∂ln B_i/∂θ_k.
 func (a *average) terms(lnx float64, grad bool) {
 	if math.IsInf(lnx, 0) {
 		a.limit(lnx < 0)
@@ -226,6 +234,7 @@ func (a *average) terms(lnx float64, grad bool) {
 		a.p[i] = math.Exp(l - top)
 		z += a.p[i]
 	}
+	a.lnP = top + math.Log(z)
 	for i := range a.p {
 		a.p[i] /= z
 		if !grad {
@@ -242,7 +251,7 @@ func (a *average) terms(lnx float64, grad bool) {
 	}
 }
 
-// limit is terms at x = 0 or x → ∞.
+// limit is terms at x = 0 or x → ∞; there ln P leaves out its power of x.
 func (a *average) limit(zero bool) {
 	clear(a.p)
 	clear(a.eps)
@@ -250,7 +259,7 @@ func (a *average) limit(zero bool) {
 	if !zero {
 		i = a.c.highest()
 	}
-	a.p[i] = 1
+	a.p[i], a.lnP = 1, a.c.lnB[i]
 	copy(a.eps[i*a.c.k:(i+1)*a.c.k], a.c.row(i))
 }
 
@@ -261,8 +270,8 @@ func (a *average) limit(zero bool) {
 //
 // and in the gradients each π brings ∂ln π = D_i + D_j − 2⟨D⟩, with
 // ∂ε = −2 Cov(i, D).
-func (a *average) jet(lnx float64, j *jet, grad bool) {
-	a.terms(lnx, grad)
+func (a *average) jet(lnx float64, j *jet, to depth) {
+	a.terms(lnx, to > values)
 	j.zero()
 	var mean, variance float64
 	n := a.c.n
@@ -283,8 +292,34 @@ func (a *average) jet(lnx float64, j *jet, grad bool) {
 			j.y3 += w * (e*e - 2*variance)
 		}
 	}
-	if grad {
+	switch to {
+	case saturated:
+		a.gradient(j)
+	case whole:
 		a.gradients(j, mean)
+	}
+}
+
+// gradient adds the gradient of ⟨o⟩ alone, and writes ∂ln P; terms has been written.
+func (a *average) gradient(j *jet) {
+	n, k := a.c.n, a.c.k
+	clear(a.dMean)
+	for i := 0; i <= n; i++ {
+		ei := a.eps[i*k : (i+1)*k]
+		for m, e := range ei {
+			a.dMean[m] += e
+		}
+		for l := i + 1; l <= n; l++ {
+			o, pi, pl := a.o[l]-a.o[i], a.p[i], a.p[l]
+			for m, e := range a.eps[l*k : (l+1)*k] {
+				j.g[m] += o * (pi*e - pl*ei[m])
+			}
+		}
+		if a.do != nil {
+			for m, d := range a.do[i*k : (i+1)*k] {
+				j.g[m] += a.p[i] * d
+			}
+		}
 	}
 }
 
@@ -350,16 +385,22 @@ type polynomialCurve struct {
 	coefficients
 	binder binder
 	sat    *average
+	detail *detail // nil where the ligations are all there is to tell
 }
 
 func newPolynomialCurve(n, k int, b binder) *polynomialCurve {
 	p := &polynomialCurve{coefficients: newCoefficients(n, k), binder: b}
+	p.sat = newAverage(&p.coefficients, filled(n), nil)
+	return p
+}
+
+// filled is the share of sites filled at each ligation, i/n.
+func filled(n int) []float64 {
 	o := make([]float64, n+1)
 	for i := range o {
 		o[i] = float64(i) / float64(n)
 	}
-	p.sat = newAverage(&p.coefficients, o, nil)
-	return p
+	return o
 }
 
 // Bind settles the polynomial at θ.
@@ -375,12 +416,12 @@ func (p *polynomialCurve) Saturation(dst, lnx []float64, grad *mat.Dense) {
 
 // At writes saturation and Hill coefficient at one ln x.
 func (p *polynomialCurve) At(lnx float64, pt *Point) {
-	p.sat.jet(lnx, &p.sat.jets, true)
+	p.sat.jet(lnx, &p.sat.jets, whole)
 	low, high := p.endSlopes()
 	p.sat.jets.point(pt, low, high)
 }
 
-func (p *polynomialCurve) jet(lnx float64, j *jet, grad bool) { p.sat.jet(lnx, j, grad) }
+func (p *polynomialCurve) jet(lnx float64, j *jet, to depth) { p.sat.jet(lnx, j, to) }
 
 func (p *polynomialCurve) ceiling() float64 { return float64(p.highest()) / float64(p.n) }
 
@@ -389,5 +430,6 @@ func (p *polynomialCurve) polynomial() *coefficients { return &p.coefficients }
 // factored is a curve with a binding polynomial.
 type factored interface {
 	smooth
+	Populated
 	polynomial() *coefficients
 }

@@ -52,7 +52,7 @@ func (p *problems) unread(d Definition, reads ...string) {
 // given complains of what is said of constants that do not exist, or cannot be.
 func (p *problems) given(d Definition, constants []Constant) {
 	for _, key := range sortedKeys(d.Constants) {
-		at := slices.IndexFunc(constants, func(c Constant) bool { return c.Key() == key })
+		at := Find(constants, key)
 		if at < 0 {
 			p.add("constants."+key, "this mechanism has no such constant", "one of "+keysOf(constants))
 			continue
@@ -126,4 +126,44 @@ func (g Given) number() float64 {
 // said says whether anything is said of a constant.
 func (g Given) said() bool {
 	return g.settled() || g.Start != nil || g.Low != nil || g.High != nil
+}
+
+// countConstants asks for constants to be fixed where one curve cannot hold them
+// all: n sites hold n (Middendorf & Aldrich 2017). Effectors, a response of its
+// own, or constants that differ between curves bring more than one curve.
+func (p *problems) countConstants(d Definition, constants []Constant, sites int, more bool) {
+	if d.Differs || more {
+		return
+	}
+	free, loose := 0, ""
+	for i, c := range constants {
+		if !d.fixes(constants, i) {
+			free++
+			if loose != "c" { // else the last one: as good as any
+				loose = c.Key()
+			}
+		}
+	}
+	if free > sites {
+		p.add("constants", fmt.Sprintf("one curve of %s holds at most %d constants, this mechanism has %d free ones "+
+			"(Middendorf & Aldrich 2017)", sitesInWords(sites), sites, free),
+			fmt.Sprintf("constants: {%s: {fixed: …}}, so that at most %d remain free", loose, sites))
+	}
+}
+
+// fixes says whether constant i is held at a number.
+func (d Definition) fixes(constants []Constant, i int) bool {
+	for key, g := range d.Constants {
+		if g.settled() && Find(constants, key) == i {
+			return true
+		}
+	}
+	return false
+}
+
+func sitesInWords(n int) string {
+	if n == 1 {
+		return "one site"
+	}
+	return fmt.Sprintf("%d sites", n)
 }

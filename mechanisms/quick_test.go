@@ -18,6 +18,13 @@ func TestQuick(t *testing.T) {
 		{"mwc", Definition{Sites: 4, Sees: []Weight{{"R", 1, false}}}},
 		{"sequential", Definition{Contacts: "square"}}, {"sequential", Definition{Contacts: "ring", Sites: 16}},
 		{"independent", Definition{Classes: []Count{{"a", 2}, {"b", 3}}}},
+		{"mixture", Definition{Parts: []Part{{Name: "a", Sites: 1}, {Name: "b", Sites: 1}}}},
+		{"mixture", Definition{Parts: []Part{{Name: "a", Sites: 1}, {Name: "b", Family: "mwc", Definition: &Definition{Sites: 4, Effectors: []Effector{{"x", "T", false}}}}, {Name: "h", Family: "hill"}, {Name: "c", Sites: 2}}}},
+		{"assembly", Definition{Small: &Part{Sites: 2}, Large: &Part{Family: "adair", Definition: &Definition{Sites: 4}}}},
+		{"assembly", Definition{Small: &Part{Sites: 1}, Large: &Part{Family: "mwc", Definition: &Definition{Sites: 3, Effectors: []Effector{{"x", "T", false}}}}}},
+		{"states", Definition{States: []State{{Name: "E"}, {Name: "ES", Ligands: 1, Ways: 2, Constants: map[string]float64{"K": -1}}, {Name: "EI", Effectors: map[string]int{"I": 1}, Constants: map[string]float64{"KI": -1}}, {Name: "ES2", Ligands: 2, Constants: map[string]float64{"K": -2, "a": 1}}},
+			Turnover: []Weight{{"ES", 1, false}, {"ES2", 0, true}}}},
+		{"conformations", Definition{Conformations: []Conformation{{Name: "A", Sites: 2, K: "KA", Ligands: map[string]string{"I": "KI"}}, {Name: "B", Sites: 3, K: "KB", Weight: "L"}, {Name: "h", Like: "A", Weight: "r"}, {Name: "n", Weight: "q"}}, Sees: []Weight{{"A", 1, false}, {"B", .5, false}, {"h", 0, true}}}},
 	} {
 		f, _ := Lookup(tc.fam)
 		m, err := f.Build(tc.d)
@@ -32,7 +39,7 @@ func TestQuick(t *testing.T) {
 				th[i] = -1.3
 			}
 		}
-		env := Environment{Effectors: []float64{0.7, 0.3}[:len(m.Effectors())]}
+		env := Environment{Effectors: []float64{0.7, 0.3}[:len(m.Effectors())], Protomers: 2}
 		lnx := []float64{-3, -1, 0.2, 1, 3}
 		check := func(c Curve) {
 			y := make([]float64, 5)
@@ -53,17 +60,17 @@ func TestQuick(t *testing.T) {
 				c.Saturation(b, lnx, nil)
 				c.At(lnx[1], &pb)
 				for r := range y {
-					if d := (a[r]-b[r])/2/h - g.At(r, j); math.Abs(d) > 1e-9 {
+					if d := (a[r]-b[r])/2/h - g.At(r, j); !(math.Abs(d) < 1e-9) {
 						t.Errorf("%s %v grad %d,%d: %g vs %g", tc.fam, tc.d, r, j, g.At(r, j), (a[r]-b[r])/2/h)
 					}
 				}
 				c.Bind(th, env)
 				var p Point
 				c.At(lnx[1], &p)
-				if d := (pa.NH-pb.NH)/2/h - p.GradNH[j]; math.Abs(d) > 1e-7 {
+				if d := (pa.NH-pb.NH)/2/h - p.GradNH[j]; !(math.Abs(d) < 1e-7) {
 					t.Errorf("%s gradNH %d: %g %g", tc.fam, j, (pa.NH-pb.NH)/2/h, p.GradNH[j])
 				}
-				if d := (pa.DNH-pb.DNH)/2/h - p.GradDNH[j]; math.Abs(d) > 1e-7 {
+				if d := (pa.DNH-pb.DNH)/2/h - p.GradDNH[j]; !(math.Abs(d) < 1e-7) {
 					t.Errorf("%s gradDNH %d: %g %g", tc.fam, j, (pa.DNH-pb.DNH)/2/h, p.GradDNH[j])
 				}
 				if _, ok := c.(*watch); !ok && math.Abs(p.Y-y[1]) > 1e-14 {
@@ -71,10 +78,10 @@ func TestQuick(t *testing.T) {
 				}
 				c.At(lnx[1]+h, &pa)
 				c.At(lnx[1]-h, &pb)
-				if d := (pa.DNH-pb.DNH)/2/h - p.D2NH; math.Abs(d) > 1e-7 {
+				if d := (pa.DNH-pb.DNH)/2/h - p.D2NH; !(math.Abs(d) < 1e-7) {
 					t.Errorf("%s D2NH: %g %g", tc.fam, (pa.DNH-pb.DNH)/2/h, p.D2NH)
 				}
-				if d := (pa.NH-pb.NH)/2/h - p.DNH; math.Abs(d) > 1e-7 {
+				if d := (pa.NH-pb.NH)/2/h - p.DNH; !(math.Abs(d) < 1e-7) {
 					t.Errorf("%s DNH: %g %g", tc.fam, (pa.NH-pb.NH)/2/h, p.DNH)
 				}
 			}

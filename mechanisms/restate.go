@@ -88,3 +88,112 @@ func (m adair) product(theta []float64, a, b int) Restatement {
 	}
 	return r
 }
+
+// Restate gives the constants of the parts as they are quoted, and the shares.
+func (m *mixture) Restate(theta []float64) []Restatement {
+	var out []Restatement
+	for i := range m.parts {
+		out = append(out, m.parts[i].restate(theta, len(m.constants))...)
+	}
+	if m.fixed != nil {
+		return out
+	}
+	n := len(theta) - m.shares
+	f, df := make([]float64, len(m.parts)), make([]float64, len(m.parts)*n)
+	m.portions(f, df, theta)
+	for i, s := range m.parts {
+		c := Constant{Name: "share", Site: s.name, Scale: Logit, High: 1, Meaning: "share of all sites that belong to " + s.name}
+		if len(m.parts) == 2 {
+			c.Site = ""
+		}
+		r := Restatement{Constant: c, Value: f[i], GradLn: make([]float64, len(theta))}
+		for j := range n {
+			r.GradLn[m.shares+j] = df[i*n+j] / f[i]
+		}
+		out = append(out, r)
+		if len(m.parts) == 2 {
+			break
+		}
+	}
+	return out
+}
+
+// Quote gives one quoted constant by key.
+func (m *mixture) Quote(key string, theta []float64) (Restatement, bool) {
+	for i := range m.parts {
+		if r, ok := m.parts[i].quote(key, theta, len(m.constants)); ok {
+			return r, true
+		}
+	}
+	return quoted(m.Restate(theta), key)
+}
+
+// restate gives the part's constants as they are quoted.
+func (s *part) restate(theta []float64, k int) []Restatement {
+	own := s.own(theta)
+	var list []Restatement
+	if r, ok := s.mechanism.(Restated); ok {
+		list = r.Restate(own)
+	} else {
+		for i, c := range s.mechanism.Constants() {
+			list = append(list, plainly(c, own, i))
+		}
+	}
+	for i := range list {
+		list[i] = s.lift(list[i], k)
+	}
+	return list
+}
+
+// quote gives one of the part's constants by the whole's key.
+func (s *part) quote(key string, theta []float64, k int) (Restatement, bool) {
+	inner, ok := strings.CutPrefix(key, s.name+".")
+	r, restated := s.mechanism.(Restated)
+	if !ok || !restated {
+		return Restatement{}, false
+	}
+	q, ok := r.Quote(inner, s.own(theta))
+	return s.lift(q, k), ok
+}
+
+// own is the part's constants.
+func (s *part) own(theta []float64) []float64 {
+	own := make([]float64, len(s.local))
+	for i, b := range s.local {
+		own[i] = b.at(theta)
+	}
+	return own
+}
+
+// lift carries a restatement of the part over to the whole's constants.
+func (s *part) lift(r Restatement, k int) Restatement {
+	r.Constant.Site = join(s.name, r.Constant.Site)
+	if r.GradLn != nil {
+		grad := make([]float64, k)
+		for i, b := range s.local {
+			b.addTo(grad, r.GradLn[i])
+		}
+		r.GradLn = grad
+	}
+	return r
+}
+
+// plainly quotes a constant that is fitted itself.
+func plainly(c Constant, theta []float64, i int) Restatement {
+	r := Restatement{Constant: c, GradLn: make([]float64, len(theta))}
+	switch c.Scale {
+	case Log:
+		r.Value, r.GradLn[i] = math.Exp(theta[i]), 1
+	case Linear:
+		r.Value = theta[i]
+		if r.Value > 0 {
+			r.GradLn[i] = 1 / r.Value
+		} else {
+			r.GradLn, r.Why = nil, c.EdgeLow
+		}
+	case Logit:
+		y, e := logistic(theta[i])
+		r.Value, r.GradLn[i] = y, e
+	}
+	return r
+}

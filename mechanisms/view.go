@@ -22,9 +22,8 @@ func (p *problems) views(d Definition, names []string) {
 	if len(d.Turnover) > 0 && len(d.Sees) > 0 {
 		p.add("sees", "a response has a turnover or a signal per conformation, not both", "turnover or sees alone")
 	}
-	for key, list := range map[string][]Weight{"turnover": d.Turnover, "sees": d.Sees} {
-		p.weights(key, list, names)
-	}
+	p.weights("turnover", d.Turnover, names)
+	p.weights("sees", d.Sees, names)
 }
 
 func (p *problems) weights(key string, list []Weight, names []string) {
@@ -48,7 +47,7 @@ func (p *problems) weights(key string, list []Weight, names []string) {
 	}
 	if !anchored {
 		p.add(key, "at least one conformation needs a number above 0: the height of the response scales the others",
-			fmt.Sprintf("%s: {%s: 1}", key, names[0]))
+			fmt.Sprintf("%s: {%s: 1}", key, list[0].Name))
 	}
 }
 

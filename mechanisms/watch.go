@@ -110,7 +110,7 @@ func (w *watch) Saturation(dst, lnx []float64, grad *mat.Dense) {
 // At writes the share F of the response between its limits in the place of Ȳ,
 // and its Hill coefficient.
 func (w *watch) At(lnx float64, p *Point) {
-	w.jet(lnx, &w.jets, true)
+	w.jet(lnx, &w.jets, whole)
 	low, high := w.endSlopes()
 	w.jets.point(p, low, high)
 }
@@ -124,9 +124,9 @@ func (w *watch) Limits(gradLow, gradHigh []float64) (low, high float64) {
 	return w.o[0], w.o[w.top]
 }
 
-func (w *watch) jet(lnx float64, j *jet, grad bool) {
+func (w *watch) jet(lnx float64, j *jet, to depth) {
 	w.refresh()
-	w.share.jet(lnx, j, grad)
+	w.share.jet(lnx, j, to)
 }
 
 func (w *watch) ceiling() float64 { return 1 }
@@ -153,24 +153,50 @@ func (w *watch) endSlopes() (low, high float64) {
 // flaw says why the response has no Hill coefficient; "" where it has one.
 func (w *watch) flaw() string {
 	w.refresh()
-	if w.span == 0 || math.IsNaN(w.span) {
-		return "the response is the same without ligand and at saturation"
-	}
-	rises := true
+	rises := w.span > 0
+	falls := w.span < 0
 	for i := 1; i <= w.top; i++ {
-		rises = rises && w.f[i] >= w.f[i-1]
+		rises = rises && w.o[i] >= w.o[i-1]
+		falls = falls && w.o[i] <= w.o[i-1]
 	}
-	if rises {
+	if rises || falls {
 		return ""
 	}
-	first, last := w.turns()
-	const steps, beyond = 400, 15.0
-	for s := 0; s <= steps; s++ {
-		lnx := first - beyond + (last-first+2*beyond)*float64(s)/steps
-		w.share.jet(lnx, &w.jets, false)
-		if w.jets.y1 < 0 {
-			return fmt.Sprintf("the response is not monotonic: it turns back near x = %.3g", math.Exp(lnx))
-		}
+	if lnx, turns := w.turning(); turns {
+		return fmt.Sprintf("the response is not monotonic (as with substrate inhibition): it turns back near x = %.3g", math.Exp(lnx))
+	}
+	if w.span == 0 || math.IsNaN(w.span) {
+		return "the response does not depend on the ligand"
 	}
 	return ""
+}
+
+// turning looks for a ln x at which the response turns back, on a grid over
+// all that the curve does.
+func (w *watch) turning() (lnx float64, found bool) {
+	first, last := w.turns()
+	const steps, beyond = 400, 15.0
+	at := func(s int) float64 { return first - beyond + (last-first+2*beyond)*float64(s)/steps }
+	var up, down float64 // steepest rise and fall
+	var sign [steps + 1]float64
+	for s := range sign {
+		w.raw.jet(at(s), &w.jets, values)
+		sign[s] = w.jets.y1
+		up, down = max(up, w.jets.y1), max(down, -w.jets.y1)
+	}
+	none := 1e-9 * max(up, down)
+	if min(up, down) <= none {
+		return 0, false
+	}
+	before := 0.0
+	for s, d := range sign {
+		if math.Abs(d) <= none {
+			continue
+		}
+		if before*d < 0 {
+			return at(s), true
+		}
+		before = d
+	}
+	return 0, false
 }
