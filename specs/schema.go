@@ -35,5 +35,3 @@ func Schema() []byte {
 	}
 	return append(b, '\n')
 }
-
-func studyShape() shape[Study] { return recordShape[Study]{name: "a study", keys: func() []key[Study] { return nil }} }

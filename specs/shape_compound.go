@@ -240,3 +240,17 @@ func (c recordShape[T]) schema(s *schemata) object {
 	}
 	return ref
 }
+
+// pointerShape reads a value that may be missing.
+type pointerShape[V any] struct{ of shape[V] }
+
+func (p pointerShape[V]) read(r *reader, n *yaml.Node, path string, v **V) bool {
+	x := new(V)
+	if !p.of.read(r, n, path, x) {
+		return false
+	}
+	*v = x
+	return true
+}
+
+func (p pointerShape[V]) schema(s *schemata) object { return p.of.schema(s) }
