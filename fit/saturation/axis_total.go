@@ -78,11 +78,9 @@ func (b *block) gradientTotal(i int, theta []float64, bal balance, f float64, at
 		slope += at.span * w.seenPoint.DY
 	}
 	chain := -slope / den // ∂ŷ/∂(balance)
-	local := b.m.cells[q.cell].theta
 	if !q.blocked {
-		for k, g := range w.seenPoint.GradY {
-			out[local[k]] += at.span*g + chain*bal.sites*p.GradY[k]
-		}
+		b.m.chain(out, w.seenPoint.GradY, at.span, q.cell, theta)
+		b.m.chain(out, p.GradY, chain*bal.sites, q.cell, theta)
 	}
 	b.endsGradient(out, q, at.s, x)
 	high := value(theta, q.high, d.Response.High)

@@ -140,11 +140,19 @@ func (b *block) newWorkspace() *workspace {
 	return w
 }
 
-// Len is the number of residuals.
-func (b *block) Len() int { return b.noise.residualCount(b) }
+// Len is the number of residuals, those of a shift by preparation included.
+func (b *block) Len() int {
+	n := b.noise.residualCount(b)
+	if b.m.shift != nil {
+		n += len(b.m.shift.at)
+	}
+	return n
+}
 
 // Pooled implements fit.Pooled.
-func (b *block) Pooled() (ss float64, more int) { return b.pool.within, len(b.pts) - b.Len() }
+func (b *block) Pooled() (ss float64, more int) {
+	return b.pool.within, len(b.pts) - b.noise.residualCount(b)
+}
 
 // Clone shares everything but the workspace.
 func (b *block) Clone() fit.Block {
@@ -168,6 +176,9 @@ func (b *block) withY(y []float64) *block {
 func (b *block) Eval(res []float64, jac *mat.Dense, theta []float64) error {
 	b.predict(theta, jac != nil)
 	b.noise.residuals(b, res, jac, theta)
+	if b.m.shift != nil {
+		b.penalty(res, jac, theta)
+	}
 	return nil
 }
 
@@ -199,21 +210,18 @@ func (b *block) predict(theta []float64, gradient bool) {
 		}
 		w.yHat[i] = low + span*s + ns*q.x
 		if gradient {
-			b.gradient(i, s, span)
+			b.gradient(i, s, span, theta)
 		}
 	}
 }
 
 // gradient fills row i of jHat.
-func (b *block) gradient(i int, s, span float64) {
+func (b *block) gradient(i int, s, span float64, theta []float64) {
 	w, q := b.work, &b.rows[i]
 	row := w.jHat.RawRowView(i)
 	clear(row)
 	if !q.blocked {
-		theta := b.m.cells[q.cell].theta
-		for k, g := range w.grad[q.curve].RawRowView(q.at) {
-			row[theta[k]] += span * g
-		}
+		b.m.chain(row, w.grad[q.curve].RawRowView(q.at), span, q.cell, theta)
 	}
 	b.endsGradient(row, q, s, q.x)
 }
@@ -224,7 +232,22 @@ func (b *block) bind(theta []float64, cell int) {
 	for k, j := range c.theta {
 		b.work.theta[k] = theta[j]
 	}
+	if c.shift >= 0 {
+		b.m.shiftConstants(b.work.theta, theta[c.shift])
+	}
 	b.work.curve.Bind(b.work.theta, c.env)
+}
+
+// chain adds w times a gradient by a cell's constants to one by Θ.
+func (m *model) chain(out, g []float64, w float64, cell int, theta []float64) {
+	c := &m.cells[cell]
+	if c.shift >= 0 {
+		m.shiftChain(out, g, w, c, theta)
+		return
+	}
+	for k, j := range c.theta {
+		out[j] += w * g[k]
+	}
 }
 
 // predicted is ŷ of point i, after predict.

@@ -74,6 +74,9 @@ func checkBlockGradient(t *testing.T, a *Analysis) {
 	theta := make([]float64, len(m.params))
 	for i, p := range m.params {
 		theta[i] = p.StartLow + (0.3+0.4*rng.Float64())*(p.StartHigh-p.StartLow)
+		if p.kind == ofShift {
+			theta[i] = 0.3 * rng.NormFloat64()
+		}
 	}
 	n, k := b.Len(), len(theta)
 	res, jac := make([]float64, n), mat.NewDense(n, k, nil)

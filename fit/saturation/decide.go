@@ -224,12 +224,7 @@ func (s *simulation) draw(ctx context.Context, draw int) bool {
 func (s *simulation) refit(ctx context.Context, n int, y [][]float64) float64 {
 	g := *s.d.fits[s.d.order[n]]
 	g.problem = s.replaced(&g, y, s.starts[n])
-	m := *g.m
-	m.blocks = nil
-	for _, b := range g.problem.Blocks {
-		m.blocks = append(m.blocks, b.(*block))
-	}
-	g.m = &m
+	g.m = g.m.over(g.problem.Blocks)
 	r, err := g.solve(ctx, fit.Settings{Starts: 1, Workers: 1})
 	if err != nil || r == nil || r.Status == fit.NoAnswer {
 		return math.Inf(-1)

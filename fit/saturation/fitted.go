@@ -60,11 +60,11 @@ var nan = Real(math.NaN())
 // text is a pointer to a string, for rows whose null is nil.
 func text(s string) *string { return &s }
 
-// free counts the parameters that are not fixed.
+// free counts the parameters that are neither fixed nor drawn (shifts).
 func (m *model) free() int {
 	n := 0
 	for _, p := range m.params {
-		if !p.fixed {
+		if !p.fixed && p.kind != ofShift {
 			n++
 		}
 	}
@@ -87,6 +87,9 @@ const reweighings = 100
 // from the optimum until the weights settle.
 func (f *fitted) solve(ctx context.Context, s fit.Settings) (*fit.Result, error) {
 	r, err := fit.Solve(ctx, f.problem, s)
+	if f.m.shift != nil && err == nil && r != nil && r.Status != fit.NoAnswer && r.Status != fit.Stopped {
+		return f.settleShift(ctx, r)
+	}
 	for range reweighings {
 		if err != nil || r == nil || r.Status == fit.NoAnswer || r.Status == fit.Stopped {
 			return r, err
@@ -176,6 +179,10 @@ func (m *model) edgeWords(r *fit.Result) *string {
 // scatter, at the fit.
 func (f *fitted) likelihood() {
 	f.lnL, f.ss, f.k = 0, 0, f.m.free()
+	if f.m.shift != nil {
+		f.k++ // τ
+		f.lnL -= f.shiftLnDet(f.result) / 2
+	}
 	all, nAll := 0.0, 0
 	for bi, b := range f.m.blocks {
 		n := float64(len(b.pts))

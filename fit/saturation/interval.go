@@ -175,23 +175,3 @@ func (f *fitted) profiler(level float64) *fit.Profiler {
 	}
 	return pr
 }
-
-// held says which ends an interval has.
-func held(lowOpen, highOpen bool) string {
-	switch {
-	case lowOpen && highOpen:
-		return "neither"
-	case lowOpen:
-		return "high end only"
-	case highOpen:
-		return "low end only"
-	}
-	return "both"
-}
-
-func ordered(a, b float64) (low, high float64) {
-	if a > b {
-		return b, a
-	}
-	return a, b
-}

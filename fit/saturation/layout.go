@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"sort"
 
 	"ligancy/fit"
 	"ligancy/mechanisms"
@@ -17,6 +16,7 @@ const (
 	ofConstant paramKind = iota
 	ofResponse
 	ofNoise
+	ofShift
 )
 
 // parameter is one fitted number of a model: a constant of the mechanism at one
@@ -36,6 +36,7 @@ type parameter struct {
 type cell struct {
 	theta []int // constant k → index in Θ
 	env   mechanisms.Environment
+	shift int    // place in Θ of the shift of ln K of its preparation; −1
 	label string // the levels that set it apart from the other cells
 	keys  []string
 }
@@ -48,6 +49,7 @@ type model struct {
 	params []parameter
 	cells  []cell
 	blocks []*block
+	shift  *shift // nil without a shift by preparation
 }
 
 // newModel lays out a candidate's parameters over the data.
@@ -56,6 +58,10 @@ func newModel(a *Analysis, c *Candidate) (*model, error) {
 	effectors, err := m.effectorColumns()
 	if err != nil {
 		return nil, err
+	}
+	m.layShift()
+	if err := m.shiftable(); err != nil {
+		return m, err
 	}
 	index := map[string]int{}  // constant and level → Θ
 	cellAt := map[string]int{} // cell signature → cells
@@ -154,8 +160,9 @@ func (m *model) cellOf(di int, p *Point, effectors []int, index, cellAt map[stri
 		used[m.a.Effectors[j].Name] = m.a.label(m.a.Effectors[j].Name, number(y))
 	}
 	cl.env.Protomers = d.SitesPresent.Value
+	cl.shift = m.shiftAt(p.Preparation)
 	cl.keys, cl.label = m.curveLabel(d, used)
-	sig := fmt.Sprint(cl.theta, cl.env)
+	sig := fmt.Sprint(cl.theta, cl.env, cl.shift)
 	if i, ok := cellAt[sig]; ok {
 		return i
 	}
@@ -211,15 +218,7 @@ func displayName(c mechanisms.Constant) string {
 
 // enoughPoints refuses fits with no more points than constants.
 func (m *model) enoughPoints() error {
-	n, free := 0, 0
-	for _, b := range m.blocks {
-		n += len(b.pts)
-	}
-	for _, p := range m.params {
-		if !p.fixed {
-			free++
-		}
-	}
+	n, free := m.points(), m.free()
 	if n <= free {
 		return fmt.Errorf("%d points cannot hold %d constants: leave out this mechanism, share or fix constants, or measure more", n, free)
 	}
@@ -240,13 +239,33 @@ func (m *model) problem() *fit.Problem {
 	return p
 }
 
-// curveCells lists the cells in the order of their labels' first appearance,
-// numeric levels in the order of the data.
-func (m *model) curveCells() []int {
-	order := make([]int, len(m.cells))
-	for i := range order {
-		order[i] = i
+// over is the model over other blocks, which from then on are its own.
+func (m *model) over(blocks []fit.Block) *model {
+	c := *m
+	c.blocks = nil
+	if m.shift != nil {
+		s := *m.shift
+		c.shift = &s
 	}
-	sort.SliceStable(order, func(i, j int) bool { return order[i] < order[j] })
-	return order
+	for _, b := range blocks {
+		own := b.(*block)
+		own.m = &c
+		c.blocks = append(c.blocks, own)
+	}
+	return &c
+}
+
+// curveCells lists one cell of every curve: those that only a shift by
+// preparation sets apart are one curve, that of no shift.
+func (m *model) curveCells() []int {
+	var list []int
+	done := map[string]bool{}
+	for i := range m.cells {
+		sig := fmt.Sprint(m.cells[i].theta, m.cells[i].env)
+		if !done[sig] {
+			done[sig] = true
+			list = append(list, i)
+		}
+	}
+	return list
 }

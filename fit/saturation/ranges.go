@@ -16,6 +16,8 @@ func (m *model) setRanges() {
 			m.setConstantRange(i)
 		case ofResponse:
 			m.setResponseRange(i)
+		case ofShift:
+			m.params[i].StartLow, m.params[i].StartHigh = 0, 0
 		}
 	}
 }
@@ -173,7 +175,9 @@ func halfResponse(pts []*Point, r Response) float64 {
 func (m *model) firstStarts() [][]float64 {
 	theta := make([]float64, len(m.params))
 	for i, p := range m.params {
-		theta[i] = (p.StartLow + p.StartHigh) / 2
+		if p.kind != ofShift {
+			theta[i] = (p.StartLow + p.StartHigh) / 2
+		}
 	}
 	return [][]float64{theta}
 }

@@ -30,6 +30,7 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	d.decide(ctx)
 	a.slopes(ctx, fits, order)
 	report(out, fits, rows)
+	out.Preparations = a.preparationRows(ctx)
 	out.Interrupted = ctx.Err() != nil
 	out.Verdict = a.verdict(out, fits, order)
 	return out, nil
@@ -222,6 +223,9 @@ func (f *fitted) wantedRows() []wanted {
 	var list []wanted
 	restated := f.m.restated(f.result.Theta)
 	for i, p := range f.m.params {
+		if p.kind == ofShift {
+			continue
+		}
 		if p.kind != ofConstant || restated == nil {
 			list = append(list, f.m.parameterWanted(i))
 		}
@@ -237,6 +241,11 @@ func (f *fitted) wantedRows() []wanted {
 // readings are the rows of what a Hill fit would say, curve by curve.
 func (f *fitted) readings(ctx context.Context) []QuantityRow {
 	var out []QuantityRow
+	if s := f.m.shift; s != nil {
+		out = append(out, QuantityRow{Mechanism: f.m.c.Name, Curve: "all", Of: "noise", Name: "SD of ln K between preparations", Unit: "1",
+			Value: Real(s.tau), Low: nan, High: nan, Level: nan, Interval: "none", Held: "neither",
+			Why: text("no interval: found with the fit, by likelihood (Laplace)")})
+	}
 	level := f.m.a.Settings.Level
 	for _, c := range f.m.curveCells() {
 		h := f.hillReadingOf(ctx, c)
