@@ -40,7 +40,7 @@ func (b *block) predictTotal(theta []float64, gradient bool) {
 			bal, f := b.balanceOf(q, theta)
 			lnx := freeLigand(w.curve, bal, w.point)
 			if w.seen != w.curve {
-				w.seen.At(lnx, w.seenPoint)
+				w.see(lnx)
 			}
 			low, span, ns := value(theta, q.low, d.Low), value(theta, q.high, d.High), value(theta, q.ns, d.Nonspecific)
 			if !b.ends.span {
@@ -57,6 +57,27 @@ func (b *block) predictTotal(theta []float64, gradient bool) {
 			}
 		}
 	}
+}
+
+// limited is what a response sees, with its own limits.
+type limited interface {
+	Limits(gradLow, gradHigh []float64) (low, high float64)
+}
+
+// see writes the raw response at one ln x, its slope and its gradient into
+// seenPoint: At itself speaks of the share between the response's limits.
+func (w *workspace) see(lnx float64) {
+	w.seen.At(lnx, w.seenPoint)
+	span := 1.0
+	if l, ok := w.seen.(limited); ok {
+		low, high := l.Limits(w.limitLow, w.limitHigh)
+		span = high - low
+	}
+	w.oneX[0] = lnx
+	w.seen.Saturation(w.oneY[:], w.oneX[:], w.oneGrad)
+	w.seenPoint.Y = w.oneY[0]
+	w.seenPoint.DY *= span
+	copy(w.seenPoint.GradY, w.oneGrad.RawRowView(0))
 }
 
 // totalPoint is a solved row.

@@ -68,7 +68,10 @@ type workspace struct {
 	jHat  *mat.Dense   // rows × Θ
 	mean  []float64    // Θ: mean gradient of ln g
 
-	point, seenPoint *mechanisms.Point // of the curve and of what is seen
+	point, seenPoint    *mechanisms.Point // of the curve and of what is seen
+	oneX, oneY          [1]float64        // one point of what is seen
+	oneGrad             *mat.Dense
+	limitLow, limitHigh []float64
 }
 
 // linear says whether residuals are linear in the ends of the response.
@@ -132,6 +135,8 @@ func (b *block) newWorkspace() *workspace {
 	w.seenPoint = w.point
 	if w.seen != w.curve {
 		w.seenPoint = newPoint(k)
+		w.oneGrad = mat.NewDense(1, k, nil)
+		w.limitLow, w.limitHigh = make([]float64, k), make([]float64, k)
 	}
 	for _, c := range b.curves {
 		w.s = append(w.s, make([]float64, len(c.lnx)))

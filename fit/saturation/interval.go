@@ -24,7 +24,7 @@ func (f *fitted) withInterval(ctx context.Context, w wanted, pr *fit.Profiler) Q
 	row.Value = finite(w.back(v))
 	if math.IsNaN(v) || math.IsInf(v, 0) {
 		if row.Why == nil {
-			row.Why = text("does not exist at this fit")
+			row.Why = text(w.whyNot(f.result.Theta))
 		}
 		if math.IsNaN(v) {
 			return row
@@ -38,6 +38,16 @@ func (f *fitted) withInterval(ctx context.Context, w wanted, pr *fit.Profiler) Q
 		return f.covarianceRow(row, w, q, level)
 	}
 	return f.profileRow(ctx, row, w, pr)
+}
+
+// whyNot says why a number does not exist at Θ.
+func (w *wanted) whyNot(theta []float64) string {
+	if w.why != nil {
+		if s := w.why(theta); s != "" {
+			return s
+		}
+	}
+	return "does not exist at this fit"
 }
 
 // finite is a number, or null.

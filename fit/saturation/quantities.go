@@ -18,10 +18,11 @@ const gasConstant = 8.314462618e-3
 // back to the printed one.
 type wanted struct {
 	row   QuantityRow
-	index int                   // of a parameter that is the number itself; −1
-	make  func() fit.Quantity   // fresh workspace: quantities are profiled side by side
-	back  func(float64) float64 // increasing
-	quick bool                  // covariance interval only
+	index int                          // of a parameter that is the number itself; −1
+	make  func() fit.Quantity          // fresh workspace: quantities are profiled side by side
+	back  func(float64) float64        // increasing
+	quick bool                         // covariance interval only
+	why   func(theta []float64) string // why the number does not exist at Θ; may be nil
 }
 
 func same(v float64) float64 { return v }
@@ -125,10 +126,10 @@ func watch(c mechanisms.Curve) mechanisms.Curve {
 
 // whyNot asks a measure of one cell why it does not exist at Θ.
 func (m *model) whyNot(cell int, theta []float64, f func(mechanisms.Curve) mechanisms.Measure) string {
-	return f(m.boundCurve(cell, theta)).Why
+	return f(watch(m.boundCurve(cell, theta))).Why
 }
 
-// boundCurve is what the response sees of a cell's curve at Θ.
+// boundCurve is a cell's binding curve at Θ.
 func (m *model) boundCurve(cell int, theta []float64) mechanisms.Curve {
 	curve := m.c.Mechanism.Curve()
 	local := make([]float64, len(m.consts))
@@ -136,7 +137,7 @@ func (m *model) boundCurve(cell int, theta []float64) mechanisms.Curve {
 		local[k] = theta[j]
 	}
 	curve.Bind(local, m.cells[cell].env)
-	return watch(curve)
+	return curve
 }
 
 // slopeMeasure is one derived number of a curve that results list by name.
@@ -195,6 +196,7 @@ func (m *model) curveWanted(cell int) []wanted {
 	var out []wanted
 	for _, s := range slopeMeasures {
 		w := wanted{index: -1, make: m.measured(cell, s.f), back: s.back(m)}
+		w.why = func(theta []float64) string { return m.whyNot(cell, theta, s.f) }
 		w.quick = s.name == "x_01" || s.name == "x_99" || s.name == "n_H_max_at" || s.name == "width_1_99"
 		w.row = QuantityRow{Mechanism: m.c.Name, Curve: m.cells[cell].label, Of: s.of, Name: s.name, Unit: s.unit(m)}
 		if s.of == "position" && s.name != "n_H_max_at" {
@@ -214,18 +216,18 @@ func (m *model) restated(theta []float64) []wanted {
 	}
 	var out []wanted
 	done := map[string]bool{}
-	for ci := range m.cells {
+	for _, ci := range m.curveCells() {
 		local := make([]float64, len(m.consts))
 		for k, j := range m.cells[ci].theta {
 			local[k] = theta[j]
 		}
-		for ri, s := range re.Restate(local) {
+		for _, s := range re.Restate(local) {
 			label := m.cells[ci].label
-			if done[label+"\x00"+s.Constant.Name] {
+			if done[label+"\x00"+s.Constant.Key()] {
 				continue
 			}
-			done[label+"\x00"+s.Constant.Name] = true
-			w := wanted{index: -1, back: math.Exp, make: m.restatement(re, ci, ri, s.Constant.Name)}
+			done[label+"\x00"+s.Constant.Key()] = true
+			w := wanted{index: -1, back: math.Exp, make: m.restatement(re, ci, s.Constant.Key())}
 			w.row = QuantityRow{Mechanism: m.c.Name, Curve: label}
 			w.constantRow(m, s.Constant)
 			if s.Why != "" {
@@ -238,7 +240,7 @@ func (m *model) restated(theta []float64) []wanted {
 }
 
 // restatement is ln of one restated constant as a function of Θ.
-func (m *model) restatement(re mechanisms.Restated, cell, index int, name string) func() fit.Quantity {
+func (m *model) restatement(re mechanisms.Restated, cell int, key string) func() fit.Quantity {
 	return func() fit.Quantity {
 		local := make([]float64, len(m.consts))
 		return func(theta, grad []float64) float64 {
@@ -246,7 +248,7 @@ func (m *model) restatement(re mechanisms.Restated, cell, index int, name string
 				local[k] = theta[j]
 			}
 			clear(grad)
-			s, ok := find(re.Restate(local), index, name)
+			s, ok := re.Quote(key, local)
 			if !ok {
 				return math.NaN()
 			}
@@ -259,19 +261,6 @@ func (m *model) restatement(re mechanisms.Restated, cell, index int, name string
 			return math.Log(s.Value)
 		}
 	}
-}
-
-// find looks a restated constant up, first where it was before.
-func find(all []mechanisms.Restatement, index int, name string) (mechanisms.Restatement, bool) {
-	if index < len(all) && all[index].Constant.Name == name {
-		return all[index], true
-	}
-	for _, s := range all {
-		if s.Constant.Name == name {
-			return s, true
-		}
-	}
-	return mechanisms.Restatement{}, false
 }
 
 // covarianceInterval is the quick look: value ± t·√(gᵀ Σ g).

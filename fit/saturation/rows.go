@@ -4,6 +4,8 @@ import (
 	"math"
 
 	"gonum.org/v1/gonum/mat"
+
+	"ligancy/mechanisms"
 )
 
 // pointRows lists every measurement beside the fit, left-out ones included.
@@ -71,19 +73,33 @@ func (f *fitted) curveRows() []CurveRow {
 	t := f.critical(f.m.a.Settings.Level)
 	for _, ci := range f.m.curveCells() {
 		c := f.m.boundCurve(ci, f.result.Theta)
-		p := newPoint(len(f.m.consts))
+		seen := watch(c)
+		p, q := newPoint(len(f.m.consts)), newPoint(len(f.m.consts))
 		for i := range gridPoints {
 			lnx := lnLow + (lnHigh-lnLow)*float64(i)/(gridPoints-1)
 			c.At(lnx, p)
+			steep, s := p, p.Y
+			if seen != c {
+				seen.At(lnx, q)
+				steep = q
+				s = raw(seen, lnx)
+			}
 			row := CurveRow{Mechanism: f.row.Name, Curve: f.m.cells[ci].label, X: Real(math.Exp(lnx)),
-				Saturation: Real(p.Y), NH: Real(p.NH), Response: Real(f.responseAt(ci, p.Y, math.Exp(lnx)))}
-			se, seN := f.cellError(ci, p.GradY), f.cellError(ci, p.GradNH)
+				Saturation: Real(p.Y), NH: Real(steep.NH), Response: Real(f.responseAt(ci, s, math.Exp(lnx)))}
+			se, seN := f.cellError(ci, p.GradY), f.cellError(ci, steep.GradNH)
 			row.Low, row.High = logitBand(p.Y, t*se)
-			row.NHLow, row.NHHigh = Real(p.NH-t*seN), Real(p.NH+t*seN)
+			row.NHLow, row.NHHigh = Real(steep.NH-t*seN), Real(steep.NH+t*seN)
 			out = append(out, row)
 		}
 	}
 	return out
+}
+
+// raw is what a response sees at one ln x.
+func raw(seen mechanisms.Curve, lnx float64) float64 {
+	var y [1]float64
+	seen.Saturation(y[:], []float64{lnx}, nil)
+	return y[0]
 }
 
 // logitBand is a saturation with its interval, symmetric on the logit so that
