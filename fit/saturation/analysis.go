@@ -18,6 +18,9 @@ type Analysis struct {
 	Candidates    []Candidate
 	Contrasts     []Contrast
 	Settings      Settings
+	Curve         *CurveRequest  // nil where the study has no such block
+	Course        *CourseRequest // likewise
+	Plan          *PlanRequest   // likewise
 }
 
 // Substance is a ligand or effector.
@@ -34,6 +37,11 @@ type Dataset struct {
 	Noise        Noise
 	Incubation   float64  // seconds; NaN where it is not stated
 	Notes        []string // what the reader did silently: decimal commas, byte-order mark
+
+	SHA256     string            // of the file, in hexadecimal
+	Conditions map[string]string // that hold for this table, beside those of the study
+	Trace      bool              // points are followed in time: Point.Seconds counts
+	Phases     []Phase           // of a trace
 }
 
 // Point is one measurement.
@@ -48,6 +56,7 @@ type Point struct {
 	Blocked     bool      // sees only nonspecific binding and low
 	LeftOut     string    // reason; "" = kept
 	Row         int       // line in the file
+	Seconds     float64   // of a trace, since the first phase began
 }
 
 // Response says what y is.
@@ -57,7 +66,7 @@ type Response struct {
 	Percent bool // y and its ends are in percent (kept so; a saturation of 1 is 100)
 	// Low and High are the ends; High is V of a velocity and Bmax of bound.
 	Low, High, Nonspecific Setting
-	SitesPerMolecule       bool              // bound, in mol per mol: High is the number of sites
+	SitesPerMolecule       bool              // bound, in mol per mol: High is the number of sites; fixed at 0, that of each mechanism
 	Differs                map[string]string // "Bmax" → factor or "preparation"
 	Of                     string            // another ligand whose binding is counted
 }
@@ -68,9 +77,11 @@ type Setting struct {
 	Value float64
 }
 
-// SitesPresent is the total concentration of sites, in the ligand's unit.
+// SitesPresent is the total concentration of sites, in the ligand's unit; where
+// that is no concentration (a gas), in the unit that the study writes.
 type SitesPresent struct {
 	Value    float64 // 0 where it is not given
+	Unit     string  // of Value
 	FromBmax float64 // factor from fitted Bmax to concentration; 0 where not asked for
 }
 
@@ -90,12 +101,14 @@ const (
 type Candidate struct {
 	Name, Family string
 	Mechanism    mechanisms.Mechanism
-	// Differs: constant name (or "all") → factor, "preparation" or "data".
+	// Differs: constant name (or "all") → factor, effector, "preparation" or "data".
 	Differs map[string]string
 	// Given: starts, ranges and fixed values by constant name.
 	Given map[string]mechanisms.Given
 	// ShiftByPreparation: a random shift of ln K per preparation.
 	ShiftByPreparation bool
+	// Rates of a mechanism with kinetics, by name: "k_on", "exchange".
+	Rates map[string]Rate
 }
 
 // Contrast asks for ratios or differences between the levels of a factor.
