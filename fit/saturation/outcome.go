@@ -23,6 +23,7 @@ type Outcome struct {
 	Points       []PointRow       `json:"points"`
 	Curves       []CurveRow       `json:"curves"`
 	Correlations []CorrelationRow `json:"correlations"`
+	Populations  []PopulationRow  `json:"populations"`
 	Preparations []PreparationRow `json:"preparations"`
 	Objections   []Objection      `json:"objections"`
 	Verdict      Verdict          `json:"verdict"`

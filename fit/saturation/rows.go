@@ -95,6 +95,33 @@ func (f *fitted) curveRows() []CurveRow {
 	return out
 }
 
+// populationEvery thins the grid of the populations.
+const populationEvery = 4
+
+// populationRows samples the share of every state on every curve.
+func (f *fitted) populationRows() []PopulationRow {
+	low, high := f.m.a.testedRange()
+	if !(low > 0) {
+		return nil
+	}
+	var out []PopulationRow
+	lnLow, lnHigh := math.Log(low/gridMargin), math.Log(high*gridMargin)
+	for _, ci := range f.m.curveCells() {
+		pop, ok := f.m.boundCurve(ci, f.result.Theta).(mechanisms.Populated)
+		if !ok {
+			continue
+		}
+		names := pop.StateNames()
+		for i := 0; i < gridPoints; i += populationEvery {
+			lnx := lnLow + (lnHigh-lnLow)*float64(i)/(gridPoints-1)
+			for k, share := range pop.Populations(nil, lnx) {
+				out = append(out, PopulationRow{f.row.Name, f.m.cells[ci].label, Real(math.Exp(lnx)), names[k], Real(share)})
+			}
+		}
+	}
+	return out
+}
+
 // raw is what a response sees at one ln x.
 func raw(seen mechanisms.Curve, lnx float64) float64 {
 	var y [1]float64

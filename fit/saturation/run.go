@@ -136,6 +136,7 @@ func report(out *Outcome, fits []*fitted, rows [][]QuantityRow) {
 		out.Points = append(out.Points, f.pointRows()...)
 		out.Curves = append(out.Curves, f.curveRows()...)
 		out.Correlations = append(out.Correlations, f.correlationRows()...)
+		out.Populations = append(out.Populations, f.populationRows()...)
 	}
 }
 
