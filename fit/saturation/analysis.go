@@ -18,7 +18,6 @@ type Analysis struct {
 	Candidates    []Candidate
 	Contrasts     []Contrast
 	Settings      Settings
-	Curve         CurveRequest
 	Curve         *CurveRequest  // nil where the study has no such block
 	Course        *CourseRequest // likewise
 	Plan          *PlanRequest   // likewise

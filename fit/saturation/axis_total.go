@@ -13,7 +13,7 @@ func (b *block) balanceOf(q *row, theta []float64) (bal balance, f float64) {
 	d := &b.m.a.Data[b.data]
 	bal = balance{lnTotal: math.Log(q.x), sites: d.SitesPresent.Value, blocked: q.blocked}
 	f = d.SitesPresent.FromBmax
-	high := value(theta, q.high, d.Response.High)
+	high := value(theta, q.high, b.resp.High)
 	switch {
 	case f > 0:
 		bal.sites = f * high
@@ -21,7 +21,7 @@ func (b *block) balanceOf(q *row, theta []float64) (bal balance, f float64) {
 		f = bal.sites / high
 	}
 	if d.Response.Kind == "bound" {
-		bal.ns = f * value(theta, q.ns, d.Response.Nonspecific)
+		bal.ns = f * value(theta, q.ns, b.resp.Nonspecific)
 	}
 	return bal, f
 }
@@ -29,7 +29,7 @@ func (b *block) balanceOf(q *row, theta []float64) (bal balance, f float64) {
 // predictTotal is predict on a total axis: the free ligand of every row is
 // solved for, and the chain rule follows it.
 func (b *block) predictTotal(theta []float64, gradient bool) {
-	w, d := b.work, &b.m.a.Data[b.data].Response
+	w, d := b.work, &b.resp
 	for ci := range b.curves {
 		b.bind(theta, b.curves[ci].cell)
 		for i := range b.rows {
@@ -104,7 +104,7 @@ func (b *block) gradientTotal(i int, theta []float64, bal balance, f float64, at
 		b.m.chain(out, p.GradY, chain*bal.sites, q.cell, theta)
 	}
 	b.endsGradient(out, q, at.s, x)
-	high := value(theta, q.high, d.Response.High)
+	high := value(theta, q.high, b.resp.High)
 	if q.high >= 0 {
 		switch {
 		case d.SitesPresent.FromBmax > 0:

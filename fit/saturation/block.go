@@ -18,6 +18,7 @@ type block struct {
 	m    *model
 	data int
 	ends ends
+	resp Response // with what the mechanism settles of it
 	pts  []datum
 	rows []row
 	y    []float64 // per point: what was measured, or simulated in its place
@@ -202,7 +203,7 @@ func (b *block) predict(theta []float64, gradient bool) {
 		}
 		w.seen.Saturation(w.s[i], b.curves[i].lnx, g)
 	}
-	d := &b.m.a.Data[b.data].Response
+	d := &b.resp
 	for i := range b.rows {
 		q := &b.rows[i]
 		low, span, ns := value(theta, q.low, d.Low), value(theta, q.high, d.High), value(theta, q.ns, d.Nonspecific)

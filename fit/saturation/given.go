@@ -4,16 +4,10 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 
 	"ligancy/mechanisms"
 )
-
-// CurveRequest asks for curves from given constants.
-type CurveRequest struct {
-	From, To float64     // ligand, in its unit; 0 means from the data
-	Points   int         // 0 means 121
-	At       [][]float64 // effector concentrations, one curve for each; nil means none present
-}
 
 // PopulationRow is the share of one state at one ligand value.
 type PopulationRow struct {
@@ -83,25 +77,48 @@ func (c *Candidate) givenTheta() ([]float64, error) {
 	return theta, nil
 }
 
-// environments are the effector levels asked for, in the candidate's order.
+// environments are the effector levels asked for, in the candidate's order:
+// every combination of the levels; what is not named is absent (zero).
 func (a *Analysis) environments(c *Candidate) [][]float64 {
 	names := c.Mechanism.Effectors()
-	if len(names) == 0 || len(a.Curve.At) == 0 {
-		return [][]float64{make([]float64, len(names))}
-	}
-	var out [][]float64
-	for _, at := range a.Curve.At {
-		y := make([]float64, len(names))
-		for i, name := range names {
-			for j, e := range a.Effectors {
-				if (e.Name == name || e.Symbol == name) && j < len(at) {
-					y[i] = at[j]
-				}
+	out := [][]float64{make([]float64, len(names))}
+	for i, name := range names {
+		var next [][]float64
+		for _, v := range a.heldValues(name) {
+			for _, y := range out {
+				z := slices.Clone(y)
+				z[i] = v
+				next = append(next, z)
 			}
 		}
-		out = append(out, y)
+		if next != nil {
+			out = next
+		}
 	}
 	return out
+}
+
+// heldValues is what a curve request holds an effector at.
+func (a *Analysis) heldValues(name string) []float64 {
+	if a.Curve == nil {
+		return nil
+	}
+	for _, h := range a.Curve.At {
+		if h.Name == name || a.effectorName(h.Name) == name {
+			return h.Values
+		}
+	}
+	return nil
+}
+
+// effectorName is the name of the effector that a study calls so.
+func (a *Analysis) effectorName(called string) string {
+	for _, e := range a.Effectors {
+		if e.Symbol == called {
+			return e.Name
+		}
+	}
+	return called
 }
 
 // givenCurve writes the rows of one candidate.
@@ -186,7 +203,11 @@ func (g *givenCurve) protomers() float64 {
 
 // grid is the ln x at which curves are asked for.
 func (g *givenCurve) grid() []float64 {
-	low, high := g.a.Curve.From, g.a.Curve.To
+	var r CurveRequest
+	if g.a.Curve != nil {
+		r = *g.a.Curve
+	}
+	low, high := r.From, r.To
 	if !(low > 0) || !(high > low) {
 		low, high = g.a.testedRange()
 		low, high = low/gridMargin, high*gridMargin
@@ -194,7 +215,7 @@ func (g *givenCurve) grid() []float64 {
 	if !(low > 0) {
 		low, high = 1e-3, 1e3
 	}
-	n := g.a.Curve.Points
+	n := r.Points
 	if n < 2 {
 		n = gridPoints
 	}

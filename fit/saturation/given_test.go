@@ -13,7 +13,7 @@ func ptr(v float64) *float64 { return &v }
 // c 0.014 gives n_H 2.853231 at half saturation and 2.855885 at most (exact
 // mathematics from those constants).
 func TestGivenConstantsGiveTheCurve(t *testing.T) {
-	a := &Analysis{Ligand: Substance{Name: "oxygen", Unit: "torr"}, Kelvin: math.NaN(), Curve: CurveRequest{From: 0.1, To: 100, Points: 31},
+	a := &Analysis{Ligand: Substance{Name: "oxygen", Unit: "torr"}, Kelvin: math.NaN(), Curve: &CurveRequest{From: 0.1, To: 100, Points: 31},
 		Candidates: []Candidate{{Name: "concerted", Family: "mwc", Mechanism: build(t, "mwc", mechanisms.Definition{Sites: 4}),
 			Given: map[string]mechanisms.Given{"L": {Value: ptr(9054)}, "c": {Fixed: ptr(0.014)}, "K_R": {Start: ptr(1)}}}}}
 	out, err := a.Given()

@@ -35,7 +35,10 @@ func (m *model) layResponses() {
 	for _, b := range m.blocks {
 		d := &m.a.Data[b.data]
 		e := endsOf(d.Response.Kind)
-		b.ends = e
+		b.ends, b.resp = e, d.Response
+		if r := &b.resp; r.SitesPerMolecule && !r.High.Free && r.High.Value == 0 {
+			r.High.Value = float64(m.c.Mechanism.Sites())
+		}
 		index := map[string]int{}
 		for i := range b.pts {
 			q := &b.pts[i]

@@ -155,7 +155,6 @@ func (f *fitted) cellError(cell int, grad []float64) float64 {
 // between the points of the curve.
 func (f *fitted) responseAt(cell int, s, x float64) float64 {
 	for _, b := range f.m.blocks {
-		d := &f.m.a.Data[b.data]
 		var first *datum
 		for i := range b.pts {
 			q := &b.pts[i]
@@ -172,11 +171,11 @@ func (f *fitted) responseAt(cell int, s, x float64) float64 {
 			continue
 		}
 		theta := f.result.Theta
-		low, high := value(theta, first.low, d.Response.Low), value(theta, first.high, d.Response.High)
+		low, high := value(theta, first.low, b.resp.Low), value(theta, first.high, b.resp.High)
 		if !b.ends.span {
 			high -= low
 		}
-		return low + high*s + value(theta, first.ns, d.Response.Nonspecific)*x
+		return low + high*s + value(theta, first.ns, b.resp.Nonspecific)*x
 	}
 	return math.NaN()
 }

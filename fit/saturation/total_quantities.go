@@ -82,7 +82,7 @@ func (b *block) balanceGradient(q *row, theta []float64) (bal balance, dS, dNu [
 	bal, f := b.balanceOf(q, theta)
 	dS, dNu = make([]float64, len(theta)), make([]float64, len(theta))
 	d := &b.m.a.Data[b.data]
-	high := value(theta, q.high, d.Response.High)
+	high := value(theta, q.high, b.resp.High)
 	if d.SitesPresent.FromBmax > 0 && q.high >= 0 {
 		dS[q.high] = f
 	}
