@@ -92,7 +92,8 @@ func (p *program) root() *cobra.Command {
 		SilenceErrors: true, SilenceUsage: true,
 		SuggestionsMinimumDistance: 2,
 	}
-	root.AddCommand(p.newCommand(), p.checkCommand(), p.fitCommand(), p.versionCommand(), p.completionCommand())
+	root.AddCommand(p.newCommand(), p.checkCommand(), p.fitCommand(), p.curveCommand(), p.familiesCommand(), p.numericsCommand(),
+		p.versionCommand(), p.completionCommand())
 	root.SetArgs(p.Args)
 	root.SetOut(p.out)
 	root.SetErr(p.Stderr)

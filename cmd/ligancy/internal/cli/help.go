@@ -12,6 +12,9 @@ const overview = `ligancy tells which binding mechanisms saturation data support
   ligancy new --example clam   an example study with its invented data
   ligancy check STUDY          what is wrong with a study, else what a reviewer will ask
   ligancy fit STUDY            fits every mechanism and says what the data say
+  ligancy curve STUDY          curves, Hill coefficients and populations from given constants
+  ligancy families [NAME]      the families of mechanisms: formula, constants, limits, reference
+  ligancy numerics TEST        exact and certified values, reached on this machine
   ligancy version              the program's version
   ligancy completion SHELL     completes commands in bash, zsh, fish or powershell
   ligancy help COMMAND         what a command does, its options and exit codes

@@ -109,9 +109,8 @@ func ours(disk Disk, folder string) (partial bool, err error) {
 // known names of a results folder: what is written into it, now or by later
 // versions, and what desktops leave behind.
 func known(name string) bool {
-	tables := []string{"mechanisms", "quantities", "points", "curves", "correlations", "objections", "populations"}
 	if base, ok := strings.CutSuffix(name, ".csv"); ok {
-		return slices.Contains(tables, base)
+		return slices.Contains(report.TableNames(), base)
 	}
 	return slices.Contains([]string{resultFile, "report.html", "report.md", "figures", ".DS_Store", "Thumbs.db", "desktop.ini"}, name)
 }

@@ -11,30 +11,42 @@ import (
 	"ligancy/fit/saturation"
 )
 
-// Table is one list of a document under the name of its file.
+// Table is one list of a document under the name that its JSON key and its file have.
 type Table struct {
 	Name string // "quantities"
-	rows any    // slice of flat structs
+	rows reflect.Value
 }
 
-// Tables returns the document's lists in the order in which they are listed to the user.
-func (d *Document) Tables() []Table {
-	return []Table{
-		{"mechanisms", d.Mechanisms},
-		{"quantities", d.Quantities},
-		{"points", d.Points},
-		{"curves", d.Curves},
-		{"correlations", d.Correlations},
-		{"objections", d.Objections},
+// Tables returns the document's lists in the order of the document.
+func (d *Document) Tables() []Table { return lists(d.Outcome) }
+
+// TableNames are the names of all lists that a document can have.
+func TableNames() []string {
+	var names []string
+	for _, t := range lists(&saturation.Outcome{}) {
+		names = append(names, t.Name)
 	}
+	return append(names, "populations")
+}
+
+// lists finds the lists of an outcome: its exported slices that have a key.
+func lists(o *saturation.Outcome) []Table {
+	var all []Table
+	v := reflect.ValueOf(o).Elem()
+	for i := range v.NumField() {
+		key := v.Type().Field(i).Tag.Get("json")
+		if v.Field(i).Kind() == reflect.Slice && key != "" && key != "-" {
+			all = append(all, Table{Name: key, rows: v.Field(i)})
+		}
+	}
+	return all
 }
 
 // WriteCSV writes the table after RFC 4180 with line feeds: a header of the
 // keys that the JSON rows have, then one record a row. What does not exist is
 // an empty cell. Numbers read back to the same double.
 func (t Table) WriteCSV(w io.Writer) error {
-	rows := reflect.ValueOf(t.rows)
-	kind := rows.Type().Elem()
+	kind := t.rows.Type().Elem()
 	record := make([]string, kind.NumField())
 	for i := range record {
 		record[i] = kind.Field(i).Tag.Get("json")
@@ -43,9 +55,9 @@ func (t Table) WriteCSV(w io.Writer) error {
 	if err := c.Write(record); err != nil {
 		return err
 	}
-	for r := range rows.Len() {
+	for r := range t.rows.Len() {
 		for i := range record {
-			record[i] = cell(rows.Index(r).Field(i).Interface())
+			record[i] = cell(t.rows.Index(r).Field(i).Interface())
 		}
 		if err := c.Write(record); err != nil {
 			return err
@@ -67,6 +79,8 @@ func cell(value any) string {
 		return *v
 	case int:
 		return strconv.Itoa(v)
+	case bool:
+		return strconv.FormatBool(v)
 	case saturation.Real:
 		x := float64(v)
 		if math.IsNaN(x) || math.IsInf(x, 0) {

@@ -4,6 +4,7 @@ package report
 
 import (
 	"maps"
+	"reflect"
 
 	"ligancy/fit/saturation"
 )
@@ -67,16 +68,15 @@ type Source struct {
 	Defaults map[string]string
 }
 
-// New assembles the document of an outcome. It copies the outcome's lists
-// where they are nil, so that each is written as a list.
+// New assembles the document of an outcome. A list that is nil becomes an empty
+// one, so that each is written as a list.
 func New(a *saturation.Analysis, o *saturation.Outcome, src Source) *Document {
 	rows := *o
-	rows.Mechanisms = list(rows.Mechanisms)
-	rows.Quantities = list(rows.Quantities)
-	rows.Points = list(rows.Points)
-	rows.Curves = list(rows.Curves)
-	rows.Correlations = list(rows.Correlations)
-	rows.Objections = list(rows.Objections)
+	for _, l := range lists(&rows) {
+		if l.rows.IsNil() {
+			l.rows.Set(reflect.MakeSlice(l.rows.Type(), 0, 0))
+		}
+	}
 	rows.Verdict.Ties = list(rows.Verdict.Ties)
 	rows.Verdict.Open = list(rows.Verdict.Open)
 	rows.Verdict.Out = list(rows.Verdict.Out)

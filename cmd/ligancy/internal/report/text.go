@@ -29,6 +29,7 @@ func (d *Document) WriteText(w io.Writer, colour bool) error {
 		p.steepness(leader)
 		p.constants(leader)
 	}
+	p.preparations()
 	p.standing()
 	p.before()
 	_, err := io.WriteString(w, p.b.String())
