@@ -4,12 +4,12 @@ import (
 	"errors"
 	"fmt"
 	"math"
-	"strings"
+	"slices"
 
 	"ligancy/mechanisms"
 )
 
-// PopulationRow is the share of one state on one curve at one ligand value.
+// PopulationRow is the share of one state at one ligand value.
 type PopulationRow struct {
 	Mechanism string `json:"mechanism"`
 	Curve     string `json:"curve"`
@@ -18,278 +18,210 @@ type PopulationRow struct {
 	Share     Real   `json:"share"`
 }
 
-// Bounds of a request for curves.
-const (
-	mostGridPoints  = 10_000
-	mostGivenCurves = 64
-)
-
-// Given evaluates the curves of every mechanism whose constants all have a
-// value in the study, against free ligand: nothing is fitted. Each mechanism's
-// status is "given", or "no answer" with what it lacks. It is an error where
-// none has all of its constants.
-func (a *Analysis) Given() (*Outcome, []PopulationRow, error) {
-	environments, err := a.environments()
-	if err != nil {
-		return nil, nil, err
-	}
+// Given evaluates every candidate at the constants that the study gives
+// (value, else fixed, else start) without fitting anything.
+func (a *Analysis) Given() (*Outcome, error) {
 	out := &Outcome{Defaults: map[string]string{}}
-	var bound []*givenCurve
-	var lacking []string
+	var errs []error
 	for i := range a.Candidates {
-		c := &a.Candidates[i]
-		row := MechanismRow{Name: c.Name, Family: c.Family, Sites: c.Mechanism.Sites(), Status: "given"}
-		row.SumOfSquares, row.Scatter, row.LogLikelihood = nan, nan, nan
-		row.AICc, row.AICcBehind, row.AICcWeight, row.BIC = nan, nan, nan, nan
-		theta, missing := givenTheta(c)
-		if len(missing) > 0 {
-			row.Status = "no answer"
-			row.Why = text("no value for " + strings.Join(missing, ", "))
-			lacking = append(lacking, fmt.Sprintf("%q lacks %s", c.Name, strings.Join(missing, ", ")))
-		} else {
-			bound = append(bound, a.bindGiven(c, theta, environments)...)
-			out.Quantities = append(out.Quantities, a.givenConstants(c, theta)...)
+		if err := a.givenCandidate(&a.Candidates[i], out); err != nil {
+			errs = append(errs, err)
 		}
-		out.Mechanisms = append(out.Mechanisms, row)
 	}
-	if len(bound) == 0 {
-		return nil, nil, errors.New("no mechanism has a value for every constant: " + strings.Join(lacking, "; "))
-	}
-	grid, err := a.curveGrid(bound, out.Defaults)
+	return out, errors.Join(errs...)
+}
+
+// givenCandidate adds one candidate's rows.
+func (a *Analysis) givenCandidate(c *Candidate, out *Outcome) error {
+	theta, err := c.givenTheta()
 	if err != nil {
-		return nil, nil, err
+		return err
 	}
-	var populations []PopulationRow
-	for _, g := range bound {
-		out.Quantities = append(out.Quantities, g.quantities()...)
-		out.Curves = append(out.Curves, g.curveRows(grid)...)
-		populations = append(populations, g.populationRows(grid)...)
+	row := MechanismRow{Name: c.Name, Family: c.Family, Sites: c.Mechanism.Sites(), Status: "given", SumOfSquares: nan, Scatter: nan,
+		LogLikelihood: nan, AICc: nan, AICcBehind: nan, AICcWeight: nan, BIC: nan}
+	out.Mechanisms = append(out.Mechanisms, row)
+	g := &givenCurve{a: a, c: c, theta: theta, out: out}
+	g.constants()
+	for _, y := range a.environments(c) {
+		g.curve(y)
 	}
-	return out, populations, nil
+	return nil
 }
 
-// givenTheta is a candidate's constants on their fitted scales, and the names
-// of those that have no value.
-func givenTheta(c *Candidate) (theta []float64, missing []string) {
-	m := &model{c: c, consts: c.Mechanism.Constants()}
-	for k, constant := range m.consts {
-		g := m.given(k)
-		v := g.Value
-		if v == nil {
-			v = g.Fixed
-		}
-		if v == nil {
-			missing = append(missing, constant.Key())
-			continue
-		}
-		theta = append(theta, scaled(constant, *v))
-	}
-	return theta, missing
-}
-
-// namedEnvironment is what holds on one curve, by name of effector.
-type namedEnvironment struct {
-	label     string
-	effectors map[string]float64
-}
-
-// environments is every combination of the effector values asked for.
-func (a *Analysis) environments() ([]namedEnvironment, error) {
-	all := []namedEnvironment{{effectors: map[string]float64{}}}
-	if a.Curve == nil {
-		return all, nil
-	}
-	for _, h := range a.Curve.At {
-		if len(h.Values) == 0 {
-			continue
-		}
-		var next []namedEnvironment
-		for _, e := range all {
-			for _, v := range h.Values {
-				n := namedEnvironment{effectors: map[string]float64{h.Name: v}}
-				for name, w := range e.effectors {
-					n.effectors[name] = w
-				}
-				n.label = strings.TrimPrefix(e.label+", "+a.label(h.Name, number(v)), ", ")
-				next = append(next, n)
+// givenTheta is θ from the study's own values.
+func (c *Candidate) givenTheta() ([]float64, error) {
+	var theta []float64
+	var missing []string
+	for _, k := range c.Mechanism.Constants() {
+		var g mechanisms.Given
+		for _, name := range constantNames(k) {
+			if v, ok := c.Given[name]; ok {
+				g = v
+				break
 			}
 		}
-		if all = next; len(all) > mostGivenCurves {
-			return nil, fmt.Errorf("curve: more than %d combinations under at", mostGivenCurves)
+		switch {
+		case g.Value != nil:
+			theta = append(theta, scaled(k, *g.Value))
+		case g.Fixed != nil:
+			theta = append(theta, scaled(k, *g.Fixed))
+		case g.Start != nil:
+			theta = append(theta, scaled(k, *g.Start))
+		default:
+			missing = append(missing, displayName(k))
 		}
 	}
-	return all, nil
+	if len(missing) > 0 {
+		return nil, fmt.Errorf("mechanism %q has no value for %s: write constants: {%s: {value: …}}", c.Name, list(missing), missing[0])
+	}
+	return theta, nil
 }
 
-// givenCurve is one curve at given constants.
-type givenCurve struct {
-	m     *model
-	label string
-	curve mechanisms.Curve // binding
-	seen  mechanisms.Curve // what the response sees of it
-}
-
-// bindGiven binds a candidate in every environment; curves that its effectors
-// do not set apart are one.
-func (a *Analysis) bindGiven(c *Candidate, theta []float64, environments []namedEnvironment) []*givenCurve {
-	var out []*givenCurve
+// environments are the effector levels asked for, in the candidate's order:
+// every combination of the levels; what is not named is absent (zero).
+func (a *Analysis) environments(c *Candidate) [][]float64 {
 	names := c.Mechanism.Effectors()
-	if len(names) == 0 {
-		environments = []namedEnvironment{{}}
-	}
-	for _, e := range environments {
-		env := mechanisms.Environment{Protomers: a.protomers()}
-		for _, name := range names {
-			env.Effectors = append(env.Effectors, a.effectorValue(e, name))
+	out := [][]float64{make([]float64, len(names))}
+	for i, name := range names {
+		var next [][]float64
+		for _, v := range a.heldValues(name) {
+			for _, y := range out {
+				z := slices.Clone(y)
+				z[i] = v
+				next = append(next, z)
+			}
 		}
-		g := &givenCurve{m: &model{a: a, c: c, consts: c.Mechanism.Constants()}, label: e.label, curve: c.Mechanism.Curve()}
-		if g.label == "" {
-			g.label = "all"
+		if next != nil {
+			out = next
 		}
-		g.curve.Bind(theta, env)
-		g.seen = watch(g.curve)
-		out = append(out, g)
 	}
 	return out
 }
 
-// effectorValue is the concentration of an effector, known by name or symbol;
-// 0 where the request does not say.
-func (a *Analysis) effectorValue(e namedEnvironment, name string) float64 {
-	if v, ok := e.effectors[name]; ok {
-		return v
+// heldValues is what a curve request holds an effector at.
+func (a *Analysis) heldValues(name string) []float64 {
+	if a.Curve == nil {
+		return nil
 	}
-	for _, s := range a.Effectors {
-		if s.Name == name || s.Symbol == name {
-			return e.effectors[s.Name] + e.effectors[s.Symbol]
+	for _, h := range a.Curve.At {
+		if h.Name == name || a.effectorName(h.Name) == name {
+			return h.Values
 		}
 	}
-	return 0
+	return nil
 }
 
-// protomers is the first concentration of sites that a data set states.
-func (a *Analysis) protomers() float64 {
-	for i := range a.Data {
-		if v := a.Data[i].SitesPresent.Value; v > 0 {
+// effectorName is the name of the effector that a study calls so.
+func (a *Analysis) effectorName(called string) string {
+	for _, e := range a.Effectors {
+		if e.Symbol == called {
+			return e.Name
+		}
+	}
+	return called
+}
+
+// givenCurve writes the rows of one candidate.
+type givenCurve struct {
+	a     *Analysis
+	c     *Candidate
+	theta []float64
+	out   *Outcome
+}
+
+// constants lists the given constants.
+func (g *givenCurve) constants() {
+	m := &model{a: g.a, c: g.c}
+	for i, k := range g.c.Mechanism.Constants() {
+		w := wanted{row: QuantityRow{Mechanism: g.c.Name, Curve: "all"}}
+		w.constantRow(m, k)
+		g.add(w.row, unscaled(k, g.theta[i]), "")
+	}
+}
+
+// add appends a row that has a value and no interval.
+func (g *givenCurve) add(row QuantityRow, v float64, why string) {
+	row.Value, row.Low, row.High, row.Level = finite(v), nan, nan, nan
+	row.Interval, row.Held = "none", "fixed"
+	if why != "" {
+		row.Value, row.Why = nan, text(why)
+	}
+	g.out.Quantities = append(g.out.Quantities, row)
+}
+
+// curve adds one curve: its derived numbers, its points and its populations.
+func (g *givenCurve) curve(y []float64) {
+	m := &model{a: g.a, c: g.c}
+	label := g.label(y)
+	curve := g.c.Mechanism.Curve()
+	curve.Bind(g.theta, mechanisms.Environment{Effectors: y, Protomers: g.protomers()})
+	seen := watch(curve)
+	for _, s := range slopeMeasures {
+		v := s.f(seen)
+		row := QuantityRow{Mechanism: g.c.Name, Curve: label, Of: s.of, Name: s.name, Unit: s.unit(m)}
+		g.add(row, s.back(m)(v.Value), v.Why)
+	}
+	pop, _ := curve.(mechanisms.Populated)
+	p := newPoint(len(g.theta))
+	for _, lnx := range g.grid() {
+		curve.At(lnx, p)
+		row := CurveRow{Mechanism: g.c.Name, Curve: label, X: Real(math.Exp(lnx)), Saturation: Real(p.Y),
+			Response: Real(raw(seen, lnx)), Low: nan, High: nan, NHLow: nan, NHHigh: nan}
+		if seen != curve {
+			seen.At(lnx, p)
+		}
+		row.NH = Real(p.NH)
+		g.out.Curves = append(g.out.Curves, row)
+		if pop == nil {
+			continue
+		}
+		shares := pop.Populations(nil, lnx)
+		for i, name := range pop.StateNames() {
+			g.out.Populations = append(g.out.Populations, PopulationRow{g.c.Name, label, Real(math.Exp(lnx)), name, Real(shares[i])})
+		}
+	}
+}
+
+// label names a curve by its effector levels.
+func (g *givenCurve) label(y []float64) string {
+	var parts []string
+	for i, name := range g.c.Mechanism.Effectors() {
+		parts = append(parts, g.a.label(name, number(y[i])))
+	}
+	return joinLabels(parts)
+}
+
+// protomers is the concentration that the first data set gives, if any does.
+func (g *givenCurve) protomers() float64 {
+	for i := range g.a.Data {
+		if v := g.a.Data[i].SitesPresent.Value; v > 0 {
 			return v
 		}
 	}
 	return 0
 }
 
-// givenConstants lists the constants in force.
-func (a *Analysis) givenConstants(c *Candidate, theta []float64) []QuantityRow {
-	m := &model{a: a, c: c, consts: c.Mechanism.Constants()}
-	var rows []QuantityRow
-	for k, constant := range m.consts {
-		w := wanted{row: QuantityRow{Mechanism: c.Name, Curve: "all"}}
-		w.constantRow(m, constant)
-		w.row.settle(unscaled(constant, theta[k]), "")
-		rows = append(rows, w.row)
+// grid is the ln x at which curves are asked for.
+func (g *givenCurve) grid() []float64 {
+	var r CurveRequest
+	if g.a.Curve != nil {
+		r = *g.a.Curve
 	}
-	return rows
-}
-
-// settle fills a row that has no interval: its number follows from given constants.
-func (q *QuantityRow) settle(v float64, why string) {
-	q.Value, q.Low, q.High, q.Level = finite(v), nan, nan, nan
-	q.Interval, q.Held = "none", "fixed"
-	if why != "" {
-		q.Why = text(why)
+	low, high := r.From, r.To
+	if !(low > 0) || !(high > low) {
+		low, high = g.a.testedRange()
+		low, high = low/gridMargin, high*gridMargin
 	}
-}
-
-// quantities lists Hill coefficients, positions and energy of the curve.
-func (g *givenCurve) quantities() []QuantityRow {
-	var rows []QuantityRow
-	for _, s := range slopeMeasures {
-		row := QuantityRow{Mechanism: g.m.c.Name, Curve: g.label, Of: s.of, Name: s.name, Unit: s.unit(g.m)}
-		if s.of == "position" && s.name != "n_H_max_at" {
-			row.Ligand = text(g.m.a.Ligand.Name)
-		}
-		measured := s.f(g.seen)
-		if measured.Why != "" {
-			row.settle(math.NaN(), measured.Why)
-		} else {
-			row.settle(s.back(g.m)(measured.Value), "")
-		}
-		rows = append(rows, row)
+	if !(low > 0) {
+		low, high = 1e-3, 1e3
 	}
-	return rows
-}
-
-// curveGrid is the ligand values asked for, spaced evenly on the logarithm.
-// Where the study leaves an end open it lies a decade beyond the 10 or 90 %
-// point of the outermost curve.
-func (a *Analysis) curveGrid(bound []*givenCurve, defaults map[string]string) ([]float64, error) {
-	r := CurveRequest{}
-	if a.Curve != nil {
-		r = *a.Curve
+	n := r.Points
+	if n < 2 {
+		n = gridPoints
 	}
-	if r.Points == 0 {
-		r.Points = gridPoints
-		defaults["curve.points"] = number(gridPoints)
+	out := make([]float64, n)
+	for i := range out {
+		out[i] = math.Log(low) + math.Log(high/low)*float64(i)/float64(n-1)
 	}
-	low, high := math.Inf(1), math.Inf(-1)
-	for _, g := range bound {
-		if x := mechanisms.XAt(g.seen, 0.1); x.Why == "" {
-			low = min(low, x.Value-math.Ln10)
-		}
-		if x := mechanisms.XAt(g.seen, 0.9); x.Why == "" {
-			high = max(high, x.Value+math.Ln10)
-		}
-	}
-	if r.From > 0 {
-		low = math.Log(r.From)
-	} else {
-		defaults["curve.from"] = "a decade below the lowest x_10"
-	}
-	if r.To > 0 {
-		high = math.Log(r.To)
-	} else {
-		defaults["curve.to"] = "a decade above the highest x_90"
-	}
-	switch {
-	case r.Points < 2 || r.Points > mostGridPoints:
-		return nil, fmt.Errorf("curve: points must lie between 2 and %d", mostGridPoints)
-	case math.IsInf(low, 0) || math.IsInf(high, 0):
-		return nil, errors.New("curve: no half saturation to place the ends by: write   curve: {from: …, to: …}")
-	case !(low < high):
-		return nil, errors.New("curve: from must lie below to")
-	}
-	grid := make([]float64, r.Points)
-	for i := range grid {
-		grid[i] = low + (high-low)*float64(i)/float64(r.Points-1)
-	}
-	return grid, nil
-}
-
-// curveRows samples the curve at values of ln x.
-func (g *givenCurve) curveRows(grid []float64) []CurveRow {
-	rows := make([]CurveRow, len(grid))
-	p := newPoint(len(g.m.consts))
-	for i, lnx := range grid {
-		g.seen.At(lnx, p)
-		rows[i] = CurveRow{Mechanism: g.m.c.Name, Curve: g.label, X: Real(math.Exp(lnx)), Saturation: Real(p.Y), NH: Real(p.NH),
-			Response: nan, Low: nan, High: nan, NHLow: nan, NHHigh: nan}
-	}
-	return rows
-}
-
-// populationRows lists which states are filled; none where the mechanism has no states.
-func (g *givenCurve) populationRows(grid []float64) []PopulationRow {
-	c, ok := g.curve.(mechanisms.Populated)
-	if !ok {
-		return nil
-	}
-	names := c.StateNames()
-	var rows []PopulationRow
-	var shares []float64
-	for _, lnx := range grid {
-		shares = c.Populations(shares, lnx)
-		for s, name := range names {
-			rows = append(rows, PopulationRow{Mechanism: g.m.c.Name, Curve: g.label, X: Real(math.Exp(lnx)), State: name, Share: Real(shares[s])})
-		}
-	}
-	return rows
+	return out
 }
