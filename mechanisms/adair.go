@@ -5,9 +5,64 @@ import (
 	"math"
 )
 
-const adairDoc = `x`
+const adairDoc = `Stepwise binding to n sites, whatever the mechanism.
 
-// adair is fitted in overall association constants β_i.
+	P(x) = Σ β_i xⁱ ,  β_0 = 1 ,  Ȳ = x P′(x)/(n P(x))
+	Kd_i = [(n − i + 1)/i] · β_{i−1}/β_i
+
+Any equilibrium of one molecule with n sites gives such a curve. Equal Kd_i mean no
+cooperativity, falling Kd_i positive, rising Kd_i negative cooperativity or unlike sites.
+
+Constants:
+
+	Kd1 … Kdn      intrinsic (site-level) dissociation constants    ligand's unit
+	beta1 … betan  overall association constants β_i, fitted        1/unitⁱ
+
+The β_i ≥ 0 are fitted, because the best curve often has one of them at zero: then Kd_i
+and Kd_(i+1) do not exist by themselves and their product, which does, is given as
+Kd3·Kd4, say. A start, range or fixed value for a Kd, or a single Kd that differs between
+curves, has the ln Kd fitted instead.
+
+Limits: two sites have n_H = 2/(1 + √(Kd2/Kd1)) at half saturation. All roots of P real
+and negative: the curve is that of independent sites.
+
+What data hold what: n constants from one curve are all that it can hold. Kd1 needs points
+at a few per cent of saturation, Kdn points at a few per cent from the end; the middle ones
+are the loosest. For n = 2 the interaction and unlike sites cannot be told apart.
+
+Keys: sites (1 to 16), constants.
+
+Adair 1925, J. Biol. Chem. 63:529. Wyman 1964, Adv. Protein Chem. 19:223.
+`
+
+// Stepwise binding to n sites, whatever the mechanism.
+//
+//	P(x) = Σ β_i xⁱ ,  β_0 = 1 ,  Ȳ = x P′(x)/(n P(x))
+//	Kd_i = [(n − i + 1)/i] · β_{i−1}/β_i
+//
+// Any equilibrium of one molecule with n sites gives such a curve. Equal Kd_i mean no
+// cooperativity, falling Kd_i positive, rising Kd_i negative cooperativity or unlike sites.
+//
+// Constants:
+//
+//	Kd1 … Kdn      intrinsic (site-level) dissociation constants    ligand's unit
+//	beta1 … betan  overall association constants β_i, fitted        1/unitⁱ
+//
+// The β_i ≥ 0 are fitted, because the best curve often has one of them at zero: then Kd_i
+// and Kd_(i+1) do not exist by themselves and their product, which does, is given as
+// Kd3·Kd4, say. A start, range or fixed value for a Kd, or a single Kd that differs between
+// curves, has the ln Kd fitted instead.
+//
+// Limits: two sites have n_H = 2/(1 + √(Kd2/Kd1)) at half saturation. All roots of P real
+// and negative: the curve is that of independent sites.
+//
+// What data hold what: n constants from one curve are all that it can hold. Kd1 needs points
+// at a few per cent of saturation, Kdn points at a few per cent from the end; the middle ones
+// are the loosest. For n = 2 the interaction and unlike sites cannot be told apart.
+//
+// Keys: sites (1 to 16), constants.
+//
+// Adair 1925, J. Biol. Chem. 63:529. Wyman 1964, Adv. Protein Chem. 19:223.
 type adair struct{ sites int }
 
 // adairSites is fitted in the logarithms of the site constants Kd_i.

@@ -9,9 +9,60 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-const assemblyDoc = `x`
+const assemblyDoc = `Small molecules that assemble, m of them, into a large one.
 
-// assembly is m small molecules in equilibrium with one large one.
+	m S ⇌ L ,  [L]/[S]^m = K_assembly · Ẑ_L(x)/Ẑ_S(x)^m ,  n_S[S] + n_L[L] = protomers
+	Ȳ = (1 − t)Ȳ_S + tȲ_L ,  t = n_L[L]/protomers
+	dȲ/d ln x = (1 − t)Var_S/n_S + t·Var_L/n_L + n_L(Ȳ_L − Ȳ_S)² t(1 − t)/(1 + (m − 1)t)
+
+Ẑ is the binding polynomial over that without ligands and effectors; the mass balance is
+solved exactly. m is the ratio of the numbers of sites: dimer and tetramer, m = 2.
+
+Constants:
+
+	K_assembly   association constant without ligands    1/(unit of the protein)^(m − 1), molecules
+	small.…, large.…   those of the two species          as in their families
+
+Limits: concentrated protein is the large species alone, dilute protein the small one.
+Between them Ȳ depends on the protein's concentration: cooperativity falls with dilution
+where only the large species has it.
+
+What data hold what: curves at several protein concentrations, some where each species
+prevails. One curve at one concentration cannot hold K_assembly beside the constants of
+both species.
+
+Keys: small, large (a number of sites, or a mechanism with a binding polynomial),
+constants. The data give sites_present.
+
+Ackers & Halvorson 1974, Proc. Natl. Acad. Sci. 71:4312.
+`
+
+// Small molecules that assemble, m of them, into a large one.
+//
+//	m S ⇌ L ,  [L]/[S]^m = K_assembly · Ẑ_L(x)/Ẑ_S(x)^m ,  n_S[S] + n_L[L] = protomers
+//	Ȳ = (1 − t)Ȳ_S + tȲ_L ,  t = n_L[L]/protomers
+//	dȲ/d ln x = (1 − t)Var_S/n_S + t·Var_L/n_L + n_L(Ȳ_L − Ȳ_S)² t(1 − t)/(1 + (m − 1)t)
+//
+// Ẑ is the binding polynomial over that without ligands and effectors; the mass balance is
+// solved exactly. m is the ratio of the numbers of sites: dimer and tetramer, m = 2.
+//
+// Constants:
+//
+//	K_assembly   association constant without ligands    1/(unit of the protein)^(m − 1), molecules
+//	small.…, large.…   those of the two species          as in their families
+//
+// Limits: concentrated protein is the large species alone, dilute protein the small one.
+// Between them Ȳ depends on the protein's concentration: cooperativity falls with dilution
+// where only the large species has it.
+//
+// What data hold what: curves at several protein concentrations, some where each species
+// prevails. One curve at one concentration cannot hold K_assembly beside the constants of
+// both species.
+//
+// Keys: small, large (a number of sites, or a mechanism with a binding polynomial),
+// constants. The data give sites_present.
+//
+// Ackers & Halvorson 1974, Proc. Natl. Acad. Sci. 71:4312.
 type assembly struct {
 	parts     [2]part // small, large
 	m         int     // small molecules in a large one

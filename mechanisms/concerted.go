@@ -24,6 +24,7 @@ type concertedCurve struct {
 	jac           []float64 // 3×k: ∂(ln L, ln c, ln K)/∂θ; nil where θ is just these
 	theta         []float64
 	env           Environment
+	axis          axis
 	multiplied    bool
 }
 
@@ -83,21 +84,29 @@ func (c *concertedCurve) reduce() {
 //	∂Ȳ/∂ln c = T̄v_T − nR̄T̄Ȳ_Tδ
 //	∂Ȳ/∂ln K = −(R̄v_R + T̄v_T + nR̄T̄δ²) .
 func (c *concertedCurve) Saturation(dst, lnx []float64, grad *mat.Dense) {
-	if !c.safe(lnx) {
+	x := c.axis.at(lnx)
+	if !c.safe() {
 		c.polynomial()
 		c.polynomialCurve.Saturation(dst, lnx, grad)
 		return
 	}
-	ratio, weight := math.Exp(c.lnC), math.Exp(c.lnL)
-	n := float64(c.n)
-	var data []float64
-	var stride int
-	if grad != nil {
-		raw := grad.RawMatrix()
-		data, stride = raw.Data, raw.Stride
+	unit, ratio, weight := math.Exp(-c.lnK), math.Exp(c.lnC), math.Exp(c.lnL)
+	if grad == nil {
+		for r, x := range x {
+			alpha := x * unit
+			beta := ratio * alpha
+			inv := 1 / ((1 + alpha) * (1 + beta))
+			eR, eT := (1+beta)*inv, (1+alpha)*inv
+			w := weight * power((1+beta)*eR, c.n)
+			dst[r] = (alpha*eR + w*beta*eT) / (1 + w)
+		}
+		return
 	}
-	for r, lx := range lnx {
-		alpha := math.Exp(lx - c.lnK)
+	raw := grad.RawMatrix()
+	n, k := float64(c.n), len(c.theta)
+	direct := c.jac == nil && !c.exclusive
+	for r, x := range x {
+		alpha := x * unit
 		beta := ratio * alpha
 		inv := 1 / ((1 + alpha) * (1 + beta))
 		eR, eT := (1+beta)*inv, (1+alpha)*inv // 1 − Ȳ_R, 1 − Ȳ_T
@@ -105,49 +114,37 @@ func (c *concertedCurve) Saturation(dst, lnx []float64, grad *mat.Dense) {
 		w := weight * power((1+beta)*eR, c.n)
 		fR := 1 / (1 + w)
 		fT := w * fR
-		dst[r] = fR*yR + fT*yT
-		if grad == nil {
-			continue
-		}
 		delta := (alpha - beta) * inv
 		both := fR * fT * delta
 		vT := fT * yT * eT
-		gL := -both
-		gC := vT - n*both*yT
-		gK := -(fR*yR*eR + vT + n*both*delta)
-		row := data[r*stride : r*stride+len(c.theta)]
-		c.chain(row, gL, gC, gK)
+		gL, gC, gK := -both, vT-n*both*yT, -(fR*yR*eR + vT + n*both*delta)
+		dst[r] = fR*yR + fT*yT
+		row := raw.Data[r*raw.Stride : r*raw.Stride+k]
+		if direct {
+			row[0], row[1], row[2] = gL, gC, gK
+		} else {
+			c.chain(row, gL, gC, gK)
+		}
 	}
 }
 
-// chain writes the gradient in θ.
+// chain writes the gradient in θ where θ is not (ln L, ln c, ln K) itself.
 func (c *concertedCurve) chain(row []float64, gL, gC, gK float64) {
-	switch {
-	case c.jac != nil:
-		k := len(row)
-		for m := range row {
-			row[m] = gL*c.jac[m] + gC*c.jac[k+m] + gK*c.jac[2*k+m]
-		}
-	case c.exclusive:
+	if c.jac == nil {
 		row[0], row[1] = gL, gK
-	default:
-		row[0], row[1], row[2] = gL, gC, gK
+		return
+	}
+	k := len(row)
+	for m := range row {
+		row[m] = gL*c.jac[m] + gC*c.jac[k+m] + gK*c.jac[2*k+m]
 	}
 }
 
-// safe says whether nothing in the closed form can leave the range of a float64.
-func (c *concertedCurve) safe(lnx []float64) bool {
-	const far = 300
-	top := math.Abs(c.lnL) + float64(c.n)*math.Max(c.lnC, 0)
-	if !(top < 600) || c.lnC > far {
-		return false
-	}
-	for _, lx := range lnx {
-		if lx-c.lnK > far {
-			return false
-		}
-	}
-	return true
+// safe says whether nothing in the closed form leaves the range of a float64.
+func (c *concertedCurve) safe() bool {
+	up := math.Max(c.lnC, 0)
+	return c.axis.plain && math.Abs(c.lnK) <= reach && c.axis.top-c.lnK+up <= reach &&
+		math.Abs(c.lnL)+float64(c.n)*up <= 2*reach
 }
 
 // power is qⁿ.

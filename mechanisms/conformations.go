@@ -5,9 +5,68 @@ import (
 	"slices"
 )
 
-const conformationsDoc = `x`
+const conformationsDoc = `Any number of conformations in equilibrium, each with its own sites and ligands.
 
-// conformational is any number of conformations in equilibrium.
+	Z = Σ_c W_c Π_e (1 + y_e/K_ce)^(m_ce) (1 + x/K_c)^(n_c) ,  W of the first = 1
+
+Each conformation has a weight W against the first, n_c sites of constant K_c (none: it
+does not bind), and m_ce sites for effector e. mwc is the case of two conformations, T
+with weight L and K_T = K_R/c.
+
+Constants, under the names that the study gives:
+
+	weights    [conformation]/[first one] without ligands    no unit
+	K          dissociation constants of the ligand          ligand's unit
+	effectors' dissociation constants                        effector's unit
+	turnover_…, signal_…   where they are free               in units of the others
+
+A name used twice is one constant. Conformations that are alike in everything but their
+constants can be exchanged: give ranges where that matters. An effector that competes for
+the ligand's sites is said so under effectors (at: ligand site).
+
+Limits: weights → 0 leave the first conformation alone.
+
+What data hold what: one binding curve holds at most n constants. A conformation that is
+like another in its sites (held: {like: A, weight: r}) changes binding not at all; it shows
+in a signal that sees only one of the two, such as the share of a repressor that is not on
+its operator.
+
+Keys: conformations ({A: {sites: 2, K: K_A}, I: {sites: 2, K: K_I, weight: L_I}}; like,
+ligands, effector sites), effectors, turnover, sees (weights, or a list of names), constants.
+
+Monod, Wyman & Changeux 1965, J. Mol. Biol. 12:88. Wyman & Gill 1990, Binding and Linkage.
+`
+
+// Any number of conformations in equilibrium, each with its own sites and ligands.
+//
+//	Z = Σ_c W_c Π_e (1 + y_e/K_ce)^(m_ce) (1 + x/K_c)^(n_c) ,  W of the first = 1
+//
+// Each conformation has a weight W against the first, n_c sites of constant K_c (none: it
+// does not bind), and m_ce sites for effector e. mwc is the case of two conformations, T
+// with weight L and K_T = K_R/c.
+//
+// Constants, under the names that the study gives:
+//
+//	weights    [conformation]/[first one] without ligands    no unit
+//	K          dissociation constants of the ligand          ligand's unit
+//	effectors' dissociation constants                        effector's unit
+//	turnover_…, signal_…   where they are free               in units of the others
+//
+// A name used twice is one constant. Conformations that are alike in everything but their
+// constants can be exchanged: give ranges where that matters. An effector that competes for
+// the ligand's sites is said so under effectors (at: ligand site).
+//
+// Limits: weights → 0 leave the first conformation alone.
+//
+// What data hold what: one binding curve holds at most n constants. A conformation that is
+// like another in its sites (held: {like: A, weight: r}) changes binding not at all; it shows
+// in a signal that sees only one of the two, such as the share of a repressor that is not on
+// its operator.
+//
+// Keys: conformations ({A: {sites: 2, K: K_A}, I: {sites: 2, K: K_I, weight: L_I}}; like,
+// ligands, effector sites), effectors, turnover, sees (weights, or a list of names), constants.
+//
+// Monod, Wyman & Changeux 1965, J. Mol. Biol. 12:88. Wyman & Gill 1990, Binding and Linkage.
 type conformational struct {
 	sites     int
 	constants []Constant

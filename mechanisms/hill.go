@@ -6,8 +6,56 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-const hillDoc = `x`
+const hillDoc = `Hill equation, an empirical curve.
 
+	Ȳ = xʰ/(K_halfʰ + xʰ)
+
+x is the free ligand, h the constant n_H. The Hill coefficient is h at every
+saturation, and x_90/x_10 = 81^(1/h).
+
+Constants:
+
+	K_half   ligand at half saturation    ligand's unit
+	n_H      the exponent h               no unit
+
+Limits: h = 1 is one simple site. A whole number h = n is n sites that fill only
+together, which no real molecule does. With h < 1 the curve is exactly that of simple
+sites whose ln K is spread with the density of Sips, of standard deviation
+(π/√3)·√(1/h² − 1).
+
+What data hold what: points on both sides of half saturation hold both constants. The
+exponent depends on the range that is fitted and on the ends of the response where these
+are free: it is a comparison, not a mechanism, and no count of sites.
+
+Keys: constants.
+
+Hill 1910, J. Physiol. 40:iv. Sips 1948, J. Chem. Phys. 16:490.
+`
+
+// Hill equation, an empirical curve.
+//
+//	Ȳ = xʰ/(K_halfʰ + xʰ)
+//
+// x is the free ligand, h the constant n_H. The Hill coefficient is h at every
+// saturation, and x_90/x_10 = 81^(1/h).
+//
+// Constants:
+//
+//	K_half   ligand at half saturation    ligand's unit
+//	n_H      the exponent h               no unit
+//
+// Limits: h = 1 is one simple site. A whole number h = n is n sites that fill only
+// together, which no real molecule does. With h < 1 the curve is exactly that of simple
+// sites whose ln K is spread with the density of Sips, of standard deviation
+// (π/√3)·√(1/h² − 1).
+//
+// What data hold what: points on both sides of half saturation hold both constants. The
+// exponent depends on the range that is fitted and on the ends of the response where these
+// are free: it is a comparison, not a mechanism, and no count of sites.
+//
+// Keys: constants.
+//
+// Hill 1910, J. Physiol. 40:iv. Sips 1948, J. Chem. Phys. 16:490.
 type hill struct{}
 
 func buildHill(d Definition) (Mechanism, error) {

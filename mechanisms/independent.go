@@ -7,10 +7,56 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-const independentDoc = `x`
+const independentDoc = `Independent sites of one or more classes, equal within a class.
 
-// independent is classes of equal sites; class c has the constant
-// ln Kd_c = lnK[c]·θ.
+	P(x) = Π_c (1 + x/Kd_c)^(n_c) ,  Ȳ = Σ_c (n_c/n) x/(Kd_c + x)
+
+Constants:
+
+	Kd      dissociation constant of each class       ligand's unit
+	ratio   Kd of a class over that of the one before, at least 1, fitted
+
+The classes are listed from the tightest to the loosest, and stay in that order: the Kd of
+the first and the ratios are fitted, and a ratio of 1 says that two classes are one. Who
+does not know which of two unequal classes is tight gives both orders as two mechanisms.
+A start, range or fixed value for a Kd, or a single Kd that differs between curves, has
+each ln Kd fitted by itself; their order is then the study's.
+
+Limits: one class is one simple site, n_H = 1. n_H ≤ 1 everywhere; two equal classes with
+ratio r have n_H = 4√r/(1 + √r)² at half saturation.
+
+What data hold what: a ratio below about 4 hides in ordinary scatter. Two sites of
+different affinity and two sites of negative cooperativity give the same curves.
+
+Keys: classes ({tight: 2, loose: 2}), constants.
+
+Onufriev, Case & Ullmann 2001, Biochemistry 40:3413.
+`
+
+// Independent sites of one or more classes, equal within a class.
+//
+//	P(x) = Π_c (1 + x/Kd_c)^(n_c) ,  Ȳ = Σ_c (n_c/n) x/(Kd_c + x)
+//
+// Constants:
+//
+//	Kd      dissociation constant of each class       ligand's unit
+//	ratio   Kd of a class over that of the one before, at least 1, fitted
+//
+// The classes are listed from the tightest to the loosest, and stay in that order: the Kd of
+// the first and the ratios are fitted, and a ratio of 1 says that two classes are one. Who
+// does not know which of two unequal classes is tight gives both orders as two mechanisms.
+// A start, range or fixed value for a Kd, or a single Kd that differs between curves, has
+// each ln Kd fitted by itself; their order is then the study's.
+//
+// Limits: one class is one simple site, n_H = 1. n_H ≤ 1 everywhere; two equal classes with
+// ratio r have n_H = 4√r/(1 + √r)² at half saturation.
+//
+// What data hold what: a ratio below about 4 hides in ordinary scatter. Two sites of
+// different affinity and two sites of negative cooperativity give the same curves.
+//
+// Keys: classes ({tight: 2, loose: 2}), constants.
+//
+// Onufriev, Case & Ullmann 2001, Biochemistry 40:3413.
 type independent struct {
 	family    string
 	classes   []Count

@@ -8,9 +8,62 @@ import (
 	"gonum.org/v1/gonum/mat"
 )
 
-const mixtureDoc = `x`
+const mixtureDoc = `Separate populations of molecules, side by side.
 
-// mixture is separate populations of molecules, with shares of all sites.
+	Ȳ = Σ_p f_p Ȳ_p ,  Σ f_p = 1 ,  n_H = Σ f_p (dȲ_p/d ln x)/[Ȳ(1 − Ȳ)]
+
+f_p is a share of all sites. Averages add, partition functions do not: there is no binding
+polynomial and no interaction energy. ln x_median is the mean of the parts' by share.
+
+Constants:
+
+	those of the parts, under the name of the part
+	share         of all sites, of the first of two parts            no unit, logit scale
+	share_ratio   of every later of three or more parts, sites of it
+	              over sites of the first; shares are quoted         no unit
+
+Plain parts (a number of equal sites) are listed from the tightest to the loosest and stay
+in that order, as the classes of independent do. Parts that are mechanisms of one kind can
+be exchanged: give ranges where that matters. Shares fixed for every part must sum to 1.
+
+Limits: equal parts are one. With plain parts n_H ≤ 1 everywhere.
+
+What data hold what: share and constants are held where the parts lie well apart (a ratio
+above 10); a mixture of simple sites, unlike sites and negative cooperativity are three
+readings of one curve.
+
+Keys: parts ({tight: 1, loose: 1}, or a mechanism for each), constants.
+
+Feldman 1972, Anal. Biochem. 48:317.
+`
+
+// Separate populations of molecules, side by side.
+//
+//	Ȳ = Σ_p f_p Ȳ_p ,  Σ f_p = 1 ,  n_H = Σ f_p (dȲ_p/d ln x)/[Ȳ(1 − Ȳ)]
+//
+// f_p is a share of all sites. Averages add, partition functions do not: there is no binding
+// polynomial and no interaction energy. ln x_median is the mean of the parts' by share.
+//
+// Constants:
+//
+//	those of the parts, under the name of the part
+//	share         of all sites, of the first of two parts            no unit, logit scale
+//	share_ratio   of every later of three or more parts, sites of it
+//	              over sites of the first; shares are quoted         no unit
+//
+// Plain parts (a number of equal sites) are listed from the tightest to the loosest and stay
+// in that order, as the classes of independent do. Parts that are mechanisms of one kind can
+// be exchanged: give ranges where that matters. Shares fixed for every part must sum to 1.
+//
+// Limits: equal parts are one. With plain parts n_H ≤ 1 everywhere.
+//
+// What data hold what: share and constants are held where the parts lie well apart (a ratio
+// above 10); a mixture of simple sites, unlike sites and negative cooperativity are three
+// readings of one curve.
+//
+// Keys: parts ({tight: 1, loose: 1}, or a mechanism for each), constants.
+//
+// Feldman 1972, Anal. Biochem. 48:317.
 type mixture struct {
 	sites     int
 	parts     []part

@@ -7,10 +7,78 @@ import (
 	"slices"
 )
 
-const mwcDoc = `x`
+const mwcDoc = `Concerted transition of all sites between two conformations, R and T.
 
-// mwc is two conformations, R and T, in equilibrium. Its list of conformers is
-// shared by the curves and only read.
+	Z = (1 + α)ⁿ + L(1 + cα)ⁿ ,  α = x/K_R ,  c = K_R/K_T ,  L = [T]/[R] without ligand
+	Ȳ = [α(1 + α)ⁿ⁻¹ + Lcα(1 + cα)ⁿ⁻¹]/Z ,  R̄ = (1 + α)ⁿ/Z
+	n_H = 1 + (n − 1) R̄T̄ (Ȳ_R − Ȳ_T)²/[Ȳ(1 − Ȳ)]
+
+An effector y with a site of its own on every protomer multiplies L by
+[(1 + y/K_T)/(1 + y/K_R)]ⁿ with its own K_T and K_R; one that competes for the ligand's
+site turns 1 + α into 1 + α + y/K_R, and likewise for T. Unlike classes of sites replace
+(1 + α)ⁿ by a product over classes, each with its own c and K_R; competitors bind all
+classes alike.
+
+Constants:
+
+	L     allosteric constant [T]/[R]                     no unit
+	c     K_R/K_T, at most 1: R is the tighter one        no unit
+	K_R   dissociation constant of conformation R         ligand's unit
+	effector.K_R, effector.K_T                            effector's unit
+	turnover_T, signal_T   where they are free            in units of the other conformation
+
+Limits: c = 0 is exclusive binding, only R binds; c = 1 or L → 0 is n equal sites. Where
+L·c^(n/2) = 1 the curve is symmetrical, half full at x = K_R/√c, and steepest there.
+n_H is never below 1.
+
+What data hold what: one curve holds at most n constants, so that with two sites one must
+be fixed. L and K_R are tied: with small c the data fix K_R·L^(1/n), not each. An effector
+series, or a signal that sees one conformation, unties them. From one curve unlike
+classes of the same size cannot be told which is which.
+
+Keys: sites (a number up to 16, or classes {alpha: 2, beta: 2}), effectors ({alanine:
+{binds: T}}; R, T or both; at: ligand site), turnover ({R: 1, T: free}, of filled sites, 0
+where not said), sees ({R: 1}), constants (c: {fixed: 0} for exclusive binding).
+
+Monod, Wyman & Changeux 1965, J. Mol. Biol. 12:88. Rubin & Changeux 1966, J. Mol. Biol.
+21:265. Middendorf & Aldrich 2017, J. Gen. Physiol. 149:105.
+`
+
+// Concerted transition of all sites between two conformations, R and T.
+//
+//	Z = (1 + α)ⁿ + L(1 + cα)ⁿ ,  α = x/K_R ,  c = K_R/K_T ,  L = [T]/[R] without ligand
+//	Ȳ = [α(1 + α)ⁿ⁻¹ + Lcα(1 + cα)ⁿ⁻¹]/Z ,  R̄ = (1 + α)ⁿ/Z
+//	n_H = 1 + (n − 1) R̄T̄ (Ȳ_R − Ȳ_T)²/[Ȳ(1 − Ȳ)]
+//
+// An effector y with a site of its own on every protomer multiplies L by
+// [(1 + y/K_T)/(1 + y/K_R)]ⁿ with its own K_T and K_R; one that competes for the ligand's
+// site turns 1 + α into 1 + α + y/K_R, and likewise for T. Unlike classes of sites replace
+// (1 + α)ⁿ by a product over classes, each with its own c and K_R; competitors bind all
+// classes alike.
+//
+// Constants:
+//
+//	L     allosteric constant [T]/[R]                     no unit
+//	c     K_R/K_T, at most 1: R is the tighter one        no unit
+//	K_R   dissociation constant of conformation R         ligand's unit
+//	effector.K_R, effector.K_T                            effector's unit
+//	turnover_T, signal_T   where they are free            in units of the other conformation
+//
+// Limits: c = 0 is exclusive binding, only R binds; c = 1 or L → 0 is n equal sites. Where
+// L·c^(n/2) = 1 the curve is symmetrical, half full at x = K_R/√c, and steepest there.
+// n_H is never below 1.
+//
+// What data hold what: one curve holds at most n constants, so that with two sites one must
+// be fixed. L and K_R are tied: with small c the data fix K_R·L^(1/n), not each. An effector
+// series, or a signal that sees one conformation, unties them. From one curve unlike
+// classes of the same size cannot be told which is which.
+//
+// Keys: sites (a number up to 16, or classes {alpha: 2, beta: 2}), effectors ({alanine:
+// {binds: T}}; R, T or both; at: ligand site), turnover ({R: 1, T: free}, of filled sites, 0
+// where not said), sees ({R: 1}), constants (c: {fixed: 0} for exclusive binding).
+//
+// Monod, Wyman & Changeux 1965, J. Mol. Biol. 12:88. Rubin & Changeux 1966, J. Mol. Biol.
+// 21:265. Middendorf & Aldrich 2017, J. Gen. Physiol. 149:105.
 type mwc struct {
 	sites     int
 	constants []Constant

@@ -30,6 +30,7 @@ type average struct {
 	e      []float64 // (n+1)×k: E_ik
 	q      []float64 // k×(2n+1)
 
+	axis        axis
 	lnW, p, eps []float64 // n+1, n+1, (n+1)×k: terms of one point
 	lnP         float64   // ln Σ B_i xⁱ
 	dMean, dCov []float64 // k: ∂ln P/∂θ and Cov(i, ∂ln B_i/∂θ)
@@ -116,16 +117,19 @@ func (a *average) lift() {
 
 // curve writes ⟨o⟩ and its gradient at each ln x.
 func (a *average) curve(dst, lnx []float64, grad *mat.Dense) {
-	if !a.scaled {
+	x := a.axis.at(lnx)
+	if !a.scaled || !a.axis.plain || math.Abs(a.s) > reach {
 		a.pointwise(dst, lnx, grad)
 		return
 	}
+	middle := math.Exp(a.s)
+	unit := 1 / middle
 	if grad == nil {
-		for r, lx := range lnx {
-			if z := lx - a.s; z <= 0 {
-				dst[r] = ascend(a.bo, a.b, math.Exp(z))
+		for r, x := range x {
+			if x <= middle {
+				dst[r] = ascend(a.bo, a.b, x*unit)
 			} else {
-				dst[r] = descend(a.bo, a.b, math.Exp(-z))
+				dst[r] = descend(a.bo, a.b, middle/x)
 			}
 		}
 		return
@@ -135,12 +139,12 @@ func (a *average) curve(dst, lnx []float64, grad *mat.Dense) {
 	}
 	raw := grad.RawMatrix()
 	k, w := a.c.k, 2*a.c.n+1
-	for r, lx := range lnx {
+	for r, x := range x {
 		row := raw.Data[r*raw.Stride : r*raw.Stride+k]
-		if z := lx - a.s; z <= 0 {
-			dst[r] = ascendGrad(row, a.bo, a.b, a.q, w, math.Exp(z))
+		if x <= middle {
+			dst[r] = ascendGrad(row, a.bo, a.b, a.q, w, x*unit)
 		} else {
-			dst[r] = descendGrad(row, a.bo, a.b, a.q, w, math.Exp(-z))
+			dst[r] = descendGrad(row, a.bo, a.b, a.q, w, middle/x)
 		}
 	}
 }

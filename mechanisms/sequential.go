@@ -5,8 +5,66 @@ import (
 	"slices"
 )
 
-const sequentialDoc = `x`
+const sequentialDoc = `Pairwise interaction of sites in contact, each changing as it fills.
 
+	w = (x/K)^i · K_AB^(contacts of an empty with a filled site) · K_BB^(contacts of two filled sites)
+	P(x) = Σ w over all 2ⁿ ways of filling the sites of the contact graph
+
+Constants:
+
+	K      dissociation constant of a site with empty neighbours    ligand's unit
+	K_BB   weight of a contact between two filled sites             no unit
+	K_AB   weight of a contact between an empty and a filled site   no unit, 1 unless asked for
+
+Where every site has the same number d of contacts, K_AB cannot be told from the others:
+K/K_AB^d and K_BB/K_AB² are all that a curve shows. So K_AB is 1, and K and K_BB are
+effective constants. On an irregular graph K_AB is free when constants speak of it, but it
+is poorly held near K_AB = K_BB = 1.
+
+Limits: K_BB = 1 (and K_AB = 1) is n equal sites; K_BB > 1 positive, K_BB < 1 negative
+cooperativity. A square with K_BB = a is half full at x = K/a, with
+n_H = (8 + 8/a)/(2 + 8/a + (4a + 2)/a²). Two sites: the same curves as adair.
+
+What data hold what: two constants, held by position and steepness. Layouts with the same
+number of sites differ little: square and tetrahedral contacts are rarely told apart, nor
+either from mwc.
+
+Keys: contacts (pair, triangle, square, tetrahedral, octahedral; linear, ring, prism with
+sites; or a list [[1, 2], [2, 3]] of contacts), sites, constants. Up to 16 sites.
+
+Pauling 1935, Proc. Natl. Acad. Sci. 21:186. Koshland, Némethy & Filmer 1966, Biochemistry
+5:365.
+`
+
+// Pairwise interaction of sites in contact, each changing as it fills.
+//
+//	w = (x/K)^i · K_AB^(contacts of an empty with a filled site) · K_BB^(contacts of two filled sites)
+//	P(x) = Σ w over all 2ⁿ ways of filling the sites of the contact graph
+//
+// Constants:
+//
+//	K      dissociation constant of a site with empty neighbours    ligand's unit
+//	K_BB   weight of a contact between two filled sites             no unit
+//	K_AB   weight of a contact between an empty and a filled site   no unit, 1 unless asked for
+//
+// Where every site has the same number d of contacts, K_AB cannot be told from the others:
+// K/K_AB^d and K_BB/K_AB² are all that a curve shows. So K_AB is 1, and K and K_BB are
+// effective constants. On an irregular graph K_AB is free when constants speak of it, but it
+// is poorly held near K_AB = K_BB = 1.
+//
+// Limits: K_BB = 1 (and K_AB = 1) is n equal sites; K_BB > 1 positive, K_BB < 1 negative
+// cooperativity. A square with K_BB = a is half full at x = K/a, with
+// n_H = (8 + 8/a)/(2 + 8/a + (4a + 2)/a²). Two sites: the same curves as adair.
+//
+// What data hold what: two constants, held by position and steepness. Layouts with the same
+// number of sites differ little: square and tetrahedral contacts are rarely told apart, nor
+// either from mwc.
+//
+// Keys: contacts (pair, triangle, square, tetrahedral, octahedral; linear, ring, prism with
+// sites; or a list [[1, 2], [2, 3]] of contacts), sites, constants. Up to 16 sites.
+//
+// Pauling 1935, Proc. Natl. Acad. Sci. 21:186. Koshland, Némethy & Filmer 1966, Biochemistry
+// 5:365.
 type sequential struct {
 	sites     int
 	constants []Constant

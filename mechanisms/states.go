@@ -6,10 +6,50 @@ import (
 	"slices"
 )
 
-const statesDoc = `x`
+const statesDoc = `States listed one by one.
 
-// stated is a list of states, each with its ligands and the constants that
-// multiply its weight.
+	w_s = g_s · Π_k (constant k)^(A_sk) · x^(i_s) · Π_e y_e^(m_se) ,  Z = Σ w_s ,  Ȳ = ⟨i⟩/n
+
+State s holds i_s ligands and m_se of effector e in g_s ways; n is the largest i_s. One
+state is the reference, with no ligand, effector or constant and the weight 1.
+
+Constants, under the names that the study gives: each takes its unit from the rule that a
+weight has none. A dissociation constant has the exponent −1 for one ligand.
+
+Limits: whatever the list allows. Ȳ rises always; a response may not: states that are full
+and silent give substrate inhibition, and a response that turns back has no Hill
+coefficient.
+
+What data hold what: one curve holds at most n constants. Constants that only ever appear
+together are refused.
+
+Keys: states ([{name: E, ligands: 0}, {name: ES, ligands: 1, ways: 2, constants: {K_S:
+-1}}]), effectors, turnover and sees (a number per state, free for some), constants.
+
+Wyman & Gill 1990, Binding and Linkage. Hill 1985, Cooperativity Theory in Biochemistry.
+`
+
+// States listed one by one.
+//
+//	w_s = g_s · Π_k (constant k)^(A_sk) · x^(i_s) · Π_e y_e^(m_se) ,  Z = Σ w_s ,  Ȳ = ⟨i⟩/n
+//
+// State s holds i_s ligands and m_se of effector e in g_s ways; n is the largest i_s. One
+// state is the reference, with no ligand, effector or constant and the weight 1.
+//
+// Constants, under the names that the study gives: each takes its unit from the rule that a
+// weight has none. A dissociation constant has the exponent −1 for one ligand.
+//
+// Limits: whatever the list allows. Ȳ rises always; a response may not: states that are full
+// and silent give substrate inhibition, and a response that turns back has no Hill
+// coefficient.
+//
+// What data hold what: one curve holds at most n constants. Constants that only ever appear
+// together are refused.
+//
+// Keys: states ([{name: E, ligands: 0}, {name: ES, ligands: 1, ways: 2, constants: {K_S:
+// -1}}]), effectors, turnover and sees (a number per state, free for some), constants.
+//
+// Wyman & Gill 1990, Binding and Linkage. Hill 1985, Cooperativity Theory in Biochemistry.
 type stated struct {
 	sites     int
 	constants []Constant
