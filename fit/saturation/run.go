@@ -162,7 +162,7 @@ func (a *Analysis) quantities(ctx context.Context, f *fitted) []QuantityRow {
 			}
 		})
 		if !f.moveTo(ctx, better) {
-			return append(rows, f.readings(ctx)...)
+			return append(append(rows, f.readings(ctx)...), f.bootstrapRows(ctx)...)
 		}
 	}
 	return nil

@@ -1,0 +1,264 @@
+package saturation
+
+import (
+	"context"
+	"fmt"
+	"math"
+	"math/rand/v2"
+	"slices"
+	"sort"
+
+	"ligancy/fit"
+)
+
+// How studies are drawn anew. The unit of replication is the preparation: a
+// bootstrap over points speaks of repeated readings only.
+const (
+	byParametric = "parametric"
+	byResidual   = "residual"
+)
+
+// enoughDraws is the share of draws that must have an answer before their
+// quantiles are printed.
+const enoughDraws = 0.9
+
+// bootstrapRows gives every number of a fit a bootstrap interval (percentiles;
+// Efron & Tibshirani 1993), where the study asks for one. Draw k depends on the
+// study's number and on k alone.
+func (f *fitted) bootstrapRows(ctx context.Context) []QuantityRow {
+	b := f.m.a.Settings.Bootstrap
+	if b.Draws <= 0 || f.result == nil || !f.answered() {
+		return nil
+	}
+	var list []wanted
+	for _, w := range f.wantedRows() {
+		if v := w.make()(f.result.Theta, make([]float64, len(f.m.params))); !math.IsNaN(v) {
+			list = append(list, w)
+		}
+	}
+	draw, why := f.drawer(b.By)
+	values := make([][]float64, b.Draws)
+	if why == "" {
+		f.m.a.sideBySide(b.Draws, func() worker {
+			return worker{
+				do: func(k int) {
+					if ctx.Err() == nil {
+						values[k] = draw(ctx, k, list)
+					}
+				},
+				better: func() []float64 { return nil },
+			}
+		})
+	}
+	rows := make([]QuantityRow, 0, len(list))
+	for i, w := range list {
+		rows = append(rows, bootstrapRow(w, f.m.a.Settings.Level, column(values, i), b, why))
+	}
+	return rows
+}
+
+// drawer makes one draw: values of the wanted numbers, or nil without an answer.
+type drawer func(ctx context.Context, k int, list []wanted) []float64
+
+func (f *fitted) drawer(by string) (drawer, string) {
+	switch by {
+	case byParametric, byResidual, "":
+		return f.drawPoints(by == byResidual), ""
+	case byPreparation:
+		if n := len(f.m.a.levels(byPreparation)); n < 2 {
+			return nil, "a bootstrap by preparation needs at least two preparations"
+		}
+		return f.drawPreparations, ""
+	}
+	return nil, fmt.Sprintf("a bootstrap by %q is not known", by)
+}
+
+// drawPoints draws new values at the same places: from the scatter model, or
+// from the fit's own residuals with replacement, inflated by √(N/(N−p)).
+func (f *fitted) drawPoints(residual bool) drawer {
+	s := f.simulated()
+	pools, sigma := make([][]float64, len(f.m.blocks)), make([]float64, len(f.m.blocks))
+	for bi, b := range f.m.blocks {
+		b.predict(f.result.Theta, false)
+		inflate := math.Sqrt(float64(f.row.Points) / math.Max(1, float64(f.row.Points-f.m.free())))
+		rel := f.deviations(b)
+		sigma[bi] = f.blockSigma(bi)
+		for i := range b.pts {
+			pools[bi] = append(pools[bi], inflate*(b.y[i]-b.predicted(i))/rel[i])
+		}
+	}
+	return func(ctx context.Context, k int, list []wanted) []float64 {
+		rng := rand.New(rand.NewPCG(f.m.a.Settings.Seed, 1<<40|uint64(k)))
+		y := make([][]float64, len(s.mean))
+		for bi := range y {
+			y[bi] = make([]float64, len(s.mean[bi]))
+			for i := range y[bi] {
+				e := s.sd[bi][i] * rng.NormFloat64()
+				if residual {
+					e = pools[bi][rng.IntN(len(pools[bi]))] * s.sd[bi][i] / sigma[bi]
+				}
+				y[bi][i] = s.mean[bi][i] + e
+			}
+		}
+		g := *f
+		sim := simulation{}
+		g.problem = sim.replaced(&g, y, [][]float64{f.result.Theta})
+		g.m = g.m.over(g.problem.Blocks)
+		r, err := g.solve(ctx, fit.Settings{Starts: 1, Workers: 1})
+		if err != nil || r == nil || r.Status == fit.NoAnswer || r.Status == fit.Stopped {
+			return nil
+		}
+		return valuesAt(list, r.Theta)
+	}
+}
+
+// simulated is the predictions and absolute deviations of a fit.
+func (f *fitted) simulated() (s struct{ mean, sd [][]float64 }) {
+	for bi, b := range f.m.blocks {
+		dev := f.deviations(b)
+		sigma := f.blockSigma(bi)
+		mean := make([]float64, len(b.pts))
+		for i := range mean {
+			mean[i] = b.predicted(i)
+			dev[i] *= sigma
+		}
+		s.mean, s.sd = append(s.mean, mean), append(s.sd, dev)
+	}
+	return s
+}
+
+// valuesAt evaluates the wanted numbers on the printed scale.
+func valuesAt(list []wanted, theta []float64) []float64 {
+	out := make([]float64, len(list))
+	grad := make([]float64, len(theta))
+	for i := range list {
+		out[i] = list[i].back(list[i].make()(theta, grad))
+	}
+	return out
+}
+
+// drawPreparations draws as many preparations as there are, with replacement,
+// all points of one together, and fits them.
+func (f *fitted) drawPreparations(ctx context.Context, k int, list []wanted) []float64 {
+	names := f.m.a.levels(byPreparation)
+	rng := rand.New(rand.NewPCG(f.m.a.Settings.Seed, 1<<41|uint64(k)))
+	times := map[string]int{}
+	for range names {
+		times[names[rng.IntN(len(names))]]++
+	}
+	a := *f.m.a
+	a.Data = slices.Clone(f.m.a.Data)
+	for di := range a.Data {
+		var pts []Point
+		for _, p := range f.m.a.Data[di].Points {
+			for range times[p.Preparation] {
+				pts = append(pts, p)
+			}
+		}
+		a.Data[di].Points = pts
+	}
+	m, err := newModel(&a, f.m.c)
+	if err != nil {
+		return nil
+	}
+	g := &fitted{m: m, twinOf: -1}
+	g.problem = m.problem()
+	g.problem.Starts = [][]float64{f.m.carry(f.result.Theta, m)}
+	for i := range g.problem.Parameters {
+		g.problem.Parameters[i].StartLow, g.problem.Parameters[i].StartHigh = math.NaN(), math.NaN()
+	}
+	r, err := g.solve(ctx, fit.Settings{Starts: 1, Workers: 1})
+	if err != nil || r == nil || r.Status == fit.NoAnswer || r.Status == fit.Stopped {
+		return nil
+	}
+	g.result = r
+	return matched(list, g.wantedRows(), r.Theta)
+}
+
+// carry brings θ into another layout of the same candidate; what the other has
+// and this has not starts in the middle of its range.
+func (m *model) carry(theta []float64, to *model) []float64 {
+	out := to.firstStarts()[0]
+	for i, p := range to.params {
+		for j, q := range m.params {
+			if p.kind == q.kind && p.constant == q.constant && p.quantity == q.quantity && p.data == q.data && p.curve == q.curve {
+				out[i] = theta[j]
+			}
+		}
+	}
+	return out
+}
+
+// matched evaluates the numbers of another layout in the order of list; what is
+// not there is NaN.
+func matched(list, other []wanted, theta []float64) []float64 {
+	at := map[string]int{}
+	for i := range other {
+		at[other[i].key()] = i
+	}
+	out := make([]float64, len(list))
+	grad := make([]float64, len(theta))
+	for i := range list {
+		out[i] = math.NaN()
+		if j, ok := at[list[i].key()]; ok {
+			out[i] = other[j].back(other[j].make()(theta, grad))
+		}
+	}
+	return out
+}
+
+// key tells the numbers of one mechanism apart.
+func (w *wanted) key() string {
+	s := w.row.Of + "\x00" + w.row.Name + "\x00" + w.row.Curve
+	for _, p := range []*string{w.row.Ligand, w.row.Site} {
+		s += "\x00"
+		if p != nil {
+			s += *p
+		}
+	}
+	return s
+}
+
+// column gathers number i of all draws, sorted; draws without an answer and
+// values that do not exist are left out.
+func column(values [][]float64, i int) []float64 {
+	var out []float64
+	for _, v := range values {
+		if v != nil && !math.IsNaN(v[i]) {
+			out = append(out, v[i])
+		}
+	}
+	sort.Float64s(out)
+	return out
+}
+
+// bootstrapRow is one number with its percentile interval.
+func bootstrapRow(w wanted, level float64, sorted []float64, b Bootstrap, why string) QuantityRow {
+	row := w.row
+	row.Value, row.Low, row.High, row.Level = nan, nan, nan, nan
+	row.Interval, row.Held = "bootstrap", "neither"
+	if why == "" && float64(len(sorted)) < enoughDraws*float64(b.Draws) {
+		why = fmt.Sprintf("only %d of %d draws have an answer", len(sorted), b.Draws)
+	}
+	if why != "" {
+		row.Why = text(why)
+		return row
+	}
+	low, high := quantile(sorted, (1-level)/2), quantile(sorted, (1+level)/2)
+	row.Value, row.Low, row.High, row.Level = finite(quantile(sorted, 0.5)), finite(low), finite(high), Real(level)
+	row.Held = held(math.IsInf(low, 0), math.IsInf(high, 0))
+	return row
+}
+
+// quantile interpolates linearly between order statistics (Hyndman & Fan 1996, type 7).
+func quantile(sorted []float64, p float64) float64 {
+	if len(sorted) == 0 {
+		return math.NaN()
+	}
+	h := p * float64(len(sorted)-1)
+	i := int(h)
+	if i+1 >= len(sorted) || sorted[i] == sorted[i+1] {
+		return sorted[i]
+	}
+	return sorted[i] + (h-float64(i))*(sorted[i+1]-sorted[i])
+}
