@@ -66,7 +66,7 @@ type Response struct {
 	Percent bool // y and its ends are in percent (kept so; a saturation of 1 is 100)
 	// Low and High are the ends; High is V of a velocity and Bmax of bound.
 	Low, High, Nonspecific Setting
-	SitesPerMolecule       bool              // bound, in mol per mol: High is the number of sites; fixed at 0, that of each mechanism
+	SitesPerMolecule       bool              // bound, in mol per mol: High is the number of sites
 	Differs                map[string]string // "Bmax" → factor or "preparation"
 	Of                     string            // another ligand whose binding is counted
 }
@@ -107,6 +107,9 @@ type Candidate struct {
 	Given map[string]mechanisms.Given
 	// ShiftByPreparation: a random shift of ln K per preparation.
 	ShiftByPreparation bool
+	// Ends are numbers of the response ("low", "Bmax", "nonspecific", …) as this
+	// candidate has them, where they are not those of the data sets.
+	Ends map[string]Setting
 	// Rates of a mechanism with kinetics, by name: "k_on", "exchange".
 	Rates map[string]Rate
 }
