@@ -155,7 +155,7 @@ type species struct {
 func newSpecies(s part) *species {
 	c := &species{partCurve: newPartCurve(s)}
 	c.poly = c.smooth.(factored).polynomial()
-	c.sum = newAverage(c.poly, filled(c.poly.n), nil)
+	c.sum = newAverage(c.poly, filled(c.poly.n), empty(c.poly.n), nil)
 	c.dZero, c.dLnZ = make([]float64, c.poly.k), make([]float64, c.poly.k)
 	if len(s.effects) > 0 {
 		c.bare = newPartCurve(s)

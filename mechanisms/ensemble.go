@@ -112,6 +112,48 @@ func (e *ensemble) observe(o, do []float64) {
 	}
 }
 
+// rise is ō_j − ō_i between two ligations, as a sum over pairs of states so that
+// it keeps its digits where ō hardly changes, and writes its derivatives:
+//
+//	ō_j − ō_i = Σ_{s∈i, t∈j} τ_s τ_t (o_t − o_s) ,  ∂τ_s = τ_s (A_s − ⟨A⟩_i) .
+//
+// merge and observe have run.
+func (e *ensemble) rise(c *coefficients, i, j int, grad []float64) (rise float64) {
+	clear(grad)
+	if i == j {
+		return 0
+	}
+	di, dj := c.row(i), c.row(j)
+	s0, s1 := e.states(i)
+	t0, t1 := e.states(j)
+	for s := s0; s < s1; s++ {
+		as, os := e.row(s), e.do[s*e.k:(s+1)*e.k]
+		for t := t0; t < t1; t++ {
+			w := e.share[s] * e.share[t]
+			if w == 0 {
+				continue
+			}
+			at, ot := e.row(t), e.do[t*e.k:(t+1)*e.k]
+			step := e.o[t] - e.o[s]
+			rise += w * step
+			for k := range grad {
+				grad[k] += w * (step*(as[k]-di[k]+at[k]-dj[k]) + ot[k] - os[k])
+			}
+		}
+	}
+	return rise
+}
+
+// states is the range of states of ligation i.
+func (e *ensemble) states(i int) (first, last int) {
+	for first < len(e.ligation) && e.ligation[first] < i {
+		first++
+	}
+	for last = first; last < len(e.ligation) && e.ligation[last] == i; last++ {
+	}
+	return first, last
+}
+
 // logLinear is an ensemble whose exponents are fixed numbers:
 // ln w_s = ln g_s + Σ A_sk θ_k + Σ m_sj ln y_j.
 type logLinear struct {

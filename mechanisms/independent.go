@@ -262,7 +262,7 @@ func (c *independentCurve) turns() (first, last float64) {
 func (c *independentCurve) terms() *average {
 	c.polynomial()
 	if c.sum == nil {
-		c.sum = newAverage(&c.coefs, filled(c.coefs.n), nil)
+		c.sum = newAverage(&c.coefs, filled(c.coefs.n), empty(c.coefs.n), nil)
 	}
 	return c.sum
 }

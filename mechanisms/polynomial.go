@@ -2,6 +2,7 @@ package mechanisms
 
 import (
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 )
@@ -19,9 +20,10 @@ import (
 // curve. Where the b_i span too many decades, each point is summed by itself
 // with its largest term taken out.
 type average struct {
-	c  *coefficients
-	o  []float64 // n+1
-	do []float64 // (n+1)×k: ∂o_i/∂θ_k; nil where o does not depend on θ
+	c    *coefficients
+	o    []float64 // n+1
+	rest []float64 // n+1: 1 − o_i, with its own digits
+	do   []float64 // (n+1)×k: ∂o_i/∂θ_k; nil where o does not depend on θ
 
 	scaled bool // Horner's scheme is safe
 	lifted bool // q is written for the bound θ
@@ -37,10 +39,10 @@ type average struct {
 	jets        jet
 }
 
-func newAverage(c *coefficients, o, do []float64) *average {
+func newAverage(c *coefficients, o, rest, do []float64) *average {
 	n, k := c.n, c.k
 	return &average{
-		c: c, o: o, do: do,
+		c: c, o: o, rest: rest, do: do,
 		b: make([]float64, n+1), bo: make([]float64, n+1),
 		e: make([]float64, (n+1)*k), q: make([]float64, k*(2*n+1)),
 		lnW: make([]float64, n+1), p: make([]float64, n+1), eps: make([]float64, (n+1)*k),
@@ -88,6 +90,14 @@ func (a *average) rebind() {
 	}
 }
 
+// rise is o_j − o_i, from the end that is nearer.
+func (a *average) rise(i, j int) float64 {
+	if a.o[i] > 0.5 && a.o[j] > 0.5 {
+		return a.rest[i] - a.rest[j]
+	}
+	return a.o[j] - a.o[i]
+}
+
 // lift writes the numerators Q_k of the gradient.
 func (a *average) lift() {
 	a.lifted = true
@@ -95,8 +105,8 @@ func (a *average) lift() {
 	clear(a.q)
 	for i := 0; i <= n; i++ {
 		for j := i + 1; j <= n; j++ {
-			do := a.o[j] - a.o[i]
-			fi, fj := do*a.b[j], do*a.b[i]
+			rise := a.rise(i, j)
+			fi, fj := rise*a.b[j], rise*a.b[i]
 			for m := 0; m < k; m++ {
 				a.q[m*(2*n+1)+i+j] += fj*a.e[j*k+m] - fi*a.e[i*k+m]
 			}
@@ -282,14 +292,14 @@ func (a *average) jet(lnx float64, j *jet, to depth) {
 	for i, p := range a.p {
 		mean += float64(i) * p
 		j.y += p * a.o[i]
-		j.e += p * (1 - a.o[i])
+		j.e += p * a.rest[i]
 		for l := i + 1; l <= n; l++ {
 			variance += p * a.p[l] * float64((l-i)*(l-i))
 		}
 	}
 	for i := 0; i <= n; i++ {
 		for l := i + 1; l <= n; l++ {
-			w := a.p[i] * a.p[l] * float64(l-i) * (a.o[l] - a.o[i])
+			w := a.p[i] * a.p[l] * float64(l-i) * a.rise(i, l)
 			e := float64(i+l) - 2*mean
 			j.y1 += w
 			j.y2 += w * e
@@ -314,7 +324,7 @@ func (a *average) gradient(j *jet) {
 			a.dMean[m] += e
 		}
 		for l := i + 1; l <= n; l++ {
-			o, pi, pl := a.o[l]-a.o[i], a.p[i], a.p[l]
+			o, pi, pl := a.rise(i, l), a.p[i], a.p[l]
 			for m, e := range a.eps[l*k : (l+1)*k] {
 				j.g[m] += o * (pi*e - pl*ei[m])
 			}
@@ -349,7 +359,7 @@ func (a *average) gradients(j *jet, mean float64) {
 		for l := i + 1; l <= n; l++ {
 			el := a.eps[l*k : (l+1)*k]
 			pi, pl := a.p[i], a.p[l]
-			d, o, e := float64(l-i), a.o[l]-a.o[i], float64(i+l)-2*mean
+			d, o, e := float64(l-i), a.rise(i, l), float64(i+l)-2*mean
 			for m := range el {
 				up, down := pi*el[m], pl*ei[m]
 				both := up + down - 2*pi*pl*a.dMean[m]
@@ -394,7 +404,7 @@ type polynomialCurve struct {
 
 func newPolynomialCurve(n, k int, b binder) *polynomialCurve {
 	p := &polynomialCurve{coefficients: newCoefficients(n, k), binder: b}
-	p.sat = newAverage(&p.coefficients, filled(n), nil)
+	p.sat = newAverage(&p.coefficients, filled(n), empty(n), nil)
 	return p
 }
 
@@ -404,6 +414,13 @@ func filled(n int) []float64 {
 	for i := range o {
 		o[i] = float64(i) / float64(n)
 	}
+	return o
+}
+
+// empty is the share of sites empty at each ligation.
+func empty(n int) []float64 {
+	o := filled(n)
+	slices.Reverse(o)
 	return o
 }
 

@@ -20,11 +20,11 @@ func (v *view) watch(c factored, e *ensemble, of []int) Curve {
 		return c
 	}
 	p := c.polynomial()
+	n, k := p.n, p.k
 	w := &watch{factored: c, view: v, ensemble: e, of: of,
-		o: make([]float64, p.n+1), do: make([]float64, (p.n+1)*p.k),
-		f: make([]float64, p.n+1), df: make([]float64, (p.n+1)*p.k),
-		theta: make([]float64, p.k), jets: newJet(p.k)}
-	w.raw, w.share = newAverage(p, w.o, w.do), newAverage(p, w.f, w.df)
+		o: make([]float64, n+1), do: make([]float64, (n+1)*k), f: make([]float64, n+1), rest: make([]float64, n+1),
+		df: make([]float64, (n+1)*k), theta: make([]float64, k), dSpan: make([]float64, k), jets: newJet(k)}
+	w.raw, w.share = newAverage(p, w.o, make([]float64, n+1), w.do), newAverage(p, w.f, w.rest, w.df)
 	return &watchedCurve{c, w}
 }
 
@@ -46,40 +46,63 @@ type watch struct {
 	ensemble *ensemble
 	of       []int
 
-	theta      []float64
-	fresh      bool // o and f are written for the bound θ
-	o, do      []float64
-	f, df      []float64
-	raw, share *average
-	jets       jet
-	low, span  float64
-	top        int // the fullest ligation
+	theta       []float64
+	seen        bool // o is written for the bound θ
+	shared      bool // and f
+	o, do       []float64
+	f, rest, df []float64 // f_i, 1 − f_i, ∂f_i/∂θ
+	raw, share  *average
+	jets        jet
+	span        float64 // o_∞ − o_0
+	dSpan       []float64
+	top         int // the fullest ligation
 }
 
 // Bind settles binding and response.
 func (w *watch) Bind(theta []float64, env Environment) {
 	w.factored.Bind(theta, env)
 	copy(w.theta, theta)
-	w.fresh = false
+	w.seen, w.shared = false, false
 }
 
-// refresh writes the observables of the bound θ.
-func (w *watch) refresh() {
-	if w.fresh {
+// look writes the response of every ligation at the bound θ.
+func (w *watch) look() {
+	if w.seen {
 		return
 	}
-	w.fresh = true
+	w.seen = true
 	c := w.polynomial()
 	w.view.observe(w.ensemble, w.of, w.theta, c.n)
 	w.ensemble.observe(w.o, w.do)
+	for i, o := range w.o {
+		w.raw.rest[i] = 1 - o
+	}
 	w.raw.rebind()
 	w.top = c.highest()
-	w.low, w.span = w.o[0], w.o[w.top]-w.o[0]
-	dLow, dTop := w.do[:c.k], w.do[w.top*c.k:(w.top+1)*c.k]
+	w.span = w.ensemble.rise(c, 0, w.top, w.dSpan)
+}
+
+// scale writes the share of the response at every ligation: from its lower
+// limit, or from the upper one where that is nearer.
+func (w *watch) scale() {
+	w.look()
+	if w.shared {
+		return
+	}
+	w.shared = true
+	c := w.polynomial()
 	for i := range w.f {
-		w.f[i] = (w.o[i] - w.low) / w.span
-		for k := range dLow {
-			w.df[i*c.k+k] = (w.do[i*c.k+k] - dLow[k] - w.f[i]*(dTop[k]-dLow[k])) / w.span
+		d := w.df[i*c.k : (i+1)*c.k]
+		w.f[i] = w.ensemble.rise(c, 0, i, d) / w.span
+		w.rest[i] = 1 - w.f[i]
+		sign, part := 1.0, w.f[i]
+		if w.f[i] > 0.5 {
+			w.rest[i] = w.ensemble.rise(c, i, w.top, d) / w.span
+			w.f[i] = 1 - w.rest[i]
+			sign, part = -1, w.rest[i]
+		}
+		for k := range d {
+			d[k] = sign * (d[k] - part*w.dSpan[k]) / w.span
 		}
 	}
 }
@@ -103,7 +126,7 @@ func (v *view) observe(e *ensemble, of []int, theta []float64, n int) {
 
 // Saturation writes ⟨o⟩ and its gradient at each ln x.
 func (w *watch) Saturation(dst, lnx []float64, grad *mat.Dense) {
-	w.refresh()
+	w.look()
 	w.raw.curve(dst, lnx, grad)
 }
 
@@ -117,7 +140,7 @@ func (w *watch) At(lnx float64, p *Point) {
 
 // Limits returns the response at x → 0 and x → ∞ and writes their gradients.
 func (w *watch) Limits(gradLow, gradHigh []float64) (low, high float64) {
-	w.refresh()
+	w.look()
 	k := len(w.theta)
 	copy(gradLow, w.do[:k])
 	copy(gradHigh, w.do[w.top*k:(w.top+1)*k])
@@ -125,7 +148,7 @@ func (w *watch) Limits(gradLow, gradHigh []float64) (low, high float64) {
 }
 
 func (w *watch) jet(lnx float64, j *jet, to depth) {
-	w.refresh()
+	w.scale()
 	w.share.jet(lnx, j, to)
 }
 
@@ -134,7 +157,7 @@ func (w *watch) ceiling() float64 { return 1 }
 // endSlopes are the ligations at which the response first leaves its lower
 // limit and last falls short of the upper one.
 func (w *watch) endSlopes() (low, high float64) {
-	w.refresh()
+	w.scale()
 	c := w.polynomial()
 	low, high = math.NaN(), math.NaN()
 	for i := w.top; i > 0; i-- {
@@ -143,7 +166,7 @@ func (w *watch) endSlopes() (low, high float64) {
 		}
 	}
 	for i := 0; i < w.top; i++ {
-		if w.f[i] != 1 && !math.IsInf(c.lnB[i], -1) {
+		if w.rest[i] != 0 && !math.IsInf(c.lnB[i], -1) {
 			high = float64(w.top - i)
 		}
 	}
@@ -152,7 +175,7 @@ func (w *watch) endSlopes() (low, high float64) {
 
 // flaw says why the response has no Hill coefficient; "" where it has one.
 func (w *watch) flaw() string {
-	w.refresh()
+	w.look()
 	rises := w.span > 0
 	falls := w.span < 0
 	for i := 1; i <= w.top; i++ {
