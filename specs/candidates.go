@@ -26,7 +26,7 @@ func (b *builder) candidates() {
 			b.byDefault("mechanisms."+m.Name+".name", m.Name)
 		}
 		if j, ok := names[m.Name]; ok {
-			b.fault(p, "repeated-name", fmt.Sprintf("mechanisms %d and %d are both named %q", j+1, i+1, m.Name), nil, diag.Remedy{Say: "Give each a name of its own:", Write: "name: " + plainOrQuoted(m.Name+" 2")})
+			b.fault(b.nameOf(p), "repeated-name", fmt.Sprintf("mechanisms %d and %d are both named %q", j+1, i+1, m.Name), nil, diag.Remedy{Say: "Give each a name of its own:", Write: "name: " + plainOrQuoted(m.Name+" 2")})
 		}
 		names[m.Name] = i
 		c := saturation.Candidate{Name: m.Name, Family: m.Family, ShiftByPreparation: m.Preparation == "shift"}
@@ -35,9 +35,18 @@ func (b *builder) candidates() {
 			b.fault(p+".preparation", "unknown-factor", "a shift by preparation needs a column that says which preparation a row comes from", nil, diag.Remedy{Write: "preparation: COLUMN", Where: "under columns."})
 		}
 		c.Rates = b.rates(p+".rates", m.Rates)
+		b.ownEnds(p+".response", m, &c)
 		b.mechanism(p, m, &c)
 		b.analysis.Candidates = append(b.analysis.Candidates, c)
 	}
+}
+
+// nameOf is the path of the name of a mechanism, or else of its family.
+func (b *builder) nameOf(p string) string {
+	if b.said(p + ".name") {
+		return p + ".name"
+	}
+	return p + ".family"
 }
 
 // madeName is the name of a mechanism that has none: "mwc, L differs".
@@ -114,6 +123,23 @@ func (b *builder) levelsOf(key string) []string {
 	return all
 }
 
+// ownEnds settles numbers of the response that a candidate has for itself.
+func (b *builder) ownEnds(p string, m *Mechanism, c *saturation.Candidate) {
+	for _, e := range m.Response {
+		if c.Ends == nil {
+			c.Ends = map[string]saturation.Setting{}
+		}
+		c.Ends[e.Name] = saturation.Setting{Free: e.Value.Free, Value: e.Value.Value}
+		used := len(b.study.Data) == 0
+		for _, d := range b.study.Data {
+			used = used || slices.Contains(ends[d.Response.Kind], e.Name) || ends[d.Response.Kind] == nil
+		}
+		if !used {
+			b.faultAtKey(join(p, e.Name), "unknown-key", fmt.Sprintf("no response of the study has a %s", e.Name), nil)
+		}
+	}
+}
+
 // mechanism builds the mechanism of a candidate.
 func (b *builder) mechanism(p string, m *Mechanism, c *saturation.Candidate) {
 	family, ok := mechanisms.Lookup(m.Family)
@@ -177,11 +203,18 @@ func (b *builder) definitionErrors(p string, err error) {
 	if at == p {
 		problem = one.Key + ": " + problem
 	}
-	var remedies []diag.Remedy
-	if one.Write != "" {
-		remedies = []diag.Remedy{{Write: one.Write}}
+	b.fault(at, "bad-mechanism", problem, nil, remedyInWords(one.Write)...)
+}
+
+// remedyInWords sets off what is to be written; advice in words is a sentence.
+func remedyInWords(write string) []diag.Remedy {
+	switch {
+	case write == "":
+		return nil
+	case strings.ContainsAny(write, ":{"):
+		return []diag.Remedy{{Write: write}}
 	}
-	b.fault(at, "bad-mechanism", problem, nil, remedies...)
+	return []diag.Remedy{{Say: "Write " + write + "."}}
 }
 
 // constantsThatDiffer asks whether the mechanism has the constants that differ.
@@ -213,7 +246,7 @@ func (b *builder) constantUnits(p string, m *Mechanism, constants []mechanisms.C
 		for _, said := range []struct {
 			word string
 			q    *units.Quantity
-		}{{"start", e.Value.Start}, {"fixed", e.Value.Fixed}, {"value", e.Value.Value}, {"range", e.Value.Low}, {"range", e.Value.High}} {
+		}{{"start", e.Value.Start}, {"fixed", e.Value.Fixed}, {"value", e.Value.Value}, {"range[0]", e.Value.Low}, {"range[1]", e.Value.High}} {
 			if said.q == nil || said.q.Bare || b.powerOf(said.q, b.unitOf(e.Name)) == power {
 				continue
 			}
@@ -232,7 +265,7 @@ func (b *builder) totalAxis(p string, m *Mechanism) {
 		if d.LigandAxis != "total" || m.Family != "hill" || b.said(p+".sites") {
 			continue
 		}
-		b.fault(p, "hill-on-total", "a Hill equation against total ligand needs the number of sites it stands for",
+		b.fault(b.nameOf(p), "hill-on-total", "a Hill equation against total ligand needs the number of sites it stands for",
 			[]string{fmt.Sprintf("The ligand axis of data set %q is total: what is bound is taken from what was added.", d.Name)}, diag.Remedy{Write: "sites: 1"})
 		return
 	}

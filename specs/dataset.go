@@ -233,7 +233,7 @@ func (b *builder) bmax(p string, d *Data, out *saturation.Response) saturation.S
 	}
 	if r.Bmax.Word == "sites" {
 		out.SitesPerMolecule = true
-		return saturation.Setting{} // filled in when the mechanisms are known
+		return saturation.Setting{} // that of each mechanism
 	}
 	return b.end(p, d, "Bmax", &r.Bmax, "free")
 }
@@ -359,6 +359,9 @@ func (b *builder) inUnit(p string, q *units.Quantity, u units.Unit, of string) (
 
 // wrongUnit complains of a unit that does not convert.
 func (b *builder) wrongUnit(p string, got, want units.Unit, of string) {
+	if b.failed["ligand.unit"] || b.failed["effectors"] {
+		return // nothing is known of the unit it should have
+	}
 	d := diag.Diagnostic{Code: "wrong-unit", Position: b.where(p), Problem: fmt.Sprintf("%s is %s; %s is in %s, %s", got, got.Kind(), of, want, want.Kind())}
 	switch {
 	case got.IsPressure() && want.IsConcentration() || got.IsConcentration() && want.IsPressure():

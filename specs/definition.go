@@ -11,7 +11,7 @@ import (
 )
 
 // ofSpecs are keys of a mechanism that no family reads.
-var ofSpecs = []string{"name", "family", "differs", "rates", "preparation"}
+var ofSpecs = []string{"name", "family", "differs", "rates", "response", "preparation"}
 
 // definition turns what a study says of a mechanism into what its family reads.
 func (b *builder) definition(p string, m *Mechanism, family mechanisms.Family) mechanisms.Definition {
@@ -139,7 +139,7 @@ func (b *builder) part(p, name string, part *Part) *mechanisms.Part {
 		return out
 	}
 	out.Family = m.Family
-	for _, k := range []string{"name", "differs", "rates", "preparation"} {
+	for _, k := range []string{"name", "differs", "rates", "response", "preparation"} {
 		if b.said(p + "." + k) {
 			b.faultAtKey(p+"."+k, "unknown-key", fmt.Sprintf("a part of a mechanism has no key %q", k), []string{"It is a key of the whole mechanism."})
 		}
@@ -169,7 +169,7 @@ func (b *builder) given(p string, list []Named[ConstantSays]) map[string]mechani
 		u := b.unitOf(e.Name)
 		g := mechanisms.Given{
 			Start: b.constant(at, "start", e.Name, e.Value.Start, u), Fixed: b.constant(at, "fixed", e.Name, e.Value.Fixed, u),
-			Value: b.constant(at, "value", e.Name, e.Value.Value, u), Low: b.constant(at, "range", e.Name, e.Value.Low, u), High: b.constant(at, "range", e.Name, e.Value.High, u),
+			Value: b.constant(at, "value", e.Name, e.Value.Value, u), Low: b.constant(at, "range[0]", e.Name, e.Value.Low, u), High: b.constant(at, "range[1]", e.Name, e.Value.High, u),
 		}
 		if g.Fixed != nil && (g.Start != nil || g.Low != nil || g.Value != nil) {
 			b.fault(at, "two-answers", fmt.Sprintf("%s is fixed, so it has no start, range or other value", e.Name), nil, diag.Remedy{Say: "Keep one of them."})

@@ -79,7 +79,7 @@ func (r *points) judgeSpread(kept []saturation.Point) {
 
 // judgePercent asks whether fractions are percent, or the reverse.
 func (r *points) judgePercent(kept []saturation.Point) {
-	if r.out.Response.Kind != "saturation" || r.response[0].unit.IsPercent() != r.response[0].to.IsPercent() {
+	if r.failed[r.path+".response.unit"] || r.out.Response.Kind != "saturation" || r.response[0].unit.IsPercent() != r.response[0].to.IsPercent() {
 		return
 	}
 	top := math.Inf(-1)

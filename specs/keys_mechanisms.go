@@ -48,8 +48,26 @@ func mechanismKeys() []key[Mechanism] {
 			"what is known of constants: start, range, fixed, value", "constants: {K_R: {start: 1, range: [0.01, 100]}}"),
 		with("rates", namesShape[Rate]{of: rateShape{}, form: "a mapping from rate constants to values"}, func(m *Mechanism) *[]Named[Rate] { return &m.Rates },
 			"rate constants, which give the mechanism kinetics", "rates: {k_on: 1e7 1/(M s), exchange: 1e3 1/s}"),
+		with("response", endsShape(), func(m *Mechanism) *[]Named[Setting] { return &m.Response }, "numbers of the response that this mechanism has for itself: one with the upper end free, say", "response: {high: free}"),
 		with("preparation", wordShape{"shift"}, func(m *Mechanism) *string { return &m.Preparation }, "let ln K of each preparation shift at random", "preparation: shift"),
 	}
+}
+
+// endsShape reads the numbers of a response that a mechanism has for itself.
+func endsShape() shape[[]Named[Setting]] {
+	return recordShape[[]Named[Setting]]{name: "a mechanism's response", keys: func() []key[[]Named[Setting]] {
+		var keys []key[[]Named[Setting]]
+		for _, name := range []string{"low", "high", "V", "Bmax", "nonspecific"} {
+			keys = append(keys, key[[]Named[Setting]]{name: name, doc: "a number, or free", example: name + ": free", schema: settingShape{}.schema,
+				read: func(r *reader, n *yaml.Node, path string, v *[]Named[Setting]) bool {
+					e := Named[Setting]{Name: name}
+					ok := settingShape{}.read(r, n, path, &e.Value)
+					*v = append(*v, e)
+					return ok
+				}})
+		}
+		return keys
+	}}
 }
 
 func counts(form string) shape[[]Named[int]] {
@@ -251,7 +269,7 @@ func (c constantsShape) read(r *reader, n *yaml.Node, path string, v *[]Named[Co
 
 func (c constantsShape) group(r *reader, n *yaml.Node, path, prefix string, v *[]Named[ConstantSays]) bool {
 	ok := true
-	r.entries(n, path, func(name string, kn, value *yaml.Node) {
+	whole := r.entries(n, path, func(name string, kn, value *yaml.Node) {
 		p := join(path, name)
 		if isGroup(value) && strings.Count(prefix, ".") < 3 {
 			ok = c.group(r, value, p, prefix+name+".", v) && ok
@@ -269,7 +287,7 @@ func (c constantsShape) group(r *reader, n *yaml.Node, path, prefix string, v *[
 		}
 		*v = append(*v, e)
 	})
-	return ok
+	return ok && whole
 }
 
 // isGroup tells the constants of an effector from what is said of a constant.

@@ -38,7 +38,7 @@ func Load(fsys fs.FS, name string) (*Study, diag.List) {
 		return nil, complaints
 	}
 	s := &Study{File: name, SHA256: hex.EncodeToString(sum[:]), Defaults: map[string]string{}, text: text}
-	r := &reader{document: parseDocument(text, knownKeys()), places: map[string]place{}}
+	r := &reader{document: parseDocument(text, knownKeys()), places: map[string]place{}, failed: map[string]bool{}}
 	s.places = r.places
 	switch {
 	case r.root != nil:

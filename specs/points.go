@@ -233,6 +233,9 @@ func (r *points) levelOf(s Substance) (float64, bool) {
 			return r.effectorValue(join(from.path, e.Name), e.Value, s)
 		}
 	}
+	if r.failed["effectors"] {
+		return 0, false
+	}
 	r.faultAtKey(r.path, "unknown-level", fmt.Sprintf("data set %q does not say how much %s there was", r.d.Name, s.Name), nil,
 		diag.Remedy{Write: fmt.Sprintf("at: {%s: 0 %s}", plainOrQuoted(s.Name), s.Unit)}, diag.Remedy{Say: "or name its column", Write: plainOrQuoted(s.Name) + ": COLUMN", Where: "under columns."})
 	return 0, false

@@ -17,13 +17,19 @@ type reader struct {
 	*document
 	places     map[string]place // by path: "data[0].response.kind"
 	complaints diag.List
-	example    string // of the key being read: "noise: constant"
+	failed     map[string]bool // paths whose value could not be read
+	example    string          // of the key being read: "noise: constant"
 }
 
 func (r *reader) complain(d diag.Diagnostic) {
 	for _, m := range r.muted {
 		if m.Line == d.Line && m.File == d.File && d.Column < m.End && m.Column < max(d.End, d.Column+1) {
 			return // named already, in better words
+		}
+	}
+	for _, c := range r.complaints {
+		if d.Line > 0 && c.Severity == diag.Error && c.File == d.File && c.Line == d.Line && c.Column <= d.Column && d.End <= c.End && c.Code != d.Code {
+			return // follows from what was named there
 		}
 	}
 	r.complaints = append(r.complaints, r.text.Quote(d))
@@ -82,29 +88,34 @@ func join(path, name string) string {
 	return path + "." + name
 }
 
-// entries walks a mapping: one call per key, repeated keys and keys that are no
-// words left out and complained of.
-func (r *reader) entries(n *yaml.Node, path string, each func(name string, key, value *yaml.Node)) {
+// entries walks a mapping: one call per key. Repeated keys and keys that are no
+// words are left out and complained of, and the answer is false.
+func (r *reader) entries(n *yaml.Node, path string, each func(name string, key, value *yaml.Node)) bool {
+	ok := true
 	seen := map[string]*yaml.Node{}
 	for i := 0; i+1 < len(n.Content); i += 2 {
 		key, value := n.Content[i], n.Content[i+1]
 		if key.Kind != yaml.ScalarNode {
 			r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(key), Problem: "a key is one word before a colon, not " + r.describe(key)})
+			ok = false
 			continue
 		}
 		if r.lostComma(n, i) {
+			ok = false
 			continue
 		}
 		name := key.Value
 		if first, ok := seen[name]; ok {
 			r.complain(diag.Diagnostic{Code: "repeated-key", Position: r.at(key), Problem: fmt.Sprintf("%q stands here a second time", name),
 				Notes: []string{fmt.Sprintf("The first is in line %d.", first.Line)}, Remedies: []diag.Remedy{{Say: "Keep one of the two."}}})
+			ok = false
 			continue
 		}
 		seen[name] = key
 		r.places[join(path, name)] = place{key: r.at(key), value: r.at(value)}
 		each(name, key, value)
 	}
+	return ok
 }
 
 // lostComma names what a comma or a colon without a blank did inside { }: entry

@@ -91,7 +91,7 @@ func (m namesShape[V]) read(r *reader, n *yaml.Node, path string, v *[]Named[V])
 		return false
 	}
 	ok := true
-	r.entries(n, path, func(name string, _, value *yaml.Node) {
+	whole := r.entries(n, path, func(name string, _, value *yaml.Node) {
 		e := Named[V]{Name: name}
 		if !m.of.read(r, value, join(path, name), &e.Value) {
 			ok = false
@@ -99,7 +99,7 @@ func (m namesShape[V]) read(r *reader, n *yaml.Node, path string, v *[]Named[V])
 		}
 		*v = append(*v, e)
 	})
-	return ok
+	return ok && whole
 }
 
 func (m namesShape[V]) schema(s *schemata) object {
@@ -152,14 +152,17 @@ func (c recordShape[T]) read(r *reader, n *yaml.Node, path string, t *T) bool {
 	keys := c.keys()
 	seen := map[string]bool{}
 	outer := r.example
-	r.entries(n, path, func(name string, kn, value *yaml.Node) {
+	whole := r.entries(n, path, func(name string, kn, value *yaml.Node) {
 		seen[name] = true
 		for _, k := range keys {
 			if k.name != name {
 				continue
 			}
 			r.example = k.example
-			ok = k.read(r, value, join(path, name), t) && ok
+			if !k.read(r, value, join(path, name), t) {
+				r.failed[join(path, name)] = true
+				ok = false
+			}
 			r.example = outer
 			return
 		}
@@ -175,7 +178,7 @@ func (c recordShape[T]) read(r *reader, n *yaml.Node, path string, t *T) bool {
 			r.missingKey(n, path, c.name, k.name, k.example)
 		}
 	}
-	return ok
+	return ok && whole
 }
 
 func keyNames[T any](keys []key[T]) []string {

@@ -39,6 +39,7 @@ type bracket struct {
 	sign      byte
 	line, col int  // col: byte, from 0
 	colon     bool // the entry being read has its key already
+	key       string
 }
 
 // findSlips reads a whole text.
@@ -134,9 +135,10 @@ type cursor struct {
 	*slips
 	n      int // line, from 1
 	line   string
-	i      int  // byte, from 0
-	start  bool // a new text, list or mapping may begin here
-	key    bool // this line has a key already, outside brackets
+	i      int    // byte, from 0
+	start  bool   // a new text, list or mapping may begin here
+	key    bool   // this line has a key already, outside brackets
+	name   string // that key
 	dashes int
 	parent int // column of the innermost dash or key of this line
 	scalar int // where the plain text being read began; −1 outside
@@ -283,9 +285,9 @@ func (c *cursor) colon(inFlow bool) {
 		return
 	}
 	if inFlow {
-		c.flow[len(c.flow)-1].colon = true
+		c.flow[len(c.flow)-1].colon, c.flow[len(c.flow)-1].key = true, c.keyText()
 	} else {
-		c.key = true
+		c.key, c.name = true, c.keyText()
 		if c.closed > 0 {
 			c.parent = max(c.parent, c.began)
 		}
@@ -296,6 +298,33 @@ func (c *cursor) colon(inFlow bool) {
 	}
 	c.scalar, c.closed, c.start = -1, 0, true
 	c.i++
+}
+
+// keyText is the text that a colon makes a key.
+func (c *cursor) keyText() string {
+	from := c.i
+	switch {
+	case c.scalar >= 0:
+		from = c.scalar
+	case c.closed > 0 && c.began >= 0:
+		from = c.began
+	}
+	return strings.TrimSpace(c.line[from:c.i])
+}
+
+// entry writes a value after the key it belongs to.
+func (c *cursor) entry(value string) string {
+	name := c.name
+	if len(c.flow) > 0 {
+		name = c.flow[len(c.flow)-1].key
+		if !c.flow[len(c.flow)-1].colon {
+			name = ""
+		}
+	}
+	if name == "" {
+		return value
+	}
+	return name + ": " + value
 }
 
 // secondColon names title: a: b.
@@ -316,7 +345,7 @@ func (c *cursor) secondColon(inFlow bool) {
 	}
 	value := strings.TrimSpace(c.line[from:to])
 	notes := []string{"A colon with a blank after it begins the value of a key, and this line has one already."}
-	remedies := []diag.Remedy{{Write: quoteText(value)}}
+	remedies := []diag.Remedy{{Write: c.entry(quoteText(value))}}
 	if inFlow {
 		notes = []string{"Inside { } entries are set apart by commas; a text that holds a colon is put in quotation marks."}
 	}
@@ -377,7 +406,7 @@ func (c *cursor) trailing() {
 	switch {
 	case c.began >= 0 && (was == ']' || was == '}'):
 		c.complain(c.at(from, from+len(value)), "bracket-begins-list", fmt.Sprintf("a text that begins with %c must be quoted", c.line[from]),
-			[]string{"Without quotation marks it is read as a list or a mapping."}, diag.Remedy{Write: quoteText(value)})
+			[]string{"Without quotation marks it is read as a list or a mapping."}, diag.Remedy{Write: c.entry(quoteText(value))})
 		for j := from; j < to; j++ {
 			if strings.IndexByte("[]{},:#\"'", c.line[j]) >= 0 {
 				c.overwrite(c.n, j, j+1, '_')
@@ -465,7 +494,7 @@ func (c *cursor) anchor(from, to int) {
 	word := c.line[from:to]
 	remedies := []diag.Remedy{{Say: "Write out what it stands for."}}
 	if word != "<<" {
-		remedies = append(remedies, diag.Remedy{Say: "If it is a text, write", Write: quoteText(word)})
+		remedies = append(remedies, diag.Remedy{Say: "If it is a text, write", Write: c.entry(quoteText(word))})
 	}
 	c.complain(c.at(from, to), "anchor", problem, nil, remedies...)
 	c.overwrite(c.n, from, to, '_')
@@ -484,7 +513,7 @@ func (c *cursor) sign(b byte) {
 	if value == "%" {
 		write = "percent"
 	}
-	c.complain(c.at(c.i, c.i+len(value)), "reserved-sign", fmt.Sprintf("a text that begins with %c must be quoted", b), nil, diag.Remedy{Write: write})
+	c.complain(c.at(c.i, c.i+len(value)), "reserved-sign", fmt.Sprintf("a text that begins with %c must be quoted", b), nil, diag.Remedy{Write: c.entry(write)})
 	c.overwrite(c.n, c.i, c.i+1, '_')
 	c.scalar, c.start = c.i, false
 	c.i++

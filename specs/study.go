@@ -114,7 +114,8 @@ type Mechanism struct {
 	Steps         []Step
 	Constants     []Named[ConstantSays]
 	Rates         []Named[Rate]
-	Preparation   string // "shift"
+	Response      []Named[Setting] // its own ends, where they are not those of the data
+	Preparation   string           // "shift"
 }
 
 // SiteCount is a number of sites, or one per class of sites.

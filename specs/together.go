@@ -124,32 +124,20 @@ func (b *builder) candidatePath(name string) string {
 	return indexed("mechanisms", max(i, 0))
 }
 
-// sitesOfMechanisms fills in the sites per molecule that `Bmax: sites` asks for.
+// sitesOfMechanisms asks that every mechanism has the number of sites that
+// `Bmax: sites` stands for.
 func (b *builder) sitesOfMechanisms() {
-	for i := range b.analysis.Data {
-		r := &b.analysis.Data[i].Response
-		if !r.SitesPerMolecule || b.study.Data[i].Response.Bmax.Word != "sites" {
+	for i, d := range b.study.Data {
+		if d.Response.Bmax.Word != "sites" {
 			continue
 		}
-		at := indexed("data", i) + ".response.Bmax"
-		n := 0
 		for _, c := range b.analysis.Candidates {
-			switch {
-			case c.Mechanism == nil:
-				return
-			case c.Mechanism.Sites() == 0:
+			if _, own := c.Ends["Bmax"]; c.Mechanism == nil || c.Mechanism.Sites() > 0 || own {
 				continue
-			case n != 0 && n != c.Mechanism.Sites():
-				b.fault(at, "unequal-sites", fmt.Sprintf("the mechanisms have different numbers of sites (%d and %d), so Bmax cannot be that number", n, c.Mechanism.Sites()), nil, diag.Remedy{Write: fmt.Sprintf("sites: %d", n)}, diag.Remedy{Say: "or", Write: "Bmax: free"})
-				return
 			}
-			n = c.Mechanism.Sites()
+			b.fault(indexed("data", i)+".response.Bmax", "no-sites", fmt.Sprintf("mechanism %q has no number of sites for Bmax to be", c.Name), nil,
+				diag.Remedy{Write: "Bmax: free"}, diag.Remedy{Say: "or say the number,", Write: "sites: 4"})
 		}
-		if n == 0 {
-			b.fault(at, "unequal-sites", "no mechanism says how many sites there are", nil, diag.Remedy{Write: "sites: 4"})
-			return
-		}
-		r.High = saturation.Setting{Value: float64(n)}
 	}
 }
 
@@ -174,10 +162,10 @@ func (b *builder) enoughPoints(p string, c *saturation.Candidate) {
 		free += b.curvesOf(c.Differs, k)
 	}
 	for _, d := range b.analysis.Data {
-		free += b.freeEnds(d.Response)
+		free += b.freeEnds(d.Response, c.Ends)
 	}
 	if free >= points {
-		b.fault(p, "too-few-points", fmt.Sprintf("%d points cannot hold %d constants", points, free),
+		b.fault(b.nameOf(p), "too-few-points", fmt.Sprintf("%d points cannot hold %d constants", points, free),
 			[]string{"The free numbers of the response are counted, and each constant once for every level by which it differs."},
 			diag.Remedy{Say: "Measure more points, share or fix constants, or take this mechanism out."})
 	}
@@ -201,15 +189,17 @@ func (b *builder) curvesOf(differs map[string]string, k mechanisms.Constant) int
 	return 1
 }
 
-func (b *builder) freeEnds(r saturation.Response) int {
+// freeEnds counts the free numbers of a response, as a candidate has them.
+func (b *builder) freeEnds(r saturation.Response, own map[string]saturation.Setting) int {
 	n := 0
-	for i, s := range []saturation.Setting{r.Low, r.High, r.Nonspecific} {
+	said := []saturation.Setting{r.Low, r.High, r.Nonspecific}
+	for i, name := range ends[r.Kind] {
+		s := said[i]
+		if o, ok := own[name]; ok {
+			s = o
+		}
 		if !s.Free {
 			continue
-		}
-		name := "low"
-		if e := ends[r.Kind]; i < len(e) {
-			name = e[i]
 		}
 		if key, ok := r.Differs[name]; ok {
 			n += max(len(b.levelsOf(key)), 1)
@@ -240,7 +230,7 @@ func (b *builder) displacement(i int) {
 		if c.Mechanism == nil || slices.Contains(c.Mechanism.Effectors(), of) {
 			continue
 		}
-		b.fault(b.candidatePath(c.Name), "ligand-not-bound", fmt.Sprintf("data set %q counts %s, which this mechanism does not bind", b.study.Data[i].Name, of), nil,
+		b.fault(b.nameOf(b.candidatePath(c.Name)), "ligand-not-bound", fmt.Sprintf("data set %q counts %s, which this mechanism does not bind", b.study.Data[i].Name, of), nil,
 			diag.Remedy{Write: fmt.Sprintf("effectors: {%s: {at: ligand site}}", plainOrQuoted(of))})
 	}
 }

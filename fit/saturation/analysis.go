@@ -66,7 +66,7 @@ type Response struct {
 	Percent bool // y and its ends are in percent (kept so; a saturation of 1 is 100)
 	// Low and High are the ends; High is V of a velocity and Bmax of bound.
 	Low, High, Nonspecific Setting
-	SitesPerMolecule       bool              // bound, in mol per mol: High is the number of sites
+	SitesPerMolecule       bool              // bound, in mol per mol: High is the number of sites; fixed at 0, that of each mechanism
 	Differs                map[string]string // "Bmax" → factor or "preparation"
 	Of                     string            // another ligand whose binding is counted
 }
