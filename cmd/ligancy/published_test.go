@@ -31,28 +31,34 @@ var publishedFits = []published{
 		{"constant", "K_half", "all", 26.3842, 1e-5}, {"constant", "n_H", "all", 2.64661, 1e-5}}},
 	{"blood.yaml", "stepwise", 7.48608e-4, []figure{
 		{"position", "x_half", "all", 26.8317, 1e-5}, {"hill", "n_H_half", "all", 2.7317, 5e-5},
-		{"hill", "n_H_max", "all", 2.8169, 5e-5}}},
+		{"hill", "n_H_max", "all", 2.8169, 5e-5},
+		// β1 0.0246600, β2 9.20562e-4, β3 0, β4 2.567613e-6 as intrinsic dissociation constants.
+		{"constant", "Kd1", "all", 4 / 0.0246600, 1e-5}, {"constant", "Kd2", "all", 1.5 * 0.0246600 / 9.20562e-4, 1e-5},
+		{"constant", "Kd3·Kd4", "all", 9.20562e-4 / (6 * 2.567613e-6), 1e-5}}},
 	{"blood.yaml", "concerted", 1.29240e-3, []figure{
-		{"constant", "L", "all", 6.503e6, 1e-2}, {"constant", "K_R", "all", 0.48995, 1e-3},
+		{"constant", "L", "all", 6.503e6, 1e-2}, {"constant", "K_R", "all", 0.48995, 1e-3}, {"constant", "c", "all", 0.48995 / 111.393, 1e-3},
 		{"position", "x_half", "all", 26.916, 5e-5}, {"hill", "n_H_half", "all", 2.7668, 5e-5}}},
-	{"blood_middle.yaml", "Hill equation", 1.44917e-4, []figure{
+	{"blood_20_80.yaml", "Hill equation", 1.44917e-4, []figure{
 		{"constant", "K_half", "all", 26.6166, 1e-5}, {"constant", "n_H", "all", 2.62872, 1e-5}}},
 	// Mills, Johnson & Ackers 1976, 44 points.
 	{"haemoglobin.yaml", "Hill equation", 1.806765e-3, []figure{
 		{"constant", "K_half", "all", 8.69746, 1e-5}, {"constant", "n_H", "all", 3.14357, 1e-5}}},
 	{"haemoglobin.yaml", "stepwise", 6.101608e-4, []figure{
-		{"position", "x_half", "all", 8.74582, 1e-5}, {"hill", "n_H_half", "all", 3.23405, 1e-5}, {"hill", "n_H_max", "all", 3.2561, 5e-5}}},
+		{"position", "x_half", "all", 8.74582, 1e-5}, {"hill", "n_H_half", "all", 3.23405, 1e-5}, {"hill", "n_H_max", "all", 3.2561, 5e-5},
+		// β1 0.0285459, β2 0.00432459, β3 0, β4 1.92264e-4.
+		{"constant", "Kd1", "all", 4 / 0.0285459, 1e-5}, {"constant", "Kd2", "all", 1.5 * 0.0285459 / 0.00432459, 1e-5},
+		{"constant", "Kd3·Kd4", "all", 0.00432459 / (6 * 1.92264e-4), 1e-4}}},
 	{"haemoglobin.yaml", "concerted", 9.334435e-4, []figure{
-		{"constant", "L", "all", 8.741e5, 1e-2}, {"constant", "K_R", "all", 0.27698, 1e-3},
+		{"constant", "L", "all", 8.741e5, 1e-2}, {"constant", "K_R", "all", 0.27698, 1e-3}, {"constant", "c", "all", 0.27698 / 81.069, 1e-3},
 		{"position", "x_half", "all", 8.7532, 1e-3}, {"hill", "n_H_half", "all", 3.2671, 1e-3}}},
-	{"haemoglobin.yaml", "square", 1.899271e-3, nil},
-	{"haemoglobin.yaml", "tetrahedral", 1.992917e-3, nil},
+	{"haemoglobin.yaml", "square", 1.899271e-3, []figure{{"constant", "K", "all", 1 / 0.00528057, 1e-4}, {"constant", "K_BB", "all", 21.749, 1e-4}}},
+	{"haemoglobin.yaml", "tetrahedral", 1.992917e-3, []figure{{"constant", "K", "all", 1 / 0.00639429, 1e-4}, {"constant", "K_BB", "all", 6.85783, 1e-4}}},
 	{"haemoglobin.yaml", "one site", 1.365087, []figure{{"constant", "Kd", "all", 7.07601, 1e-5}}},
-	{"haemoglobin_plateau.yaml", "Hill equation", 1.608515e-3, []figure{
+	{"haemoglobin.yaml", "Hill equation, plateau free", 1.608515e-3, []figure{
 		{"constant", "K_half", "all", 8.7468, 1e-4}, {"constant", "n_H", "all", 3.09452, 1e-5}, {"response", "high", "all", 1.0069, 1e-4}}},
 	// Treloar 1974, in Bates & Watts 1988 A1.3; R nls and SciPy agree.
 	{"galactosyltransferase_treated.yaml", "one site", 1195.4488, []figure{
-		{"response", "V", "all", 212.68358, 1e-6}, {"constant", "Kd", "all", 0.06412103, 1e-6}}},
+		{"response", "V", "all", 212.68358, 1e-6}, {"constant", "Kd", "all", 0.06412103, 1e-5}}},
 	{"galactosyltransferase_treated.yaml", "Hill equation", 809.8615, []figure{
 		{"response", "V", "all", 237.9474, 1e-5}, {"constant", "K_half", "all", 0.0858824, 1e-4}, {"constant", "n_H", "all", 0.739395, 1e-5}}},
 	{"galactosyltransferase_treated.yaml", "two sites", 810.267, nil},
