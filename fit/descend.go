@@ -4,6 +4,8 @@ import "math"
 
 const (
 	enough  = 1e-6  // relative offset at which a fit has converged
+	loose   = 1e-5  // the same, for refits of replicate data
+	stale   = 0.3   // least part of the residuals' square by which settling has to move them for the Jacobian to be evaluated again
 	hardly  = 1e-4  // least share of the predicted gain that is a gain
 	tiniest = 1e-15 // least radius relative to ‖D θ‖
 	epsilon = 0x1p-52
@@ -30,9 +32,7 @@ const (
 // begun evaluates the current point at theta, clamped into the box, and settles
 // its linear parameters.
 func (s *solver) begun(theta []float64) bool {
-	for j, v := range theta {
-		s.cur.theta[j] = min(max(v, s.low[j]), s.high[j])
-	}
+	s.place(theta)
 	clear(s.span)
 	clear(s.hits)
 	if !s.evaluate(s.cur) {
@@ -46,6 +46,13 @@ func (s *solver) begun(theta []float64) bool {
 	}
 	s.settle(s.cur)
 	return s.evaluate(s.cur)
+}
+
+// place puts the current point at theta, clamped into the box.
+func (s *solver) place(theta []float64) {
+	for j, v := range theta {
+		s.cur.theta[j] = min(max(v, s.low[j]), s.high[j])
+	}
 }
 
 // setFloor keeps the logarithm of a vanishing sum of squares finite.
@@ -154,7 +161,7 @@ func (s *solver) attempt(radius float64) (length, ratio float64) {
 	if !s.evaluate(s.try) {
 		return length, math.Inf(-1)
 	}
-	if moved := s.settle(s.try); moved > 1e-4*s.total(s.try) {
+	if moved := s.settle(s.try); moved > stale*s.total(s.try) {
 		if s.try.obj < s.cur.obj && !s.evaluate(s.try) {
 			return length, math.Inf(-1)
 		}

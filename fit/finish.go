@@ -20,29 +20,20 @@ func (s *solver) result(end ending) *Result {
 	for _, c := range s.count {
 		r.N += int(c)
 	}
-	edges := 0
 	for j := range r.Edges {
 		switch {
 		case s.low[j] == s.high[j]:
 			continue
 		case pt.theta[j] == s.low[j]:
-			r.Edges[j], edges = OnLow, edges+1
+			r.Edges[j] = OnLow
 		case pt.theta[j] == s.high[j]:
-			r.Edges[j], edges = OnHigh, edges+1
+			r.Edges[j] = OnHigh
 		default:
 			r.Free++
 		}
 		r.Constants++
 	}
-	switch end {
-	case stationary, rounding:
-		r.Status = Converged
-		if edges > 0 {
-			r.Status = AtEdge
-		}
-	default:
-		r.Status = Stopped
-	}
+	r.Status = s.status(end)
 	s.scatter(r)
 	s.covariance(r)
 	return r

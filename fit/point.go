@@ -54,11 +54,7 @@ func (s *solver) evaluate(pt *point) bool {
 		}
 	}
 	s.replace(pt)
-	var sum float64
-	for _, v := range pt.jraw {
-		sum += v
-	}
-	if sum-sum != 0 {
+	if !allFinite(pt.jraw) {
 		return false
 	}
 	s.measure(pt)
@@ -77,9 +73,6 @@ func (s *solver) replace(pt *point) {
 	}
 	p := s.p
 	for i, w := range s.weight {
-		if w == 1 {
-			continue
-		}
 		pt.res[i] *= w
 		row := pt.jraw[i*p : (i+1)*p]
 		for j := range row {
@@ -113,4 +106,21 @@ func (s *solver) total(pt *point) float64 {
 		t += pt.scale[b] * pt.scale[b] * ss
 	}
 	return t
+}
+
+// allFinite says whether a holds neither NaN nor ±Inf (nor what adds up to that).
+func allFinite(a []float64) bool {
+	var s0, s1, s2, s3 float64
+	for len(a) >= 4 {
+		s0 += a[0]
+		s1 += a[1]
+		s2 += a[2]
+		s3 += a[3]
+		a = a[4:]
+	}
+	for _, v := range a {
+		s0 += v
+	}
+	s := (s0 + s1) + (s2 + s3)
+	return s-s == 0
 }

@@ -31,6 +31,7 @@ type solver struct {
 	lin            int       // how many of them are linear
 	span           []float64 // D: the longest that each column has been
 	step           *boxedStep
+	brisk          brisk
 	change         []float64 // of θ
 	hits           []int     // of each parameter: steps in a row that ended on its bound
 	left, offset   float64   // ‖z‖ of the current point; relative to its residuals
