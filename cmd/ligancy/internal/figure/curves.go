@@ -24,6 +24,8 @@ type Curves struct {
 	Dense        bool     // too many points for marks of their own
 	Residuals    bool     // draw them
 	Rulers       bool
+
+	lead int // place of the first curve's colour
 }
 
 // Line is one curve of the leader.
@@ -91,7 +93,7 @@ func (l *curvesLayout) keys() float64 {
 	if len(l.Leader) > 0 && len(l.Lines) > 0 {
 		ink := Text
 		if len(l.Lines) == 1 {
-			ink = CurveInk(0)
+			ink = CurveInk(l.lead)
 		}
 		f, w := lineSample(ink, 2.4, nil)
 		entries = append(entries, keyEntry{f, w, l.Leader})
@@ -216,11 +218,11 @@ func (l *curvesLayout) field(y float64) float64 {
 	p.yAxis(at, l.Response)
 	below := p.xAxis(true)
 	for i, line := range l.Lines {
-		p.band(line.Low, line.High, CurveInk(i))
+		p.band(line.Low, line.High, CurveInk(l.lead+i))
 	}
 	l.rivals()
 	for i, line := range l.Lines {
-		p.curve(line.At, line.From, line.To, CurveInk(i))
+		p.curve(line.At, line.From, line.To, CurveInk(l.lead+i))
 	}
 	if l.Dense {
 		l.cloud()
@@ -228,7 +230,7 @@ func (l *curvesLayout) field(y float64) float64 {
 		l.marks()
 	}
 	l.names()
-	p.reading(p.top, p.bottom, true)
+	p.reading(true)
 	return below
 }
 
@@ -249,7 +251,7 @@ func (l *curvesLayout) lineInk(line int) Ink {
 	if line < 0 || line >= len(l.Lines) && len(l.Lines) > 0 {
 		return Muted
 	}
-	return CurveInk(line)
+	return CurveInk(l.lead + line)
 }
 
 // marks draws the scatter of each level as a thin line, then every measurement
@@ -374,7 +376,7 @@ func (l *curvesLayout) names() {
 	for i, line := range l.Lines {
 		label := Words(SansBold, line.Name).Cut(l.s.Size, 0.4*(l.x.x1-l.x.x0))
 		at := busy.place(between(l.main.places(line.At), l.x.x0, l.x.x1), label.Width(l.s.Size), l.s.Size, l.main)
-		l.d.add(&lettering{x: at.X, y: at.Y, size: l.s.Size, ink: NameInk(i), runs: label, halo: true})
+		l.d.add(&lettering{x: at.X, y: at.Y, size: l.s.Size, ink: NameInk(l.lead + i), runs: label, halo: true})
 	}
 }
 
@@ -394,13 +396,13 @@ func (l *curvesLayout) rulers(y float64) float64 {
 		}
 		middle := y + 0.8*l.s.Size
 		if single {
-			l.d.text(l.x.x0-0.6*l.s.Size, middle+0.36*l.s.Size, End, l.s.Size, NameInk(i), Words(Sans, line.Short))
+			l.d.text(l.x.x0-0.6*l.s.Size, middle+0.36*l.s.Size, End, l.s.Size, NameInk(l.lead+i), Words(Sans, line.Short))
 			l.d.text(l.x.x1+0.6*l.s.Size, middle+0.36*l.s.Size, Start, l.s.Size, Text, Words(Sans, decades))
 		} else {
 			base := y + l.s.Size
 			l.d.text(l.x.x1, base, End, l.s.Size, Text, Words(Sans, decades))
 			room := l.x.x1 - l.x.x0 - Words(Sans, decades).Width(l.s.Size) - l.s.Size
-			l.d.text(l.x.x0, base, Start, l.s.Size, NameInk(i), Words(Sans, line.Name).Cut(l.s.Size, room))
+			l.d.text(l.x.x0, base, Start, l.s.Size, NameInk(l.lead+i), Words(Sans, line.Name).Cut(l.s.Size, room))
 			middle = base + 0.95*l.s.Size
 		}
 		l.ruler(r, line, middle, i)
@@ -440,7 +442,7 @@ func (l *curvesLayout) bar(from, to, y, width float64, line Line, i int) {
 			var p Path
 			p.MoveTo(part[0], y)
 			p.LineTo(part[1], y)
-			l.d.add(&stroke{path: p, ink: CurveInk(i), width: width, opacity: part[2]})
+			l.d.add(&stroke{path: p, ink: CurveInk(l.lead + i), width: width, opacity: part[2]})
 		}
 	}
 }
@@ -466,7 +468,7 @@ func (l *curvesLayout) residuals(y float64) float64 {
 	l.d.within(group{class: "residuals"}, func() { l.residualMarks(p) })
 	l.d.add(&group{class: "residuals-of"})
 	l.d.add(endGroup{})
-	p.reading(p.top, p.bottom, true)
+	p.reading(true)
 	return p.bottom + 0.8*l.s.Size
 }
 

@@ -60,6 +60,7 @@ const (
 type group struct {
 	class  string
 	data   [][2]string // data-… attributes
+	axis   *frame      // of a field that the page reads
 	hidden bool
 }
 

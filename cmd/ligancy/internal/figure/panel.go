@@ -102,21 +102,51 @@ func (p *panel) xAxis(title bool) (below float64) {
 
 // reading marks the panel as one that shares the ligand axis: the page lays its
 // hairline through it. scale adds the linear axis, for a figure that is read.
-func (p *panel) reading(top, bottom float64, scale bool) {
-	f := func(v float64) string { return strconv.FormatFloat(v, 'g', 6, 64) }
-	data := [][2]string{
-		{"x0", f(p.x.x0)}, {"x1", f(p.x.x1)}, {"l0", f(p.x.low)}, {"l1", f(p.x.high)},
-		{"t", f(top)}, {"b", f(bottom)},
-	}
-	if !math.IsNaN(p.x.zero) {
-		data = append(data, [2]string{"z", f(p.x.zero)})
-	}
-	if scale {
-		data = append(data, [2]string{"y0", f(p.y.y0)}, [2]string{"y1", f(p.y.y1)},
-			[2]string{"v0", f(p.y.low)}, [2]string{"v1", f(p.y.high)})
-	}
-	p.d.add(&group{class: "axis", data: data})
+func (p *panel) reading(scale bool) {
+	p.d.add(&group{class: "axis", axis: &frame{x: p.x, y: p.y, top: p.top, bottom: p.bottom, scale: scale}})
 	p.d.add(endGroup{})
+}
+
+// frame is where a field lies and what its axes say, for the page.
+type frame struct {
+	x           logAxis
+	y           linear
+	top, bottom float64
+	scale       bool // with the linear axis
+}
+
+// moved is the frame moved by (x, y).
+func (f *frame) moved(x, y float64) *frame {
+	if f == nil {
+		return nil
+	}
+	g := *f
+	g.x.x0, g.x.x1, g.x.zero = g.x.x0+x, g.x.x1+x, g.x.zero+x
+	g.y.y0, g.y.y1 = g.y.y0+y, g.y.y1+y
+	g.top, g.bottom = g.top+y, g.bottom+y
+	return &g
+}
+
+// data are the attributes that say the frame to the page: places x0 and x1 of
+// the decadic logarithms l0 and l1, z of no ligand, t and b of the field's top
+// and bottom, places y0 and y1 of the values v0 and v1.
+func (f *frame) data() [][2]string {
+	if f == nil {
+		return nil
+	}
+	n := func(v float64) string { return strconv.FormatFloat(v, 'g', 6, 64) }
+	data := [][2]string{
+		{"x0", n(f.x.x0)}, {"x1", n(f.x.x1)}, {"l0", n(f.x.low)}, {"l1", n(f.x.high)},
+		{"t", n(f.top)}, {"b", n(f.bottom)},
+	}
+	if !math.IsNaN(f.x.zero) {
+		data = append(data, [2]string{"z", n(f.x.zero)})
+	}
+	if f.scale {
+		data = append(data, [2]string{"y0", n(f.y.y0)}, [2]string{"y1", n(f.y.y1)},
+			[2]string{"v0", n(f.y.low)}, [2]string{"v1", n(f.y.high)})
+	}
+	return data
 }
 
 // curve draws points of a curve: thick where measured, thin beyond.

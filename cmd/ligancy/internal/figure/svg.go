@@ -139,7 +139,7 @@ func (s *svgWriter) group(g *group) {
 	if g.class != "" {
 		fmt.Fprintf(&s.b, ` class="%s"`, escape(g.class))
 	}
-	for _, a := range g.data {
+	for _, a := range append(g.axis.data(), g.data...) {
 		fmt.Fprintf(&s.b, ` data-%s="%s"`, escape(a[0]), escape(a[1]))
 	}
 	if g.hidden {
