@@ -66,7 +66,7 @@ func (b *builder) sitesFromBmax(p string, d *Data) saturation.SitesPresent {
 	f, err := units.Factor(made, ligand)
 	if err != nil || one.Value <= 0 {
 		needs := units.Divide(ligand, *d.Response.Unit)
-		b.fault(at, "wrong-unit", fmt.Sprintf("Bmax in %s at %s is %s, not a concentration in %s", d.Response.Unit, one, made.Kind(), ligand), nil,
+		b.fault(at, "wrong-unit", fmt.Sprintf("Bmax in %s at %s makes no concentration in %s", d.Response.Unit, one, ligand), nil,
 			diag.Remedy{Say: "Say what Bmax is multiplied by, in a unit like " + needs.String() + ":", Write: "sites_present: {from: Bmax, at: 0.30 mg/mL}"})
 		return saturation.SitesPresent{}
 	}
@@ -102,7 +102,7 @@ func (b *builder) positive(p string, q *units.Quantity) float64 {
 	}
 	v, ok := b.inUnit(p, q, b.study.Ligand.Unit, "the ligand")
 	if ok && v <= 0 {
-		b.fault(p, "out-of-bounds", fmt.Sprintf("%s must be above 0, not %s", lastName(p), q), nil)
+		b.fault(p, "out-of-bounds", fmt.Sprintf("%s must be above 0, not %s", lastName(p), q), nil, diag.Remedy{Say: "Write for example", Write: fmt.Sprintf("%s: 1 %s", lastName(p), b.study.Ligand.Unit)})
 	}
 	return v
 }

@@ -164,7 +164,7 @@ func (b *builder) temperature(p string) {
 	}
 	k, _ := q.In(units.MustParse("K"))
 	if k < 200 || k > 500 {
-		b.fault(at, "out-of-bounds", fmt.Sprintf("temperature: at %s nothing binds in water", text), nil)
+		b.fault(at, "out-of-bounds", fmt.Sprintf("temperature: at %s nothing binds in water", text), nil, diag.Remedy{Write: "temperature: 15 degC"})
 		return
 	}
 	b.analysis.Kelvin = k

@@ -89,7 +89,7 @@ func (b *builder) differs(p string, m *Mechanism, c *saturation.Candidate) {
 func (b *builder) oneLevel(at, key string) {
 	levels := b.levelsOf(key)
 	if len(levels) == 1 && len(b.study.Data) > 0 {
-		b.warn(at, "one-level", fmt.Sprintf("%s has only one level, %s, so nothing differs by it", key, levels[0]), nil)
+		b.warn(at, "one-level", fmt.Sprintf("%s has only one level, %s, so nothing differs by it", key, levels[0]), nil, diag.Remedy{Say: "Take it out, or keep rows of two levels."})
 	}
 }
 
@@ -135,7 +135,7 @@ func (b *builder) ownEnds(p string, m *Mechanism, c *saturation.Candidate) {
 			used = used || slices.Contains(ends[d.Response.Kind], e.Name) || ends[d.Response.Kind] == nil
 		}
 		if !used {
-			b.faultAtKey(join(p, e.Name), "unknown-key", fmt.Sprintf("no response of the study has a %s", e.Name), nil)
+			b.faultAtKey(join(p, e.Name), "unknown-key", fmt.Sprintf("no response of the study has a %s", e.Name), []string{"A response has: " + strings.Join(ends[b.study.Data[0].Response.Kind], ", ") + "."})
 		}
 	}
 }
@@ -149,6 +149,9 @@ func (b *builder) mechanism(p string, m *Mechanism, c *saturation.Candidate) {
 	}
 	d := b.definition(p, m, family)
 	c.Given = d.Constants
+	if b.failed[p] {
+		return // what is missing may be what could not be read
+	}
 	built, err := family.Build(d)
 	if err != nil {
 		b.definitionErrors(p, err)

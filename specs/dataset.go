@@ -157,7 +157,11 @@ func (b *builder) response(p string, d *Data) saturation.Response {
 	default:
 		out.High = b.end(p, d, "high", &r.High, defaults["high"])
 		if !out.Low.Free && !out.High.Free && out.Low.Value == out.High.Value {
-			b.fault(p+".high", "no-span", fmt.Sprintf("low and high are both %v, so nothing could be seen", out.Low.Value), nil, diag.Remedy{Write: "high: free"})
+			at := p + ".low"
+			if b.said(p + ".high") {
+				at = p + ".high"
+			}
+			b.fault(at, "no-span", fmt.Sprintf("low and high are both %v, so nothing could be seen", out.Low.Value), nil, diag.Remedy{Write: "high: free"})
 		}
 	}
 	b.responseDiffers(p, d, &out, names)
@@ -294,7 +298,7 @@ func (b *builder) levelUnknown(data, key, at string, known []string) {
 		remedies = []diag.Remedy{{Write: lastName(at) + ": " + near}}
 	}
 	remedies = append(remedies, diag.Remedy{Say: "For a column that tells curves apart write", Write: fmt.Sprintf("factors: {%s: COLUMN}", key), Where: "under the data set."})
-	b.fault(at, "unknown-factor", fmt.Sprintf("data set %q has no factor %q", data, key), []string{"It can tell apart: " + strings.Join(known, ", ") + "."}, remedies...)
+	b.fault(at, "unknown-factor", fmt.Sprintf("data set %q has no factor %q", data, key), []string{"It can tell apart: " + strings.Join(unique(known), ", ") + "."}, remedies...)
 }
 
 // effector is the index of an effector by name or symbol; −1 where there is none.
@@ -339,7 +343,7 @@ func (b *builder) seconds(p string, q *units.Quantity) float64 {
 	}
 	v, _ := q.In(units.MustParse("s"))
 	if v <= 0 {
-		b.fault(p, "out-of-bounds", fmt.Sprintf("%s must be above 0", lastName(p)), nil)
+		b.fault(p, "out-of-bounds", fmt.Sprintf("%s must be above 0", lastName(p)), nil, diag.Remedy{Write: lastName(p) + ": 30 min"})
 	}
 	return v
 }

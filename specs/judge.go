@@ -10,6 +10,9 @@ import (
 
 // judge holds what was read against what a fit needs.
 func (r *points) judge() {
+	if r.d.faulty {
+		return // nothing can be said of points that were not read
+	}
 	var kept []saturation.Point
 	for _, p := range r.out.Points {
 		if p.LeftOut == "" {
@@ -18,7 +21,7 @@ func (r *points) judge() {
 	}
 	if len(kept) == 0 {
 		if len(r.out.Points) > 0 {
-			r.faultAtKey(r.path+".columns.left_out", "no-rows-kept", "every row is left out", nil)
+			r.faultAtKey(r.path+".columns.left_out", "no-rows-kept", "every row is left out", []string{"An empty cell in this column keeps its row."}, diag.Remedy{Write: "left_out: COLUMN"})
 		}
 		return
 	}
@@ -40,12 +43,16 @@ func (r *points) judgeBlocked(kept []saturation.Point) {
 		}
 	}
 	column := r.d.Columns.Blocked.Name
+	at := r.path + ".blocked_when"
+	if !r.said(at) {
+		at = r.path + ".columns.blocked"
+	}
 	switch n {
 	case 0:
-		r.fault(r.path+".blocked_when", "no-such-value", fmt.Sprintf("no row has %q in column %s", r.d.BlockedWhen, column),
+		r.fault(at, "no-such-value", fmt.Sprintf("no row has %q in column %s", r.d.BlockedWhen, column),
 			[]string{fmt.Sprintf("Column %s holds: %s.", column, shortList(r.t.Values(r.blocked), 12))}, diag.Remedy{Write: "blocked_when: " + nearestOr(r.d.BlockedWhen, r.t.Values(r.blocked))})
 	case len(kept):
-		r.fault(r.path+".blocked_when", "all-blocked", fmt.Sprintf("every row has %q in column %s, so nothing specific was measured", r.d.BlockedWhen, column), nil)
+		r.fault(at, "all-blocked", fmt.Sprintf("every row has %q in column %s, so nothing specific was measured", r.d.BlockedWhen, column), nil, diag.Remedy{Say: "Name the column and the word that tell blocked tubes from open ones."})
 	}
 }
 
@@ -70,10 +77,10 @@ func (r *points) judgeSpread(kept []saturation.Point) {
 		sameY = sameY && p.Y == y
 	}
 	if sameX && len(kept) > 1 {
-		r.fault(r.ligand.path, "one-ligand-value", fmt.Sprintf("all %d points are at one ligand value, %s %s", len(kept), number(x), r.study.Ligand.Unit), []string{"A curve needs several."})
+		r.fault(r.ligand.path, "one-ligand-value", fmt.Sprintf("all %d points are at one ligand value, %s %s", len(kept), number(x), r.study.Ligand.Unit), []string{"A curve needs several."}, diag.Remedy{Say: "Name the column that holds the ligand:", Write: "ligand: COLUMN"})
 	}
 	if sameY && len(kept) > 1 {
-		r.fault(r.response[0].path, "all-equal", fmt.Sprintf("all %d responses are %s, so there is no curve", len(kept), number(y)), nil)
+		r.fault(r.response[0].path, "all-equal", fmt.Sprintf("all %d responses are %s, so there is no curve", len(kept), number(y)), nil, diag.Remedy{Say: "Name the column that holds what was measured:", Write: "response: COLUMN"})
 	}
 }
 

@@ -75,11 +75,11 @@ func readFile(fsys fs.FS, name string, most int, what string) ([]byte, diag.List
 	info, err := fs.Stat(fsys, name)
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
-		return nil, fault("missing-file", "there is no file "+name)
+		return nil, fault("missing-file", "there is no file "+name, diag.Remedy{Say: "Write the name of a study that is there."})
 	case err != nil:
 		return nil, fault("unreadable", name+" cannot be opened: "+reason(err))
 	case info.IsDir():
-		return nil, fault("not-a-file", name+" is a folder")
+		return nil, fault("not-a-file", name+" is a folder", diag.Remedy{Say: "Name a file in it."})
 	case !info.Mode().IsRegular():
 		return nil, fault("not-a-file", name+" is not a plain file")
 	case info.Size() > int64(most):
@@ -141,7 +141,13 @@ func (b *builder) beside(i int) {
 	if !ok {
 		f = b.readTable(name)
 		b.files[name] = f
-		b.complaints = append(b.complaints, f.complaints...)
+		for _, c := range f.complaints {
+			if c.Line == 0 && c.Cell == "" { // about the file as a whole: named where the study names it
+				b.fault(at, c.Code, c.Problem, c.Notes, c.Remedies...)
+				continue
+			}
+			b.complaints = append(b.complaints, c)
+		}
 	}
 	if f.table == nil {
 		if len(f.complaints) == 0 {
@@ -149,6 +155,7 @@ func (b *builder) beside(i int) {
 		}
 		return
 	}
+	d.faulty = f.complaints.HasErrors()
 	t := *f.table
 	t.Notes = slices.Clone(t.Notes)
 	t.Study = b.study.File
@@ -180,6 +187,11 @@ func (b *builder) readTable(name string) file {
 	}
 	sum := sha256.Sum256(data)
 	t, complaints := table.Read(name, data)
+	for _, c := range complaints {
+		if slices.Contains([]string{"one-column", "no-header", "repeated-column"}, c.Code) {
+			t = nil // nothing can be said of its columns
+		}
+	}
 	return file{table: t, sha: hex.EncodeToString(sum[:]), complaints: complaints}
 }
 
@@ -188,7 +200,7 @@ func (b *builder) missingFile(at, name string) {
 	var tables []string
 	entries, _ := fs.ReadDir(b.fsys, path.Dir(name))
 	for _, e := range entries {
-		if ext := strings.ToLower(path.Ext(e.Name())); !e.IsDir() && slices.Contains([]string{".csv", ".tsv", ".tab", ".txt", ".xlsx"}, ext) {
+		if ext := strings.ToLower(path.Ext(e.Name())); e.Type().IsRegular() && slices.Contains([]string{".csv", ".tsv", ".tab", ".txt", ".xlsx"}, ext) {
 			tables = append(tables, e.Name())
 		}
 	}

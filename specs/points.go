@@ -153,7 +153,7 @@ func nearestColumn(name string, header []string) string {
 // otherUnitInHeader warns of a column whose header names another unit than it is read in.
 func (r *points) otherUnitInHeader(m measure, of string) {
 	u, ok := unitInHeader(m.name)
-	if !ok || !u.Same(m.to) {
+	if !ok || !u.Same(m.to) || m.to.IsLogarithm() {
 		return
 	}
 	if f, err := units.Factor(u, m.to); err == nil && f != 1 || err != nil {
@@ -255,7 +255,7 @@ func (b *builder) effectorValue(p, text string, s Substance) (float64, bool) {
 	}
 	v, ok := b.inUnit(p, &q, s.Unit, s.Name)
 	if ok && v < 0 {
-		b.fault(p, "negative-concentration", fmt.Sprintf("%s cannot be negative", s.Name), nil)
+		b.fault(p, "negative-concentration", fmt.Sprintf("%s cannot be negative", s.Name), nil, diag.Remedy{Write: plainOrQuoted(s.Name) + ": 0"})
 		ok = false
 	}
 	return v, ok
@@ -352,7 +352,7 @@ func (r *points) filter(rows []table.Row, column int, f Named[table.Match], p st
 		r.fault(at, "no-such-value", fmt.Sprintf("no row has %q in column %s", want, f.Name), note, remedies...)
 	}
 	if len(kept) == 0 && (len(f.Value.Any) == 0 || len(rows) > 0 && len(rows) < len(r.t.Rows)) {
-		r.fault(p, "no-rows-kept", fmt.Sprintf("no row is left when column %s is asked for this", f.Name), note)
+		r.fault(p, "no-rows-kept", fmt.Sprintf("no row is left when column %s is asked for this", f.Name), note, diag.Remedy{Say: "Ask for values that the column holds."})
 	}
 	return kept
 }
@@ -483,6 +483,7 @@ func (r *points) number(row table.Row, m measure, leftOut bool) (float64, bool) 
 	if d != nil {
 		if !leftOut {
 			r.complaints = append(r.complaints, *d)
+			r.d.faulty = true
 		}
 		return math.NaN(), leftOut
 	}
@@ -513,6 +514,10 @@ func (r *points) cell(row table.Row, column int, code, problem string, remedies 
 	if column < 0 {
 		column = 0
 	}
+	if len(remedies) == 0 {
+		remedies = []diag.Remedy{{Say: "Write what was measured, or leave the row out: with a column of reasons, say", Write: "left_out: COLUMN", Where: "under columns."}}
+	}
+	r.d.faulty = true
 	r.complaints = append(r.complaints, r.t.Complain(row.Cells[column], code, problem, nil, remedies...))
 }
 

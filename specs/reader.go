@@ -22,21 +22,32 @@ type reader struct {
 }
 
 func (r *reader) complain(d diag.Diagnostic) {
-	for _, m := range r.muted {
-		if m.Line == d.Line && m.File == d.File && d.Column < m.End && m.Column < max(d.End, d.Column+1) {
-			return // named already, in better words
-		}
+	if r.isMuted(d.Position) {
+		return // named already, in better words
 	}
 	for _, c := range r.complaints {
-		if d.Line > 0 && c.Severity == diag.Error && c.File == d.File && c.Line == d.Line && c.Column <= d.Column && d.End <= c.End && c.Code != d.Code {
+		if d.Line > 0 && c.Severity == diag.Error && c.Code != "missing-key" && c.File == d.File && c.Line == d.Line && c.Column <= d.Column && d.End <= c.End {
 			return // follows from what was named there
 		}
 	}
 	r.complaints = append(r.complaints, r.text.Quote(d))
 }
 
+// isMuted reports a place that a slip was named at.
+func (r *reader) isMuted(p diag.Position) bool {
+	for _, m := range r.muted {
+		if m.Line == p.Line && m.File == p.File && p.Column < m.End && m.Column < max(p.End, p.Column+1) {
+			return true
+		}
+	}
+	return false
+}
+
 // wrong complains of a node of the wrong form: "sites: a whole number belongs here".
 func (r *reader) wrong(n *yaml.Node, path, form string, notes ...string) {
+	if r.partial && isNull(n) {
+		return // what it held was not read
+	}
 	d := diag.Diagnostic{Code: "wrong-form", Position: r.at(n), Notes: notes,
 		Problem: fmt.Sprintf("%s: %s belongs here, not %s", lastName(path), form, r.describe(n))}
 	if r.example != "" {
@@ -96,7 +107,7 @@ func (r *reader) entries(n *yaml.Node, path string, each func(name string, key, 
 	for i := 0; i+1 < len(n.Content); i += 2 {
 		key, value := n.Content[i], n.Content[i+1]
 		if key.Kind != yaml.ScalarNode {
-			r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(key), Problem: "a key is one word before a colon, not " + r.describe(key)})
+			r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(key), Problem: "a key is one word before a colon, not " + r.describe(key), Remedies: []diag.Remedy{{Write: "key: value"}}})
 			ok = false
 			continue
 		}

@@ -19,7 +19,7 @@ func (b *builder) requests() {
 	if c := s.Curve; c != nil {
 		a.Curve = &saturation.CurveRequest{From: b.positive("curve.from", c.From), To: b.positive("curve.to", c.To), Points: c.Points, At: b.held("curve.at", c.At)}
 		if a.Curve.From > 0 && a.Curve.To > 0 && a.Curve.From >= a.Curve.To {
-			b.fault("curve.to", "out-of-bounds", fmt.Sprintf("the curve would end at %s, not above its beginning %s", c.To, c.From), nil)
+			b.fault("curve.to", "out-of-bounds", fmt.Sprintf("the curve would end at %s, not above its beginning %s", c.To, c.From), nil, diag.Remedy{Write: fmt.Sprintf("from: %s, to: %s", c.To, c.From)})
 		}
 		if len(s.Data) == 0 && (c.From == nil || c.To == nil) && !b.said("data") {
 			b.faultAtKey("curve", "missing-key", "without data a curve needs from and to", nil, diag.Remedy{Write: fmt.Sprintf("curve: {from: 0.1 %s, to: 100 %s}", s.Ligand.Unit, s.Ligand.Unit)})
@@ -40,7 +40,7 @@ func (b *builder) plan(c *Plan) *saturation.PlanRequest {
 	if len(c.Range) == 2 {
 		out.Low, out.High = b.positive("plan.range[0]", &c.Range[0]), b.positive("plan.range[1]", &c.Range[1])
 		if out.Low > 0 && out.High > 0 && out.Low >= out.High {
-			b.fault("plan.range", "out-of-bounds", fmt.Sprintf("the range would end at %s, not above its beginning %s", c.Range[1], c.Range[0]), nil)
+			b.fault("plan.range", "out-of-bounds", fmt.Sprintf("the range would end at %s, not above its beginning %s", c.Range[1], c.Range[0]), nil, diag.Remedy{Write: fmt.Sprintf("range: [%s, %s]", c.Range[1], c.Range[0])})
 		}
 	}
 	if !b.said("plan.aim") {
@@ -100,7 +100,7 @@ func (b *builder) knownLevels(p string, e Named[[]string], levels []string) {
 			return l == want || err == nil && werr == nil && v == w
 		})
 		if !ok {
-			b.fault(join(p, e.Name), "no-such-value", fmt.Sprintf("no point has %s %s", e.Name, want), []string{fmt.Sprintf("The levels of %s are: %s.", e.Name, shortList(levels, 12))})
+			b.fault(join(p, e.Name), "no-such-value", fmt.Sprintf("no point has %s %s", e.Name, want), []string{fmt.Sprintf("The levels of %s are: %s.", e.Name, shortList(levels, 12))}, diag.Remedy{Write: fmt.Sprintf("at: {%s: %s}", plainOrQuoted(e.Name), levels[0])})
 		}
 	}
 }
@@ -161,6 +161,8 @@ func (b *builder) rate(at, name string, q *units.Quantity) (float64, int) {
 	case q.Unit.Same(second):
 		v, _ := q.In(second)
 		return v, 2
+	case strings.HasPrefix(q.Unit.Kind(), "a rate constant"):
+		b.fault(at, "wrong-unit", fmt.Sprintf("%s: %s does not go with a ligand in %s", name, q.Unit, u), nil, example)
 	default:
 		b.fault(at, "wrong-unit", fmt.Sprintf("%s: %s is %s, not a rate constant", name, q.Unit, q.Unit.Kind()), nil, example)
 	}

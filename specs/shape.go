@@ -32,8 +32,11 @@ func (r *reader) scalar(n *yaml.Node, path, form string) (string, bool) {
 		r.wrong(n, path, form)
 		return "", false
 	}
+	if r.isMuted(r.at(n)) {
+		return "", false // it stands for something that was named
+	}
 	if strings.TrimSpace(n.Value) == "" {
-		r.complain(diag.Diagnostic{Code: "empty-text", Position: r.at(n), Problem: lastName(path) + " is empty"})
+		r.complain(diag.Diagnostic{Code: "empty-text", Position: r.at(n), Problem: lastName(path) + " is empty", Remedies: r.exampleRemedy()})
 		return "", false
 	}
 	return n.Value, true

@@ -37,16 +37,17 @@ func (l listShape[V]) read(r *reader, n *yaml.Node, path string, v *[]V) bool {
 		r.places[p] = place{key: at, value: at}
 		var one V
 		if !l.of.read(r, item, p, &one) {
+			r.failed[p] = true
 			ok = false
 		}
 		*v = append(*v, one)
 	}
 	switch {
 	case len(n.Content) < l.least:
-		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n), Problem: fmt.Sprintf("%s needs at least %d, here are %d", lastName(path), l.least, len(n.Content)), Remedies: r.exampleRemedy()})
+		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n), Problem: fmt.Sprintf("%s: %s belongs here; there should be at least %d, not %d", lastName(path), l.form, l.least, len(n.Content)), Remedies: r.exampleRemedy()})
 		return false
 	case l.most > 0 && len(n.Content) > l.most:
-		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n), Problem: fmt.Sprintf("%s has at most %d, here are %d", lastName(path), l.most, len(n.Content)), Remedies: r.exampleRemedy()})
+		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n), Problem: fmt.Sprintf("%s: %s belongs here; there may be at most %d, not %d", lastName(path), l.form, l.most, len(n.Content)), Remedies: r.exampleRemedy()})
 		return false
 	}
 	return ok
@@ -145,7 +146,7 @@ func (c recordShape[T]) read(r *reader, n *yaml.Node, path string, t *T) bool {
 		if c.plain != nil && !isNull(n) {
 			return c.plain(r, n, path, t)
 		}
-		r.wrong(n, path, c.name+" in the form   key: value")
+		r.wrong(n, path, "a mapping from keys to values")
 		return false
 	}
 	ok := true

@@ -31,8 +31,11 @@ type slips struct {
 	opened  diag.Position
 	block   int // indentation that the lines of a | or > text exceed; −1 outside
 	content bool
+	last    byte            // the last character before this one that is no blank
 	known   map[string]bool // every key that a study may hold
 }
+
+var closing = map[byte]string{'[': "]", '{': "}"}
 
 // bracket is an open [ or {.
 type bracket struct {
@@ -71,9 +74,8 @@ func (s *slips) complain(p diag.Position, code, problem string, notes []string, 
 }
 
 func (s *slips) unclosed(b bracket) {
-	closing := map[byte]string{'[': "]", '{': "}"}[b.sign]
 	s.complain(s.text.At(b.line, b.col+1, b.col+2), "open-bracket", fmt.Sprintf("the %c that opens here is never closed", b.sign), nil,
-		diag.Remedy{Say: "Close it with", Write: closing})
+		diag.Remedy{Say: "Close it with", Write: closing[b.sign]})
 	s.fatal = true
 }
 
@@ -83,7 +85,7 @@ func (s *slips) overwrite(line, from, to int, with byte) {
 	s.mended[line-1] = l[:from] + strings.Repeat(string(with), to-from) + l[to:]
 }
 
-var topLevelKey = regexp.MustCompile(`^([a-z_]+):(\s|$)`)
+var topLevelKey = regexp.MustCompile(`^([A-Za-z_]+):(\s|$)`)
 
 // line reads one line in the state that the lines before it left.
 func (s *slips) line(n int) {
@@ -99,7 +101,8 @@ func (s *slips) line(n int) {
 	if s.quote == 0 && len(s.flow) == 0 && s.boundary(n, l) {
 		return
 	}
-	if m := topLevelKey.FindStringSubmatch(l); len(s.flow) > 0 && s.quote == 0 && m != nil && s.known[m[1]] {
+	if m := topLevelKey.FindStringSubmatch(body); len(s.flow) > 0 && s.quote == 0 && m != nil && s.known[m[1]] &&
+		(indent == 0 || strings.IndexByte(",[{", s.last) < 0) {
 		s.unclosed(s.flow[0])
 		return
 	}
@@ -123,7 +126,7 @@ func (s *slips) boundary(n int, l string) bool {
 		return true
 	case strings.HasPrefix(l, "%"):
 		s.complain(s.text.At(n, 1, len(l)+1), "directive", "a line that begins with % is an instruction to the YAML reader", nil,
-			diag.Remedy{Say: "Take the line out, or begin it with", Write: "# "})
+			diag.Remedy{Say: "Take the line out, or begin it with", Write: "#"})
 		s.overwrite(n, 0, len(l), ' ')
 		return true
 	}
@@ -165,7 +168,7 @@ func (c *cursor) read() {
 			c.remark()
 			return
 		default:
-			c.content = true
+			c.content, c.last = true, c.line[c.i]
 			c.visible(size)
 		}
 	}
@@ -271,6 +274,9 @@ func (c *cursor) visible(size int) {
 // isColon reports whether the colon here ends a key.
 func (c *cursor) isColon(inFlow bool) bool {
 	next := c.line[c.i+1:]
+	if r, _ := utf8.DecodeRuneInString(next); isOddBlank(r) {
+		return true
+	}
 	return next == "" || isBlank(next[0]) || inFlow && strings.IndexByte(",[]{}", next[0]) >= 0 || inFlow && c.closed == c.i && c.closed > 0
 }
 
@@ -377,7 +383,7 @@ func (c *cursor) flowSign(b byte) {
 	}
 	open := c.flow[top]
 	if b == ']' && open.sign != '[' || b == '}' && open.sign != '{' {
-		c.complain(c.at(c.i, c.i+1), "wrong-bracket", fmt.Sprintf("%c closes here, but %c was opened in line %d, column %d", b, open.sign, open.line, open.col+1), nil)
+		c.complain(c.at(c.i, c.i+1), "wrong-bracket", fmt.Sprintf("%c closes here, but %c was opened in line %d, column %d", b, open.sign, open.line, open.col+1), nil, diag.Remedy{Write: closing[open.sign]})
 		c.fatal = true
 		return
 	}
@@ -442,8 +448,7 @@ func (c *cursor) begin(b byte, inFlow bool, size int) {
 		c.i++
 	case b == '?' && next == ' ':
 		c.complain(c.at(c.i, c.i+1), "long-key", "a key is one word before a colon", nil, diag.Remedy{Say: "Take the question mark out."})
-		c.overwrite(c.n, c.i, c.i+1, ' ')
-		c.i++
+		c.fatal = true
 	case (b == '|' || b == '>') && !inFlow:
 		c.blockText(b)
 	case b == '%' || b == '@' || b == '`' || b == '|' || b == '>':
@@ -468,7 +473,7 @@ func (c *cursor) push(b byte) {
 }
 
 func (c *cursor) tooDeep(what string) {
-	c.complain(c.at(c.i, c.i+1), "too-deep", fmt.Sprintf("%d %s stand inside each other", deepest+1, what), []string{"No study needs that many."})
+	c.complain(c.at(c.i, c.i+1), "too-deep", fmt.Sprintf("%d %s stand inside each other", deepest+1, what), []string{"No study needs that many."}, diag.Remedy{Say: "Take the " + what + " out."})
 	c.fatal = true
 }
 

@@ -62,8 +62,9 @@ type Data struct {
 	Incubation   *units.Quantity
 	Phases       []Phase // of traces
 
-	table *table.Table
-	sha   string
+	table  *table.Table
+	sha    string
+	faulty bool // something in the table could not be read
 }
 
 // Column is a column of a table, with its unit where the study says one.

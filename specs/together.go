@@ -19,8 +19,10 @@ var quantities = []string{
 // contrasts settles what is compared between the levels of a factor.
 func (b *builder) contrasts() {
 	known := slices.Clone(quantities)
+	whole := len(b.analysis.Candidates) == len(b.study.Mechanisms)
 	for _, c := range b.analysis.Candidates {
 		if c.Mechanism == nil {
+			whole = false
 			continue
 		}
 		for _, k := range c.Mechanism.Constants() {
@@ -33,8 +35,8 @@ func (b *builder) contrasts() {
 	for i, c := range b.study.Contrasts {
 		p := indexed("contrasts", i)
 		for j, of := range c.Of {
-			if slices.Contains(known, of) {
-				continue
+			if slices.Contains(known, of) || !whole {
+				continue // a constant of a mechanism that could not be built, perhaps
 			}
 			at := p + ".of"
 			if b.said(indexed(at, j)) {
@@ -144,7 +146,10 @@ func (b *builder) sitesOfMechanisms() {
 // enoughPoints counts constants against points.
 func (b *builder) enoughPoints(p string, c *saturation.Candidate) {
 	points := 0
-	for _, d := range b.analysis.Data {
+	for i, d := range b.analysis.Data {
+		if b.study.Data[i].faulty || b.study.Data[i].table == nil {
+			return // some are missing because they could not be read
+		}
 		for _, pt := range d.Points {
 			if pt.LeftOut == "" {
 				points++

@@ -36,7 +36,7 @@ func visible(r rune, written string) string {
 		return string(rune(0x2400) + r)
 	case r == 0x7f:
 		return "␡"
-	case unicode.IsControl(r), unicode.In(r, unicode.Bidi_Control), r == 0xfeff, r == 0x2028, r == 0x2029:
+	case unicode.IsControl(r), unicode.In(r, unicode.Bidi_Control), r == 0xfeff, r == 0x2028, r == 0x2029, r == 0x200b, r == 0x2060:
 		return fmt.Sprintf("<U+%04X>", r)
 	}
 	return written

@@ -217,7 +217,13 @@ func undoLogarithm(v float64, s scaleKind) float64 {
 func Multiply(u, v Unit) Unit { return combine(u, v, 1, u.String()+"."+v.String()) }
 
 // Divide is the quotient of two units, written with a stroke.
-func Divide(u, v Unit) Unit { return combine(u, v, -1, u.String()+"/"+v.String()) }
+func Divide(u, v Unit) Unit {
+	by := v.String()
+	if strings.ContainsAny(by, "/. *·") {
+		by = "(" + by + ")"
+	}
+	return combine(u, v, -1, u.String()+"/"+by)
+}
 
 // combine multiplies u by v to a power.
 func combine(u, v Unit, power int, written string) Unit {
