@@ -43,13 +43,16 @@ func (p *program) curve(name string, json bool) error {
 	if err := diag.WriteText(p.Stderr, o.complaints); err != nil {
 		return err
 	}
-	outcome, populations, err := o.analysis.Given()
-	if err != nil {
+	outcome, err := o.analysis.Given()
+	if outcome == nil || len(outcome.Mechanisms) == 0 {
 		return fmt.Errorf("%s: %w", name, err)
 	}
-	d := report.NewGiven(o.analysis, outcome, populations, o.source())
+	if err != nil {
+		p.complain("left out: %v", err)
+	}
+	d := report.New(o.analysis, outcome, o.source())
 	if json {
 		return report.WriteJSON(p.out, d)
 	}
-	return d.WriteText(p.out, p.colour())
+	return d.WriteGiven(p.out, p.colour())
 }

@@ -3,6 +3,7 @@ package report
 import (
 	"math"
 	"slices"
+	"strconv"
 
 	"ligancy/fit/saturation"
 )
@@ -168,13 +169,14 @@ func unitWord(unit string) string {
 	return cut(unit, 16)
 }
 
-// plain writes a number as it was given.
+// plain writes a number as it was given; twelve digits hide the rounding of
+// a way through the logarithm and back.
 func plain(x float64) string {
-	if !finite(x) {
+	switch size := math.Abs(x); {
+	case !finite(x):
 		return "–"
+	case size >= 1e-3 && size < 1e6:
+		return strconv.FormatFloat(x, 'g', 12, 64)
 	}
-	if x == math.Trunc(x) && math.Abs(x) < 1e6 {
-		return atPlace(x, 0, false)
-	}
-	return axisNumber(x)
+	return shortExponent(strconv.FormatFloat(x, 'g', 12, 64))
 }

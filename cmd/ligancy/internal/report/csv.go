@@ -20,13 +20,13 @@ type Table struct {
 // Tables returns the document's lists in the order of the document.
 func (d *Document) Tables() []Table { return lists(d.Outcome) }
 
-// TableNames are the names of all lists that a document can have.
+// TableNames are the names of the lists that a document has.
 func TableNames() []string {
 	var names []string
 	for _, t := range lists(&saturation.Outcome{}) {
 		names = append(names, t.Name)
 	}
-	return append(names, "populations")
+	return names
 }
 
 // lists finds the lists of an outcome: its exported slices that have a key.

@@ -52,6 +52,7 @@ func TestEmptyOutcomeHasEveryList(t *testing.T) {
 
 func TestTablesHaveTheKeysOfTheJSONAndTheSameNumbers(t *testing.T) {
 	d := clamDocument(t)
+	d.Populations = []saturation.PopulationRow{{Mechanism: leader, State: "R, 2 bound", Share: 0.25}}
 	d.Preparations = []saturation.PreparationRow{{Curve: "pH 7.6", Preparation: "A", XHalf: 5.4}}
 	d.Curves = []saturation.CurveRow{{Mechanism: "a, \"b\"", Curve: "all", X: 0.1, Saturation: saturation.Real(math.NaN()), NH: 1e-300}}
 	for _, table := range d.Tables() {

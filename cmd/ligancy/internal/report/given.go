@@ -1,7 +1,6 @@
 package report
 
 import (
-	"fmt"
 	"io"
 	"math"
 	"strconv"
@@ -10,21 +9,10 @@ import (
 	"ligancy/fit/saturation"
 )
 
-// Given is a result document of curves from given constants: nothing was fitted.
-type Given struct {
-	*Document
-	Populations []saturation.PopulationRow `json:"populations"`
-}
-
-// NewGiven assembles the document of curves from given constants.
-func NewGiven(a *saturation.Analysis, o *saturation.Outcome, populations []saturation.PopulationRow, src Source) *Given {
-	return &Given{New(a, o, src), list(populations)}
-}
-
-// WriteText prints, for each mechanism, the ruler, the slopes and a short table
-// of its curves.
-func (d *Given) WriteText(w io.Writer, colour bool) error {
-	p := &page{d: d.Document, ink: ink{colour}, rows: d.index()}
+// WriteGiven prints a document of curves from given constants: for each
+// mechanism the ruler, the slopes and a short table of its curves.
+func (d *Document) WriteGiven(w io.Writer, colour bool) error {
+	p := &page{d: d, ink: ink{colour}, rows: d.index()}
 	for _, l := range wrap(cut(d.Study.Title, 4*Width), Width) {
 		p.line("%s", p.ink.bold(l))
 	}
@@ -33,19 +21,12 @@ func (d *Given) WriteText(w io.Writer, colour bool) error {
 		p.write(hanging("origin: ", cut(d.Study.Origin, 3*Width), Width))
 	}
 	p.line("")
-	shown := 0
 	for i := range d.Mechanisms {
-		m := &d.Mechanisms[i]
-		switch {
-		case m.Status != "given":
-			p.write(hanging("", fmt.Sprintf("%s was left out: %s.", m.Name, *m.Why), Width))
-			p.line("")
-		case shown < mostCurves:
-			shown++
-			p.givenMechanism(m.Name)
-		default:
-			p.line("and %s: --json has every curve", cut(m.Name, 60))
+		if i == mostCurves {
+			p.line("and %d more mechanisms: --json has every curve", len(d.Mechanisms)-mostCurves)
+			break
 		}
+		p.givenMechanism(d.Mechanisms[i].Name)
 	}
 	p.line("Research use only, not for diagnosis or treatment.")
 	_, err := io.WriteString(w, p.b.String())

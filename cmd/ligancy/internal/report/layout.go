@@ -187,7 +187,7 @@ func (g *grid) add(cells ...string) { g.rows = append(g.rows, cells) }
 func (g *grid) lines(w int) []string {
 	widths := g.widths()
 	var out []string
-	for from := 1; from == 1 || from < len(widths); {
+	for from := 1; ; {
 		to, used := from, widths[0]
 		for to < len(widths) && (to == from || used+g.step(widths[to]) <= w) {
 			used += g.step(widths[to])
@@ -199,7 +199,9 @@ func (g *grid) lines(w int) []string {
 			}
 			out = append(out, g.line(row, widths, from, to))
 		}
-		from = to
+		if from = to; from >= len(widths) {
+			break
+		}
 	}
 	return out
 }

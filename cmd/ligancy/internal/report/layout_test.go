@@ -82,3 +82,14 @@ func TestGridFoldsColumnsThatDoNotFit(t *testing.T) {
 		t.Errorf("got\n%s", strings.Join(got, "\n"))
 	}
 }
+
+func TestGridWithoutRowsOrColumns(t *testing.T) {
+	if got := (&grid{}).lines(80); len(got) != 0 {
+		t.Errorf("%q", got)
+	}
+	g := &grid{}
+	g.add("alone")
+	if got := g.lines(80); len(got) != 1 || got[0] != "alone" {
+		t.Errorf("%q", got)
+	}
+}

@@ -131,7 +131,7 @@ func (a axis) marks(tested []float64) string {
 // reach is where a curve lies on the ligand axis: values that do not exist are NaN.
 type reach struct {
 	x01, x10, half, x90, x99 float64
-	from, to                 float64 // tested range of this curve
+	from, to                 float64 // tested range of this curve; from > to where nothing was tested
 }
 
 // bar draws one curve: thin from 1 to 99 %, thick from 10 to 90 %, an upright
@@ -139,7 +139,10 @@ type reach struct {
 // on beyond the axis, or has no end, is drawn to its edge with an arrow.
 func (a axis) bar(r reach) string {
 	line := []rune(strings.Repeat(" ", a.columns))
-	testedFrom, testedTo := a.column(r.from), a.column(r.to)
+	testedFrom, testedTo := 0, a.columns
+	if r.from <= r.to {
+		testedFrom, testedTo = a.column(r.from), a.column(r.to)
+	}
 	stroke := func(from, to float64, solid, broken rune) {
 		lo, hi := 0, a.columns-1
 		if finite(from) && from > 0 {
