@@ -101,8 +101,7 @@ func (f *fitted) drawPoints(residual bool) drawer {
 			}
 		}
 		g := *f
-		sim := simulation{}
-		g.problem = sim.replaced(&g, y, [][]float64{f.result.Theta})
+		g.problem = replaced(&g, y, [][]float64{f.result.Theta})
 		g.m = g.m.over(g.problem.Blocks)
 		r, err := g.solve(ctx, fit.Settings{Starts: 1, Workers: 1})
 		if err != nil || r == nil || r.Status == fit.NoAnswer || r.Status == fit.Stopped {

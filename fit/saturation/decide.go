@@ -4,11 +4,8 @@ import (
 	"context"
 	"fmt"
 	"math"
-	"math/rand/v2"
 	"runtime"
-	"sync"
-
-	"ligancy/fit"
+	"slices"
 )
 
 // A mechanism is out when at most one in a hundred of the studies simulated
@@ -26,17 +23,47 @@ type decider struct {
 	order []int
 	draws int
 	rec   Recorder
+
+	curves *curves
+	rivals []int // candidates whose curves no other candidate holds: one of them is best
 }
 
-// decide marks candidates `out`.
+// decide marks candidates `out`, the nearest to the leader first.
 func (d *decider) decide(ctx context.Context) {
 	for n, i := range d.order {
-		if n == 0 || d.fits[i].row.Standing != "open" || ctx.Err() != nil {
+		f := d.fits[i]
+		if n == 0 || f.row.Standing != "open" || ctx.Err() != nil {
 			continue
 		}
 		d.progress(n)
-		if d.out(ctx, i) {
-			d.fits[i].row.Standing = "out"
+		if t := f.twinOf; t >= 0 && d.fits[t].decided {
+			f.row.Standing, f.decided = d.fits[t].row.Standing, true
+			continue
+		}
+		out := d.out(ctx, i)
+		if ctx.Err() != nil {
+			return
+		}
+		f.decided = true
+		if out {
+			f.row.Standing = "out"
+		}
+	}
+	d.restore()
+}
+
+// restore takes back `out` from candidates that hold all curves of one that is
+// not out: what is a part of them cannot be right where they are wrong.
+func (d *decider) restore() {
+	for _, i := range d.order {
+		if d.fits[i].row.Standing != "out" {
+			continue
+		}
+		for _, j := range d.order {
+			if d.fits[j].row.Standing != "out" && d.fits[i].lnL >= d.fits[j].lnL-0.01 && d.curves.hold(i, j) {
+				d.fits[i].row.Standing = "open"
+				break
+			}
 		}
 	}
 }
@@ -56,17 +83,19 @@ func (d *decider) out(ctx context.Context, i int) bool {
 	if d.draws <= 0 || observed <= 0 { // nothing wins by less than nothing
 		return false
 	}
-	sim := d.simulation(ctx, i, observed)
-	if sim == nil {
+	t := d.trial(ctx, i, observed)
+	if t == nil {
 		return false
 	}
 	allowed := int(outShare*float64(d.draws+1)) - 1 // wins besides the data's own
-	wins, batch := 0, 16
-	for from := 0; from < d.draws; from += batch {
-		wins += sim.wins(ctx, from, min(from+batch, d.draws))
+	wins, batch := 0, 8
+	for from := 0; from < d.draws; {
+		to := min(from+batch, d.draws)
+		wins += t.wins(ctx, from, to)
 		if wins > allowed || ctx.Err() != nil {
 			return false
 		}
+		from, batch = to, min(2*batch, 64)
 	}
 	return true
 }
@@ -88,100 +117,101 @@ func (d *decider) hopeless(i int, observed float64) bool {
 	for _, j := range d.order {
 		k = max(k, d.fits[j].k)
 	}
-	return d.fits[i].row.Points >= 3*k+3 && observed > 50+8*float64(k)
+	return d.fits[i].row.Points >= 3*k+3 && observed > 30+6*float64(k)
 }
 
-// simulation holds what is shared by the draws of one candidate.
-type simulation struct {
+// trial is what is shared by the draws from one candidate.
+type trial struct {
 	d        *decider
-	truth    int
 	observed float64
-	mean     [][]float64 // per block
-	sd       [][]float64
-	starts   [][][]float64 // per candidate in order
+	sim      *simulation
+	own      int
+	rivals   []int
+	starts   [][]float64 // per rival: where its fit to the candidate's own curves lies
+	crews    []crew
+	won      []bool // per draw
 }
 
-// simulation prepares the draws of candidate i: its predictions and scatter,
-// and where each candidate's fit to the predictions themselves lies.
-func (d *decider) simulation(ctx context.Context, i int, observed float64) *simulation {
+// trial prepares the draws from candidate i: which rivals can win at all, and
+// from where their fits start.
+func (d *decider) trial(ctx context.Context, i int, observed float64) *trial {
 	f := d.fits[i]
-	s := &simulation{d: d, truth: i, observed: observed}
-	for bi, b := range f.m.blocks {
-		dev := f.deviations(b)
-		sigma := f.blockSigma(bi)
-		for k := range dev {
-			dev[k] *= sigma
-		}
-		mean := make([]float64, len(b.pts))
-		for k := range mean {
-			mean[k] = b.predicted(k)
-		}
-		s.mean = append(s.mean, mean)
-		s.sd = append(s.sd, dev)
-	}
-	for _, j := range d.order {
-		g := d.fits[j]
-		starts := [][]float64{g.result.Theta}
+	t := &trial{d: d, observed: observed, own: i, won: make([]bool, d.draws),
+		sim: newSimulation(f, d.a.Settings.Seed<<8^uint64(i))}
+	for _, j := range d.maximal() {
 		if j == i {
-			s.starts = append(s.starts, starts)
 			continue
 		}
-		r, err := fit.Solve(ctx, s.replaced(g, s.mean, starts), fit.Settings{Starts: 1, Workers: 1})
-		if err == nil && r != nil && r.Status != fit.NoAnswer {
-			starts = [][]float64{r.Theta, g.result.Theta}
+		r := newRefitter(d.fits[j])
+		if r == nil {
+			continue
 		}
-		s.starts = append(s.starts, starts)
+		r.observe(t.sim.mean)
+		misfit, theta := r.misfit(ctx, t.sim, d.fits[j].result.Theta, d.fits[j].m.firstStarts()[0])
+		if misfit < 0 || !canWin(misfit, observed, d.fits[j].k) {
+			continue
+		}
+		t.rivals, t.starts = append(t.rivals, j), append(t.starts, theta)
 	}
-	return s
+	for range min(d.workers(), d.draws) {
+		t.crews = append(t.crews, t.crew(ctx))
+	}
+	return t
 }
 
-// blockSigma is the scatter of one block as draws need it: absolute σ for
-// relative deviations, 1 where the deviations are the data's own.
-func (f *fitted) blockSigma(bi int) float64 {
-	b := f.m.blocks[bi]
-	if b.noise.scatter() == fit.Known {
-		return 1
+// maximal are the candidates whose curves no other candidate holds entirely:
+// one of them has the greatest likelihood, whatever the data.
+func (d *decider) maximal() []int {
+	if d.rivals != nil {
+		return d.rivals
 	}
-	n := len(b.pts)
-	dof := n - f.m.free()*n/max(f.row.Points, 1)
-	return math.Sqrt(f.relativeSS(b) / float64(max(dof, 1)))
+	byFreedom := slices.Clone(d.order)
+	slices.SortStableFunc(byFreedom, func(i, j int) int { return d.fits[j].k - d.fits[i].k })
+	for _, i := range byFreedom {
+		if !slices.ContainsFunc(d.rivals, func(j int) bool { return d.curves.hold(j, i) }) {
+			d.rivals = append(d.rivals, i)
+		}
+	}
+	return d.rivals
 }
 
-// replaced is a candidate's problem with other values in the place of y.
-func (s *simulation) replaced(g *fitted, y [][]float64, starts [][]float64) *fit.Problem {
-	p := *g.problem
-	p.Blocks = nil
-	for bi, b := range g.m.blocks {
-		p.Blocks = append(p.Blocks, b.withY(y[bi]))
-	}
-	p.Starts = starts
-	p.Parameters = append([]fit.Parameter(nil), p.Parameters...)
-	for i := range p.Parameters {
-		p.Parameters[i].StartLow, p.Parameters[i].StartHigh = math.NaN(), math.NaN()
-	}
-	return &p
+// canWin says whether a rival with this misfit D², in units of the scatter, to
+// the candidate's own curves can win by T. Its lead 2 ln(L_rival/L_own) is then
+// about χ² − D² + 2Dz with z standard normal: it wins where
+// z ≥ (D² + T − χ²)/2D, which beyond 4 happens in 3 of 100,000 draws.
+func canWin(misfit, observed float64, k int) bool {
+	return misfit == 0 || (misfit+observed-float64(10+2*k))/(2*math.Sqrt(misfit)) < 4
 }
 
-// wins counts the draws in [from, to) in which the best candidate wins by as
-// much as observed; draws run side by side, each with its own seed.
-func (s *simulation) wins(ctx context.Context, from, to int) int {
-	won := make([]bool, to-from)
-	var wg sync.WaitGroup
-	next := make(chan int)
-	for range min(s.d.workers(), to-from) {
-		wg.Go(func() {
-			for draw := range next {
-				won[draw-from] = s.draw(ctx, draw)
+// misfit is the least D² that the candidate's fits to noise-free curves reach
+// from these starts, and where; −1 where there is none.
+func (r *refitter) misfit(ctx context.Context, s *simulation, starts ...[]float64) (least float64, at []float64) {
+	least = -1
+	for _, theta := range starts {
+		if math.IsInf(r.from(ctx, theta), -1) {
+			continue
+		}
+		sum := 0.0
+		for bi, b := range r.f.m.blocks {
+			b.predict(r.theta, false)
+			for i := range b.pts {
+				e := (b.predicted(i) - s.mean[bi][i]) / s.sd[bi][i]
+				sum += e * e
 			}
-		})
+		}
+		if least < 0 || sum < least {
+			least, at = sum, slices.Clone(r.theta)
+		}
 	}
-	for draw := from; draw < to; draw++ {
-		next <- draw
-	}
-	close(next)
-	wg.Wait()
+	return least, at
+}
+
+// wins counts the draws in [from, to) in which a rival wins by as much as
+// observed.
+func (t *trial) wins(ctx context.Context, from, to int) int {
+	t.sim.draws(ctx, from, to, t.crews)
 	n := 0
-	for _, w := range won {
+	for _, w := range t.won[from:to] {
 		if w {
 			n++
 		}
@@ -189,49 +219,31 @@ func (s *simulation) wins(ctx context.Context, from, to int) int {
 	return n
 }
 
+// crew makes one goroutine's share of the draws.
+func (t *trial) crew(ctx context.Context) crew {
+	own := newRefitter(t.d.fits[t.own])
+	rivals := make([]*refitter, len(t.rivals))
+	for n, j := range t.rivals {
+		rivals[n] = newRefitter(t.d.fits[j])
+	}
+	return func(k int, y [][]float64) {
+		own.observe(y)
+		lnL := own.from(ctx, t.d.fits[t.own].result.Theta)
+		for n, r := range rivals {
+			r.observe(y)
+			if 2*(r.from(ctx, t.starts[n])-lnL) >= t.observed {
+				t.won[k] = true
+				return
+			}
+		}
+	}
+}
+
 func (d *decider) workers() int {
 	if d.a.Settings.Workers > 0 {
 		return d.a.Settings.Workers
 	}
 	return runtime.GOMAXPROCS(0)
-}
-
-// draw simulates one study and says whether the best candidate wins by as much.
-func (s *simulation) draw(ctx context.Context, draw int) bool {
-	rng := rand.New(rand.NewPCG(s.d.a.Settings.Seed, uint64(draw)<<8|uint64(s.truth)))
-	y := make([][]float64, len(s.mean))
-	for bi := range y {
-		y[bi] = make([]float64, len(s.mean[bi]))
-		for k := range y[bi] {
-			y[bi][k] = s.mean[bi][k] + s.sd[bi][k]*rng.NormFloat64()
-		}
-	}
-	var own float64
-	for n, j := range s.d.order {
-		if j == s.truth {
-			own = s.refit(ctx, n, y)
-		}
-	}
-	for n, j := range s.d.order {
-		if j != s.truth && 2*(s.refit(ctx, n, y)-own) >= s.observed {
-			return true
-		}
-	}
-	return false
-}
-
-// refit is ln L of candidate order[n] on simulated values; −Inf without an answer.
-func (s *simulation) refit(ctx context.Context, n int, y [][]float64) float64 {
-	g := *s.d.fits[s.d.order[n]]
-	g.problem = s.replaced(&g, y, s.starts[n])
-	g.m = g.m.over(g.problem.Blocks)
-	r, err := g.solve(ctx, fit.Settings{Starts: 1, Workers: 1})
-	if err != nil || r == nil || r.Status == fit.NoAnswer {
-		return math.Inf(-1)
-	}
-	g.result = r
-	g.likelihood()
-	return g.lnL
 }
 
 // draws of the deciding bootstrap, as a sentence of the settings.

@@ -19,7 +19,8 @@ type fitted struct {
 	ss      float64
 	scatter float64
 	slopes  []slope
-	twinOf  int // index of the first candidate with the same curves; −1
+	twinOf  int  // index of the first candidate with the same curves; −1
+	decided bool // the bootstrap has settled whether it is out
 }
 
 // slope is the interval of n_H at half saturation of one curve, at slopeLevel.
@@ -87,6 +88,9 @@ const reweighings = 100
 // from the optimum until the weights settle.
 func (f *fitted) solve(ctx context.Context, s fit.Settings) (*fit.Result, error) {
 	r, err := fit.Solve(ctx, f.problem, s)
+	if err == nil && r != nil && r.Status == fit.Stopped && ctx.Err() == nil {
+		r = f.ontoBounds(ctx, r)
+	}
 	if f.m.shift != nil && err == nil && r != nil && r.Status != fit.NoAnswer && r.Status != fit.Stopped {
 		return f.settleShift(ctx, r)
 	}

@@ -128,6 +128,10 @@ type Verdict struct {
 	Open  []string   `json:"open"`
 	Out   []string   `json:"out"`
 	Twins [][]string `json:"twins"`
+	// Slope is what may be said of n_H at half saturation by all mechanisms that
+	// are not out, together: "above 1", "below 1", "1", or "open"; "" where
+	// nothing may be said.
+	Slope string `json:"slope"`
 }
 
 // Recorder hears how a run gets on. Its methods may be called from any goroutine.

@@ -11,8 +11,9 @@ const tieWidth = 2
 
 // rank orders the answered candidates by AICc, finds twins, and fills AICc
 // behind the leader and weights. Twins (one curve under several names) count
-// once in the weights and share one value. It returns the order, leader first.
-func rank(fits []*fitted) []int {
+// once in the weights, at the lowest AICc among them. It returns the order,
+// leader first.
+func rank(fits []*fitted, c *curves) []int {
 	var order []int
 	for i, f := range fits {
 		if f.answered() {
@@ -25,7 +26,7 @@ func rank(fits []*fitted) []int {
 	if len(order) == 0 {
 		return nil
 	}
-	findTwins(fits, order)
+	findTwins(fits, order, c)
 	best := float64(fits[order[0]].row.AICc)
 	sum := 0.0
 	for _, i := range order {
@@ -46,41 +47,23 @@ func (f *fitted) answered() bool {
 	return ok && f.result != nil && !math.IsNaN(float64(f.row.AICc))
 }
 
-// twinTolerance is the largest difference of predictions, in units of the
-// scatter, at which two fits are one curve.
-const twinTolerance = 1e-3
+// twinLikelihood is the largest difference in ln L of fits that may be one
+// curve: both are the best of their kind.
+const twinLikelihood = 0.01
 
-// findTwins marks candidates whose fitted curves are those of an earlier one
-// in the order with as many constants.
-func findTwins(fits []*fitted, order []int) {
+// findTwins marks candidates that draw the same curves as an earlier one in the
+// order, each at its own constants and around them.
+func findTwins(fits []*fitted, order []int, c *curves) {
 	for n, i := range order {
 		fits[i].twinOf = -1
 		for _, j := range order[:n] {
-			if fits[j].twinOf < 0 && fits[i].k == fits[j].k && sameCurves(fits[i], fits[j]) {
+			near := math.Abs(fits[i].lnL-fits[j].lnL) <= twinLikelihood
+			if near && fits[j].twinOf < 0 && c.twins(i, j) {
 				fits[i].twinOf = j
 				break
 			}
 		}
 	}
-}
-
-// sameCurves says whether two fits predict the same at every point.
-func sameCurves(f, g *fitted) bool {
-	for bi, b := range f.m.blocks {
-		o := g.m.blocks[bi]
-		s := f.deviations(b)
-		o.predict(g.result.Theta, false)
-		sigma := f.scatter
-		if f.ss == 0 || math.IsNaN(sigma) {
-			sigma = 1e-12
-		}
-		for i := range b.pts {
-			if !(math.Abs(b.predicted(i)-o.predicted(i)) <= twinTolerance*sigma*s[i]) {
-				return false
-			}
-		}
-	}
-	return true
 }
 
 // stand gives every candidate its standing but for `out`, which the bootstrap decides.
@@ -92,7 +75,7 @@ func stand(fits []*fitted, order []int) {
 			f.row.Standing = "leads"
 		case freerThan(f, fits[order[0]]):
 			f.row.Standing = "open: leader, freer"
-		case f.row.AICcBehind <= tieWidth:
+		case f.row.AICcBehind <= tieWidth || f.twinOf >= 0 && f.twinOf == order[0]:
 			f.row.Standing = "ties"
 		default:
 			f.row.Standing = "open"

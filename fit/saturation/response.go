@@ -35,7 +35,7 @@ func (m *model) layResponses() {
 	for _, b := range m.blocks {
 		d := &m.a.Data[b.data]
 		e := endsOf(d.Response.Kind)
-		b.ends, b.resp = e, d.Response
+		b.ends, b.resp = e, m.c.response(d.Response)
 		if r := &b.resp; r.SitesPerMolecule && !r.High.Free && r.High.Value == 0 {
 			r.High.Value = float64(m.c.Mechanism.Sites())
 		}
@@ -43,14 +43,28 @@ func (m *model) layResponses() {
 		for i := range b.pts {
 			q := &b.pts[i]
 			p := &d.Points[q.index]
-			q.low = m.responseAt(b, d, p, e.low, d.Response.Low, index)
-			q.high = m.responseAt(b, d, p, e.high, d.Response.High, index)
+			q.low = m.responseAt(b, d, p, e.low, b.resp.Low, index)
+			q.high = m.responseAt(b, d, p, e.high, b.resp.High, index)
 			q.ns = -1
 			if e.nonspecific != "" {
-				q.ns = m.responseAt(b, d, p, e.nonspecific, d.Response.Nonspecific, index)
+				q.ns = m.responseAt(b, d, p, e.nonspecific, b.resp.Nonspecific, index)
 			}
 		}
 	}
+}
+
+// response is a data set's response with the ends that the candidate says.
+func (c *Candidate) response(r Response) Response {
+	e := endsOf(r.Kind)
+	for _, end := range []struct {
+		name string
+		at   *Setting
+	}{{e.low, &r.Low}, {e.high, &r.High}, {e.nonspecific, &r.Nonspecific}} {
+		if s, ok := c.Ends[end.name]; ok && end.name != "" {
+			*end.at = s
+		}
+	}
+	return r
 }
 
 // responseAt finds or makes the parameter of a response's number for a point;

@@ -24,9 +24,10 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	out := &Outcome{Defaults: a.defaults()}
 	fits := a.fitAll(ctx, rec)
 	rows := a.allQuantities(ctx, fits, rec)
-	order := rank(fits)
+	c := newCurves(a, fits)
+	order := rank(fits, c)
 	stand(fits, order)
-	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec}
+	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec, curves: c}
 	d.decide(ctx)
 	a.slopes(ctx, fits, order)
 	report(out, fits, rows)
