@@ -1,6 +1,8 @@
 package fit
 
 import (
+	"math"
+
 	"gonum.org/v1/gonum/mat"
 )
 
@@ -8,8 +10,12 @@ import (
 //
 //	(Σ_b J_bᵀJ_b/σ_b²)^{−1}
 //
-// of the current point, with σ_b = Sigma; nil where the design is singular.
+// of the current point, with σ_b = Sigma; nil where the design is singular. A
+// block that is fitted perfectly counts with the least σ that its floor allows.
 func (s *solver) covariance(r *Result) {
+	if r.N <= r.Constants && !s.allKnown() {
+		return // no scatter, no covariance
+	}
 	var interior []int
 	for j := range r.Edges {
 		if s.low[j] < s.high[j] && r.Edges[j] == Inside {
@@ -20,9 +26,10 @@ func (s *solver) covariance(r *Result) {
 	for _, j := range interior {
 		a := s.cur.f.next()
 		for b, sigma := range r.Sigma {
-			if sigma == 0 {
-				sigma = 1
+			if sigma *= sigma; sigma == 0 {
+				sigma = s.floor[b] / max(s.count[b], 1)
 			}
+			sigma = math.Sqrt(sigma)
 			for i := s.rows[b]; i < s.rows[b+1]; i++ {
 				a[i] = s.cur.jraw[i*s.p+j] / sigma
 			}

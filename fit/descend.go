@@ -38,9 +38,6 @@ func (s *solver) begun(theta []float64) bool {
 	if !s.evaluate(s.cur) {
 		return false
 	}
-	if s.joint {
-		s.setFloor(s.cur)
-	}
 	if len(s.linear) == 0 {
 		return true
 	}
@@ -53,14 +50,6 @@ func (s *solver) place(theta []float64) {
 	for j, v := range theta {
 		s.cur.theta[j] = min(max(v, s.low[j]), s.high[j])
 	}
-}
-
-// setFloor keeps the logarithm of a vanishing sum of squares finite.
-func (s *solver) setFloor(pt *point) {
-	for b, ss := range pt.ss {
-		s.floor[b] = max(1e-28*ss, math.SmallestNonzeroFloat64*1e20)
-	}
-	s.measure(pt)
 }
 
 // descend goes from the current point to a minimum by Gauss–Newton steps in a

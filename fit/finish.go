@@ -34,6 +34,14 @@ func (s *solver) result(end ending) *Result {
 		r.Constants++
 	}
 	r.Status = s.status(end)
+	switch end {
+	case stalled:
+		r.warn("no step lowers the objective, although it is not stationary (relative offset %.2g)", r.Offset)
+	case exhausted:
+		r.warn("out of iterations (relative offset %.2g)", r.Offset)
+	case interrupted:
+		r.warn("interrupted: the best so far")
+	}
 	s.scatter(r)
 	s.covariance(r)
 	return r
@@ -54,6 +62,12 @@ func (s *solver) scatter(r *Result) {
 	}
 	if nu <= 0 {
 		r.warn("as many parameters as residuals: the scatter cannot be estimated")
+		return
+	}
+	for b, ss := range r.SS {
+		if !s.known[b] && ss <= s.floor[b] && s.count[b] > 0 {
+			r.warn("block %d is fitted perfectly: its scatter cannot be estimated", b+1)
+		}
 	}
 }
 
@@ -73,6 +87,9 @@ func (r *Result) count(runs []run, slack float64) {
 		if a.end != failed && a.obj-r.Objective <= slack {
 			r.Agreeing++
 		}
+	}
+	if r.Starts >= 10 && r.Agreeing <= r.Starts/20 {
+		r.warn("only %d of %d starts reached this minimum: there may be a lower one", r.Agreeing, r.Starts)
 	}
 }
 

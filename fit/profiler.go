@@ -90,13 +90,9 @@ func (p *Problem) clonable() bool {
 func (f *Profiler) setLimit() {
 	r, s := f.result, f.s
 	nu := float64(r.N - r.Constants)
-	allKnown := true
-	for _, k := range s.known {
-		allKnown = allKnown && k
-	}
 	half := 0.5 + f.level/2
 	switch {
-	case allKnown:
+	case s.allKnown():
 		z := distuv.UnitNormal.Quantile(half)
 		f.limit = r.Objective + z*z
 		return

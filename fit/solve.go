@@ -34,7 +34,9 @@ func Solve(ctx context.Context, p *Problem, set Settings) (*Result, error) {
 	}
 	set = set.filled(p)
 	all := starts(p, set.Starts, set.Seed)
-	runs := descendAll(ctx, p, set, all)
+	s := newSolver(p, false)
+	s.setFloor(all[0])
+	runs := descendAll(ctx, s, set, all)
 	best := -1
 	for i, r := range runs {
 		if r.end != failed && (best < 0 || r.obj < runs[best].obj) {
@@ -44,11 +46,38 @@ func Solve(ctx context.Context, p *Problem, set Settings) (*Result, error) {
 	if best < 0 {
 		return nothing(ctx, runs)
 	}
-	s := newSolver(p, false)
-	end := s.finish(ctx, runs[best], set.MaxIter)
+	end := s.finish(runs[best])
+	if s.idle() {
+		return nil, errors.New("fit: no residual depends on any parameter (are all weights zero?)")
+	}
+	if ctx.Err() != nil {
+		end = interrupted
+	}
 	res := s.result(end)
 	res.count(runs, s.slack(res.Objective))
 	return res, nil
+}
+
+// setFloor keeps the logarithm of a sum of squares finite where a block comes to
+// be fitted perfectly: as a share of what it is at theta.
+func (s *solver) setFloor(theta []float64) {
+	s.place(theta)
+	if !s.joint || !s.evaluate(s.cur) {
+		return
+	}
+	for b, ss := range s.cur.ss {
+		s.floor[b] = max(perfect*ss, s.floor[b])
+	}
+}
+
+// idle says whether the Jacobian of the current point is zero throughout.
+func (s *solver) idle() bool {
+	for _, v := range s.cur.jraw {
+		if v != 0 {
+			return false
+		}
+	}
+	return len(s.linear)+len(s.curved) > 0
 }
 
 func (set Settings) filled(p *Problem) Settings {
@@ -70,7 +99,7 @@ func (set Settings) filled(p *Problem) Settings {
 }
 
 // descendAll runs every start; what each came to stands at its own index.
-func descendAll(ctx context.Context, p *Problem, set Settings, all [][]float64) []run {
+func descendAll(ctx context.Context, first *solver, set Settings, all [][]float64) []run {
 	runs := make([]run, len(all))
 	var next, ended atomic.Int64
 	var telling sync.Mutex
@@ -91,12 +120,16 @@ func descendAll(ctx context.Context, p *Problem, set Settings, all [][]float64) 
 	}
 	workers := min(set.Workers, len(all))
 	if workers == 1 {
-		work(newSolver(p, false))
+		work(first)
 		return runs
 	}
 	var wg sync.WaitGroup
 	for range workers {
-		wg.Go(func() { work(newSolver(p, true)) })
+		wg.Go(func() {
+			s := newSolver(first.prob, true)
+			copy(s.floor, first.floor)
+			work(s)
+		})
 	}
 	wg.Wait()
 	return runs
@@ -122,18 +155,13 @@ func nothing(ctx context.Context, runs []run) (*Result, error) {
 			return nil, fmt.Errorf("fit: no start can be evaluated: %w", r.fault)
 		}
 	}
-	return nil, errors.New("fit: no start can be evaluated: residuals or their derivatives are not finite")
+	return nil, errors.New("fit: no start can be evaluated: residuals or their derivatives are not finite " +
+		"(a standard deviation of zero does that)")
 }
 
-// finish descends further from the best run, to where rounding ends it.
-func (s *solver) finish(ctx context.Context, r run, most int) ending {
-	if !s.begun(r.theta) {
-		return failed
-	}
-	end := r.end
-	if end == exhausted || end == interrupted {
-		s.factor()
-	}
+// finish takes the best run on to where rounding ends it.
+func (s *solver) finish(r run) ending {
+	s.begun(r.theta)
 	s.polish()
 	switch {
 	case s.offset <= enough:
@@ -141,7 +169,7 @@ func (s *solver) finish(ctx context.Context, r run, most int) ending {
 	case s.atRounding():
 		return rounding
 	}
-	return end
+	return r.end
 }
 
 // polish takes full Gauss–Newton steps while each brings the relative offset

@@ -4,6 +4,7 @@ import (
 	"errors"
 	"fmt"
 	"math"
+	"slices"
 )
 
 // solver is the workspace of one worker: nothing in it is allocated after
@@ -40,6 +41,11 @@ type solver struct {
 	fault          error
 }
 
+const (
+	perfect = 1e-28  // a sum of squares below this share of the first is zero
+	least   = 1e-290 // and so is one below this
+)
+
 // Pooled is a Block whose rows are weighted means of replicates. What lies
 // within the replicates is constant, but counts: Pooled returns its sum of
 // squares and how many residuals there are beyond Len.
@@ -48,16 +54,10 @@ type Pooled interface {
 	Pooled() (ss float64, more int)
 }
 
-// errNoData and its kin say what is wrong with a problem before any number is.
-var (
-	errNoParameters = errors.New("no parameters")
-	errNoResiduals  = errors.New("no residuals")
-)
-
 // Check says what is wrong with a problem.
 func (p *Problem) Check() error {
 	if len(p.Parameters) == 0 {
-		return errNoParameters
+		return errors.New("no parameters")
 	}
 	if len(p.Scatter) != 0 && len(p.Scatter) != len(p.Blocks) {
 		return fmt.Errorf("scatter is given for %d of %d blocks", len(p.Scatter), len(p.Blocks))
@@ -67,7 +67,7 @@ func (p *Problem) Check() error {
 		n += b.Len()
 	}
 	if n == 0 {
-		return errNoResiduals
+		return errors.New("no residuals")
 	}
 	var errs []error
 	for _, q := range p.Parameters {
@@ -84,6 +84,9 @@ func (p *Problem) Check() error {
 	for i, s := range p.Starts {
 		if len(s) != len(p.Parameters) {
 			errs = append(errs, fmt.Errorf("start %d has %d values for %d parameters", i+1, len(s), len(p.Parameters)))
+		}
+		if !allFinite(s) {
+			errs = append(errs, fmt.Errorf("start %d is not finite", i+1))
 		}
 	}
 	for _, b := range p.Blocks {
@@ -121,6 +124,7 @@ func newSolver(p *Problem, clone bool) *solver {
 			s.within[i] = ss
 			s.count[i] += float64(more)
 		}
+		s.floor[i] = least
 		s.known[i] = p.Scatter != nil && p.Scatter[i] == Known
 		if !s.known[i] {
 			unknown++
@@ -148,3 +152,6 @@ func newSolver(p *Problem, clone bool) *solver {
 	s.hits = make([]int, s.p)
 	return s
 }
+
+// allKnown says whether the scatter of every block is known.
+func (s *solver) allKnown() bool { return !slices.Contains(s.known, false) }
