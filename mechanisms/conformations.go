@@ -86,11 +86,11 @@ func buildConformations(d Definition) (Mechanism, error) {
 	m := &conformational{}
 	m.settle(&p, d, list)
 	p.given(d, m.constants)
+	p.countConstants(d, m.constants, m.sites, len(m.effectors) > 0 || m.view != nil)
 	if err := p.err(); err != nil {
 		return nil, err
 	}
-	p.countConstants(d, m.constants, m.sites, len(m.effectors) > 0 || m.view != nil)
-	return m, p.err()
+	return m, nil
 }
 
 func conformationNames(list []Conformation) []string {

@@ -66,6 +66,10 @@ func prism(n int) (e [][2]int) {
 
 // contacts settles the graph of a definition.
 func (p *problems) contacts(d Definition) graph {
+	if d.Contacts != "" && len(d.Graph) > 0 {
+		p.add("contacts", "contacts are given both by name and by list", "one of the two")
+		return graph{}
+	}
 	if d.Contacts != "" {
 		return p.named(d)
 	}

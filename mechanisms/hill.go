@@ -63,7 +63,10 @@ func buildHill(d Definition) (Mechanism, error) {
 	p.unread(d, "constants")
 	m := hill{}
 	p.given(d, m.Constants())
-	return m, p.err()
+	if err := p.err(); err != nil {
+		return nil, err
+	}
+	return m, nil
 }
 
 func (hill) Family() string      { return "hill" }

@@ -63,36 +63,47 @@ func (p *problems) given(d Definition, constants []Constant) {
 
 // check complains of numbers that one constant cannot be.
 func (p *problems) check(key string, c Constant, g Given) {
-	floor, wants := "0", "a number above 0"
-	ok := func(v float64) bool { return v > 0 && !math.IsInf(v, 0) }
-	switch c.Scale {
-	case Linear:
-		ok, wants = func(v float64) bool { return v >= 0 && !math.IsInf(v, 0) }, "a number not below 0"
-	case Logit:
-		ok, wants, floor = func(v float64) bool { return v > 0 && v < 1 }, "a number between 0 and 1", "0 and 1"
-	}
 	say := func(word string, v *float64) {
-		if v != nil && !ok(*v) {
-			p.add(key+"."+word, fmt.Sprintf("%g cannot be: %s lies beyond %s", *v, c.Name, floor), wants)
+		if ok, wants := c.admits(v); !ok {
+			p.add(key+"."+word, fmt.Sprintf("%g cannot be: %s is %s", *v, c.Name, wants), wants)
 		}
 	}
 	say("start", g.Start)
 	say("fixed", g.Fixed)
 	say("value", g.Value)
-	if g.High != nil {
-		say("range", g.High)
-	}
+	say("range", g.Low)
+	say("range", g.High)
 	if g.Low != nil && g.High != nil && !(*g.Low < *g.High) {
 		p.add(key+".range", fmt.Sprintf("the range ends at %g, not above its beginning %g", *g.High, *g.Low),
 			"the smaller number first")
 		return
 	}
-	if g.Low != nil && *g.Low < 0 {
-		p.add(key+".range", fmt.Sprintf("%g cannot be: %s lies beyond %s", *g.Low, c.Name, floor), wants)
-	}
 	if s := g.Start; s != nil && (g.Low != nil && *s < *g.Low || g.High != nil && *s > *g.High) {
 		p.add(key+".start", fmt.Sprintf("the start %g lies outside the range", *s), "a start inside it")
 	}
+}
+
+// admits says whether a constant can be v at all (nil: not said), and what it
+// can be. Bounds of 1 are part of its meaning (c, ratio), others are only wide.
+func (c Constant) admits(v *float64) (ok bool, wants string) {
+	number := 0.5
+	if v != nil {
+		number = *v
+	}
+	finite := number < math.Inf(1)
+	switch {
+	case c.Scale == Linear:
+		ok, wants = number >= 0 && finite, "a number not below 0"
+	case c.Scale == Logit:
+		ok, wants = number > 0 && number < 1, "a number between 0 and 1"
+	case c.High == 1:
+		ok, wants = number > 0 && number <= 1, "a number above 0 and not above 1"
+	case c.Low == 1:
+		ok, wants = number >= 1 && finite, "a number not below 1"
+	default:
+		ok, wants = number > 0 && finite, "a number above 0"
+	}
+	return ok || v == nil, wants
 }
 
 func sortedKeys[V any](m map[string]V) []string {

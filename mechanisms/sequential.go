@@ -7,7 +7,7 @@ import (
 
 const sequentialDoc = `Pairwise interaction of sites in contact, each changing as it fills.
 
-	w = (x/K)^i · K_AB^(contacts of an empty with a filled site) · K_BB^(contacts of two filled sites)
+	w = (x/K)^i · K_AB^(contacts of an empty and a filled site) · K_BB^(contacts of filled sites)
 	P(x) = Σ w over all 2ⁿ ways of filling the sites of the contact graph
 
 Constants:
@@ -38,7 +38,7 @@ Pauling 1935, Proc. Natl. Acad. Sci. 21:186. Koshland, Némethy & Filmer 1966, B
 
 // Pairwise interaction of sites in contact, each changing as it fills.
 //
-//	w = (x/K)^i · K_AB^(contacts of an empty with a filled site) · K_BB^(contacts of two filled sites)
+//	w = (x/K)^i · K_AB^(contacts of an empty and a filled site) · K_BB^(contacts of filled sites)
 //	P(x) = Σ w over all 2ⁿ ways of filling the sites of the contact graph
 //
 // Constants:
