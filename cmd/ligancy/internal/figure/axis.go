@@ -47,7 +47,7 @@ func newLogAxis(l Ligand, x0, x1 float64) logAxis {
 		a.low, a.high = a.low-0.5, a.low+0.5
 	}
 	if l.hasZero() {
-		a.zero = x0 + zeroRoom*0.3
+		a.zero = x0 + zeroRoom*0.35
 		a.x0 += zeroRoom
 	}
 	return a
@@ -64,14 +64,15 @@ func (a logAxis) at(x float64) float64 {
 // inside says whether a concentration lies on the axis.
 func (a logAxis) inside(x float64) bool {
 	at := a.at(x)
-	return at >= min(a.x0, zeroOr(a.zero, a.x0))-0.01 && at <= a.x1+0.01
+	return at >= a.left()-0.01 && at <= a.x1+0.01
 }
 
-func zeroOr(zero, other float64) float64 {
-	if math.IsNaN(zero) {
-		return other
+// left is where the field begins, the room for "no ligand" included.
+func (a logAxis) left() float64 {
+	if math.IsNaN(a.zero) {
+		return a.x0
 	}
-	return zero
+	return a.x0 - zeroRoom
 }
 
 // numbers are the concentrations that get a number: 1, 2, 5 of each decade
@@ -175,8 +176,12 @@ func round(v, step float64) float64 {
 	return r
 }
 
-// tickLabels writes numbers of a linear axis with the same places.
+// tickLabels writes numbers of a linear axis with the same places; shares of 1
+// as briefly as they can be.
 func tickLabels(all []float64) []Label {
+	if slices.Equal(all, quarters) {
+		return []Label{Words(Sans, "0"), Words(Sans, "0.25"), Words(Sans, "0.5"), Words(Sans, "0.75"), Words(Sans, "1")}
+	}
 	places := 0
 	large := false
 	for _, v := range all {
@@ -199,6 +204,9 @@ func tickLabels(all []float64) []Label {
 	}
 	return out
 }
+
+// quarters are the numbers of an axis of shares.
+var quarters = []float64{0, 0.25, 0.5, 0.75, 1}
 
 // widest label at a size.
 func widest(all []Label, size float64) float64 {

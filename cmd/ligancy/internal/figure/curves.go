@@ -238,9 +238,7 @@ func (l *curvesLayout) rivals() {
 	for _, r := range l.Rivals {
 		l.d.within(group{class: "rival", data: [][2]string{{"m", r.ID}}, hidden: !r.Shown}, func() {
 			for _, line := range r.Lines {
-				var path Path
-				path.smooth(between(l.main.places(line), l.x.x0, l.x.x1))
-				l.d.add(&stroke{path: path, ink: Muted, width: 1.8, dash: dashes[r.Dash%len(dashes)], round: true})
+				l.main.broken(line, dashes[r.Dash%len(dashes)])
 			}
 		})
 	}

@@ -55,15 +55,18 @@ func (d *Drawing) hatch(x0, y0, x1, y1 float64) {
 }
 
 // yAxis draws hairlines with their numbers, and the title above the field, level.
-func (p *panel) yAxis(at []float64, title Label) {
+func (p *panel) yAxis(at []float64, title Label) { p.yAxisAt(0, at, title) }
+
+// yAxisAt is yAxis with the title beginning at a place.
+func (p *panel) yAxisAt(x float64, at []float64, title Label) {
 	labels := tickLabels(at)
-	left := min(p.x.x0, zeroOr(p.x.zero, p.x.x0)-zeroRoom*0.3)
+	left := p.x.left()
 	for i, v := range at {
 		y := p.y.at(v)
 		p.d.line(left, y, p.x.x1, y, Hair, 1)
 		p.d.text(left-0.6*p.s.Size, y+0.36*p.s.Size, End, p.s.Size, Text, labels[i])
 	}
-	p.d.text(0, p.top-0.85*p.s.Size, Start, p.s.title(), Text, title)
+	p.d.text(x, p.top-0.85*p.s.Size, Start, p.s.title(), Text, title)
 }
 
 // xAxis draws the axis: a line under the tested range alone, a tick at every
@@ -167,13 +170,6 @@ func (p *panel) curve(pts []XY, from, to float64, ink Ink) {
 	var path Path
 	path.smooth(between(at, a, b))
 	p.d.add(&stroke{path: path, ink: ink, width: 2.4, round: true})
-}
-
-// dotted draws points of a rival's curve.
-func (p *panel) dotted(pts []XY) {
-	var path Path
-	path.smooth(between(p.places(pts), p.x.x0, p.x.x1))
-	p.d.add(&stroke{path: path, ink: Muted, width: 1.8, dash: []float64{0.1, 4}, round: true})
 }
 
 // band fills between two curves.

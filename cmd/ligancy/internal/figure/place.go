@@ -35,9 +35,10 @@ func (o *obstacles) place(own []XY, width, size float64, p *panel) XY {
 		}
 		for _, c := range []XY{
 			{q.X - 0.8*size - width, q.Y}, {q.X + 0.8*size, q.Y + 0.7*size},
+			{q.X - 1.6*size - width, q.Y}, {q.X + 1.6*size, q.Y + 0.7*size},
 			{q.X - width/2, q.Y - size}, {q.X - width/2, q.Y + 1.8*size},
 		} {
-			box := [4]float64{c.X - 3, c.Y - size, c.X + width + 3, c.Y + 0.3*size}
+			box := [4]float64{c.X - 5, c.Y - size - 2, c.X + width + 5, c.Y + 0.3*size + 2}
 			if box[0] < p.x.x0 || box[2] > p.x.x1 || box[1] < p.top || box[3] > p.bottom {
 				continue
 			}

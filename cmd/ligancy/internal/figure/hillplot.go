@@ -1,0 +1,165 @@
+package figure
+
+import (
+	"math"
+)
+
+// HillPlot is the classical picture: log10[Ȳ/(1−Ȳ)] against the logarithm of
+// the ligand, with both asymptotes of slope 1 and their distance. For display
+// only: nothing is fitted to it.
+type HillPlot struct {
+	Name, Description string
+
+	Ligand Ligand
+	Lines  []HillLine
+	Points []Point // Y is the saturation
+	Marks  int     // kinds of marks in use
+	Remark string
+}
+
+// HillLine is one curve. What does not exist is NaN.
+type HillLine struct {
+	Name        string
+	At          []XY // ligand, log10[Ȳ/(1−Ȳ)]
+	From, To    float64
+	Half        float64
+	First, Last float64 // ligand at which the lower and the upper asymptote cross zero
+	Distance    string  // "−7.2 kJ/mol"
+}
+
+// hillReach bounds the axis of a Hill plot: beyond it saturation is read to a
+// thousandth of its span.
+const hillReach = 3
+
+// Draw lays the figure out.
+func (f *HillPlot) Draw(s Style) *Drawing {
+	d := &Drawing{Width: s.Width, Title: f.Name, Description: f.Description}
+	low, high := f.span()
+	left := 3 * s.Size
+	right := s.Width - 0.6*s.Size
+	if !s.narrow() {
+		right = min(right, 46*s.Size)
+	}
+	p := &panel{d: d, s: s, ligand: f.Ligand, x: newLogAxis(f.Ligand, left, right), top: 2.6 * s.Size}
+	p.bottom = p.top + min(0.8*(right-left), 26*s.Size)
+	p.y = linear{low: low, high: high, y0: p.bottom, y1: p.top}
+	p.hatch()
+	at := ticks(low, high, 6)
+	p.yAxis(at, Label{{Text: "log", Face: Serif}, {Text: "10", Face: Serif, Rise: Sub},
+		{Text: " [", Face: Serif}, {Text: "Ȳ", Face: SerifItalic}, {Text: "/(1 − ", Face: Serif}, {Text: "Ȳ", Face: SerifItalic}, {Text: ")]", Face: Serif}})
+	below := p.xAxis(true)
+	d.line(p.x.x0, p.y.at(0), p.x.x1, p.y.at(0), Hatch, 1)
+	for i, l := range f.Lines {
+		f.asymptote(p, l.First, i)
+		f.asymptote(p, l.Last, i)
+	}
+	for i, l := range f.Lines {
+		p.clipped(l, i)
+	}
+	f.marks(p)
+	f.distances(p)
+	f.names(p)
+	p.reading(false)
+	if f.Remark != "" {
+		below += s.lead()
+		d.text(0, below-0.4*s.Size, Start, s.Size, Muted, Words(Sans, f.Remark).Cut(s.Size, s.Width))
+	}
+	d.Height = math.Ceil(below + 0.2*s.Size)
+	return d
+}
+
+// span is the range that the curves take on the axis.
+func (f *HillPlot) span() (low, high float64) {
+	low, high = -1, 1
+	for _, l := range f.Lines {
+		for _, q := range l.At {
+			if q.X >= f.Ligand.Low && q.X <= f.Ligand.High && finite(q.Y) {
+				low, high = min(low, q.Y), max(high, q.Y)
+			}
+		}
+	}
+	return max(math.Floor(low*2)/2, -hillReach), min(math.Ceil(high*2)/2, hillReach)
+}
+
+// asymptote draws a line of slope 1 through zero at a ligand value.
+func (f *HillPlot) asymptote(p *panel, at float64, i int) {
+	if !(at > 0) || !finite(at) {
+		return
+	}
+	lx := math.Log10(at)
+	x0 := max(p.x.low, lx+p.y.low)
+	x1 := min(p.x.high, lx+p.y.high)
+	if x1 <= x0 {
+		return
+	}
+	var path Path
+	path.MoveTo(p.x.at(math.Pow(10, x0)), p.y.at(x0-lx))
+	path.LineTo(p.x.at(math.Pow(10, x1)), p.y.at(x1-lx))
+	p.d.add(&stroke{path: path, ink: CurveInk(i), width: 1, dash: []float64{7, 4}})
+}
+
+// clipped draws a line's part inside the field.
+func (p *panel) clipped(l HillLine, i int) {
+	var in []XY
+	for _, q := range l.At {
+		if q.Y >= p.y.low && q.Y <= p.y.high {
+			in = append(in, q)
+		}
+	}
+	p.curve(in, l.From, l.To, CurveInk(i))
+}
+
+func (f *HillPlot) marks(p *panel) {
+	r := 0.25 * p.s.Size
+	for line := range f.Lines {
+		for kind := range max(f.Marks, 1) {
+			var open Path
+			for _, q := range f.Points {
+				if q.Line != line || max(q.Preparation, 0) != kind || q.LeftOut || q.Blocked || !(q.Y > 0 && q.Y < 1) || !p.x.inside(q.X) || q.X <= 0 {
+					continue
+				}
+				if y := math.Log10(q.Y / (1 - q.Y)); y >= p.y.low && y <= p.y.high {
+					shape(&open, kind, p.x.at(q.X), p.y.at(y), r)
+				}
+			}
+			p.d.add(&stroke{path: open, ink: CurveInk(line), fill: Ground, width: 1.2})
+		}
+	}
+}
+
+// distances draws the distance of the asymptotes at half saturation.
+func (f *HillPlot) distances(p *panel) {
+	for i, l := range f.Lines {
+		if l.Distance == "" || !(l.Half > 0) || !p.x.inside(l.Half) || !finite(l.First) || !finite(l.Last) {
+			continue
+		}
+		a, b := math.Log10(l.Half/l.First), math.Log10(l.Half/l.Last)
+		lo, hi := max(min(a, b), p.y.low), min(max(a, b), p.y.high)
+		if hi <= lo {
+			continue
+		}
+		x := p.x.at(l.Half)
+		p.d.line(x, p.y.at(lo), x, p.y.at(hi), CurveInk(i), 1)
+		label := Words(Sans, l.Distance)
+		y, anchor, dx := p.y.at(hi)+1.2*p.s.Size+1.4*p.s.Size*float64(i), End, -0.5*p.s.Size
+		if x-label.Width(p.s.Size) < p.x.x0+p.s.Size {
+			anchor, dx = Start, 0.5*p.s.Size
+		}
+		p.d.add(&lettering{x: x + dx, y: y, anchor: anchor, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
+	}
+}
+
+func (f *HillPlot) names(p *panel) {
+	if len(f.Lines) < 2 {
+		return
+	}
+	var busy obstacles
+	for _, l := range f.Lines {
+		busy.polyline(between(p.places(l.At), p.x.x0, p.x.x1))
+	}
+	for i, l := range f.Lines {
+		label := Words(SansBold, l.Name).Cut(p.s.Size, 0.4*(p.x.x1-p.x.x0))
+		at := busy.place(between(p.places(l.At), p.x.x0, p.x.x1), label.Width(p.s.Size), p.s.Size, p)
+		p.d.add(&lettering{x: at.X, y: at.Y, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
+	}
+}
