@@ -76,9 +76,8 @@ func (d *Document) onDefinitions(mechanism string) []caution {
 func (d *Document) onEdges(mechanism string) []caution {
 	var reasons []string
 	names := map[string][]string{}
-	for i := range d.Quantities {
-		q := &d.Quantities[i]
-		if q.Mechanism != mechanism || q.Why == nil || !inConstants(q) {
+	for _, q := range d.numbers(mechanism) {
+		if q.Why == nil || !inConstants(q) {
 			continue
 		}
 		if names[*q.Why] == nil {
@@ -147,8 +146,8 @@ func (d *Document) onTies(mechanism string) []caution {
 // quotes says whether a constant is printed under this symbol; what is fitted
 // instead of it (overall constants) is not.
 func (d *Document) quotes(mechanism, symbol string) bool {
-	for i := range d.Quantities {
-		if q := &d.Quantities[i]; q.Mechanism == mechanism && q.Of == "constant" && d.constantName(q) == symbol {
+	for _, q := range d.numbers(mechanism) {
+		if q.Of == "constant" && d.constantName(q) == symbol {
 			return true
 		}
 	}
@@ -165,9 +164,8 @@ func symbol(name string) string {
 func (d *Document) looser(mechanism, a, b string) string {
 	widest := func(name string) float64 {
 		w := 0.0
-		for i := range d.Quantities {
-			q := &d.Quantities[i]
-			if q.Mechanism == mechanism && q.Of == "constant" && d.constantName(q) == name && q.Low > 0 {
+		for _, q := range d.numbers(mechanism) {
+			if q.Of == "constant" && d.constantName(q) == name && q.Low > 0 {
 				w = max(w, float64(q.High/q.Low))
 			}
 		}

@@ -35,11 +35,7 @@ func (p *page) constants(mechanism string) {
 // its last level, those of other numbers come last.
 func (p *page) constantRows(mechanism string) []*saturation.QuantityRow {
 	var rows, contrasts []*saturation.QuantityRow
-	for i := range p.d.Quantities {
-		q := &p.d.Quantities[i]
-		if q.Mechanism != mechanism {
-			continue
-		}
+	for _, q := range p.d.numbers(mechanism) {
 		switch q.Of {
 		case "constant", "combination":
 			rows = append(rows, q)

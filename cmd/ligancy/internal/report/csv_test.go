@@ -9,6 +9,8 @@ import (
 	"strings"
 	"testing"
 
+	"pgregory.net/rapid"
+
 	"ligancy/fit/saturation"
 )
 
@@ -24,6 +26,35 @@ func TestDocumentAsJSON(t *testing.T) {
 	if strings.Contains(b.String(), `\u003c`) {
 		t.Error("markup is escaped: JSON is no HTML")
 	}
+}
+
+// Spreading changes nothing but blanks.
+func TestSpreadKeepsTheDocument(t *testing.T) {
+	rapid.Check(t, func(t *rapid.T) {
+		type row struct {
+			Name  string   `json:"name"`
+			Value *float64 `json:"value"`
+			List  []string `json:"list"`
+		}
+		var rows []row
+		for range rapid.IntRange(0, 3).Draw(t, "rows") {
+			v := rapid.Float64().Draw(t, "value")
+			rows = append(rows, row{rapid.String().Draw(t, "name"), &v, rapid.SliceOf(rapid.StringMatching(`[\\\\"{}\\[\\],: a]*`)).Draw(t, "list")})
+		}
+		compact, err := json.Marshal(map[string]any{"rows": rows, "empty": []int{}, "nothing": map[string]int{}})
+		if err != nil {
+			t.Fatal(err)
+		}
+		for depth := range 4 {
+			var back bytes.Buffer
+			if err := json.Compact(&back, spread(compact, depth)); err != nil {
+				t.Fatal(err)
+			}
+			if !bytes.Equal(back.Bytes(), compact) {
+				t.Fatalf("%s became %s", compact, back.Bytes())
+			}
+		}
+	})
 }
 
 // An outcome without rows still has every list, each a list.

@@ -36,9 +36,8 @@ func (d *Document) WriteGiven(w io.Writer, colour bool) error {
 // givenMechanism prints one mechanism.
 func (p *page) givenMechanism(mechanism string) {
 	var constants []string
-	for i := range p.d.Quantities {
-		q := &p.d.Quantities[i]
-		if q.Mechanism == mechanism && q.Of == "constant" {
+	for _, q := range p.d.numbers(mechanism) {
+		if q.Of == "constant" {
 			constants = append(constants, strings.TrimSpace(p.d.constantName(q)+" "+plain(float64(q.Value))+" "+unitWord(q.Unit)))
 		}
 	}

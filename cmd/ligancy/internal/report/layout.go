@@ -2,6 +2,7 @@ package report
 
 import (
 	"fmt"
+	"slices"
 	"strings"
 	"unicode"
 
@@ -180,6 +181,21 @@ type grid struct {
 
 // add appends one row; a row may end early.
 func (g *grid) add(cells ...string) { g.rows = append(g.rows, cells) }
+
+// without takes the column out whose head begins so.
+func (g *grid) without(head string) {
+	c := slices.IndexFunc(g.rows[0], func(cell string) bool { return strings.HasPrefix(cell, head) })
+	if c < 0 {
+		return
+	}
+	rows := make([][]string, len(g.rows))
+	for i, row := range g.rows {
+		if rows[i] = row; c < len(row) {
+			rows[i] = slices.Delete(slices.Clone(row), c, c+1)
+		}
+	}
+	g.rows = rows
+}
 
 // lines sets the table. Empty columns take no room; blanks at line ends are
 // cut. Columns that do not fit into w columns of text follow below, behind the

@@ -18,7 +18,7 @@ const most = 6
 // one significant digit, or to two where that leaves a 1 or a 2 in front (GUM,
 // JCGM 100:2008, 7.2.6: one or two digits of the uncertainty, and the value to
 // the same place). A number that is held by a factor (a constant, a position, a
-// ratio), within more than two from end to end, has no common place that serves
+// ratio), within more than 1.5 from end to end, has no common place that serves
 // both ends: each then carries two significant digits of its own. An end that
 // is not finite is missing, "": the others then carry two digits. With neither
 // end, the value carries three.
@@ -43,9 +43,9 @@ func rowFigures(q *saturation.QuantityRow) (v, lo, hi string) {
 	return figures(float64(q.Value), float64(q.Low), float64(q.High), byFactor)
 }
 
-// spansFactor says whether two ends of one sign lie more than a factor of two apart.
+// spansFactor says whether two ends of one sign lie more than a factor of 1.5 apart.
 func spansFactor(low, high float64) bool {
-	return low > 0 && high > 2*low || high < 0 && low < 2*high
+	return low > 0 && high > 1.5*low || high < 0 && low < 1.5*high
 }
 
 // lastPlace is the power of ten of the last digit shown for half-width u beside
@@ -76,7 +76,7 @@ func exponent(form string) int {
 // where plain digits would have to show zeros that are not known, or many
 // leading zeros.
 func scientific(size float64, place int) bool {
-	return size >= 1000 && place > 0 || size >= 1e6 || size > 0 && size < 1e-3
+	return size >= 1000 && place > 1 || size >= 1e5 && place > 0 || size >= 1e6 || size > 0 && size < 1e-3
 }
 
 // atPlace rounds x to 10^place.

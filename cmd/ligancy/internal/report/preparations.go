@@ -18,7 +18,7 @@ func (p *page) preparations() {
 	if len(rows) == 0 {
 		return
 	}
-	p.heading("PREPARATION BY PREPARATION", "each fitted alone by a Hill equation")
+	p.heading("PREPARATION BY PREPARATION", "each fitted alone by a Hill equation; SD over preparations")
 	half := p.d.halfSymbol()
 	if unit := p.d.analysis.Ligand.Unit; unit != "" {
 		half += " / " + cut(unit, 12)

@@ -38,9 +38,8 @@ func (p *page) steepness(mechanism string) {
 
 // basis says which mechanism the numbers come from and how their intervals were made.
 func (p *page) basis(mechanism string) string {
-	for i := range p.d.Quantities {
-		q := &p.d.Quantities[i]
-		if q.Mechanism == mechanism && q.Interval != "" && q.Interval != "none" && finite(float64(q.Level)) {
+	for _, q := range p.d.numbers(mechanism) {
+		if q.Interval != "" && q.Interval != "none" && finite(float64(q.Level)) {
 			return fmt.Sprintf("%s; %s %% %s intervals", cut(mechanism, 36), percent(float64(q.Level)), q.Interval)
 		}
 	}
@@ -153,20 +152,36 @@ func curveLabel(curve string) string {
 
 // slopes writes the table of half saturation and Hill coefficients.
 func (p *page) slopes(mechanism string, curves []string) {
-	g := &grid{gap: 2}
 	half := p.d.halfSymbol()
 	if unit := p.d.analysis.Ligand.Unit; unit != "" {
 		half += " / " + cut(unit, 12)
 	}
-	readings := p.readings(mechanism)
-	header := []string{"", half, "n_H at half saturation"}
-	if readings.steepest {
-		header = append(header, "steepest n_H")
+	rows := p.slopeRows(mechanism, curves)
+	one, two := &grid{gap: 2}, &grid{gap: 2}
+	one.add("", half, "n_H at half saturation", "steepest n_H", "a Hill fit would say")
+	two.add("", half, "n_H at half", "steepest", "a Hill fit")
+	two.add("", "", "saturation", "n_H", "would say")
+	r := p.readings(mechanism)
+	for i, g := range []*grid{one, two} {
+		g.rows = append(g.rows, rows...)
+		if !r.steepest {
+			g.without("steepest")
+		}
+		if !r.hill {
+			g.without("a Hill fit")
+		}
+		if lines := g.lines(Width - 2); len(lines) == len(g.rows) || i == 1 {
+			for _, l := range lines {
+				p.line("  %s", l)
+			}
+			break
+		}
 	}
-	if readings.hill {
-		header = append(header, "a Hill fit would say")
-	}
-	g.add(header...)
+	p.differences(mechanism)
+}
+
+// slopeRows are the table's rows: curves, then ratios of half saturation.
+func (p *page) slopeRows(mechanism string, curves []string) [][]string {
 	var halves, slopes []*saturation.QuantityRow
 	for _, c := range curves {
 		halves = append(halves, p.rows[key{mechanism, c, "position", "x_half"}])
@@ -174,25 +189,16 @@ func (p *page) slopes(mechanism string, curves []string) {
 	}
 	ratios := p.d.contrastsOf(mechanism, "x_half")
 	ratios = ratios[:min(len(ratios), mostCurves)]
-	halves = append(halves, ratios...)
-	halfCells, slopeCells := stacked(halves), stacked(slopes)
+	halfCells, slopeCells := stacked(append(halves, ratios...)), stacked(slopes)
+	var rows [][]string
 	for i, c := range curves {
-		row := []string{cut(curveLabel(c), labelColumns), halfCells[i], slopeCells[i]}
-		if readings.steepest {
-			row = append(row, p.steepest(mechanism, c))
-		}
-		if readings.hill {
-			row = append(row, p.hillReading(mechanism, c))
-		}
-		g.add(row...)
+		rows = append(rows, []string{cut(curveLabel(c), labelColumns), halfCells[i], slopeCells[i],
+			p.steepest(mechanism, c), p.hillReading(mechanism, c)})
 	}
 	for i, q := range ratios {
-		g.add(cut(shortContrast(q.Curve), labelColumns), halfCells[len(curves)+i])
+		rows = append(rows, []string{cut(shortContrast(q.Curve), labelColumns), halfCells[len(curves)+i]})
 	}
-	for _, l := range g.lines(Width - 2) {
-		p.line("  %s", l)
-	}
-	p.differences(mechanism)
+	return rows
 }
 
 // differences writes what else was asked for between curves, one line a number.
@@ -224,9 +230,8 @@ func (p *page) readings(mechanism string) readings {
 	if m := p.d.mechanism(mechanism); m != nil && m.Family == "hill" {
 		return r
 	}
-	for i := range p.d.Quantities {
-		q := &p.d.Quantities[i]
-		if q.Mechanism != mechanism || q.Of != "hill" || !finite(float64(q.Value)) {
+	for _, q := range p.d.numbers(mechanism) {
+		if q.Of != "hill" || !finite(float64(q.Value)) {
 			continue
 		}
 		r.steepest = r.steepest || q.Name == "n_H_max"
@@ -242,10 +247,11 @@ func (p *page) steepest(mechanism, curve string) string {
 		return "–"
 	}
 	v, _, _ := rowFigures(q)
-	if at := p.rows[key{mechanism, curve, "position", "n_H_max_at"}]; at != nil && finite(float64(at.Value)) {
-		v += " at " + strconv.FormatFloat(100*float64(at.Value), 'f', 0, 64) + " %"
+	at := p.rows[key{mechanism, curve, "position", "n_H_max_at"}]
+	if at == nil || !finite(float64(at.Value)) {
+		return v + " at an end"
 	}
-	return v
+	return v + " at " + strconv.FormatFloat(100*float64(at.Value), 'f', 0, 64) + " %"
 }
 
 // hillReading writes what a Hill fit of these data would say, and the number

@@ -3,6 +3,7 @@ package report
 import (
 	"bytes"
 	"flag"
+	"fmt"
 	"os"
 	"regexp"
 	"strings"
@@ -101,9 +102,12 @@ func TestTextOfHostileNames(t *testing.T) {
 
 func TestTextIsBounded(t *testing.T) {
 	d := clamDocument(t)
-	for range 300 {
+	for i := range 300 {
 		d.Mechanisms = append(d.Mechanisms, d.Mechanisms[6])
-		d.Quantities = append(d.Quantities, d.Quantities[:13]...)
+		for _, q := range d.Quantities[:13] {
+			q.Curve = fmt.Sprintf("pH %d", i)
+			d.Quantities = append(d.Quantities, q)
+		}
 		d.Objections = append(d.Objections, d.Objections[0])
 	}
 	var b bytes.Buffer
@@ -131,5 +135,33 @@ func TestTextOfInterruptedRun(t *testing.T) {
 	at, verdict := strings.Index(b.String(), "INTERRUPTED"), strings.Index(b.String(), "WHAT THE DATA SAY")
 	if at < 0 || at > verdict {
 		t.Errorf("not labelled:\n%s", b.String())
+	}
+}
+
+func TestSharedWordsAreSaidOnce(t *testing.T) {
+	for in, want := range map[string]string{
+		"pH 7.0 / pH 7.6":                 "7.0 / 7.6",
+		"alanine 0.5 mM / alanine 0 mM":   "0.5 / 0 mM",
+		"pH 7.0 − pH 7.6":                 "7.0 − 7.6",
+		"treated / control":               "treated / control",
+		"state a / state a":               "a / a",
+		"pH 7.0, salt 1 / pH 7.6, salt 1": "7.0 / 7.6, salt 1",
+		"no pair":                         "no pair",
+	} {
+		if got := shortContrast(in); got != want {
+			t.Errorf("%q: %q, want %q", in, got, want)
+		}
+	}
+	for _, c := range []struct {
+		in   []string
+		want string
+	}{
+		{[]string{"pH 7.6", "pH 7.0"}, "pH 7.6, 7.0"},
+		{[]string{"alanine 0 mM", "alanine 0.5 mM", "alanine 8 mM"}, "alanine 0, 0.5, 8 mM"},
+		{[]string{"a", "b"}, "a, b"}, {[]string{"a"}, "a"}, {nil, ""}, {[]string{"", "x y"}, ", x y"},
+	} {
+		if got := shortList(c.in); got != c.want {
+			t.Errorf("%q: %q, want %q", c.in, got, c.want)
+		}
 	}
 }
