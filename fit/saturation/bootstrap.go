@@ -7,6 +7,7 @@ import (
 	"math/rand/v2"
 	"slices"
 	"sort"
+	"strings"
 
 	"ligancy/fit"
 )
@@ -22,6 +23,21 @@ const (
 // quantiles are printed.
 const enoughDraws = 0.9
 
+// bootstrap adds bootstrap rows to the mechanisms that are not out.
+func (a *Analysis) bootstrap(ctx context.Context, fits []*fitted, rows [][]QuantityRow, rec Recorder) {
+	if a.Settings.Bootstrap.Draws <= 0 {
+		return
+	}
+	for i, f := range fits {
+		if rec != nil {
+			rec.Progress("drawing studies anew from "+f.row.Name, i, len(fits))
+		}
+		if f.row.Standing != "out" {
+			rows[i] = append(rows[i], f.bootstrapRows(ctx)...)
+		}
+	}
+}
+
 // bootstrapRows gives every number of a fit a bootstrap interval (percentiles;
 // Efron & Tibshirani 1993), where the study asks for one. Draw k depends on the
 // study's number and on k alone.
@@ -32,9 +48,13 @@ func (f *fitted) bootstrapRows(ctx context.Context) []QuantityRow {
 	}
 	var list []wanted
 	for _, w := range f.wantedRows() {
-		if v := w.make()(f.result.Theta, make([]float64, len(f.m.params))); !math.IsNaN(v) {
-			list = append(list, w)
+		if v := w.make()(f.result.Theta, make([]float64, len(f.m.params))); math.IsNaN(v) {
+			continue
 		}
+		if b.By == byPreparation && strings.Contains(w.row.Curve, byPreparation+" ") {
+			continue // a preparation's own numbers say nothing beyond it
+		}
+		list = append(list, w)
 	}
 	draw, why := f.drawer(b.By)
 	values := make([][]float64, b.Draws)

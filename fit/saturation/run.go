@@ -30,6 +30,7 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec, curves: c}
 	d.decide(ctx)
 	a.slopes(ctx, fits, order)
+	a.bootstrap(ctx, fits, rows, rec)
 	report(out, fits, rows)
 	out.Preparations = a.preparationRows(ctx)
 	out.Interrupted = ctx.Err() != nil
@@ -63,6 +64,9 @@ func (a *Analysis) defaults() map[string]string {
 	d := map[string]string{
 		"tie": "within " + strconv.Itoa(tieWidth) + " of the lowest AICc",
 		"out": drawsWords(a.Settings.Draws),
+	}
+	if a.Settings.Bootstrap.Draws > 0 {
+		d["bootstrap"] = "of the mechanisms that are not out"
 	}
 	for i := range a.Data {
 		switch a.Data[i].Noise {
@@ -163,7 +167,7 @@ func (a *Analysis) quantities(ctx context.Context, f *fitted) []QuantityRow {
 			}
 		})
 		if !f.moveTo(ctx, better) {
-			return append(append(rows, f.readings(ctx)...), f.bootstrapRows(ctx)...)
+			return append(rows, f.readings(ctx)...)
 		}
 	}
 	return nil
