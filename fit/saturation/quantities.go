@@ -168,6 +168,8 @@ var slopeMeasures = []slopeMeasure{
 	{"position", "x_01", unitLigand, at(0.01), exponential},
 	{"position", "x_99", unitLigand, at(0.99), exponential},
 	{"position", "x_median", unitLigand, mechanisms.Median, exponential},
+	{"position", "x_first", unitLigand, func(c mechanisms.Curve) mechanisms.Measure { first, _ := mechanisms.Asymptotes(c); return first }, exponential},
+	{"position", "x_last", unitLigand, func(c mechanisms.Curve) mechanisms.Measure { _, last := mechanisms.Asymptotes(c); return last }, exponential},
 	{"energy", "dG_interaction", energyUnit, mechanisms.InteractionEnergy, energyScale},
 }
 
@@ -197,7 +199,7 @@ func (m *model) curveWanted(cell int) []wanted {
 	for _, s := range slopeMeasures {
 		w := wanted{index: -1, make: m.measured(cell, s.f), back: s.back(m)}
 		w.why = func(theta []float64) string { return m.whyNot(cell, theta, s.f) }
-		w.quick = s.name == "x_01" || s.name == "x_99" || s.name == "n_H_max_at" || s.name == "width_1_99"
+		w.quick = s.name == "x_01" || s.name == "x_99" || s.name == "n_H_max_at" || s.name == "width_1_99" || s.name == "x_first" || s.name == "x_last"
 		w.row = QuantityRow{Mechanism: m.c.Name, Curve: m.cells[cell].label, Of: s.of, Name: s.name, Unit: s.unit(m)}
 		if s.of == "position" && s.name != "n_H_max_at" {
 			w.row.Ligand = text(m.a.Ligand.Name)
