@@ -326,7 +326,7 @@ func plainOrQuoted(s string) string {
 			return quoteText(s)
 		}
 	}
-	if s == "" || isNumber(s) || strings.HasPrefix(s, "-") || strings.TrimSpace(s) != s {
+	if s == "" || s == "null" || s == "Null" || s == "NULL" || isNumber(s) || strings.HasPrefix(s, "-") || strings.TrimSpace(s) != s {
 		return quoteText(s)
 	}
 	return s

@@ -366,6 +366,20 @@ func (c *cursor) secondColon(inFlow bool) {
 
 // quoteText puts a text in the quotation marks that suit it.
 func quoteText(s string) string {
+	if strings.ContainsFunc(s, isOddBlank) {
+		var b strings.Builder
+		for _, r := range s {
+			switch {
+			case isOddBlank(r) && r <= 0xffff:
+				fmt.Fprintf(&b, `\u%04X`, r)
+			case r == '"' || r == '\\':
+				b.WriteString(`\` + string(r))
+			default:
+				b.WriteRune(r)
+			}
+		}
+		return `"` + b.String() + `"`
+	}
 	if strings.ContainsAny(s, "\"\\") && !strings.Contains(s, "'") {
 		return "'" + s + "'"
 	}
