@@ -18,35 +18,49 @@ const alike = 1e-6
 // inequalities).
 func independentSites(lnB []float64, roots []complex128) (lnK []float64, ok bool) {
 	n := len(lnB) - 1
-	if n == 0 || !weakening(lnB) {
+	if n == 0 || !weakening(lnB) || complexBeyond(roots) {
 		return nil, false
 	}
-	lnK = make([]float64, n)
+	for _, gap := range []float64{0.1, 0.3, 1, 0.01, 0} {
+		f := newSiteFit(lnB)
+		lnK, worst := f.fit(gathered(roots, gap))
+		if worst <= alike {
+			slices.Sort(lnK)
+			return lnK, true
+		}
+	}
+	return nil, false
+}
+
+// complexBeyond says whether a root lies further from the negative axis than
+// rounding can put one of n equal ones: about the nth root of it.
+func complexBeyond(roots []complex128) bool {
+	scatter := math.Max(5e-3, 20*math.Pow(1e-15, 1/float64(len(roots))))
+	return slices.ContainsFunc(roots, func(z complex128) bool {
+		return math.Abs(imag(z)) > scatter*cmplx.Abs(z) || real(z) >= 0 && scatter < 1
+	})
+}
+
+// gathered is the ln of the sizes of the roots, those within a gap of one another
+// replaced by their mean: rounding scatters a multiple root about its place.
+func gathered(roots []complex128, gap float64) []float64 {
+	lnK := make([]float64, len(roots))
 	for i, z := range roots {
 		lnK[i] = math.Log(cmplx.Abs(z))
 	}
-	f := siteFit{target: lnB, folding: newFolding(n, n), unit: make([]float64, n),
-		res: mat.NewVecDense(n, nil), jac: mat.NewDense(n, n, nil)}
-	worst := f.eval(lnK)
-	damping := 1e-3
-	for range 100 {
-		if worst <= 1e-3*alike {
-			break
-		}
-		next := f.step(lnK, damping)
-		if next == nil {
-			break
-		}
-		if w := f.eval(next); w < worst {
-			lnK, worst, damping = next, w, damping/10
-		} else if damping *= 10; damping > 1e6 {
-			break
-		} else {
-			f.eval(lnK)
-		}
-	}
 	slices.Sort(lnK)
-	return lnK, worst <= alike
+	for first := 0; first < len(lnK); {
+		last, sum := first, lnK[first]
+		for last+1 < len(lnK) && lnK[last+1]-lnK[last] < gap {
+			last++
+			sum += lnK[last]
+		}
+		for i := first; i <= last; i++ {
+			lnK[i] = sum / float64(last-first+1)
+		}
+		first = last + 1
+	}
+	return lnK
 }
 
 // weakening says whether the intrinsic association constants do not increase.
@@ -68,12 +82,42 @@ type siteFit struct {
 	target []float64
 	folding
 	unit []float64
-	res  *mat.VecDense
-	jac  *mat.Dense
+	res  *mat.VecDense // residuals, and as many zeros
+	jac  *mat.Dense    // derivatives, and the damping below
 }
 
-// eval writes residuals and derivatives at ln K and returns the largest residual.
-func (f *siteFit) eval(lnK []float64) (worst float64) {
+func newSiteFit(lnB []float64) *siteFit {
+	n := len(lnB) - 1
+	return &siteFit{target: lnB, folding: newFolding(n, n), unit: make([]float64, n),
+		res: mat.NewVecDense(2*n, nil), jac: mat.NewDense(2*n, n, nil)}
+}
+
+// fit moves ln K towards the target and returns the largest residual.
+func (f *siteFit) fit(lnK []float64) ([]float64, float64) {
+	worst, ss := f.eval(lnK)
+	damping := 1e-2
+	for range 200 {
+		if worst <= 1e-2*alike || damping > 1e4 {
+			break
+		}
+		next := f.step(lnK, damping)
+		if next == nil {
+			break
+		}
+		w, s := f.eval(next)
+		if s < ss {
+			lnK, worst, ss, damping = next, w, s, damping/4
+			continue
+		}
+		damping *= 6
+		f.eval(lnK)
+	}
+	return lnK, worst
+}
+
+// eval writes residuals and derivatives at ln K and returns the largest residual
+// and the sum of squares.
+func (f *siteFit) eval(lnK []float64) (worst, ss float64) {
 	n := len(lnK)
 	f.start()
 	for c, l := range lnK {
@@ -86,25 +130,21 @@ func (f *siteFit) eval(lnK []float64) (worst float64) {
 		f.res.SetVec(i, r)
 		f.jac.SetRow(i, f.d[(i+1)*n:(i+2)*n])
 		worst = math.Max(worst, math.Abs(r))
+		ss += r * r
 	}
-	return worst
+	return worst, ss
 }
 
 // step is ln K after one damped step; nil where there is none.
 func (f *siteFit) step(lnK []float64, damping float64) []float64 {
 	n := len(lnK)
-	var normal mat.SymDense
-	normal.SymOuterK(1, f.jac.T())
 	for i := range n {
-		normal.SetSym(i, i, normal.At(i, i)*(1+damping)+1e-14)
+		f.jac.Set(n+i, i, damping)
 	}
-	var chol mat.Cholesky
-	if !chol.Factorize(&normal) {
-		return nil
-	}
-	var g, d mat.VecDense
-	g.MulVec(f.jac.T(), f.res)
-	if chol.SolveVecTo(&d, &g) != nil {
+	var qr mat.QR
+	qr.Factorize(f.jac)
+	var d mat.VecDense
+	if qr.SolveVecTo(&d, false, f.res) != nil {
 		return nil
 	}
 	next := slices.Clone(lnK)
