@@ -25,6 +25,7 @@ type Outcome struct {
 	Correlations []CorrelationRow `json:"correlations"`
 	Populations  []PopulationRow  `json:"populations"`
 	Preparations []PreparationRow `json:"preparations"`
+	Factors      []FactorRow      `json:"factors"`
 	Objections   []Objection      `json:"objections"`
 	Verdict      Verdict          `json:"verdict"`
 

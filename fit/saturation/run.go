@@ -33,6 +33,7 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	a.bootstrap(ctx, fits, rows, rec)
 	report(out, fits, rows)
 	out.Preparations = a.preparationRows(ctx)
+	out.Factors = a.factorRows(ctx, fits)
 	out.Interrupted = ctx.Err() != nil
 	out.Verdict = a.verdict(out, fits, order)
 	return out, nil
