@@ -72,6 +72,9 @@ func (b *builder) hillSites(m *Mechanism, key string) bool {
 
 // anythingDiffers reports whether the data hold more than one curve of a mechanism's constants.
 func (b *builder) anythingDiffers(m *Mechanism) bool {
+	if slices.ContainsFunc(b.study.Data, func(d Data) bool { return d.faulty || d.table == nil }) {
+		return len(m.Differs) > 0 // not all levels are known
+	}
 	return slices.ContainsFunc(m.Differs, func(e Named[string]) bool { return len(b.levelsOf(e.Value)) > 1 })
 }
 

@@ -12,6 +12,8 @@ import (
 	"strings"
 	"sync"
 
+	"gopkg.in/yaml.v3"
+
 	"ligancy/fit/saturation"
 	"ligancy/specs/diag"
 	"ligancy/specs/table"
@@ -47,7 +49,7 @@ func Load(fsys fs.FS, name string) (*Study, diag.List) {
 		r.complain(diag.Diagnostic{Code: "empty-study", Position: diag.Position{File: name}, Problem: name + " holds no study",
 			Remedies: []diag.Remedy{{Say: "Let the program write a first one:", Write: "ligancy new TABLE"}}})
 	}
-	if r.root != nil && !r.partial {
+	if r.root != nil && r.root.Kind == yaml.MappingNode && !r.partial {
 		b := &builder{reader: r, study: s, fsys: fsys, files: map[string]file{}}
 		b.build()
 		s.analysis = b.analysis

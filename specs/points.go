@@ -42,8 +42,9 @@ type points struct {
 // points reads the table of data set i.
 func (b *builder) points(i int, out *saturation.Dataset) {
 	r := &points{builder: b, d: &b.study.Data[i], out: out, t: b.study.Data[i].table, path: indexed("data", i)}
-	if !r.columns() {
-		return
+	whole := r.columns()
+	if !whole {
+		r.d.faulty = true // the cells of the other columns are read all the same
 	}
 	r.decimals()
 	kept, ok := r.kept()
@@ -52,6 +53,9 @@ func (b *builder) points(i int, out *saturation.Dataset) {
 	}
 	for _, row := range kept {
 		r.row(row)
+	}
+	if !whole {
+		out.Points = nil // of no use for what follows
 	}
 	r.judge()
 }
@@ -111,7 +115,7 @@ func (r *points) columns() bool {
 	ok = r.countColumn(p) && ok
 	ok = r.otherColumns(p, number) && ok
 	ok = r.factorColumns(p) && ok
-	return ok && len(r.response) > 0 && (r.ligand.index >= 0 || r.time.index >= 0)
+	return ok
 }
 
 // find is the index of a column; it complains of one that does not exist.
@@ -419,7 +423,7 @@ func (r *points) scatter(row table.Row, pt *saturation.Point) bool {
 	switch {
 	case r.sem.index >= 0:
 		m = r.sem
-		n, ok := r.nFixed, true
+		n, ok := r.nFixed, r.nFixed > 0
 		if r.n.index >= 0 {
 			n, ok = r.number(row, r.n, pt.LeftOut != "")
 		}
@@ -458,6 +462,10 @@ func (r *points) scatter(row table.Row, pt *saturation.Point) bool {
 func (r *points) responses(row table.Row, base saturation.Point, ok bool) {
 	found := 0
 	for _, m := range r.response {
+		if m.index < 0 {
+			found++ // complained of already
+			continue
+		}
 		if len(r.response) > 1 && row.Cells[m.index].IsEmpty() {
 			continue // a replicate that was not measured
 		}
@@ -472,7 +480,7 @@ func (r *points) responses(row table.Row, base saturation.Point, ok bool) {
 		pt.Y = v
 		r.out.Points = append(r.out.Points, pt)
 	}
-	if found == 0 && base.LeftOut == "" {
+	if found == 0 && len(r.response) > 0 && base.LeftOut == "" {
 		r.cell(row, r.response[0].index, "empty-cell", "no replicate of this row holds a number")
 	}
 }

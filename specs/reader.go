@@ -84,6 +84,9 @@ func isQuoted(n *yaml.Node) bool {
 
 // lastName is the last part of a path, without its index.
 func lastName(path string) string {
+	if path == "" {
+		return "the study"
+	}
 	path = path[strings.LastIndexByte(path, '.')+1:]
 	if i := strings.IndexByte(path, '['); i > 0 {
 		path = path[:i]
