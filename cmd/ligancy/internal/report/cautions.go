@@ -3,6 +3,7 @@ package report
 import (
 	"fmt"
 	"math"
+	"regexp"
 	"slices"
 	"strconv"
 	"strings"
@@ -24,7 +25,8 @@ const researchUse = "A good fit does not prove a mechanism. Research use only, n
 // caution is one numbered warning and the values that carry its number.
 type caution struct {
 	text  string
-	about func(*saturation.QuantityRow) bool // nil: the result as a whole
+	about func(*saturation.QuantityRow) bool // nil: no single value
+	edge  bool                               // about the mechanism's status
 }
 
 // cautionsOn lists what the reader must know about one mechanism's numbers,
@@ -87,7 +89,7 @@ func (d *Document) onEdges(mechanism string) []caution {
 	}
 	var all []caution
 	if m := d.mechanism(mechanism); m != nil && m.Edge != nil {
-		all = append(all, caution{text: sentence(*m.Edge)})
+		all = append(all, caution{text: "At an edge, which is an answer: " + sentence(*m.Edge), edge: true})
 	}
 	for _, why := range reasons {
 		all = append(all, caution{
@@ -209,6 +211,16 @@ func (p *page) marks(q *saturation.QuantityRow) string {
 	return strings.Join(m, " ")
 }
 
+// edgeMark is the number of the caution on a mechanism at an edge.
+func (p *page) edgeMark() string {
+	for i, c := range p.cautions {
+		if c.edge {
+			return fmt.Sprintf("[%d]", i+1)
+		}
+	}
+	return ""
+}
+
 // before writes BEFORE YOU BELIEVE IT.
 func (p *page) before() {
 	p.heading("BEFORE YOU BELIEVE IT", "")
@@ -220,8 +232,16 @@ func (p *page) before() {
 		p.line("  and %d more: result.json", n)
 	}
 	p.line("  %s", researchUse)
+	if radioactive.MatchString(p.d.analysis.Ligand.Name) {
+		p.line("  %s", radioligands)
+	}
 	p.line("")
 }
+
+// radioactive labels, as the trade writes them in a ligand's name: [3H], [125I].
+var radioactive = regexp.MustCompile(`\[\d{1,3}[A-Z][a-z]?\]`)
+
+const radioligands = "Radioligands are handled under local rules, by licensed staff."
 
 // sentence closes a text with a full stop.
 func sentence(s string) string {

@@ -28,7 +28,18 @@ func (p *page) constants(mechanism string) {
 	if n := len(rows) - mostConstants; n > 0 {
 		p.line("  and %d more: quantities.csv", n)
 	}
+	if p.bootstrapped(mechanism) {
+		p.line("  Bootstrap intervals of the same numbers are in quantities.csv.")
+	}
 	p.line("")
+}
+
+// bootstrapped says whether a mechanism's numbers have bootstrap intervals
+// beside those that are printed.
+func (p *page) bootstrapped(mechanism string) bool {
+	return slices.ContainsFunc(p.d.Quantities, func(q saturation.QuantityRow) bool {
+		return q.Mechanism == mechanism && q.Interval == "bootstrap"
+	})
 }
 
 // constantRows collects the rows of the table: contrasts of a constant follow
@@ -97,7 +108,7 @@ func (p *page) constantCells(q *saturation.QuantityRow) []string {
 	if q.Held == "fixed" {
 		return []string{label, plain(value), unitWord(q.Unit), "", "", "fixed in the study", mark}
 	}
-	if !finite(value) {
+	if !finite(value) || value == 0 && q.Held == "neither" {
 		return []string{label, "–", unitWord(q.Unit), "", "", "not held alone", mark}
 	}
 	v, lo, hi := rowFigures(q)
@@ -162,7 +173,7 @@ func unitWord(unit string) string {
 	if unit == "1" {
 		return ""
 	}
-	return cut(unit, 16)
+	return cut(unit, 26)
 }
 
 // plain writes a number as it was given; twelve digits hide the rounding of

@@ -22,11 +22,11 @@ const most = 6
 // both ends: each then carries two significant digits of its own. An end that
 // is not finite is missing, "": the others then carry two digits. With neither
 // end, the value carries three.
-func figures(value, low, high float64, byFactor bool) (v, lo, hi string) {
+func figures(value, low, high float64, held precision) (v, lo, hi string) {
 	hasLow, hasHigh := finite(low), finite(high)
 	switch {
-	case hasLow && hasHigh && high > low && !(byFactor && spansFactor(low, high)):
-		place := lastPlace((high-low)/2, max(math.Abs(low), math.Abs(high)))
+	case hasLow && hasHigh && high > low && !(held.byFactor && spansFactor(low, high)):
+		place := max(lastPlace((high-low)/2, max(math.Abs(low), math.Abs(high))), held.finest)
 		sci := scientific(max(math.Abs(value), math.Abs(low), math.Abs(high)), place)
 		return atPlace(value, place, sci), atPlace(low, place, sci), atPlace(high, place, sci)
 	case hasLow || hasHigh:
@@ -36,11 +36,26 @@ func figures(value, low, high float64, byFactor bool) (v, lo, hi string) {
 	}
 }
 
-// rowFigures writes a row's value and ends.
+// precision says how a number is held.
+type precision struct {
+	byFactor bool // by a factor, not within plus or minus
+	finest   int  // finest place worth showing, as a power of ten
+}
+
+// rowFigures writes a row's value and ends. Slopes show a thousandth at most.
 func rowFigures(q *saturation.QuantityRow) (v, lo, hi string) {
-	byFactor := q.Of == "constant" || q.Of == "combination" || q.Of == "position" && q.Unit != "1" ||
-		q.Of == "contrast" && strings.Contains(q.Curve, " / ")
-	return figures(float64(q.Value), float64(q.Low), float64(q.High), byFactor)
+	held := precision{finest: -300}
+	switch q.Of {
+	case "constant", "combination":
+		held.byFactor = true
+	case "position":
+		held.byFactor = q.Unit != "1"
+	case "contrast":
+		held.byFactor = strings.Contains(q.Curve, " / ")
+	case "hill":
+		held.finest = -3
+	}
+	return figures(float64(q.Value), float64(q.Low), float64(q.High), held)
 }
 
 // spansFactor says whether two ends of one sign lie more than a factor of 1.5 apart.

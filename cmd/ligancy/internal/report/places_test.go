@@ -7,6 +7,8 @@ import (
 	"testing"
 
 	"pgregory.net/rapid"
+
+	"ligancy/fit/saturation"
 )
 
 func TestFigures(t *testing.T) {
@@ -46,7 +48,7 @@ func TestFigures(t *testing.T) {
 		{nan, nan, nan, "  "},
 		{0.29, 0.29, 0.29, "0.29 0.29 0.29"},
 	} {
-		v, lo, hi := figures(c.value, c.low, c.high, true)
+		v, lo, hi := figures(c.value, c.low, c.high, precision{byFactor: true, finest: -300})
 		if got := v + " " + lo + " " + hi; got != c.want {
 			t.Errorf("figures(%v, %v, %v) = %q, want %q", c.value, c.low, c.high, got, c.want)
 		}
@@ -55,8 +57,15 @@ func TestFigures(t *testing.T) {
 
 // A difference has one place for all: it is not held by a factor.
 func TestFiguresOfADifference(t *testing.T) {
-	if v, lo, hi := figures(0.079, 0.019, 0.14, false); v+" "+lo+" "+hi != "0.08 0.02 0.14" {
+	if v, lo, hi := figures(0.079, 0.019, 0.14, precision{finest: -300}); v+" "+lo+" "+hi != "0.08 0.02 0.14" {
 		t.Error(v, lo, hi)
+	}
+}
+
+func TestSlopesShowAThousandthAtMost(t *testing.T) {
+	q := &saturation.QuantityRow{Of: "hill", Value: 1, Low: 0.99999, High: 1.00001}
+	if v, _, _ := rowFigures(q); v != "1.000" {
+		t.Error(v)
 	}
 }
 
@@ -68,7 +77,7 @@ func TestFiguresKeepTheNumber(t *testing.T) {
 		x := math.Pow(10, value)
 		low := x * rapid.Float64Range(0.3, 0.9999).Draw(t, "low")
 		high := x * rapid.Float64Range(1.0001, 3).Draw(t, "high")
-		v, lo, hi := figures(x, low, high, rapid.Bool().Draw(t, "by factor"))
+		v, lo, hi := figures(x, low, high, precision{byFactor: rapid.Bool().Draw(t, "by factor"), finest: -300})
 		for i, s := range []string{v, lo, hi} {
 			want := []float64{x, low, high}[i]
 			got, err := strconv.ParseFloat(s, 64)

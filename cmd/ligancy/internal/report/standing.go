@@ -24,7 +24,11 @@ func (p *page) standing() {
 	g := &grid{gap: 2, right: []bool{false, true, true, true, true, false}}
 	g.add("", "constants", "scatter", "AICc behind", "AICc weight", "standing")
 	for i := range shown {
-		g.add(standingCells(&shown[i])...)
+		cells := standingCells(&shown[i])
+		if shown[i].Name == p.d.shown() {
+			cells = append(cells, p.edgeMark())
+		}
+		g.add(cells...)
 	}
 	for i, l := range g.lines(Width - 2) {
 		p.line("  %s", p.paintStanding(shown, i%len(g.rows), l))

@@ -53,7 +53,7 @@ func (p *page) ruler(mechanism string, curves []string) {
 	tested := p.testedPoints(mechanism, curves)
 	reaches := make([]reach, len(curves))
 	var all, ends []float64
-	label := width("tested")
+	label := max(width("tested"), width(cut(p.d.analysis.Ligand.Unit, 14)))
 	for i, c := range curves {
 		reaches[i] = p.reach(mechanism, c, tested[c])
 		ends = append(ends, reaches[i].x01, reaches[i].x99, reaches[i].half)
@@ -154,7 +154,7 @@ func curveLabel(curve string) string {
 func (p *page) slopes(mechanism string, curves []string) {
 	half := p.d.halfSymbol()
 	if unit := p.d.analysis.Ligand.Unit; unit != "" {
-		half += " / " + cut(unit, 12)
+		half += " / " + cut(unit, 26)
 	}
 	rows := p.slopeRows(mechanism, curves)
 	one, two := &grid{gap: 2}, &grid{gap: 2}
@@ -223,8 +223,8 @@ func (p *page) differences(mechanism string) {
 // readings says which further Hill coefficients tell the reader anything.
 type readings struct{ steepest, hill bool }
 
-// readings leaves out columns without numbers, and both columns for a Hill
-// equation, whose slope is the same everywhere.
+// readings leaves out columns without numbers, the steepest slope where the
+// slope is the same everywhere, and both columns for a Hill equation.
 func (p *page) readings(mechanism string) readings {
 	var r readings
 	if m := p.d.mechanism(mechanism); m != nil && m.Family == "hill" {
@@ -234,7 +234,8 @@ func (p *page) readings(mechanism string) readings {
 		if q.Of != "hill" || !finite(float64(q.Value)) {
 			continue
 		}
-		r.steepest = r.steepest || q.Name == "n_H_max"
+		half := p.rows[key{mechanism, q.Curve, "hill", "n_H_half"}]
+		r.steepest = r.steepest || q.Name == "n_H_max" && half != nil && math.Abs(float64(q.Value-half.Value)) > 1e-6
 		r.hill = r.hill || q.Name == "n_H_hill_reading"
 	}
 	return r
