@@ -24,6 +24,7 @@ type Curves struct {
 	Dense        bool     // too many points for marks of their own
 	Residuals    bool     // draw them
 	Rulers       bool
+	Places       []int // places of the lines among the leader's curves, for the page
 
 	lead int // place of the first curve's colour
 }
@@ -230,7 +231,7 @@ func (l *curvesLayout) field(y float64) float64 {
 		l.marks()
 	}
 	l.names()
-	p.reading(true)
+	p.reading(true, l.Places...)
 	return below
 }
 
@@ -466,7 +467,7 @@ func (l *curvesLayout) residuals(y float64) float64 {
 	l.d.within(group{class: "residuals"}, func() { l.residualMarks(p) })
 	l.d.add(&group{class: "residuals-of"})
 	l.d.add(endGroup{})
-	p.reading(true)
+	p.reading(false, l.Places...)
 	return p.bottom + 0.8*l.s.Size
 }
 

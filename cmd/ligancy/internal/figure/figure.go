@@ -10,8 +10,8 @@ type Figure interface {
 // Multiples is several small figures that share their axes, in rows.
 type Multiples struct {
 	Name, Description string
-	Fields            []*Curves
-	Remark            string // below them
+	Fields            []Figure // Curves or Slope
+	Remark            string   // below them
 }
 
 // Draw lays the fields out in as many columns as fit.
@@ -25,9 +25,7 @@ func (m *Multiples) Draw(s Style) *Drawing {
 		if i%columns == 0 && i > 0 {
 			y, tallest = y+tallest+1.2*s.Size, 0
 		}
-		field := *c
-		field.lead = i
-		f := field.Draw(small)
+		f := coloured(c, i).Draw(small)
 		d.place(f, float64(i%columns)*(small.Width+gap), y)
 		tallest = max(tallest, f.Height)
 	}
@@ -39,6 +37,21 @@ func (m *Multiples) Draw(s Style) *Drawing {
 	}
 	d.Height = math.Ceil(y)
 	return d
+}
+
+// coloured is a figure whose first curve has the i-th colour.
+func coloured(f Figure, i int) Figure {
+	switch f := f.(type) {
+	case *Curves:
+		g := *f
+		g.lead = i
+		return &g
+	case *Slope:
+		g := *f
+		g.lead = i
+		return &g
+	}
+	return f
 }
 
 // place draws another drawing at a place.

@@ -59,7 +59,7 @@ func (f *HillPlot) Draw(s Style) *Drawing {
 	f.marks(p)
 	f.distances(p)
 	f.names(p)
-	p.reading(false)
+	p.reading(false, all(len(f.Lines))...)
 	if f.Remark != "" {
 		below += s.lead()
 		d.text(0, below-0.4*s.Size, Start, s.Size, Muted, Words(Sans, f.Remark).Cut(s.Size, s.Width))
@@ -162,4 +162,13 @@ func (f *HillPlot) names(p *panel) {
 		at := busy.place(between(p.places(l.At), p.x.x0, p.x.x1), label.Width(p.s.Size), p.s.Size, p)
 		p.d.add(&lettering{x: at.X, y: at.Y, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
 	}
+}
+
+// all lists 0 … n−1.
+func all(n int) []int {
+	out := make([]int, n)
+	for i := range out {
+		out[i] = i
+	}
+	return out
 }

@@ -3,6 +3,7 @@ package figure
 import (
 	"math"
 	"strconv"
+	"strings"
 )
 
 // panel is one field of a figure: a ligand axis below, a linear axis at its left.
@@ -104,9 +105,15 @@ func (p *panel) xAxis(title bool) (below float64) {
 }
 
 // reading marks the panel as one that shares the ligand axis: the page lays its
-// hairline through it. scale adds the linear axis, for a figure that is read.
-func (p *panel) reading(scale bool) {
-	p.d.add(&group{class: "axis", axis: &frame{x: p.x, y: p.y, top: p.top, bottom: p.bottom, scale: scale}})
+// hairline through it. scale adds the linear axis, for a figure that is read;
+// curves are the places of its curves among the leader's.
+func (p *panel) reading(scale bool, curves ...int) {
+	names := make([]string, len(curves))
+	for i, c := range curves {
+		names[i] = strconv.Itoa(c)
+	}
+	p.d.add(&group{class: "axis", data: [][2]string{{"c", strings.Join(names, " ")}},
+		axis: &frame{x: p.x, y: p.y, top: p.top, bottom: p.bottom, scale: scale}})
 	p.d.add(endGroup{})
 }
 

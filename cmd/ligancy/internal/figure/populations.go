@@ -20,6 +20,7 @@ type Populations struct {
 type Population struct {
 	Name     string
 	Ink      int // place of the curve's colour
+	Curve    int // its place among the leader's curves, for the page
 	From, To float64
 	States   []State
 }
@@ -84,7 +85,7 @@ func (f *Populations) field(d *Drawing, s Style, pop Population, x, y, width flo
 		at := busy.beside(XY{p.x.at(top.X), p.y.at(top.Y)}, w, s.Size, p)
 		d.add(&lettering{x: at.X, y: at.Y, size: s.Size, ink: NameInk(pop.Ink), runs: label, halo: true})
 	}
-	p.reading(false)
+	p.reading(false, pop.Curve)
 	return below
 }
 

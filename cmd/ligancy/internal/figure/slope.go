@@ -15,6 +15,7 @@ type Slope struct {
 	Leader Label
 	Lines  []SlopeLine
 	Rivals []Rival
+	Places []int // places of the lines among the leader's curves, for the page
 
 	lead int
 }
@@ -61,7 +62,7 @@ func (f *Slope) Draw(s Style) *Drawing {
 	}
 	f.dots(p)
 	f.names(p)
-	p.reading(true)
+	p.reading(true, f.Places...)
 	d.Height = math.Ceil(below)
 	return d
 }

@@ -1,0 +1,46 @@
+package report
+
+// table of a page.
+type table struct {
+	Caption string
+	Head    []string
+	Rows    [][]cell
+	Foot    string
+	Class   string
+}
+
+// cell of a table.
+type cell struct {
+	Text     string
+	Interval string // set back behind the text
+	After    string
+	Marks    []int  // cautions
+	Say      string // what pointing at it says
+	Head     bool   // heads its row
+	Name     string // a mechanism that can be shown over the leader: its place in the result
+	Number   bool   // set against the right edge
+	Colour   int    // 1-based place of the curve whose colour it has; 0 for none
+}
+
+// empty says whether a cell has nothing to show.
+func (c cell) empty() bool { return c.Text == "" || c.Text == "–" && c.Say == "" }
+
+// dropEmpty takes out columns without anything in them.
+func (t *table) dropEmpty() *table {
+	for k := len(t.Head) - 1; k > 0; k-- {
+		full := false
+		for _, r := range t.Rows {
+			full = full || k < len(r) && !r[k].empty()
+		}
+		if full {
+			continue
+		}
+		t.Head = append(t.Head[:k:k], t.Head[k+1:]...)
+		for i, r := range t.Rows {
+			if k < len(r) {
+				t.Rows[i] = append(r[:k:k], r[k+1:]...)
+			}
+		}
+	}
+	return t
+}
