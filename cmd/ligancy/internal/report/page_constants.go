@@ -108,7 +108,7 @@ func (v *view) constantTable() *table {
 	return t.dropEmpty()
 }
 
-func (v *view) constantCells(q *saturation.QuantityRow) []cell {
+func (v *view) constantCells(q *saturation.QuantityRow) []entry {
 	name := v.d.constantName(q)
 	switch {
 	case q.Curve == "all" || q.Curve == "":
@@ -119,15 +119,15 @@ func (v *view) constantCells(q *saturation.QuantityRow) []cell {
 	}
 	p := &page{d: v.d}
 	c := p.constantCells(q)
-	head := cell{Text: printable(name), Head: true}
-	value := cell{Text: minus(c[1]), Marks: v.marks(q), Number: true}
+	head := entry{Text: printable(name), Head: true}
+	value := entry{Text: minus(c[1]), Marks: v.marks(q), Number: true}
 	if text, lo, hi := rowFigures(q); text != "" {
 		value.Say = v.saying(q, text, lo, hi)
 	}
-	row := []cell{head, value, {Text: c[2]}, {Text: minus(c[3]), Number: true}, {Text: minus(c[4]), Number: true}, {Text: minus(c[5])}}
+	row := []entry{head, value, {Text: c[2]}, {Text: minus(c[3]), Number: true}, {Text: minus(c[4]), Number: true}, {Text: minus(c[5])}}
 	if b := v.bootstrapped(q); b != nil {
 		_, lo, hi := rowFigures(b)
-		row = append(row, cell{Text: strings.Trim(minus(intervalWords(lo, hi)), "()")})
+		row = append(row, entry{Text: strings.Trim(minus(intervalWords(lo, hi)), "()")})
 	}
 	return row
 }

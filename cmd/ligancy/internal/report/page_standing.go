@@ -61,16 +61,16 @@ func (v *view) standingTable() *table {
 		if m.Starts > 0 {
 			agreeing = fmt.Sprintf("%d of %d", m.StartsAgreeing, m.Starts)
 		}
-		name := cell{Text: printable(m.Name), Head: true}
+		name := entry{Text: printable(m.Name), Head: true}
 		if m.Name != v.leader && len(v.lines[m.Name]) > 0 {
 			name.Name = v.mechanismID(m.Name)
 		}
-		word := cell{Text: standingWord(m)}
+		word := entry{Text: standingWord(m)}
 		if m.Why != nil {
 			word.After = ": " + printable(*m.Why)
 		}
-		num := func(s string) cell { return cell{Text: s, Number: true} }
-		t.Rows = append(t.Rows, []cell{name, num(strconv.Itoa(m.Constants)), num(minus(scatter)), num(minus(behind)),
+		num := func(s string) entry { return entry{Text: s, Number: true} }
+		t.Rows = append(t.Rows, []entry{name, num(strconv.Itoa(m.Constants)), num(minus(scatter)), num(minus(behind)),
 			num(weight(float64(m.AICcWeight))), num(agreeing), word})
 	}
 	if n := len(v.ranked) - mostListed; n > 0 {

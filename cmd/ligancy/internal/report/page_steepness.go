@@ -136,7 +136,7 @@ func (v *view) slopeTable() *table {
 	t.Head = []string{"", v.halfTitle(), "n_H at half saturation", "steepest", "from 10–90 %", "from 1–99 %", "a Hill fit would say"}
 	names := []string{"n_H_half", "n_H_max", "n_H_10_90", "n_H_1_99", "n_H_hill_reading"}
 	for _, c := range curves[:min(len(curves), mostPanels)] {
-		row := []cell{{Text: printable(curveLabel(c)), Head: true}, v.number(v.rows[key{v.leader, c, "position", "x_half"}])}
+		row := []entry{{Text: printable(curveLabel(c)), Head: true}, v.number(v.rows[key{v.leader, c, "position", "x_half"}])}
 		for _, n := range names {
 			q := v.rows[key{v.leader, c, "hill", n}]
 			k := v.number(q)
@@ -161,7 +161,7 @@ func (v *view) contrastTable() *table {
 			continue
 		}
 		name := map[string]string{"x_half": "half saturation, ratio", "n_H_half": "n_H at half saturation, difference", "Bohr_coefficient": "Bohr coefficient"}[q.Name]
-		t.Rows = append(t.Rows, []cell{{Text: name, Head: true}, {Text: printable(shortContrast(q.Curve))}, v.number(q)})
+		t.Rows = append(t.Rows, []entry{{Text: name, Head: true}, {Text: printable(shortContrast(q.Curve))}, v.number(q)})
 	}
 	if len(t.Rows) == 0 {
 		return nil
@@ -189,19 +189,19 @@ func (v *view) basis() string {
 }
 
 // number is a value with its interval; pointing at it says what it is.
-func (v *view) number(q *saturation.QuantityRow) cell {
+func (v *view) number(q *saturation.QuantityRow) entry {
 	if q == nil {
-		return cell{}
+		return entry{}
 	}
 	value, lo, hi := rowFigures(q)
 	if value == "" {
-		c := cell{Text: "–"}
+		c := entry{Text: "–"}
 		if q.Why != nil {
 			c.Say = v.naming(q) + " does not exist here: " + printable(sentence(*q.Why))
 		}
 		return c
 	}
-	c := cell{Text: minus(value), After: ""}
+	c := entry{Text: minus(value), After: ""}
 	if interval := intervalWords(lo, hi); interval != "" {
 		c.Interval = minus(interval)
 	}

@@ -4,13 +4,13 @@ package report
 type table struct {
 	Caption string
 	Head    []string
-	Rows    [][]cell
+	Rows    [][]entry
 	Foot    string
 	Class   string
 }
 
-// cell of a table.
-type cell struct {
+// entry of a table.
+type entry struct {
 	Text     string
 	Interval string // set back behind the text
 	After    string
@@ -23,7 +23,7 @@ type cell struct {
 }
 
 // empty says whether a cell has nothing to show.
-func (c cell) empty() bool { return c.Text == "" || c.Text == "–" && c.Say == "" }
+func (c entry) empty() bool { return c.Text == "" || c.Text == "–" && c.Say == "" }
 
 // dropEmpty takes out columns without anything in them.
 func (t *table) dropEmpty() *table {
