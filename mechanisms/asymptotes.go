@@ -14,12 +14,13 @@ import (
 // Their distance is the interaction energy: ΔG/RT = ln(x_last/x_first)
 // (Wyman 1964), since x_first = 1/K′_1 and x_last = 1/K′_n.
 func Asymptotes(c Curve) (first, last Measure) {
+	if _, seen := c.(*watch); seen {
+		m := nothing("the asymptotes of the Hill plot belong to binding, not to this response")
+		return m, m
+	}
 	f, ok := c.(factored)
 	if !ok {
 		m := nothing("this curve has no binding polynomial")
-		if _, seen := c.(*watch); seen {
-			m = nothing("the asymptotes of the Hill plot belong to binding, not to this response")
-		}
 		return m, m
 	}
 	b := f.polynomial()
