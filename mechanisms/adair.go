@@ -65,8 +65,9 @@ Adair 1925, J. Biol. Chem. 63:529. Wyman 1964, Adv. Protein Chem. 19:223.
 // Adair 1925, J. Biol. Chem. 63:529. Wyman 1964, Adv. Protein Chem. 19:223.
 type adair struct{ sites int }
 
-// adairSites is fitted in the logarithms of the site constants Kd_i.
-type adairSites struct{ adair }
+// adairSites is fitted in the logarithms of the site constants Kd_i. (It must not
+// embed adair: its constants are not to be restated.)
+type adairSites struct{ sites int }
 
 func buildAdair(d Definition) (Mechanism, error) {
 	var p problems
@@ -75,7 +76,7 @@ func buildAdair(d Definition) (Mechanism, error) {
 	if p.err() != nil {
 		return nil, p.err()
 	}
-	m := adairSites{adair{d.Sites}}
+	m := adairSites{d.Sites}
 	p.given(d, m.Constants())
 	if err := p.err(); err != nil {
 		return nil, err
@@ -83,7 +84,7 @@ func buildAdair(d Definition) (Mechanism, error) {
 	if d.SiteScale || anySaid(d.Constants) {
 		return m, nil
 	}
-	return m.adair, nil
+	return adair(m), nil
 }
 
 // siteCount complains of a number of equal sites that cannot be.
@@ -156,6 +157,10 @@ func (m adair) bind(c *coefficients, theta []float64, _ Environment) {
 		}
 	}
 }
+
+func (m adairSites) Family() string      { return "adair" }
+func (m adairSites) Sites() int          { return m.sites }
+func (m adairSites) Effectors() []string { return nil }
 
 func (m adairSites) Constants() []Constant {
 	list := make([]Constant, m.sites)

@@ -148,6 +148,28 @@ func compare(t interface{ Errorf(string, ...any) }, m mechanisms.Mechanism, c me
 	}
 }
 
+// Populations against the enumerated microstates.
+func TestBruteForcePopulations(t *testing.T) {
+	rng := rand.New(rand.NewPCG(13, 14))
+	for name, c := range every {
+		if c.Family == "hill" || c.Family == "mixture" || c.Family == "assembly" {
+			continue
+		}
+		m := c.Build()
+		theta, env := mechtest.Draw(rng, m), mechtest.DrawEnvironment(rng, m)
+		curve := m.Curve()
+		curve.Bind(theta, env)
+		p := curve.(mechanisms.Populated)
+		ref := mechtest.Reference{Family: c.Family, Definition: c.Definition, Mechanism: m}
+		for _, l := range []float64{-5, 0, 2, 6} {
+			got, want := p.Populations(nil, l), ref.Populations(theta, env, l)
+			for i, state := range p.StateNames() {
+				near(t, fmt.Sprintf("%s, ln x = %g: %s", name, l, state), got[i], want[state], 1e-12*want[state])
+			}
+		}
+	}
+}
+
 func near(t interface{ Errorf(string, ...any) }, what string, got, want, within float64) {
 	if !(math.Abs(got-want) <= within) {
 		t.Errorf("%s is %.17g, not %.17g (%.2g off)", what, got, want, got-want)

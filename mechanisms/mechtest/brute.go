@@ -11,6 +11,7 @@ import (
 // microstate is one way in which one molecule can be: its ligands and its
 // weight without xⁱ.
 type microstate struct {
+	of      string // conformation or listed state; "" where there is one
 	ligands int
 	weight  *big.Float
 	sees    *big.Float // what a response sees of it
@@ -34,7 +35,7 @@ func (w world) under(name string) world {
 	return inner
 }
 
-// binding is x/K for the constant of that key; nil where there is none.
+// over is x/K for the constant of that key.
 func (w world) over(x *big.Float, key string) *big.Float {
 	k, ok := w.value[key]
 	if !ok {
@@ -101,7 +102,7 @@ func binomial(n, k int) *big.Float {
 func independent(d mechanisms.Definition, w world) (list []microstate) {
 	var site []*big.Float // 1/K of each site
 	before := number(1)
-	for i, c := range d.Classes {
+	for _, c := range d.Classes {
 		key := "Kd"
 		if len(d.Classes) > 1 {
 			key = c.Name + ".Kd"
@@ -110,7 +111,6 @@ func independent(d mechanisms.Definition, w world) (list []microstate) {
 		if !ok {
 			k = mul(before, w.value[c.Name+".ratio"])
 		}
-		_ = i
 		before = k
 		for range c.Sites {
 			site = append(site, quo(number(1), k))
@@ -203,7 +203,7 @@ func fill(start microstate, places [][]choice) []microstate {
 		var next []microstate
 		for _, s := range list {
 			for _, o := range options {
-				next = append(next, microstate{ligands: s.ligands + o.ligands, weight: mul(s.weight, o.weight), sees: s.sees})
+				next = append(next, microstate{of: s.of, ligands: s.ligands + o.ligands, weight: mul(s.weight, o.weight), sees: s.sees})
 			}
 		}
 		list = next
@@ -221,7 +221,7 @@ func concerted(d mechanisms.Definition, w world) (list []microstate) {
 		n += c.Sites
 	}
 	for _, conf := range []string{"R", "T"} {
-		start := microstate{weight: number(1)}
+		start := microstate{of: conf, weight: number(1)}
 		if conf == "T" {
 			start.weight = w.value["L"]
 		}
@@ -299,7 +299,7 @@ func conformations(d mechanisms.Definition, w world) (list []microstate) {
 	}
 	for _, named := range d.Conformations {
 		c := byName[named.Name]
-		start := microstate{weight: number(1)}
+		start := microstate{of: c.Name, weight: number(1)}
 		if c.Weight != "" {
 			start.weight = w.value[c.Weight]
 		}
@@ -357,7 +357,7 @@ func states(d mechanisms.Definition, w world) (list []microstate) {
 		}
 		for range max(1, s.Ways) {
 			one := view(mechanisms.Definition{Sees: append(d.Turnover, d.Sees...)}, sighted(d, w), s.Name, 0,
-				[]microstate{{ligands: s.Ligands, weight: weight}})
+				[]microstate{{of: s.Name, ligands: s.Ligands, weight: weight}})
 			list = append(list, one...)
 		}
 	}

@@ -1,6 +1,7 @@
 package mechtest
 
 import (
+	"fmt"
 	"math/big"
 
 	"ligancy/mechanisms"
@@ -224,4 +225,35 @@ func slopes(c func(*big.Float) *big.Float, lnx *big.Float) (y, y1, nh, dnh, d2nh
 	n0, n1, n2 := hill(1), hill(2), hill(3)
 	d2 := quo(sub(add(n2, n0), add(n1, n1)), mul(h, h))
 	return v[2], slope(2), n1, quo(sub(n2, n0), add(h, h)), d2
+}
+
+// Populations returns the share of every state of a molecule, under the name
+// that Populated gives it.
+func (r Reference) Populations(theta []float64, env mechanisms.Environment, lnx float64) map[string]float64 {
+	at := make([]*big.Float, len(theta))
+	for i, t := range theta {
+		at[i] = number(t)
+	}
+	x, z := exp(number(lnx)), number(0)
+	share := map[string]*big.Float{}
+	for _, m := range enumerate(r.Family, r.Definition, r.world(at, env)) {
+		name := fmt.Sprintf("%d bound", m.ligands)
+		switch {
+		case r.Family == "states":
+			name = m.of
+		case m.of != "":
+			name = m.of + ", " + name
+		}
+		w := mul(m.weight, power(x, m.ligands))
+		z = add(z, w)
+		if share[name] == nil {
+			share[name] = number(0)
+		}
+		share[name] = add(share[name], w)
+	}
+	out := map[string]float64{}
+	for name, w := range share {
+		out[name] = float(quo(w, z))
+	}
+	return out
 }
