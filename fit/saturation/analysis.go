@@ -128,7 +128,8 @@ type Settings struct {
 	Method    string  // "profile" | "covariance"
 	Draws     int     // of the deciding bootstrap; 199
 	Bootstrap Bootstrap
-	Workers   int // never changes a digit
+	Workers   int    // never changes a digit
+	Limits    Limits // of the objections
 }
 
 // Bootstrap asks for bootstrap intervals.

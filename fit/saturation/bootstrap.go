@@ -56,10 +56,11 @@ func (f *fitted) bootstrapRows(ctx context.Context) []QuantityRow {
 		}
 		list = append(list, w)
 	}
-	draw, why := f.drawer(b.By)
 	values := make([][]float64, b.Draws)
+	drawer, why := f.drawers(b.By)
 	if why == "" {
 		f.m.a.sideBySide(b.Draws, func() worker {
+			draw := drawer()
 			return worker{
 				do: func(k int) {
 					if ctx.Err() == nil {
@@ -77,10 +78,12 @@ func (f *fitted) bootstrapRows(ctx context.Context) []QuantityRow {
 	return rows
 }
 
-// drawer makes one draw: values of the wanted numbers, or nil without an answer.
+// drawer makes one draw: values of the wanted numbers, or nil without an
+// answer. It is for one goroutine.
 type drawer func(ctx context.Context, k int, list []wanted) []float64
 
-func (f *fitted) drawer(by string) (drawer, string) {
+// drawers is how a study is drawn anew: something that makes drawers, or why not.
+func (f *fitted) drawers(by string) (func() drawer, string) {
 	switch by {
 	case byParametric, byResidual, "":
 		return f.drawPoints(by == byResidual), ""
@@ -88,51 +91,42 @@ func (f *fitted) drawer(by string) (drawer, string) {
 		if n := len(f.m.a.levels(byPreparation)); n < 2 {
 			return nil, "a bootstrap by preparation needs at least two preparations"
 		}
-		return f.drawPreparations, ""
+		return func() drawer { return f.drawPreparations }, ""
 	}
 	return nil, fmt.Sprintf("a bootstrap by %q is not known", by)
 }
 
 // drawPoints draws new values at the same places: from the scatter model, or
 // from the fit's own residuals with replacement, inflated by √(N/(N−p)).
-func (f *fitted) drawPoints(residual bool) drawer {
+func (f *fitted) drawPoints(residual bool) func() drawer {
 	s := f.simulated()
-	pools, sigma := make([][]float64, len(f.m.blocks)), make([]float64, len(f.m.blocks))
-	for bi, b := range f.m.blocks {
-		b.predict(f.result.Theta, false)
-		inflate := math.Sqrt(float64(f.row.Points) / math.Max(1, float64(f.row.Points-f.m.free())))
-		rel := f.deviations(b)
-		sigma[bi] = f.blockSigma(bi)
-		for i := range b.pts {
-			pools[bi] = append(pools[bi], inflate*(b.y[i]-b.predicted(i))/rel[i])
-		}
+	if residual {
+		s.residuals = f.residualPools()
 	}
-	return func(ctx context.Context, k int, list []wanted) []float64 {
-		rng := rand.New(rand.NewPCG(f.m.a.Settings.Seed, 1<<40|uint64(k)))
-		y := make([][]float64, len(s.mean))
-		for bi := range y {
-			y[bi] = make([]float64, len(s.mean[bi]))
-			for i := range y[bi] {
-				e := s.sd[bi][i] * rng.NormFloat64()
-				if residual {
-					e = pools[bi][rng.IntN(len(pools[bi]))] * s.sd[bi][i] / sigma[bi]
-				}
-				y[bi][i] = s.mean[bi][i] + e
+	return func() drawer {
+		r := newRefitter(f)
+		return func(ctx context.Context, k int, list []wanted) []float64 {
+			if r == nil {
+				return nil
 			}
+			r.observe(s.draw(rand.New(rand.NewPCG(f.m.a.Settings.Seed, 1<<40|uint64(k)))))
+			if math.IsInf(r.from(ctx, f.result.Theta), -1) {
+				return nil
+			}
+			return valuesAt(list, r.theta)
 		}
-		g := *f
-		g.problem = replaced(&g, y, [][]float64{f.result.Theta})
-		g.m = g.m.over(g.problem.Blocks)
-		r, err := g.solve(ctx, fit.Settings{Starts: 1, Workers: 1})
-		if err != nil || r == nil || r.Status == fit.NoAnswer || r.Status == fit.Stopped {
-			return nil
-		}
-		return valuesAt(list, r.Theta)
 	}
 }
 
-// simulated is the predictions and absolute deviations of a fit.
-func (f *fitted) simulated() (s struct{ mean, sd [][]float64 }) {
+// simulated is the predictions and absolute deviations of a fit, block by
+// block; with residuals, draws take theirs from them.
+type simulated struct {
+	mean, sd  [][]float64
+	residuals [][]float64 // in units of sd
+}
+
+func (f *fitted) simulated() *simulated {
+	s := &simulated{}
 	for bi, b := range f.m.blocks {
 		dev := f.deviations(b)
 		sigma := f.blockSigma(bi)
@@ -144,6 +138,38 @@ func (f *fitted) simulated() (s struct{ mean, sd [][]float64 }) {
 		s.mean, s.sd = append(s.mean, mean), append(s.sd, dev)
 	}
 	return s
+}
+
+// residualPools are the fit's own residuals in units of their deviations.
+func (f *fitted) residualPools() [][]float64 {
+	n, p := float64(f.row.Points), float64(f.m.free())
+	inflate := math.Sqrt(n / math.Max(1, n-p))
+	pools := make([][]float64, len(f.m.blocks))
+	for bi, b := range f.m.blocks {
+		dev, sigma := f.deviations(b), f.blockSigma(bi)
+		for i := range b.pts {
+			pools[bi] = append(pools[bi], inflate*(b.y[i]-b.predicted(i))/(sigma*dev[i]))
+		}
+	}
+	return pools
+}
+
+// draw is one study's values.
+func (s *simulated) draw(rng *rand.Rand) [][]float64 {
+	y := make([][]float64, len(s.mean))
+	for bi := range y {
+		y[bi] = make([]float64, len(s.mean[bi]))
+		for i := range y[bi] {
+			z := 0.0
+			if s.residuals != nil {
+				z = s.residuals[bi][rng.IntN(len(s.residuals[bi]))]
+			} else {
+				z = rng.NormFloat64()
+			}
+			y[bi][i] = s.mean[bi][i] + s.sd[bi][i]*z
+		}
+	}
+	return y
 }
 
 // valuesAt evaluates the wanted numbers on the printed scale.

@@ -23,16 +23,11 @@ type fitted struct {
 	decided bool // the bootstrap has settled whether it is out
 }
 
-// slope is the interval of n_H at half saturation of one curve, at slopeLevel.
-type slope struct {
-	curve     string
-	low, high float64
-}
-
 // fitCandidate lays a candidate over the data and fits it.
 func (a *Analysis) fitCandidate(ctx context.Context, c *Candidate, s fit.Settings) *fitted {
 	f := &fitted{twinOf: -1, row: MechanismRow{Name: c.Name, Family: c.Family, Sites: c.Mechanism.Sites(), Status: "no answer"}}
 	f.row.SumOfSquares, f.row.Scatter, f.row.LogLikelihood = nan, nan, nan
+	f.row.LackOfFitP, f.row.RunsP, f.row.PredictionError = nan, nan, nan
 	f.row.AICc, f.row.AICcBehind, f.row.AICcWeight, f.row.BIC = nan, nan, nan, nan
 	f.lnL, f.ss, f.scatter = math.NaN(), math.NaN(), math.NaN()
 	f.m, f.err = newModel(a, c)

@@ -38,7 +38,8 @@ func (a *Analysis) givenCandidate(c *Candidate, out *Outcome) error {
 		return err
 	}
 	row := MechanismRow{Name: c.Name, Family: c.Family, Sites: c.Mechanism.Sites(), Status: "given", SumOfSquares: nan, Scatter: nan,
-		LogLikelihood: nan, AICc: nan, AICcBehind: nan, AICcWeight: nan, BIC: nan}
+		LogLikelihood: nan, AICc: nan, AICcBehind: nan, AICcWeight: nan, BIC: nan,
+		LackOfFitP: nan, RunsP: nan, PredictionError: nan}
 	out.Mechanisms = append(out.Mechanisms, row)
 	g := &givenCurve{a: a, c: c, theta: theta, out: out}
 	g.constants()

@@ -24,9 +24,11 @@ type Outcome struct {
 	Curves       []CurveRow       `json:"curves"`
 	Correlations []CorrelationRow `json:"correlations"`
 	Populations  []PopulationRow  `json:"populations"`
+	Nested       []NestedRow      `json:"nested"`
 	Preparations []PreparationRow `json:"preparations"`
 	Factors      []FactorRow      `json:"factors"`
 	Objections   []Objection      `json:"objections"`
+	Explanations []ExplanationRow `json:"explanations"`
 	Verdict      Verdict          `json:"verdict"`
 
 	// Defaults are the settings in force that the study did not say.
@@ -53,8 +55,14 @@ type MechanismRow struct {
 	BIC            Real    `json:"bic"`
 	Starts         int     `json:"starts"`
 	StartsAgreeing int     `json:"starts_agreeing"`
-	Standing       string  `json:"standing"` // "leads", "ties", "open", "open: leader, freer", "out", ""
-	Why            *string `json:"why"`
+	// LackOfFitP is the probability of so great a misfit beyond the replicates'
+	// own scatter, RunsP that of so few runs of residuals of one sign, and
+	// PredictionError the scatter about concentrations left out in turn.
+	LackOfFitP      Real    `json:"lack_of_fit_p"`
+	RunsP           Real    `json:"runs_p"`
+	PredictionError Real    `json:"prediction_error"`
+	Standing        string  `json:"standing"` // "leads", "ties", "open", "open: leader, freer", "out", ""
+	Why             *string `json:"why"`
 }
 
 // QuantityRow is one number with its interval.

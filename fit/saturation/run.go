@@ -11,7 +11,6 @@ import (
 	"gonum.org/v1/gonum/stat/distuv"
 
 	"ligancy/fit"
-	"ligancy/mechanisms"
 )
 
 // Run fits every candidate, compares them, and says what the data support.
@@ -31,9 +30,15 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	d.decide(ctx)
 	a.slopes(ctx, fits, order)
 	a.bootstrap(ctx, fits, rows, rec)
+	for _, f := range fits {
+		f.assess(ctx)
+	}
+	out.Nested = a.nestedRows(ctx, fits, order)
 	report(out, fits, rows)
 	out.Preparations = a.preparationRows(ctx)
 	out.Factors = a.factorRows(ctx, fits)
+	out.Quantities = append(out.Quantities, a.verdictRows(ctx, out.Quantities, fits, order)...)
+	a.asked(ctx, out, fits, order)
 	out.Interrupted = ctx.Err() != nil
 	out.Verdict = a.verdict(out, fits, order)
 	return out, nil
@@ -103,32 +108,6 @@ func (a *Analysis) allQuantities(ctx context.Context, fits []*fitted, rec Record
 		rows[i] = a.quantities(ctx, f)
 	}
 	return rows
-}
-
-// slopes finds the intervals of n_H at half saturation that decide whether it
-// may be called different from 1.
-func (a *Analysis) slopes(ctx context.Context, fits []*fitted, order []int) {
-	for _, i := range order {
-		f := fits[i]
-		if f.row.Standing == "out" || ctx.Err() != nil {
-			continue
-		}
-		pr, err := fit.NewProfiler(f.problem, f.result, slopeLevel)
-		if err != nil {
-			continue
-		}
-		for _, c := range f.m.curveCells() {
-			iv := pr.Quantity(ctx, f.m.measured(c, mechanisms.HillAtHalf)())
-			s := slope{curve: f.m.cells[c].label, low: iv.Low, high: iv.High}
-			if iv.LowOpen {
-				s.low = math.Inf(-1)
-			}
-			if iv.HighOpen {
-				s.high = math.Inf(1)
-			}
-			f.slopes = append(f.slopes, s)
-		}
-	}
 }
 
 // report fills the rows of the outcome.

@@ -100,6 +100,9 @@ func runTruth(t *testing.T, tr *truth, n int) (s tally, reasons map[string]int) 
 		f := tr.judge(&out.Verdict)
 		for _, w := range f.why {
 			reasons[w]++
+			if n > 2 && testing.Verbose() {
+				t.Logf("study %d: %s", k, w)
+			}
 		}
 		count := func(n *int, b bool) {
 			if b {

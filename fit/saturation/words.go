@@ -36,8 +36,12 @@ func toInterval(v, low, high float64) string {
 	if v != 0 {
 		e = min(e, int(math.Floor(math.Log10(math.Abs(v))))-1)
 	}
-	if big := int(math.Floor(math.Log10(math.Max(math.Abs(v), half)))); big >= 4 && e > 0 || big >= 6 || big < -3 {
-		return strconv.FormatFloat(v, 'e', max(0, big-e), 64)
+	exp := e + 1
+	if v != 0 {
+		exp = int(math.Floor(math.Log10(math.Abs(v))))
+	}
+	if exp >= 6 || exp < -4 || exp >= 5 && e > 0 {
+		return strconv.FormatFloat(v, 'e', min(max(0, exp-e), 6), 64)
 	}
 	if e > 0 {
 		step := math.Pow(10, float64(e))
