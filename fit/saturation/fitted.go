@@ -40,9 +40,12 @@ func (a *Analysis) fitCandidate(ctx context.Context, c *Candidate, s fit.Setting
 	}
 	f.problem = f.m.problem()
 	f.result, f.err = f.solve(ctx, s)
-	if f.err != nil || f.result == nil {
-		if f.err != nil {
+	if f.err != nil || f.result == nil || len(f.result.Theta) == 0 {
+		switch {
+		case f.err != nil:
 			f.row.Why = text(f.err.Error())
+		case ctx.Err() != nil:
+			f.row.Why = text("stopped before its first start had ended")
 		}
 		f.result = nil
 		return f

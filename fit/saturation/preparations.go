@@ -105,9 +105,9 @@ func (a *Analysis) hillAlone(ctx context.Context, d *Dataset, pts []Point) (xHal
 	b.Candidates = []Candidate{{Name: "Hill equation", Family: "hill", Mechanism: mech}}
 	f := b.fitCandidate(ctx, &b.Candidates[0], fit.Settings{Starts: 8, Seed: b.Settings.Seed, Workers: 1})
 	switch {
-	case f.result == nil && f.err != nil:
-		return 0, 0, f.err.Error()
-	case !f.answered() && f.row.Why == nil:
+	case f.result == nil && f.row.Why != nil:
+		return 0, 0, *f.row.Why
+	case f.result == nil || !f.answered() && f.row.Why == nil:
 		return 0, 0, "the fit of this preparation alone did not converge"
 	case f.row.Status == "at an edge":
 		return 0, 0, "this preparation alone does not settle the curve: " + *f.row.Edge
