@@ -108,7 +108,7 @@ func (p *program) fitOne(ctx context.Context, name string, opts fitOptions) (*re
 	d, err := p.analyse(ctx, o)
 	if err != nil {
 		p.complain("%s: %v", name, err)
-		return nil, code(ctx)
+		return nil, max(Unusable, code(ctx))
 	}
 	if !opts.json {
 		if err := d.WriteText(p.out, p.colour()); err != nil {

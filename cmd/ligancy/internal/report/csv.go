@@ -2,6 +2,7 @@ package report
 
 import (
 	"encoding/csv"
+	"encoding/json"
 	"fmt"
 	"io"
 	"math"
@@ -57,7 +58,7 @@ func (t Table) WriteCSV(w io.Writer) error {
 	}
 	for r := range t.rows.Len() {
 		for i := range record {
-			record[i] = cell(t.rows.Index(r).Field(i).Interface())
+			record[i] = csvCell(t.rows.Index(r).Field(i).Interface())
 		}
 		if err := c.Write(record); err != nil {
 			return err
@@ -67,8 +68,8 @@ func (t Table) WriteCSV(w io.Writer) error {
 	return c.Error()
 }
 
-// cell writes one value of a row.
-func cell(value any) string {
+// csvCell writes one value of a row.
+func csvCell(value any) string {
 	switch v := value.(type) {
 	case string:
 		return v
@@ -88,5 +89,13 @@ func cell(value any) string {
 		}
 		return strconv.FormatFloat(x, 'g', -1, 64)
 	}
-	panic(fmt.Sprintf("report: a row holds a %T", value))
+	// A list or record within a row: its JSON, as in the document.
+	encoded, err := json.Marshal(value)
+	if err != nil {
+		panic(fmt.Sprintf("report: a row holds a %T", value))
+	}
+	if string(encoded) == "null" {
+		return ""
+	}
+	return string(encoded)
 }
