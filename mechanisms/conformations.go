@@ -78,6 +78,7 @@ type conformational struct {
 func buildConformations(d Definition) (Mechanism, error) {
 	var p problems
 	p.unread(d, "conformations", "effectors", "turnover", "sees", "constants")
+	p.effectors(d.Effectors)
 	list := p.resolve(d.Conformations)
 	p.views(d, conformationNames(list))
 	if err := p.err(); err != nil {
@@ -202,6 +203,9 @@ func (f *conformer) take(p *problems, key string, d Definition, c Conformation, 
 	at := slices.IndexFunc(d.Effectors, func(e Effector) bool { return e.Name == name })
 	if at >= 0 && d.Effectors[at].AtLigandSite {
 		set.rivals = append(set.rivals, e)
+		if c.Sites == 0 {
+			p.add(key+".sites", fmt.Sprintf("%s binds at the ligand's sites, and there are none here", name), "sites: 2")
+		}
 		if n, ok := c.EffectorSites[name]; ok && n != c.Sites {
 			p.add(key, fmt.Sprintf("%s binds at the ligand's sites, so that their number is theirs", name), "no number of sites for it")
 		}

@@ -112,8 +112,10 @@ type Curve interface {
 type Watched interface {
 	Curve
 	// Watch returns what the response sees, sharing the bound state. Its
-	// Saturation is the raw average ⟨o⟩; its At measures n_H between the
-	// response's own limits at x → 0 and x → ∞ (NaN where it leaves them).
+	// Saturation is the raw average ⟨o⟩; its At writes, in the place of Ȳ, the
+	// share F of the response between its own limits at x → 0 and x → ∞, and n_H
+	// of F (NaN where F leaves 0 … 1). It has a method
+	// Limits(gradLow, gradHigh []float64) (low, high float64) for those limits.
 	Watch() Curve
 }
 

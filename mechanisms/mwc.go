@@ -114,12 +114,8 @@ func buildMWC(d Definition) (Mechanism, error) {
 
 // concertedEffectors complains of effectors that say nothing clear.
 func (p *problems) concertedEffectors(list []Effector) {
-	seen := map[string]bool{}
+	p.effectors(list)
 	for _, e := range list {
-		if seen[e.Name] {
-			p.add("effectors."+e.Name, "this effector is named twice", "each effector once")
-		}
-		seen[e.Name] = true
 		if !slices.Contains([]string{"R", "T", "both"}, e.Binds) {
 			p.add("effectors."+e.Name+".binds", fmt.Sprintf("%q is not a conformation that an effector can bind", e.Binds),
 				"binds: R, binds: T or binds: both")

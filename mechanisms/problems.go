@@ -178,3 +178,14 @@ func sitesInWords(n int) string {
 	}
 	return fmt.Sprintf("%d sites", n)
 }
+
+// effectors complains of an effector that is named twice.
+func (p *problems) effectors(list []Effector) {
+	seen := map[string]bool{}
+	for _, e := range list {
+		if seen[e.Name] {
+			p.add("effectors."+e.Name, "this effector is named twice", "each effector once")
+		}
+		seen[e.Name] = true
+	}
+}

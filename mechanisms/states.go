@@ -61,6 +61,7 @@ type stated struct {
 func buildStates(d Definition) (Mechanism, error) {
 	var p problems
 	p.unread(d, "states", "effectors", "turnover", "sees", "constants")
+	p.effectors(d.Effectors)
 	p.states(d.States)
 	names := make([]string, len(d.States))
 	for i, s := range d.States {
