@@ -23,12 +23,7 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	out := &Outcome{Defaults: a.defaults()}
 	fits := a.fitAll(ctx, rec)
 	rows := a.allQuantities(ctx, fits, rec)
-	c := newCurves(a, fits)
-	order := rank(fits, c)
-	stand(fits, order)
-	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec, curves: c}
-	d.decide(ctx)
-	a.slopes(ctx, fits, order)
+	order := a.compare(ctx, fits, rec)
 	a.bootstrap(ctx, fits, rows, rec)
 	for _, f := range fits {
 		f.assess(ctx)
@@ -42,6 +37,18 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	out.Interrupted = ctx.Err() != nil
 	out.Verdict = a.verdict(out, fits, order)
 	return out, nil
+}
+
+// compare ranks the fits, gives each its standing, and finds the intervals of
+// n_H of those that are not out.
+func (a *Analysis) compare(ctx context.Context, fits []*fitted, rec Recorder) (order []int) {
+	c := newCurves(a, fits)
+	order = rank(fits, c)
+	stand(fits, order)
+	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec, curves: c}
+	d.decide(ctx)
+	a.slopes(ctx, fits, order)
+	return order
 }
 
 // withDefaults is the analysis with every setting settled.

@@ -40,12 +40,7 @@ func (a *Analysis) verdict(out *Outcome, fits []*fitted, order []int) Verdict {
 		}
 	}
 	v.Twins = twinGroups(fits, order)
-	w := &verdictWriter{a: a, out: out, fits: fits, order: order, lead: fits[order[0]], v: &v}
-	for _, i := range order {
-		if fits[i].row.Standing != "out" {
-			w.kept = append(w.kept, fits[i])
-		}
-	}
+	w := &verdictWriter{a: a, out: out, fits: fits, order: order, lead: fits[order[0]], kept: keptOf(fits, order), v: &v}
 	v.Slope = w.slope()
 	v.Text = w.text()
 	return v
@@ -54,10 +49,24 @@ func (a *Analysis) verdict(out *Outcome, fits []*fitted, order []int) Verdict {
 // verdictRows are the numbers that the verdict rests on beside those of the fits.
 func (a *Analysis) verdictRows(ctx context.Context, rows []QuantityRow, fits []*fitted, order []int) []QuantityRow {
 	out := append(decidingRows(fits), spreadRows(rows, fits)...)
-	if len(order) > 0 {
-		out = append(out, fits[order[0]].filledRows(ctx)...)
+	kept := keptOf(fits, order)
+	for i, f := range kept {
+		if i == 0 || f == plainest(kept) {
+			out = append(out, f.filledRows(ctx)...)
+		}
 	}
 	return out
+}
+
+// keptOf lists the mechanisms that are not out, the leader first.
+func keptOf(fits []*fitted, order []int) []*fitted {
+	var kept []*fitted
+	for _, i := range order {
+		if fits[i].row.Standing != "out" {
+			kept = append(kept, fits[i])
+		}
+	}
+	return kept
 }
 
 // twinGroups lists the names of mechanisms that give the same curves, group by group.

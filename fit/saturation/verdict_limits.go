@@ -71,10 +71,10 @@ func (w *verdictWriter) next() string {
 	shallow := w.v.Slope == slopeBelow
 	add(w.nothing() != "", "eight to twelve ligand values over the whole curve, each measured twice or more")
 	add(w.unfilled() != nil, "ligand values at which more than nine tenths of the sites are filled")
-	add(shallow, "dissociation after dilution with and without unlabelled ligand (sites that hinder each other change each other's rates, unlike sites do not)")
+	add(shallow, "dissociation after dilution with and without unlabelled ligand (interacting sites change each other's off-rates, unlike sites do not)")
 	add(shallow, "a signal, an effector or a mutation that acts on one kind of site")
 	add(w.undecided() && w.v.Slope == slopeAbove, "the ends of the curve (below one twentieth and above nineteen twentieths of saturation), where the mechanisms left differ most")
-	add(w.concertedLeft() && w.v.Slope == slopeAbove, "a signal of the conformation, or the curve with an effector that prefers one")
+	add(len(w.left("mwc", "conformations")) > 0 && w.v.Slope == slopeAbove, "a signal of the conformation, or the curve with an effector that prefers one")
 	add(w.nothing() == "" && !w.replicated(), "replicates")
 	if len(s) == 0 {
 		return ""
@@ -84,13 +84,3 @@ func (w *verdictWriter) next() string {
 
 // undecided says whether more than one mechanism is left.
 func (w *verdictWriter) undecided() bool { return len(w.kept) > 1 }
-
-// concertedLeft says whether a mechanism with conformations is left.
-func (w *verdictWriter) concertedLeft() bool {
-	for _, f := range w.kept {
-		if f.row.Family == "mwc" || f.row.Family == "conformations" {
-			return true
-		}
-	}
-	return false
-}

@@ -39,15 +39,13 @@ func (w *verdictWriter) several() string {
 		words string
 		names []string
 	}{{"unlike sites on each molecule", unlike}, {"separate populations", populations},
-		{"sites that hinder each other", negative}, {"a spread of affinities", spread}} {
+		{"negative cooperativity", negative}, {"a spread of affinities", spread}} {
 		if len(r.names) > 0 {
 			all = append(all, fmt.Sprintf("%s (%s)", r.words, list(r.names)))
 		}
 	}
-	if len(all) == 1 {
-		return fmt.Sprintf("Of the mechanisms tried, only %s is left to read the shallow curve; an artefact of the assay is another reading.", all[0])
-	}
-	return fmt.Sprintf("A shallow curve has several readings, and these are left: %s; and an artefact of the assay.", list(all))
+	return fmt.Sprintf("A shallow curve has several readings. Of the mechanisms tried, %s %s left; an artefact of the assay, and unlike sites in other numbers, are more.",
+		list(all), verb(len(all), "alone is", "are"))
 }
 
 // factorWords says whether independent sites give the same curve as the
@@ -211,16 +209,32 @@ func (m *model) highestFree(cell int) float64 {
 	return x
 }
 
-// unfilled is the row of a curve whose fitted upper end is not reached by the
-// leader; nil where there is none.
+// unfilled is the row of a curve whose fitted upper end is not reached, neither
+// by the leader nor by the plainest mechanism that is not out; nil where there is
+// none. (A freer mechanism may put some of its sites beyond the data at will.)
 func (w *verdictWriter) unfilled() *QuantityRow {
 	for i := range w.out.Quantities {
 		q := &w.out.Quantities[i]
-		if q.Name == filledName && q.Mechanism == w.lead.row.Name && q.Value < filled {
+		if q.Name != filledName || q.Mechanism != w.lead.row.Name || !(q.Value < filled) {
+			continue
+		}
+		p := w.find(plainest(w.kept).row.Name, "position", filledName, q.Curve)
+		if p == nil || p.Value < filled {
 			return q
 		}
 	}
 	return nil
+}
+
+// plainest is the first of the mechanisms with the fewest constants.
+func plainest(fits []*fitted) *fitted {
+	best := fits[0]
+	for _, f := range fits {
+		if f.row.Constants < best.row.Constants {
+			best = f
+		}
+	}
+	return best
 }
 
 // ends says where a fitted upper end is extrapolated.

@@ -3,6 +3,7 @@ package saturation
 import (
 	"fmt"
 	"math"
+	"slices"
 	"strings"
 )
 
@@ -121,21 +122,37 @@ func (w *verdictWriter) allOut(group []string) bool {
 	return true
 }
 
-// notToldApart says that concerted and pairwise mechanisms are both left.
+// notToldApart says that concerted and pairwise mechanisms are both left: by
+// name, or held by a stepwise one, which leaves open how its sites interact.
 func (w *verdictWriter) notToldApart() string {
-	var concerted, pairwise []string
-	for _, f := range w.kept {
-		switch f.row.Family {
-		case "mwc", "conformations":
-			concerted = append(concerted, f.row.Name)
-		case "sequential":
-			pairwise = append(pairwise, f.row.Name)
-		}
-	}
-	if len(concerted) == 0 || len(pairwise) == 0 || w.v.Slope != slopeAbove {
+	if w.v.Slope != slopeAbove {
 		return ""
 	}
-	return fmt.Sprintf("A concerted change of conformation (%s) and one site by site (%s) are not told apart.", quotedList(concerted), quotedList(pairwise))
+	concerted, pairwise := w.left("mwc", "conformations"), w.left("sequential")
+	stepwise := w.left("adair")
+	const both = "a concerted change of conformation%s and one site by site%s are not told apart"
+	switch {
+	case len(concerted) > 0 && len(pairwise) > 0:
+		return capital(fmt.Sprintf(both, " ("+quotedList(concerted)+")", " ("+quotedList(pairwise)+")")) + "."
+	case len(stepwise) > 0 && w.tried("mwc", "conformations") && w.tried("sequential"):
+		return fmt.Sprintf("%s leaves open how its sites interact and is not out: "+both+".", capital(quoted(stepwise[0])), "", "")
+	}
+	return ""
+}
+
+// left lists the mechanisms of some families that are not out.
+func (w *verdictWriter) left(families ...string) []string {
+	var left []string
+	for _, f := range w.kept {
+		if slices.Contains(families, f.row.Family) {
+			left = append(left, f.row.Name)
+		}
+	}
+	return left
+}
+
+func (w *verdictWriter) tried(families ...string) bool {
+	return slices.ContainsFunc(w.fits, func(f *fitted) bool { return slices.Contains(families, f.row.Family) })
 }
 
 func (w *verdictWriter) failed() string {
