@@ -23,9 +23,3 @@ func TestObjectionsPrintClam(t *testing.T) {
 	}
 	t.Log(out.Verdict.Text)
 }
-func deref(s *string) string {
-	if s == nil {
-		return ""
-	}
-	return *s
-}

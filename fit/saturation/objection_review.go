@@ -187,6 +187,8 @@ func withUnit(v float64, unit string, digits int) string {
 // percent writes a share.
 func percent(v float64) string {
 	switch {
+	case v < 0.0005:
+		return "under 0.05 %"
 	case v < 0.1:
 		return figures(100*v, 2) + " %"
 	case v > 0.995 && v < 1:

@@ -21,6 +21,7 @@ type ExplanationRow struct {
 	Standing    string  `json:"standing"`    // "open", "out", "twin", "not asked"
 	TwinOf      *string `json:"twin_of"`     // what gives the same curves
 	AICcBehind  Real    `json:"aicc_behind"` // of the best explanation or mechanism of these curves
+	AICcAhead   Real    `json:"aicc_ahead"`  // of the study's best mechanism; null where that is better
 	// Name, Value, Low and High are the number that the explanation comes with.
 	Name  *string `json:"name"`
 	Value Real    `json:"value"`
@@ -168,13 +169,16 @@ func (e *explainer) fit(ctx context.Context, x *explanation) {
 
 // weigh gives every explanation its standing.
 func (e *explainer) weigh(ctx context.Context) []ExplanationRow {
-	lead := e.leader()
+	lead, tried := e.leader(), e.bestTried()
 	var rows []ExplanationRow
 	for i, x := range e.list {
 		row := ExplanationRow{Slope: e.slope, Curve: e.labels(), Explanation: x.text, Standing: x.standing,
-			AICcBehind: nan, Value: nan, Low: nan, High: nan, Test: text(x.test)}
+			AICcBehind: nan, AICcAhead: nan, Value: nan, Low: nan, High: nan, Test: text(x.test)}
 		if x.best != nil && lead != nil {
 			row.AICcBehind = x.best.row.AICc - lead.row.AICc
+		}
+		if x.best != nil && tried != nil && x.best.row.AICc < tried.row.AICc {
+			row.AICcAhead = tried.row.AICc - x.best.row.AICc
 		}
 		if f := e.own(x); f != nil {
 			row.Mechanism = text(f.row.Name)
@@ -205,15 +209,21 @@ func (e *explainer) weigh(ctx context.Context) []ExplanationRow {
 	return rows
 }
 
-// leader is the best by AICc among explanations and the study's mechanisms over
-// the same points.
-func (e *explainer) leader() *fitted {
-	var lead *fitted
+// bestTried is the best by AICc of the study's mechanisms over the same points;
+// nil where they are not over the same points.
+func (e *explainer) bestTried() *fitted {
+	var best *fitted
 	for _, f := range e.rivals {
-		if lead == nil || f.row.AICc < lead.row.AICc {
-			lead = f
+		if best == nil || f.row.AICc < best.row.AICc {
+			best = f
 		}
 	}
+	return best
+}
+
+// leader is the best by AICc of the study's mechanisms and all explanations.
+func (e *explainer) leader() *fitted {
+	lead := e.bestTried()
 	for _, x := range e.list {
 		if x.best != nil && (lead == nil || x.best.row.AICc < lead.row.AICc) {
 			lead = x.best
@@ -223,32 +233,43 @@ func (e *explainer) leader() *fitted {
 }
 
 // judge says whether an explanation is out: as for mechanisms, by studies
-// simulated from it and fitted with it and the leader.
+// simulated from it and fitted with it and the leader. What the study itself has
+// tried and not refused stands, unless an explanation leads.
 func (e *explainer) judge(ctx context.Context, x *explanation, lead *fitted) {
-	if f := e.own(x); f != nil && f.row.Standing != "out" {
-		x.standing, x.why = "open", quoted(f.row.Name)+" is this, and is not out"
-		if f.row.Standing == "leads" {
-			x.why = quoted(f.row.Name) + " is this, and leads"
+	f, own := x.best, e.own(x)
+	if own != nil && own.row.Standing != "out" {
+		x.standing, x.why = "open", quoted(own.row.Name)+" is this, and is not out"
+		if lead == e.bestTried() {
+			return
 		}
-		return
+		if f == nil || own.row.AICc < f.row.AICc {
+			f = own
+		}
+		x.why = quoted(own.row.Name) + " is this"
 	}
-	if x.best == nil {
+	switch {
+	case f == nil:
 		x.standing = "not asked"
 		if x.why == "" {
 			x.why = "it could not be fitted to these points"
 		}
 		return
-	}
-	x.standing = "open"
-	if x.best.row.AICc-lead.row.AICc <= tieWidth {
+	case f == lead || f.row.AICc-lead.row.AICc <= tieWidth:
+		x.standing = "open"
 		return
 	}
-	d := &decider{a: e.a, fits: []*fitted{lead, x.best}, order: []int{0, 1}, rivals: []int{0}, draws: min(e.r.a.Settings.Draws, explanationDraws)}
-	if d.out(ctx, 1) {
-		x.standing = "out"
-		if x.why == "" {
-			x.why = fmt.Sprintf("it does not describe these curves (AICc %s behind)", figures(float64(x.best.row.AICc-lead.row.AICc), 2))
-		}
+	x.standing = "open"
+	d := &decider{a: e.a, fits: []*fitted{lead, f}, order: []int{0, 1}, rivals: []int{0}, draws: min(e.r.a.Settings.Draws, explanationDraws)}
+	if !d.out(ctx, 1) {
+		return
+	}
+	x.standing = "out"
+	why := fmt.Sprintf("it does not describe these curves (AICc %s behind)", figures(float64(f.row.AICc-lead.row.AICc), 2))
+	switch {
+	case x.why == "":
+		x.why = why
+	case own != nil:
+		x.why += ", but " + why
 	}
 }
 

@@ -28,7 +28,7 @@ func (e *explainer) shallow(ctx context.Context) []*explanation {
 	list := []*explanation{
 		{text: "unlike classes of sites on each molecule", test: testClass, tries: unlikeClasses(n), mine: severalClasses},
 		{text: "two populations of molecules", test: testSeparation, tries: attempts("mixture", twoParts()), mine: ofFamily("mixture")},
-		{text: "negative cooperativity, stepwise", test: testDilution, tries: attempts("adair", mechanisms.Definition{Sites: min(n, maxStepwise)}), mine: ofFamily("adair")},
+		{text: "negative cooperativity between steps", test: testDilution, tries: attempts("adair", mechanisms.Definition{Sites: min(n, maxStepwise)}), mine: ofFamily("adair")},
 		{text: "negative cooperativity between sites in contact", test: testDilution, tries: inContact(n), mine: ofFamily("sequential")},
 		{text: "a spread of affinities (Sips)", test: testSpread, tries: attempts("hill", mechanisms.Definition{}), mine: ofFamily("hill"), number: e.spread(ctx)},
 	}
@@ -120,9 +120,9 @@ func (e *explainer) nonspecific() []*explanation {
 	if r.Kind == "velocity" {
 		return nil
 	}
-	x := &explanation{text: "one site, and nonspecific binding that was not taken off", test: testBlocked}
+	x := &explanation{text: "one site with nonspecific binding", test: testBlocked}
 	if r.Kind == "bound" && r.Nonspecific.Free {
-		x.text = "one site, and the nonspecific binding that is fitted"
+		x.text = "one site with the nonspecific binding that is fitted"
 	}
 	if c, err := simpleCandidate("independent", oneSite()); err == nil {
 		x.tries = []attempt{{candidate: c, change: withLine}}
@@ -167,9 +167,9 @@ func renamed(m map[string]string, from, to string) map[string]string {
 // freeEnds is one site whose ends are both fitted.
 func (e *explainer) freeEnds() *explanation {
 	r := &e.a.Data[0].Response
-	x := &explanation{text: "one site, and an end not reached or set wrongly", test: testEnds}
+	x := &explanation{text: "one site with an end not reached or set wrongly", test: testEnds}
 	if r.Low.Free && r.High.Free {
-		x.text = "one site; both ends are fitted already"
+		x.text = "one site with both ends fitted"
 		x.mine = oneSiteWith
 	}
 	if c, err := simpleCandidate("independent", oneSite()); err == nil {

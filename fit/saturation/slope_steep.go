@@ -20,11 +20,17 @@ const (
 	testOccupancy = "occupancy measured beside the response, and other concentrations of the cycle's enzymes"
 )
 
+// usualSites are taken where no mechanism of the study has more sites than one.
+const usualSites = 4
+
 // steep lists what may explain n_H above 1.
 func (e *explainer) steep(ctx context.Context) []*explanation {
-	n, least := max(e.r.mostSites(), 2), 0.0
+	n, least := e.r.mostSites(), 0.0
 	for _, c := range e.curves {
 		least = math.Max(least, c.low)
+	}
+	if n < 2 {
+		n = usualSites // none is said
 	}
 	n = max(n, int(math.Ceil(least)))
 	list := []*explanation{}
@@ -38,10 +44,10 @@ func (e *explainer) steep(ctx context.Context) []*explanation {
 		list = append(list, x)
 	}
 	list = append(list,
-		&explanation{text: "concerted binding (MWC), " + sitesWords(n), test: testState, tries: concertedSites(n), mine: ofFamily("mwc")},
-		&explanation{text: "sites in contact (sequential), " + sitesWords(n), test: testHalfway, tries: inContact(n), mine: ofFamily("sequential")})
+		&explanation{text: "concerted binding (MWC) of " + sitesWords(n), test: testState, tries: concertedSites(n), mine: ofFamily("mwc")},
+		&explanation{text: "interaction of " + sitesWords(n) + " in contact (sequential)", test: testHalfway, tries: inContact(n), mine: ofFamily("sequential")})
 	if n <= maxStepwise {
-		list = append(list, &explanation{text: "stepwise binding, " + sitesWords(n), test: testHalfway, tries: attempts("adair", mechanisms.Definition{Sites: n}), mine: ofFamily("adair")})
+		list = append(list, &explanation{text: "stepwise binding to " + sitesWords(n), test: testHalfway, tries: attempts("adair", mechanisms.Definition{Sites: n}), mine: ofFamily("adair")})
 	}
 	list = append(list, e.assembly())
 	if x := e.unbound(least); x != nil {
@@ -69,7 +75,7 @@ func concertedSites(n int) []attempt {
 // states, or with the number of them that fits best.
 func (e *explainer) depletion(ctx context.Context) *explanation {
 	d := &e.r.a.Data[e.di]
-	x := &explanation{text: "depletion of the ligand by one site", test: testSites}
+	x := &explanation{text: "one site that depletes the ligand", test: testSites}
 	switch {
 	case pressure(e.a.Ligand.Unit):
 		x.standing, x.why = "out", "a gas is kept at its pressure"
@@ -148,7 +154,7 @@ func (e *explainer) incubation() *explanation {
 	if e.a.Data[0].Response.Kind == "velocity" {
 		return nil
 	}
-	x := &explanation{text: "one site, read before it came to rest", test: testTime}
+	x := &explanation{text: "one site read before it was at rest", test: testTime}
 	if m, _ := e.r.halfLives(e.di); m >= e.r.limits.HalfLives {
 		x.standing, x.why = "out", fmt.Sprintf("it stood %s half-lives", figures(m, 2))
 		return x

@@ -10,42 +10,49 @@ import (
 func (w *verdictWriter) explained() string { return explanationWords(w.out.Explanations) }
 
 // explanationWords says of explanations that are not among the study's mechanisms
-// which of them are not excluded and which are. Every number in it stands in
-// the rows.
+// which of them are better than all of these, which are not excluded and which
+// are. Every number in it stands in the rows.
 func explanationWords(rows []ExplanationRow) string {
-	var sentences []string
-	for _, slope := range []string{"shallow", "steep"} {
-		var open, out []string
-		test := ""
-		for i := range rows {
-			r := &rows[i]
-			if r.Slope != slope || r.Mechanism != nil {
-				continue
-			}
-			switch r.Standing {
-			case "open":
-				open = append(open, r.inWords())
-			case "twin":
-				open = append(open, r.inWords()+" (the same curve as "+*r.TwinOf+")")
-			case "out":
-				out = append(out, r.Explanation)
-			}
-			if r.Standing == "open" && test == "" && r.Test != nil {
+	return join(slopeExplained("shallow", rows), slopeExplained("steep", rows))
+}
+
+func slopeExplained(slope string, rows []ExplanationRow) string {
+	var open, out []string
+	ahead, test := 0.0, ""
+	for i := range rows {
+		r := &rows[i]
+		if r.Slope != slope || r.Mechanism != nil {
+			continue
+		}
+		switch r.Standing {
+		case "open":
+			open = append(open, r.inWords())
+			if test == "" && r.Test != nil {
 				test = *r.Test
 			}
+		case "twin":
+			open = append(open, r.inWords()+" (the same curve as "+*r.TwinOf+")")
+		case "out":
+			out = append(out, r.Explanation)
 		}
-		if len(open) > 0 {
-			s := fmt.Sprintf("Not among the mechanisms, but not excluded by the %s curve either: %s.", slope, list(open))
-			if test != "" {
-				s += " To be settled by " + test + "."
-			}
-			sentences = append(sentences, s)
-		}
-		if len(out) > 0 {
-			sentences = append(sentences, fmt.Sprintf("What does not make it so %s: %s.", slope, list(out)))
+		if r.AICcAhead > tieWidth {
+			ahead = math.Max(ahead, float64(r.AICcAhead))
 		}
 	}
-	return join(sentences...)
+	var s []string
+	if ahead > 0 {
+		s = append(s, fmt.Sprintf("Something else describes the %s curve better than any mechanism tried (AICc %s lower).", slope, figures(ahead, 2)))
+	}
+	if len(open) > 0 {
+		s = append(s, fmt.Sprintf("Not among the mechanisms, but not excluded by the %s curve either: %s.", slope, list(open)))
+	}
+	if test != "" {
+		s = append(s, "To settle it: "+test+".")
+	}
+	if len(out) > 0 {
+		s = append(s, fmt.Sprintf("Not what makes it %s: %s.", slope, list(out)))
+	}
+	return join(s...)
 }
 
 // inWords is an explanation with its number.
