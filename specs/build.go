@@ -27,7 +27,8 @@ type builder struct {
 // build makes the analysis; it is complete only where nothing was complained of.
 func (b *builder) build() {
 	s := b.study
-	b.analysis = &saturation.Analysis{Title: s.Title, Origin: s.Origin, Conditions: map[string]string{}, Kelvin: math.NaN()}
+	b.analysis = &saturation.Analysis{Title: s.Title, Origin: s.Origin,
+		Conditions: map[string]string{}, Kelvin: math.NaN()}
 	b.substances()
 	b.general()
 	for i := range s.Data {
@@ -80,17 +81,20 @@ func around(p string) string {
 
 // fault complains of the value at a path.
 func (b *builder) fault(p, code, problem string, notes []string, remedies ...diag.Remedy) {
-	b.complain(diag.Diagnostic{Code: code, Position: b.where(p), Problem: problem, Notes: notes, Remedies: remedies})
+	b.complain(diag.Diagnostic{Code: code, Position: b.where(p), Problem: problem, Notes: notes,
+		Remedies: remedies})
 }
 
 // faultAtKey complains of the key at a path.
 func (b *builder) faultAtKey(p, code, problem string, notes []string, remedies ...diag.Remedy) {
-	b.complain(diag.Diagnostic{Code: code, Position: b.key(p), Problem: problem, Notes: notes, Remedies: remedies})
+	b.complain(diag.Diagnostic{Code: code, Position: b.key(p), Problem: problem, Notes: notes,
+		Remedies: remedies})
 }
 
 // warn is fault for what can be used as it is.
 func (b *builder) warn(p, code, problem string, notes []string, remedies ...diag.Remedy) {
-	b.complain(diag.Diagnostic{Severity: diag.Warning, Code: code, Position: b.where(p), Problem: problem, Notes: notes, Remedies: remedies})
+	b.complain(diag.Diagnostic{Severity: diag.Warning, Code: code, Position: b.where(p),
+		Problem: problem, Notes: notes, Remedies: remedies})
 }
 
 // byDefault records a setting that the study leaves out.
@@ -105,10 +109,13 @@ func (b *builder) substances() {
 		p := indexed("effectors", i)
 		b.analysis.Effectors = append(b.analysis.Effectors, b.substance(p, e))
 		if who, ok := taken[e.Name]; ok && e.Name != "" {
-			b.fault(p+".name", "repeated-name", fmt.Sprintf("%s and this effector are both named %q", who, e.Name), nil, diag.Remedy{Say: "Give each ligand a name of its own."})
+			b.fault(p+".name", "repeated-name",
+				fmt.Sprintf("%s and this effector are both named %q", who, e.Name), nil,
+				diag.Remedy{Say: "Give each ligand a name of its own."})
 		}
 		if slices.Contains(keyNames(columnKeys()), e.Name) {
-			b.fault(p+".name", "reserved-name", fmt.Sprintf("%q is the name of a kind of column", e.Name), nil, diag.Remedy{Say: "Give the effector another name."})
+			b.fault(p+".name", "reserved-name", fmt.Sprintf("%q is the name of a kind of column",
+				e.Name), nil, diag.Remedy{Say: "Give the effector another name."})
 		}
 		taken[e.Name] = "effector " + strconv.Itoa(i+1)
 	}
@@ -116,7 +123,8 @@ func (b *builder) substances() {
 
 func (b *builder) substance(p string, s Substance) saturation.Substance {
 	if s.Unit.IsLogarithm() {
-		b.fault(p+".unit", "wrong-unit", "constants and results are on a linear axis", []string{"A column of logarithms says so itself."},
+		b.fault(p+".unit", "wrong-unit", "constants and results are on a linear axis",
+			[]string{"A column of logarithms says so itself."},
 			diag.Remedy{Write: "unit: " + s.Unit.Linear().String()})
 	}
 	return saturation.Substance{Name: s.Name, Symbol: s.Symbol, Unit: s.Unit.String()}
@@ -136,7 +144,8 @@ func (b *builder) general() {
 	b.temperature("conditions")
 	b.settings()
 	if len(s.Data) == 0 && s.Curve == nil && s.Course == nil && s.Plan == nil && !b.said("data") {
-		b.faultAtKey("", "no-data", "the study has no data, and asks for no curve, course or plan", nil,
+		b.faultAtKey("", "no-data", "the study has no data, and asks for no curve, course or plan",
+			nil,
 			diag.Remedy{Write: "data:"})
 	}
 }
@@ -156,15 +165,19 @@ func (b *builder) temperature(p string) {
 		if write == "" {
 			write = "15 degC"
 		}
-		b.fault(at, "bad-quantity", "temperature: "+e.Problem, nil, diag.Remedy{Write: "temperature: " + write})
+		b.fault(at, "bad-quantity", "temperature: "+e.Problem, nil,
+			diag.Remedy{Write: "temperature: " + write})
 		return
 	case q.Bare || !q.Unit.IsTemperature():
-		b.fault(at, "wrong-unit", fmt.Sprintf("temperature: %s is no temperature", text), nil, diag.Remedy{Write: "temperature: " + strconv.FormatFloat(q.Value, 'g', -1, 64) + " degC"})
+		b.fault(at, "wrong-unit", fmt.Sprintf("temperature: %s is no temperature", text), nil,
+			diag.Remedy{Write: "temperature: " + strconv.FormatFloat(q.Value, 'g', -1,
+				64) + " degC"})
 		return
 	}
 	k, _ := q.In(units.MustParse("K"))
 	if k < 200 || k > 500 {
-		b.fault(at, "out-of-bounds", fmt.Sprintf("temperature: at %s nothing binds in water", text), nil, diag.Remedy{Write: "temperature: 15 degC"})
+		b.fault(at, "out-of-bounds", fmt.Sprintf("temperature: at %s nothing binds in water", text),
+			nil, diag.Remedy{Write: "temperature: 15 degC"})
 		return
 	}
 	b.analysis.Kelvin = k
@@ -213,7 +226,9 @@ func (b *builder) dataNames() {
 			b.byDefault("data."+d.Name+".name", d.Name)
 		}
 		if j, ok := seen[d.Name]; ok && d.Name != "" {
-			b.fault(p+".name", "repeated-name", fmt.Sprintf("data sets %d and %d are both named %q", j+1, i+1, d.Name), nil, diag.Remedy{Say: "Give each a name of its own:", Write: "name: " + d.Name + " 2"})
+			b.fault(p+".name", "repeated-name", fmt.Sprintf("data sets %d and %d are both named %q",
+				j+1, i+1, d.Name), nil, diag.Remedy{Say: "Give each a name of its own:",
+				Write: "name: " + d.Name + " 2"})
 		}
 		seen[d.Name] = i
 	}

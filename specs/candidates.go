@@ -26,13 +26,18 @@ func (b *builder) candidates() {
 			b.byDefault("mechanisms."+m.Name+".name", m.Name)
 		}
 		if j, ok := names[m.Name]; ok {
-			b.fault(b.nameOf(p), "repeated-name", fmt.Sprintf("mechanisms %d and %d are both named %q", j+1, i+1, m.Name), nil, diag.Remedy{Say: "Give each a name of its own:", Write: "name: " + plainOrQuoted(m.Name+" 2")})
+			b.fault(b.nameOf(p), "repeated-name",
+				fmt.Sprintf("mechanisms %d and %d are both named %q", j+1, i+1, m.Name), nil,
+				diag.Remedy{Say: "Give each a name of its own:",
+					Write: "name: " + plainOrQuoted(m.Name+" 2")})
 		}
 		names[m.Name] = i
-		c := saturation.Candidate{Name: m.Name, Family: m.Family, ShiftByPreparation: m.Preparation == "shift"}
+		c := saturation.Candidate{Name: m.Name, Family: m.Family,
+			ShiftByPreparation: m.Preparation == "shift"}
 		b.differs(p, m, &c)
 		if c.ShiftByPreparation && !b.anyPreparation() {
-			b.fault(p+".preparation", "unknown-factor", "a shift by preparation needs a column that says which preparation a row comes from", nil, diag.Remedy{Write: "preparation: COLUMN", Where: "under columns."})
+			b.fault(p+".preparation", "unknown-factor",
+				"a shift by preparation needs a column that says which preparation a row comes from", nil, diag.Remedy{Write: "preparation: COLUMN", Where: "under columns."})
 		}
 		c.Rates = b.rates(p+".rates", m.Rates)
 		b.ownEnds(p+".response", m, &c)
@@ -65,7 +70,8 @@ func madeName(m *Mechanism) string {
 }
 
 func (b *builder) anyPreparation() bool {
-	return slices.ContainsFunc(b.study.Data, func(d Data) bool { return d.Columns.Preparation.Name != "" })
+	return slices.ContainsFunc(b.study.Data,
+		func(d Data) bool { return d.Columns.Preparation.Name != "" })
 }
 
 // differs settles by what the constants of a mechanism differ; whether there
@@ -89,7 +95,8 @@ func (b *builder) differs(p string, m *Mechanism, c *saturation.Candidate) {
 func (b *builder) oneLevel(at, key string) {
 	levels := b.levelsOf(key)
 	if len(levels) == 1 && len(b.study.Data) > 0 {
-		b.warn(at, "one-level", fmt.Sprintf("%s has only one level, %s, so nothing differs by it", key, levels[0]), nil, diag.Remedy{Say: "Take it out, or keep rows of two levels."})
+		b.warn(at, "one-level", fmt.Sprintf("%s has only one level, %s, so nothing differs by it",
+			key, levels[0]), nil, diag.Remedy{Say: "Take it out, or keep rows of two levels."})
 	}
 }
 
@@ -132,10 +139,14 @@ func (b *builder) ownEnds(p string, m *Mechanism, c *saturation.Candidate) {
 		c.Ends[e.Name] = saturation.Setting{Free: e.Value.Free, Value: e.Value.Value}
 		used := len(b.study.Data) == 0
 		for _, d := range b.study.Data {
-			used = used || slices.Contains(ends[d.Response.Kind], e.Name) || ends[d.Response.Kind] == nil
+			used = used || slices.Contains(ends[d.Response.Kind], e.Name) ||
+				ends[d.Response.Kind] == nil
 		}
 		if !used {
-			b.faultAtKey(join(p, e.Name), "unknown-key", fmt.Sprintf("no response of the study has a %s", e.Name), []string{"A response has: " + strings.Join(ends[b.study.Data[0].Response.Kind], ", ") + "."})
+			b.faultAtKey(join(p, e.Name), "unknown-key",
+				fmt.Sprintf("no response of the study has a %s", e.Name),
+				[]string{"A response has: " + strings.Join(ends[b.study.Data[0].Response.Kind],
+					", ") + "."})
 		}
 	}
 }
@@ -162,8 +173,10 @@ func (b *builder) mechanism(p string, m *Mechanism, c *saturation.Candidate) {
 	b.constantsThatDiffer(p, m, built.Constants())
 	for _, e := range built.Effectors() {
 		if b.effector(e) < 0 {
-			b.fault(p+".effectors."+e, "unknown-ligand", fmt.Sprintf("the study has no effector %q", e), []string{"Its effectors are: " + b.effectorNames() + "."},
-				diag.Remedy{Write: fmt.Sprintf("effectors: [{name: %s, unit: mM}]", plainOrQuoted(e))})
+			b.fault(p+".effectors."+e, "unknown-ligand", fmt.Sprintf("the study has no effector %q",
+				e), []string{"Its effectors are: " + b.effectorNames() + "."},
+				diag.Remedy{Write: fmt.Sprintf("effectors: [{name: %s, unit: mM}]",
+					plainOrQuoted(e))})
 		}
 	}
 	b.totalAxis(p, m)
@@ -178,7 +191,8 @@ func (b *builder) unknownFamily(p, name string) {
 	if near := diag.Nearest(name, families); near != "" {
 		remedies = []diag.Remedy{{Write: "family: " + near}}
 	}
-	b.fault(p+".family", "unknown-family", fmt.Sprintf("there is no family of mechanisms %q", name), []string{"The families are: " + strings.Join(families, ", ") + "."}, remedies...)
+	b.fault(p+".family", "unknown-family", fmt.Sprintf("there is no family of mechanisms %q", name),
+		[]string{"The families are: " + strings.Join(families, ", ") + "."}, remedies...)
 }
 
 // definitionErrors tells what a family found wrong, at the keys it names.
@@ -227,14 +241,18 @@ func (b *builder) constantsThatDiffer(p string, m *Mechanism, constants []mechan
 		known = append(known, c.Key())
 	}
 	for _, e := range m.Differs {
-		if e.Name == "all" || mechanisms.Find(constants, e.Name) >= 0 || slices.ContainsFunc(constants, func(c mechanisms.Constant) bool { return c.Name == e.Name }) {
+		if e.Name == "all" || mechanisms.Find(constants, e.Name) >= 0 ||
+			slices.ContainsFunc(constants,
+				func(c mechanisms.Constant) bool { return c.Name == e.Name }) {
 			continue
 		}
 		var remedies []diag.Remedy
 		if near := diag.Nearest(e.Name, known); near != "" {
 			remedies = []diag.Remedy{{Write: fmt.Sprintf("differs: {%s: %s}", near, e.Value)}}
 		}
-		b.faultAtKey(join(p+".differs", e.Name), "unknown-constant", fmt.Sprintf("%s has no constant %q", m.Family, e.Name), []string{"Its constants are: " + strings.Join(known[1:], ", ") + "."}, remedies...)
+		b.faultAtKey(join(p+".differs", e.Name), "unknown-constant",
+			fmt.Sprintf("%s has no constant %q", m.Family, e.Name),
+			[]string{"Its constants are: " + strings.Join(known[1:], ", ") + "."}, remedies...)
 	}
 }
 
@@ -249,7 +267,8 @@ func (b *builder) constantUnits(p string, m *Mechanism, constants []mechanisms.C
 		for _, said := range []struct {
 			word string
 			q    *units.Quantity
-		}{{"start", e.Value.Start}, {"fixed", e.Value.Fixed}, {"value", e.Value.Value}, {"range[0]", e.Value.Low}, {"range[1]", e.Value.High}} {
+		}{{"start", e.Value.Start}, {"fixed", e.Value.Fixed}, {"value", e.Value.Value},
+			{"range[0]", e.Value.Low}, {"range[1]", e.Value.High}} {
 			if said.q == nil || said.q.Bare || b.powerOf(said.q, b.unitOf(e.Name)) == power {
 				continue
 			}
@@ -257,7 +276,8 @@ func (b *builder) constantUnits(p string, m *Mechanism, constants []mechanisms.C
 			if b.said(at + "." + said.word) {
 				at += "." + said.word
 			}
-			b.fault(at, "wrong-unit", fmt.Sprintf("%s has no unit like %s", e.Name, said.q.Unit), nil, diag.Remedy{Say: "Write a bare number:", Write: number(said.q.Value)})
+			b.fault(at, "wrong-unit", fmt.Sprintf("%s has no unit like %s", e.Name, said.q.Unit),
+				nil, diag.Remedy{Say: "Write a bare number:", Write: number(said.q.Value)})
 		}
 	}
 }
@@ -268,7 +288,8 @@ func (b *builder) totalAxis(p string, m *Mechanism) {
 		if d.LigandAxis != "total" || m.Family != "hill" || b.said(p+".sites") {
 			continue
 		}
-		b.fault(b.nameOf(p), "hill-on-total", "a Hill equation against total ligand needs the number of sites it stands for",
+		b.fault(b.nameOf(p), "hill-on-total",
+			"a Hill equation against total ligand needs the number of sites it stands for",
 			[]string{fmt.Sprintf("The ligand axis of data set %q is total: what is bound is taken from what was added.", d.Name)}, diag.Remedy{Write: "sites: 1"})
 		return
 	}

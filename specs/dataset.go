@@ -4,7 +4,6 @@ import (
 	"fmt"
 	"math"
 	"slices"
-	"strconv"
 	"strings"
 
 	"ligancy/fit/saturation"
@@ -16,7 +15,8 @@ import (
 func (b *builder) dataset(i int) saturation.Dataset {
 	d := &b.study.Data[i]
 	p := indexed("data", i)
-	out := saturation.Dataset{Name: d.Name, File: d.File, SHA256: d.sha, Incubation: math.NaN(), Conditions: map[string]string{}}
+	out := saturation.Dataset{Name: d.Name, File: d.File, SHA256: d.sha, Incubation: math.NaN(),
+		Conditions: map[string]string{}}
 	b.dataDefaults(p, d)
 	out.Response = b.response(p+".response", d)
 	out.Total = d.LigandAxis == "total"
@@ -26,7 +26,9 @@ func (b *builder) dataset(i int) saturation.Dataset {
 	out.Trace = d.Columns.Time.Name != ""
 	out.Phases = b.phases(p+".phases", d.Phases)
 	if out.Trace && len(d.Phases) == 0 && !b.said(p+".phases") {
-		b.faultAtKey(p+".columns.time", "missing-key", "a table with a time column needs its phases", nil, diag.Remedy{Write: "phases: [{add: 10 nM, for: 30 min}]"})
+		b.faultAtKey(p+".columns.time", "missing-key",
+			"a table with a time column needs its phases", nil,
+			diag.Remedy{Write: "phases: [{add: 10 nM, for: 30 min}]"})
 	}
 	b.levels(p, d, &out)
 	if d.table != nil {
@@ -42,7 +44,9 @@ func (b *builder) levels(p string, d *Data, out *saturation.Dataset) {
 	for _, f := range d.Factors {
 		out.Factors = append(out.Factors, f.Name)
 		if slices.Contains([]string{byData, byPreparation, "all"}, f.Name) {
-			b.faultAtKey(join(p+".factors", f.Name), "reserved-name", fmt.Sprintf("%q has a meaning of its own and cannot name a factor", f.Name), nil, diag.Remedy{Say: "Give the factor another name."})
+			b.faultAtKey(join(p+".factors", f.Name), "reserved-name",
+				fmt.Sprintf("%q has a meaning of its own and cannot name a factor", f.Name), nil,
+				diag.Remedy{Say: "Give the factor another name."})
 		}
 	}
 	for _, e := range d.At {
@@ -51,11 +55,14 @@ func (b *builder) levels(p string, d *Data, out *saturation.Dataset) {
 		}
 		out.Conditions[e.Name] = e.Value
 		if slices.Contains(out.Factors, e.Name) {
-			b.faultAtKey(join(p+".at", e.Name), "two-answers", fmt.Sprintf("%s is a column here, so it cannot hold for the whole table", e.Name), nil, diag.Remedy{Say: "Keep one of the two."})
+			b.faultAtKey(join(p+".at", e.Name), "two-answers",
+				fmt.Sprintf("%s is a column here, so it cannot hold for the whole table", e.Name),
+				nil, diag.Remedy{Say: "Keep one of the two."})
 		}
 	}
 	for _, name := range b.asked() {
-		if _, ok := b.levelText(d, name); ok && !slices.Contains(out.Factors, name) && b.effector(name) < 0 {
+		if _, ok := b.levelText(d, name); ok && !slices.Contains(out.Factors, name) &&
+			b.effector(name) < 0 {
 			out.Factors = append(out.Factors, name)
 		}
 	}
@@ -116,152 +123,9 @@ func (b *builder) dataDefaults(p string, d *Data) {
 	if d.Columns.Blocked.Name != "" {
 		word("blocked_when", &d.BlockedWhen, "blocked")
 	} else if d.BlockedWhen != "" {
-		b.fault(p+".blocked_when", "missing-column", "blocked_when needs a column that says which tubes were blocked", nil, diag.Remedy{Write: "blocked: COLUMN", Where: "under columns."})
-	}
-}
-
-// ends are the numbers of a response that each kind has, the upper one second.
-var ends = map[string][]string{
-	"saturation": {"low", "high"},
-	"bound":      {"low", "Bmax", "nonspecific"},
-	"velocity":   {"low", "V"},
-	"signal":     {"low", "high"},
-}
-
-// response settles what was measured.
-func (b *builder) response(p string, d *Data) saturation.Response {
-	r := &d.Response
-	out := saturation.Response{Kind: r.Kind, Of: r.Of, Differs: map[string]string{}}
-	names, ok := ends[r.Kind]
-	if !ok {
-		return out // complained of already
-	}
-	b.responseUnit(p, d)
-	out.Unit, out.Percent = r.Unit.String(), r.Unit.IsPercent()
-	top := "1"
-	if out.Percent {
-		top = "100"
-	}
-	defaults := map[string]string{"low": "0", "high": top, "V": "free", "Bmax": "free", "nonspecific": "free"}
-	if r.Kind == "signal" {
-		defaults["low"], defaults["high"] = "free", "free"
-	}
-	b.strayEnds(p, r, names)
-	out.Low = b.end(p, d, "low", &r.Low, defaults["low"])
-	switch r.Kind {
-	case "bound":
-		out.High = b.bmax(p, d, &out)
-		out.Nonspecific = b.end(p, d, "nonspecific", &r.Nonspecific, defaults["nonspecific"])
-	case "velocity":
-		out.High = b.end(p, d, "V", &r.V, defaults["V"])
-	default:
-		out.High = b.end(p, d, "high", &r.High, defaults["high"])
-		if !out.Low.Free && !out.High.Free && out.Low.Value == out.High.Value {
-			at := p + ".low"
-			if b.said(p + ".high") {
-				at = p + ".high"
-			}
-			b.fault(at, "no-span", fmt.Sprintf("low and high are both %v, so nothing could be seen", out.Low.Value), nil, diag.Remedy{Write: "high: free"})
-		}
-	}
-	b.responseDiffers(p, d, &out, names)
-	if r.Of != "" && b.effector(r.Of) < 0 {
-		b.fault(p+".of", "unknown-ligand", fmt.Sprintf("the study has no effector %q", r.Of), []string{"The ligand whose binding is counted is one of the effectors: " + b.effectorNames() + "."},
-			diag.Remedy{Write: fmt.Sprintf("effectors: [{name: %s, unit: %s}]", plainOrQuoted(r.Of), b.study.Ligand.Unit)})
-	}
-	return out
-}
-
-// responseUnit settles the unit of the response.
-func (b *builder) responseUnit(p string, d *Data) {
-	r := &d.Response
-	saturates := r.Kind == "saturation"
-	if r.Unit == nil {
-		u := units.MustParse("fraction")
-		if !saturates {
-			u = units.Unit{}
-		}
-		if !b.said(p + ".unit") {
-			b.byDefault("data."+d.Name+".response.unit", u.String())
-		}
-		r.Unit = &u
-		return
-	}
-	switch {
-	case r.Unit.IsLogarithm():
-		b.fault(p+".unit", "transformed-response", "a response is fitted as it was measured, not as a logarithm", []string{"Its scatter would be weighted wrongly."}, diag.Remedy{Write: "unit: " + r.Unit.Linear().String()})
-	case saturates && !r.Unit.IsPercent() && r.Unit.String() != "fraction" && r.Unit.String() != "1":
-		b.fault(p+".unit", "wrong-unit", fmt.Sprintf("a saturation is a fraction or percent, not %s", r.Unit), nil,
-			diag.Remedy{Write: "unit: fraction"}, diag.Remedy{Say: "For an amount bound write", Write: "kind: bound"}, diag.Remedy{Say: "For anything else that follows binding write", Write: "kind: signal"})
-	}
-}
-
-// strayEnds complains of numbers that this kind of response does not have.
-func (b *builder) strayEnds(p string, r *Response, names []string) {
-	allowed := slices.Concat([]string{"kind", "unit", "differs"}, names)
-	if r.Kind == "bound" {
-		allowed = append(allowed, "sites")
-	}
-	if r.Kind == "bound" || r.Kind == "saturation" {
-		allowed = append(allowed, "of")
-	}
-	for _, k := range keyNames(responseKeys()) {
-		if b.said(p+"."+k) && !slices.Contains(allowed, k) {
-			b.faultAtKey(p+"."+k, "unknown-key", fmt.Sprintf("a response of the kind %s has no %s", r.Kind, k), []string{"Its keys are: " + strings.Join(allowed, ", ") + "."})
-		}
-	}
-}
-
-// end settles one number of a response.
-func (b *builder) end(p string, d *Data, name string, s *Setting, byDefault string) saturation.Setting {
-	if !b.said(p + "." + name) {
-		b.byDefault("data."+d.Name+".response."+name, byDefault)
-		v, err := strconv.ParseFloat(byDefault, 64)
-		*s = Setting{Free: err != nil, Value: v}
-	}
-	if !s.Free && s.Value <= 0 && (name == "V" || name == "Bmax") || !s.Free && s.Value < 0 && name == "nonspecific" {
-		b.fault(p+"."+name, "out-of-bounds", fmt.Sprintf("%s must be above 0, not %v", name, s.Value), nil, diag.Remedy{Write: name + ": free"})
-	}
-	return saturation.Setting{Free: s.Free, Value: s.Value}
-}
-
-// bmax settles the ligand bound at saturation: Bmax, or sites per molecule.
-func (b *builder) bmax(p string, d *Data, out *saturation.Response) saturation.Setting {
-	r := &d.Response
-	if b.said(p+".sites") && b.said(p+".Bmax") {
-		b.faultAtKey(p+".sites", "two-answers", "Bmax and sites say the same thing twice", nil, diag.Remedy{Say: "Keep one of the two."})
-	}
-	if b.said(p + ".sites") {
-		out.SitesPerMolecule = true
-		return saturation.Setting{Free: r.Sites.Free, Value: r.Sites.Value}
-	}
-	if r.Bmax.Word == "sites" {
-		out.SitesPerMolecule = true
-		return saturation.Setting{} // that of each mechanism
-	}
-	return b.end(p, d, "Bmax", &r.Bmax, "free")
-}
-
-// responseDiffers settles which numbers of a response differ by what.
-func (b *builder) responseDiffers(p string, d *Data, out *saturation.Response, names []string) {
-	free := map[string]bool{"low": out.Low.Free, names[1]: out.High.Free, "nonspecific": out.Nonspecific.Free}
-	for _, e := range d.Response.Differs {
-		at := join(p+".differs", e.Name)
-		switch {
-		case !slices.Contains(names, e.Name):
-			d := diag.Nearest(e.Name, names)
-			var remedies []diag.Remedy
-			if d != "" {
-				remedies = []diag.Remedy{{Write: "differs: {" + d + ": " + e.Value + "}"}}
-			}
-			b.faultAtKey(at, "unknown-name", fmt.Sprintf("this response has no number %q", e.Name), []string{"It has: " + strings.Join(names, ", ") + "."}, remedies...)
-		case !free[e.Name]:
-			b.faultAtKey(at, "not-free", fmt.Sprintf("%s is set to a number, so it cannot differ", e.Name), nil, diag.Remedy{Write: e.Name + ": free"})
-		default:
-			if b.knowsLevel(d, e.Value, at) {
-				out.Differs[e.Name] = e.Value
-			}
-		}
+		b.fault(p+".blocked_when", "missing-column",
+			"blocked_when needs a column that says which tubes were blocked", nil,
+			diag.Remedy{Write: "blocked: COLUMN", Where: "under columns."})
 	}
 }
 
@@ -290,15 +154,19 @@ func (b *builder) knowsLevel(d *Data, key, at string) bool {
 
 func (b *builder) levelUnknown(data, key, at string, known []string) {
 	if key == byPreparation {
-		b.fault(at, "unknown-factor", fmt.Sprintf("data set %q does not say which preparation a row comes from", data), nil, diag.Remedy{Write: "preparation: COLUMN", Where: "under columns."})
+		b.fault(at, "unknown-factor",
+			fmt.Sprintf("data set %q does not say which preparation a row comes from", data), nil,
+			diag.Remedy{Write: "preparation: COLUMN", Where: "under columns."})
 		return
 	}
 	var remedies []diag.Remedy
 	if near := diag.Nearest(key, known); near != "" {
 		remedies = []diag.Remedy{{Write: lastName(at) + ": " + near}}
 	}
-	remedies = append(remedies, diag.Remedy{Say: "For a column that tells curves apart write", Write: fmt.Sprintf("factors: {%s: COLUMN}", key), Where: "under the data set."})
-	b.fault(at, "unknown-factor", fmt.Sprintf("data set %q has no factor %q", data, key), []string{"It can tell apart: " + strings.Join(unique(known), ", ") + "."}, remedies...)
+	remedies = append(remedies, diag.Remedy{Say: "For a column that tells curves apart write",
+		Write: fmt.Sprintf("factors: {%s: COLUMN}", key), Where: "under the data set."})
+	b.fault(at, "unknown-factor", fmt.Sprintf("data set %q has no factor %q", data, key),
+		[]string{"It can tell apart: " + strings.Join(unique(known), ", ") + "."}, remedies...)
 }
 
 // effector is the index of an effector by name or symbol; −1 where there is none.
@@ -322,11 +190,13 @@ func (b *builder) effectorNames() string {
 // plainOrQuoted writes a name so that YAML reads it as it is.
 func plainOrQuoted(s string) string {
 	for _, r := range s {
-		if !(r >= 'a' && r <= 'z' || r >= 'A' && r <= 'Z' || r >= '0' && r <= '9' || r == '_' || r == '-' || r == ' ' || r == '.') {
+		if !(r >= 'a' && r <= 'z' || r >= 'A' && r <= 'Z' || r >= '0' && r <= '9' || r == '_' ||
+			r == '-' || r == ' ' || r == '.') {
 			return quoteText(s)
 		}
 	}
-	if s == "" || s == "null" || s == "Null" || s == "NULL" || isNumber(s) || strings.HasPrefix(s, "-") || strings.TrimSpace(s) != s {
+	if s == "" || s == "null" || s == "Null" || s == "NULL" || isNumber(s) || strings.HasPrefix(s,
+		"-") || strings.TrimSpace(s) != s {
 		return quoteText(s)
 	}
 	return s
@@ -338,12 +208,14 @@ func (b *builder) seconds(p string, q *units.Quantity) float64 {
 		return math.NaN()
 	}
 	if q.Bare || !q.Unit.IsTime() {
-		b.fault(p, "wrong-unit", fmt.Sprintf("%s: %s is no time", lastName(p), q), nil, diag.Remedy{Write: fmt.Sprintf("%s: %v min", lastName(p), q.Value)})
+		b.fault(p, "wrong-unit", fmt.Sprintf("%s: %s is no time", lastName(p), q), nil,
+			diag.Remedy{Write: fmt.Sprintf("%s: %v min", lastName(p), q.Value)})
 		return math.NaN()
 	}
 	v, _ := q.In(units.MustParse("s"))
 	if v <= 0 {
-		b.fault(p, "out-of-bounds", fmt.Sprintf("%s must be above 0", lastName(p)), nil, diag.Remedy{Write: lastName(p) + ": 30 min"})
+		b.fault(p, "out-of-bounds", fmt.Sprintf("%s must be above 0", lastName(p)), nil,
+			diag.Remedy{Write: lastName(p) + ": 30 min"})
 	}
 	return v
 }
@@ -366,7 +238,8 @@ func (b *builder) wrongUnit(p string, got, want units.Unit, of string) {
 	if b.failed["ligand.unit"] || b.failed["effectors"] {
 		return // nothing is known of the unit it should have
 	}
-	d := diag.Diagnostic{Code: "wrong-unit", Position: b.where(p), Problem: fmt.Sprintf("%s is %s; %s is in %s, %s", got, got.Kind(), of, want, want.Kind())}
+	d := diag.Diagnostic{Code: "wrong-unit", Position: b.where(p),
+		Problem: fmt.Sprintf("%s is %s; %s is in %s, %s", got, got.Kind(), of, want, want.Kind())}
 	switch {
 	case got.IsPressure() && want.IsConcentration() || got.IsConcentration() && want.IsPressure():
 		d.Notes = []string{"A pressure becomes a concentration only with a solubility, which belongs to your buffer and temperature: convert the column yourself."}

@@ -14,13 +14,10 @@ import (
 var ofSpecs = []string{"name", "family", "differs", "rates", "response", "preparation"}
 
 // definition turns what a study says of a mechanism into what its family reads.
-func (b *builder) definition(p string, m *Mechanism, family mechanisms.Family) mechanisms.Definition {
+func (b *builder) definition(p string, m *Mechanism,
+	family mechanisms.Family) mechanisms.Definition {
 	reads := func(key string) bool { return slices.Contains(family.Keys, key) }
-	for _, k := range keyNames(mechanismKeys()) {
-		if b.said(p+"."+k) && !reads(k) && !slices.Contains(ofSpecs, k) && !b.hillSites(m, k) {
-			b.faultAtKey(p+"."+k, "unknown-key", fmt.Sprintf("%s has no key %q", m.Family, k), []string{"Its keys are: " + strings.Join(slices.Concat(ofSpecs, family.Keys), ", ") + "."})
-		}
-	}
+	b.strayKeys(p, m, family)
 	d := mechanisms.Definition{Differs: b.anythingDiffers(m), SiteScale: siteScale(m)}
 	if reads("sites") && m.Sites != nil {
 		d.Sites, d.SiteClasses = m.Sites.Number, asCounts(m.Sites.Classes)
@@ -33,7 +30,8 @@ func (b *builder) definition(p string, m *Mechanism, family mechanisms.Family) m
 	}
 	if reads("effectors") {
 		for _, e := range m.Effectors {
-			d.Effectors = append(d.Effectors, mechanisms.Effector{Name: e.Name, Binds: e.Value.Binds, AtLigandSite: e.Value.At != ""})
+			d.Effectors = append(d.Effectors, mechanisms.Effector{Name: e.Name,
+				Binds: e.Value.Binds, AtLigandSite: e.Value.At != ""})
 		}
 	}
 	if reads("turnover") {
@@ -65,9 +63,21 @@ func (b *builder) definition(p string, m *Mechanism, family mechanisms.Family) m
 	return d
 }
 
+// strayKeys complains of keys that the family does not read.
+func (b *builder) strayKeys(p string, m *Mechanism, family mechanisms.Family) {
+	reads := slices.Concat(ofSpecs, family.Keys)
+	for _, k := range keyNames(mechanismKeys()) {
+		if b.said(p+"."+k) && !slices.Contains(reads, k) && !b.hillSites(m, k) {
+			b.faultAtKey(p+"."+k, "unknown-key", fmt.Sprintf("%s has no key %q", m.Family, k),
+				[]string{"Its keys are: " + strings.Join(reads, ", ") + "."})
+		}
+	}
+}
+
 // hillSites allows the Hill equation its number of sites against total ligand.
 func (b *builder) hillSites(m *Mechanism, key string) bool {
-	return m.Family == "hill" && key == "sites" && slices.ContainsFunc(b.study.Data, func(d Data) bool { return d.LigandAxis == "total" })
+	return m.Family == "hill" && key == "sites" && slices.ContainsFunc(b.study.Data,
+		func(d Data) bool { return d.LigandAxis == "total" })
 }
 
 // anythingDiffers reports whether the data hold more than one curve of a mechanism's constants.
@@ -75,7 +85,8 @@ func (b *builder) anythingDiffers(m *Mechanism) bool {
 	if slices.ContainsFunc(b.study.Data, func(d Data) bool { return d.faulty || d.table == nil }) {
 		return len(m.Differs) > 0 // not all levels are known
 	}
-	return slices.ContainsFunc(m.Differs, func(e Named[string]) bool { return len(b.levelsOf(e.Value)) > 1 })
+	return slices.ContainsFunc(m.Differs,
+		func(e Named[string]) bool { return len(b.levelsOf(e.Value)) > 1 })
 }
 
 // siteScale reports whether single constants differ, so that they must be fitted themselves.
@@ -100,7 +111,8 @@ func asWeights(list []Named[Setting]) []mechanisms.Weight {
 }
 
 func asConformation(e Named[Conformation]) mechanisms.Conformation {
-	c := mechanisms.Conformation{Name: e.Name, Sites: e.Value.Sites, K: e.Value.K, Weight: e.Value.Weight, Like: e.Value.Like}
+	c := mechanisms.Conformation{Name: e.Name, Sites: e.Value.Sites, K: e.Value.K,
+		Weight: e.Value.Weight, Like: e.Value.Like}
 	for _, l := range e.Value.Ligands {
 		if c.Ligands == nil {
 			c.Ligands, c.EffectorSites = map[string]string{}, map[string]int{}
@@ -144,7 +156,8 @@ func (b *builder) part(p, name string, part *Part) *mechanisms.Part {
 	out.Family = m.Family
 	for _, k := range []string{"name", "differs", "rates", "response", "preparation"} {
 		if b.said(p + "." + k) {
-			b.faultAtKey(p+"."+k, "unknown-key", fmt.Sprintf("a part of a mechanism has no key %q", k), []string{"It is a key of the whole mechanism."})
+			b.faultAtKey(p+"."+k, "unknown-key", fmt.Sprintf("a part of a mechanism has no key %q",
+				k), []string{"It is a key of the whole mechanism."})
 		}
 	}
 	family, ok := mechanisms.Lookup(m.Family)
@@ -171,8 +184,11 @@ func (b *builder) given(p string, list []Named[ConstantSays]) map[string]mechani
 		at := join(p, e.Name)
 		u := b.unitOf(e.Name)
 		g := mechanisms.Given{
-			Start: b.constant(at, "start", e.Name, e.Value.Start, u), Fixed: b.constant(at, "fixed", e.Name, e.Value.Fixed, u),
-			Value: b.constant(at, "value", e.Name, e.Value.Value, u), Low: b.constant(at, "range[0]", e.Name, e.Value.Low, u), High: b.constant(at, "range[1]", e.Name, e.Value.High, u),
+			Start: b.constant(at, "start", e.Name, e.Value.Start, u), Fixed: b.constant(at, "fixed",
+				e.Name, e.Value.Fixed, u),
+			Value: b.constant(at, "value", e.Name, e.Value.Value, u), Low: b.constant(at,
+				"range[0]", e.Name, e.Value.Low, u), High: b.constant(at, "range[1]", e.Name,
+				e.Value.High, u),
 		}
 		if g.Fixed != nil && (g.Start != nil || g.Low != nil || g.Value != nil) {
 			b.fault(at, "two-answers", fmt.Sprintf("%s is fixed, so it has no start, range or other value", e.Name), nil, diag.Remedy{Say: "Keep one of them."})

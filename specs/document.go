@@ -26,16 +26,19 @@ type document struct {
 func parseDocument(text diag.Text, known map[string]bool) *document {
 	d := &document{slips: findSlips(text, known)}
 	lines := d.mended[:d.end]
-	last := len(lines)
 	var err error
 	if d.fatal {
-		last = d.muted[len(d.muted)-1].Line - 1
-	} else if d.root, last, err = parseLines(lines); err == nil {
-		return d
+		lines = lines[:d.muted[len(d.muted)-1].Line-1]
+	} else {
+		var taken int
+		if d.root, taken, err = parseLines(lines); err == nil {
+			return d
+		}
+		lines = lines[:taken]
 	}
 	d.partial = true
-	readable := 0
-	d.root, readable = readableLines(lines[:last])
+	root, readable := readableLines(lines)
+	d.root = root
 	if err != nil {
 		d.unreadable(readable+1, err)
 	}
@@ -55,7 +58,8 @@ func (d *document) unreadable(line int, err error) {
 	l := d.text.Line(line)
 	from := len(l) - len(strings.TrimLeft(l, " "))
 	problem, notes := inOurWords(err)
-	d.complain(d.text.At(line, from+1, len(strings.TrimRight(l, " "))+1), "not-yaml", problem, notes,
+	d.complain(d.text.At(line, from+1, len(strings.TrimRight(l, " "))+1), "not-yaml", problem,
+		notes,
 		diag.Remedy{Say: "Write   key: value   with a blank after the colon, indent what belongs together alike, and quote texts with signs in them."})
 }
 
@@ -66,13 +70,16 @@ func inOurWords(err error) (string, []string) {
 	said := yamlPlace.ReplaceAllString(err.Error(), "")
 	for _, w := range []struct{ has, problem string }{
 		{"mapping values are not allowed", "a key with a colon cannot stand here"},
-		{"could not find expected ':'", "a colon is missing after this key, or this line belongs to the text above it"},
-		{"did not find expected key", "this line does not fit the indentation of the lines above it"},
+		{"could not find expected ':'",
+			"a colon is missing after this key, or this line belongs to the text above it"},
+		{"did not find expected key",
+			"this line does not fit the indentation of the lines above it"},
 		{"did not find expected '-' indicator", "this line does not fit the list above it"},
 		{"block sequence entries are not allowed", "a list cannot begin here"},
 		{"did not find expected ',' or", "a comma or a closing bracket is missing before this"},
 		{"did not find expected node content", "a value is missing here"},
-		{"block collections are not allowed", "a list on lines of its own cannot stand inside brackets"},
+		{"block collections are not allowed",
+			"a list on lines of its own cannot stand inside brackets"},
 	} {
 		if strings.Contains(said, w.has) {
 			return w.problem, nil
@@ -166,7 +173,8 @@ func byteOf(line string, column int) int {
 // width is how many bytes of its first line a node takes.
 func (d *document) width(n *yaml.Node, rest string) int {
 	switch {
-	case n.Kind == yaml.ScalarNode && n.Style&(yaml.DoubleQuotedStyle|yaml.SingleQuotedStyle) != 0 && rest != "":
+	case n.Kind == yaml.ScalarNode &&
+		n.Style&(yaml.DoubleQuotedStyle|yaml.SingleQuotedStyle) != 0 && rest != "":
 		return quotedWidth(rest)
 	case n.Kind == yaml.ScalarNode && strings.HasPrefix(rest, n.Value):
 		return len(n.Value)

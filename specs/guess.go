@@ -50,7 +50,8 @@ func newGuess(t *table.Table) *guess {
 	}
 	g.preparation = g.take("^(prep|preparation|animal|donor|batch|expt|experiment|individual)([_ .-]|s?$)", func(c *columnGuess) bool { return c.values > 1 })
 	g.leftOut = g.take("^(left_out|why|excluded?|exclusion|reason|omit(ted)?)$", nil)
-	g.sem = g.take("^(sem|s\\.?e\\.?m\\.?|std_?err|standard error)([_ .-]|$)|[_ .-](sem)$", isNumeric)
+	g.sem = g.take("^(sem|s\\.?e\\.?m\\.?|std_?err|standard error)([_ .-]|$)|[_ .-](sem)$",
+		isNumeric)
 	g.sigma = g.take("^(sd|s\\.d\\.|sigma|std|stdev)([_ .-]|$)|[_ .-](sd|sigma)$", isNumeric)
 	g.n = g.take("^(n|n_rep|replicates)$", isNumeric)
 	g.findBlocked()
@@ -129,7 +130,8 @@ func (g *guess) findLigand() {
 			continue
 		}
 		score := 1
-		if c.hasUnit && (c.unit.IsConcentration() || c.unit.IsPressure() || c.unit.Kind() == "a mass per volume" || c.unit.String() == "ppm") {
+		if c.hasUnit && (c.unit.IsConcentration() || c.unit.IsPressure() ||
+			c.unit.Kind() == "a mass per volume" || c.unit.String() == "ppm") {
 			score += 4
 		}
 		if ligandWord.MatchString(c.name) {
@@ -201,7 +203,8 @@ func (g *guess) findResponse() {
 		return
 	}
 	for _, c := range g.all {
-		if o := numbered.FindStringSubmatch(c.name); !c.taken && c.numeric && o != nil && o[1] == m[1] {
+		if o := numbered.FindStringSubmatch(c.name); !c.taken && c.numeric && o != nil &&
+			o[1] == m[1] {
 			c.taken = true
 			g.response = append(g.response, c)
 			g.percent = g.percent || c.high > 2 && g.kind == "saturation"
@@ -220,7 +223,8 @@ func (g *guess) findOthers() {
 		}
 		few := c.values > 1 && c.values <= 12 && c.values*3 <= len(g.t.Rows)
 		switch {
-		case g.effector == nil && c.numeric && few && c.hasUnit && c.unit.IsConcentration() && !c.unit.IsLogarithm() && c.low >= 0:
+		case g.effector == nil && c.numeric && few && c.hasUnit && c.unit.IsConcentration() &&
+			!c.unit.IsLogarithm() && c.low >= 0:
 			g.effector = c
 			g.effectorName = plainWord.FindString(c.name)
 			if g.effectorName == "" || slices.Contains(keyNames(columnKeys()), g.effectorName) {

@@ -11,8 +11,10 @@ import (
 // stand: conc_ng_per_ml, percent.
 var unitWords = map[string]string{
 	"ng_per_ml": "ng/mL", "ug_per_ml": "ug/mL", "mg_per_ml": "mg/mL", "pg_per_ml": "pg/mL",
-	"nkat_mg": "nkat/mg", "U_mg": "U/mg", "fmol_mg": "fmol/mg", "pmol_mg": "pmol/mg", "nmol_mg": "nmol/mg",
-	"umol_L": "umol/L", "nmol_L": "nmol/L", "mmol_L": "mmol/L", "pmol_L": "pmol/L", "mg_mL": "mg/mL", "ng_mL": "ng/mL", "ug_mL": "ug/mL",
+	"nkat_mg": "nkat/mg", "U_mg": "U/mg", "fmol_mg": "fmol/mg", "pmol_mg": "pmol/mg",
+	"nmol_mg": "nmol/mg",
+	"umol_L":  "umol/L", "nmol_L": "nmol/L", "mmol_L": "mmol/L", "pmol_L": "pmol/L",
+	"mg_mL": "mg/mL", "ng_mL": "ng/mL", "ug_mL": "ug/mL",
 	"pct": "percent", "perc": "percent", "percentage": "percent",
 }
 
@@ -20,8 +22,10 @@ var unitWords = map[string]string{
 // something else in headers (m, d, l, g, h, s, K, M alone as "n_M" is fine) are left out.
 var headerUnits = map[string]bool{
 	"M": true, "mM": true, "uM": true, "µM": true, "μM": true, "nM": true, "pM": true, "fM": true,
-	"torr": true, "Torr": true, "mmHg": true, "kPa": true, "Pa": true, "hPa": true, "mbar": true, "bar": true, "atm": true, "ppm": true,
-	"nkat": true, "kat": true, "percent": true, "fraction": true, "ms": true, "s": true, "min": true, "degC": true,
+	"torr": true, "Torr": true, "mmHg": true, "kPa": true, "Pa": true, "hPa": true, "mbar": true,
+	"bar": true, "atm": true, "ppm": true,
+	"nkat": true, "kat": true, "percent": true, "fraction": true, "ms": true, "s": true,
+	"min": true, "degC": true,
 	"fmol": true, "pmol": true, "nmol": true, "umol": true,
 }
 

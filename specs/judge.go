@@ -21,7 +21,9 @@ func (r *points) judge() {
 	}
 	if len(kept) == 0 {
 		if len(r.out.Points) > 0 {
-			r.faultAtKey(r.path+".columns.left_out", "no-rows-kept", "every row is left out", []string{"An empty cell in this column keeps its row."}, diag.Remedy{Write: "left_out: COLUMN"})
+			r.faultAtKey(r.path+".columns.left_out", "no-rows-kept", "every row is left out",
+				[]string{"An empty cell in this column keeps its row."},
+				diag.Remedy{Write: "left_out: COLUMN"})
 		}
 		return
 	}
@@ -49,8 +51,11 @@ func (r *points) judgeBlocked(kept []saturation.Point) {
 	}
 	switch n {
 	case 0:
-		r.fault(at, "no-such-value", fmt.Sprintf("no row has %q in column %s", r.d.BlockedWhen, column),
-			[]string{fmt.Sprintf("Column %s holds: %s.", column, shortList(r.t.Values(r.blocked), 12))}, diag.Remedy{Write: "blocked_when: " + nearestOr(r.d.BlockedWhen, r.t.Values(r.blocked))})
+		r.fault(at, "no-such-value", fmt.Sprintf("no row has %q in column %s", r.d.BlockedWhen,
+			column),
+			[]string{fmt.Sprintf("Column %s holds: %s.", column, shortList(r.t.Values(r.blocked),
+				12))}, diag.Remedy{Write: "blocked_when: " + nearestOr(r.d.BlockedWhen,
+				r.t.Values(r.blocked))})
 	case len(kept):
 		r.fault(at, "all-blocked", fmt.Sprintf("every row has %q in column %s, so nothing specific was measured", r.d.BlockedWhen, column), nil, diag.Remedy{Say: "Name the column and the word that tell blocked tubes from open ones."})
 	}
@@ -77,16 +82,23 @@ func (r *points) judgeSpread(kept []saturation.Point) {
 		sameY = sameY && p.Y == y
 	}
 	if sameX && len(kept) > 1 {
-		r.fault(r.ligand.path, "one-ligand-value", fmt.Sprintf("all %d points are at one ligand value, %s %s", len(kept), number(x), r.study.Ligand.Unit), []string{"A curve needs several."}, diag.Remedy{Say: "Name the column that holds the ligand:", Write: "ligand: COLUMN"})
+		r.fault(r.ligand.path, "one-ligand-value",
+			fmt.Sprintf("all %d points are at one ligand value, %s %s", len(kept), number(x),
+				r.study.Ligand.Unit), []string{"A curve needs several."},
+			diag.Remedy{Say: "Name the column that holds the ligand:", Write: "ligand: COLUMN"})
 	}
 	if sameY && len(kept) > 1 {
-		r.fault(r.response[0].path, "all-equal", fmt.Sprintf("all %d responses are %s, so there is no curve", len(kept), number(y)), nil, diag.Remedy{Say: "Name the column that holds what was measured:", Write: "response: COLUMN"})
+		r.fault(r.response[0].path, "all-equal",
+			fmt.Sprintf("all %d responses are %s, so there is no curve", len(kept), number(y)), nil,
+			diag.Remedy{Say: "Name the column that holds what was measured:",
+				Write: "response: COLUMN"})
 	}
 }
 
 // judgePercent asks whether fractions are percent, or the reverse.
 func (r *points) judgePercent(kept []saturation.Point) {
-	if r.failed[r.path+".response.unit"] || r.out.Response.Kind != "saturation" || r.response[0].unit.IsPercent() != r.response[0].to.IsPercent() {
+	if r.failed[r.path+".response.unit"] || r.out.Response.Kind != "saturation" ||
+		r.response[0].unit.IsPercent() != r.response[0].to.IsPercent() {
 		return
 	}
 	top := math.Inf(-1)
@@ -99,14 +111,17 @@ func (r *points) judgePercent(kept []saturation.Point) {
 	}
 	switch {
 	case !r.out.Response.Percent && top > 2:
-		r.fault(at, "percent", fmt.Sprintf("saturations up to %s are no fractions", number(top)), nil, diag.Remedy{Write: "unit: percent"},
+		r.fault(at, "percent", fmt.Sprintf("saturations up to %s are no fractions", number(top)),
+			nil, diag.Remedy{Write: "unit: percent"},
 			diag.Remedy{Say: "For an amount bound write", Write: "kind: bound"})
 	case r.out.Response.Percent && top <= 1.5:
-		r.warn(at, "percent", fmt.Sprintf("no saturation is above %s percent", number(top)), nil, diag.Remedy{Say: "If these are fractions, write", Write: "unit: fraction"})
+		r.warn(at, "percent", fmt.Sprintf("no saturation is above %s percent", number(top)), nil,
+			diag.Remedy{Say: "If these are fractions, write", Write: "unit: fraction"})
 	}
 	high := r.d.Response.High
 	if r.out.Response.Percent && high.Said && !high.Free && high.Value == 1 {
-		r.warn(r.path+".response.high", "percent", "high is 1 percent here", nil, diag.Remedy{Say: "If full saturation is meant, write", Write: "high: 100"})
+		r.warn(r.path+".response.high", "percent", "high is 1 percent here", nil,
+			diag.Remedy{Say: "If full saturation is meant, write", Write: "high: 100"})
 	}
 }
 
@@ -117,11 +132,16 @@ func (r *points) judgeNoise(kept []saturation.Point) {
 	at := r.path + ".noise"
 	switch {
 	case c.Sigma.Name != "" && c.SEM.Name != "":
-		r.faultAtKey(r.path+".columns.sem", "two-answers", "sigma and sem say the same thing twice", nil, diag.Remedy{Say: "Keep one of the two."})
+		r.faultAtKey(r.path+".columns.sem", "two-answers", "sigma and sem say the same thing twice",
+			nil, diag.Remedy{Say: "Keep one of the two."})
 	case spread && c.Weight.Name != "":
-		r.faultAtKey(r.path+".columns.weight", "two-answers", "weight does not go with a standard deviation in the same table", nil, diag.Remedy{Say: "Keep one of the two."})
+		r.faultAtKey(r.path+".columns.weight", "two-answers",
+			"weight does not go with a standard deviation in the same table", nil,
+			diag.Remedy{Say: "Keep one of the two."})
 	case r.d.Noise == "given" && !spread:
-		r.fault(at, "missing-column", "noise given needs a standard deviation for each row", nil, diag.Remedy{Write: "sigma: COLUMN", Where: "under columns,"}, diag.Remedy{Say: "or", Write: "sem: COLUMN, n: COLUMN", Where: "under columns."})
+		r.fault(at, "missing-column", "noise given needs a standard deviation for each row", nil,
+			diag.Remedy{Write: "sigma: COLUMN", Where: "under columns,"}, diag.Remedy{Say: "or",
+				Write: "sem: COLUMN, n: COLUMN", Where: "under columns."})
 	case r.d.Noise != "given" && spread:
 		r.warn(at, "unused-column", fmt.Sprintf("with noise %s the standard deviations of the table are not used", r.d.Noise), nil, diag.Remedy{Say: "To use them, write", Write: "noise: given"})
 	case r.d.Noise == "replicates" && !hasReplicates(kept):

@@ -39,15 +39,19 @@ func Load(fsys fs.FS, name string) (*Study, diag.List) {
 	if complaints != nil {
 		return nil, complaints
 	}
-	s := &Study{File: name, SHA256: hex.EncodeToString(sum[:]), Defaults: map[string]string{}, text: text}
-	r := &reader{document: parseDocument(text, knownKeys()), places: map[string]place{}, failed: map[string]bool{}}
+	s := &Study{File: name, SHA256: hex.EncodeToString(sum[:]), Defaults: map[string]string{},
+		text: text}
+	r := &reader{document: parseDocument(text, knownKeys()), places: map[string]place{},
+		failed: map[string]bool{}}
 	s.places = r.places
 	switch {
 	case r.root != nil:
 		studyShape().read(r, r.root, "", s)
 	case len(r.document.complaints) == 0:
-		r.complain(diag.Diagnostic{Code: "empty-study", Position: diag.Position{File: name}, Problem: name + " holds no study",
-			Remedies: []diag.Remedy{{Say: "Let the program write a first one:", Write: "ligancy new TABLE"}}})
+		r.complain(diag.Diagnostic{Code: "empty-study", Position: diag.Position{File: name},
+			Problem: name + " holds no study",
+			Remedies: []diag.Remedy{{Say: "Let the program write a first one:",
+				Write: "ligancy new TABLE"}}})
 	}
 	if r.root != nil && r.root.Kind == yaml.MappingNode && !r.partial {
 		b := &builder{reader: r, study: s, fsys: fsys, files: map[string]file{}}
@@ -69,15 +73,18 @@ func (s *Study) Build() (*saturation.Analysis, diag.List) {
 // readFile reads one file of a bounded size.
 func readFile(fsys fs.FS, name string, most int, what string) ([]byte, diag.List) {
 	fault := func(code, problem string, remedies ...diag.Remedy) diag.List {
-		return diag.List{{Code: code, Position: diag.Position{File: name}, Problem: problem, Remedies: remedies}}
+		return diag.List{{Code: code, Position: diag.Position{File: name}, Problem: problem,
+			Remedies: remedies}}
 	}
 	if !fs.ValidPath(name) {
-		return nil, fault("bad-file-name", fmt.Sprintf("%q cannot name a file in the study's folder", name))
+		return nil, fault("bad-file-name",
+			fmt.Sprintf("%q cannot name a file in the study's folder", name))
 	}
 	info, err := fs.Stat(fsys, name)
 	switch {
 	case errors.Is(err, fs.ErrNotExist):
-		return nil, fault("missing-file", "there is no file "+name, diag.Remedy{Say: "Write the name of a study that is there."})
+		return nil, fault("missing-file", "there is no file "+name,
+			diag.Remedy{Say: "Write the name of a study that is there."})
 	case err != nil:
 		return nil, fault("unreadable", name+" cannot be opened: "+reason(err))
 	case info.IsDir():
@@ -85,7 +92,8 @@ func readFile(fsys fs.FS, name string, most int, what string) ([]byte, diag.List
 	case !info.Mode().IsRegular():
 		return nil, fault("not-a-file", name+" is not a plain file")
 	case info.Size() > int64(most):
-		return nil, fault("file-too-large", fmt.Sprintf("%s has %d bytes; a %s may have %d", name, info.Size(), what, most))
+		return nil, fault("file-too-large", fmt.Sprintf("%s has %d bytes; a %s may have %d", name,
+			info.Size(), what, most))
 	}
 	f, err := fsys.Open(name)
 	if err != nil {
@@ -97,7 +105,8 @@ func readFile(fsys fs.FS, name string, most int, what string) ([]byte, diag.List
 	case err != nil:
 		return nil, fault("unreadable", name+" cannot be read: "+reason(err))
 	case len(data) > most:
-		return nil, fault("file-too-large", fmt.Sprintf("%s has more than %d bytes, the most a %s may have", name, most, what))
+		return nil, fault("file-too-large",
+			fmt.Sprintf("%s has more than %d bytes, the most a %s may have", name, most, what))
 	}
 	return data, nil
 }
@@ -118,43 +127,15 @@ type file struct {
 	complaints diag.List
 }
 
-// beside reads a table that data set i names.
+// beside reads the table that data set i names.
 func (b *builder) beside(i int) {
 	d := &b.study.Data[i]
-	at := fmt.Sprintf("data[%d].file", i)
-	if d.File == "" {
+	at := indexed("data", i) + ".file"
+	if d.File == "" || !b.isBeside(at, d.File) {
 		return
 	}
-	if strings.Contains(d.File, `\`) {
-		b.fault(at, "bad-file-name", "folders are set apart by / on every system", nil, diag.Remedy{Write: "file: " + strings.ReplaceAll(d.File, `\`, "/")})
-		return
-	}
-	name := path.Join(path.Dir(b.study.File), d.File)
-	if path.IsAbs(d.File) || strings.HasPrefix(d.File, "~") || slices.Contains(strings.Split(d.File, "/"), "..") || !fs.ValidPath(name) || strings.Contains(d.File, ":") {
-		b.fault(at, "outside-folder", fmt.Sprintf("%s lies outside the study's folder", d.File), []string{"A study reads only what lies beside it, so that the folder can be kept and sent whole."},
-			diag.Remedy{Say: "Copy the table beside the study, and write", Write: "file: " + path.Base(d.File)})
-		return
-	}
-	if link := b.linkIn(name); link != "" {
-		b.fault(at, "link", fmt.Sprintf("%s is a link to another place, which is not followed", link), nil, diag.Remedy{Say: "Put the table itself beside the study."})
-		return
-	}
-	f, ok := b.files[name]
-	if !ok {
-		f = b.readTable(name)
-		b.files[name] = f
-		for _, c := range f.complaints {
-			if c.Line == 0 && c.Cell == "" { // about the file as a whole: named where the study names it
-				b.fault(at, c.Code, c.Problem, c.Notes, c.Remedies...)
-				continue
-			}
-			b.complaints = append(b.complaints, c)
-		}
-	}
+	f := b.tableOnce(at, path.Join(path.Dir(b.study.File), d.File))
 	if f.table == nil {
-		if len(f.complaints) == 0 {
-			b.missingFile(at, name)
-		}
 		return
 	}
 	d.faulty = f.complaints.HasErrors()
@@ -165,6 +146,52 @@ func (b *builder) beside(i int) {
 	if d.Decimal == "comma" {
 		t.Decimal = table.Comma
 	}
+}
+
+// isBeside asks that a file lies in the study's folder, or below it, and is no link.
+func (b *builder) isBeside(at, file string) bool {
+	if strings.Contains(file, `\`) {
+		b.fault(at, "bad-file-name", "folders are set apart by / on every system", nil,
+			diag.Remedy{Write: "file: " + strings.ReplaceAll(file, `\`, "/")})
+		return false
+	}
+	name := path.Join(path.Dir(b.study.File), file)
+	up := slices.Contains(strings.Split(file, "/"), "..")
+	if up || path.IsAbs(file) || strings.HasPrefix(file, "~") || strings.Contains(file, ":") ||
+		!fs.ValidPath(name) {
+		b.fault(at, "outside-folder", file+" lies outside the study's folder",
+			[]string{"A study reads only what lies beside it, so that the folder can be kept and sent whole."},
+			diag.Remedy{Say: "Copy the table beside the study, and write",
+				Write: "file: " + path.Base(file)})
+		return false
+	}
+	if link := b.linkIn(name); link != "" {
+		b.fault(at, "link", link+" is a link to another place, which is not followed", nil,
+			diag.Remedy{Say: "Put the table itself beside the study."})
+		return false
+	}
+	return true
+}
+
+// tableOnce reads a table, or remembers it; what is wrong is said the first time.
+func (b *builder) tableOnce(at, name string) file {
+	f, ok := b.files[name]
+	if ok {
+		return f
+	}
+	f = b.readTable(name)
+	b.files[name] = f
+	for _, c := range f.complaints {
+		if c.Line == 0 && c.Cell == "" { // about the file as a whole: said where the study names it
+			b.fault(at, c.Code, c.Problem, c.Notes, c.Remedies...)
+			continue
+		}
+		b.complaints = append(b.complaints, c)
+	}
+	if f.table == nil && len(f.complaints) == 0 {
+		b.missingFile(at, name)
+	}
+	return f
 }
 
 // linkIn is the first part of a path that is a symbolic link.
@@ -202,7 +229,8 @@ func (b *builder) missingFile(at, name string) {
 	var tables []string
 	entries, _ := fs.ReadDir(b.fsys, path.Dir(name))
 	for _, e := range entries {
-		if ext := strings.ToLower(path.Ext(e.Name())); e.Type().IsRegular() && slices.Contains([]string{".csv", ".tsv", ".tab", ".txt", ".xlsx"}, ext) {
+		if ext := strings.ToLower(path.Ext(e.Name())); e.Type().IsRegular() &&
+			slices.Contains([]string{".csv", ".tsv", ".tab", ".txt", ".xlsx"}, ext) {
 			tables = append(tables, e.Name())
 		}
 	}

@@ -50,7 +50,8 @@ func TestStudiesThatWeCarry(t *testing.T) {
 		}
 	}
 	points := map[string]int{
-		"blood": 51, "blood_20_80": 15, "haemoglobin": 44, "galactosyltransferase_treated": 12, "galactosyltransferase_untreated": 11, "adsorption": 14, "elisa": 16,
+		"blood": 51, "blood_20_80": 15, "haemoglobin": 44, "galactosyltransferase_treated": 12,
+		"galactosyltransferase_untreated": 11, "adsorption": 14, "elisa": 16,
 	}
 	for name, want := range points {
 		s, complaints := Load(os.DirFS("../testdata"), name+".yaml")
@@ -89,7 +90,8 @@ mechanisms:
 `
 	table := "pH,prep,pO2_torr,sat\n7.0,B,7,0.33\n7.0,B,9,\"0,83\"\n7.0,B,12,0.9\n"
 	var b bytes.Buffer
-	_, complaints := Load(memory{"clam.yaml": []byte(study), "clam.csv": []byte(table)}, "clam.yaml")
+	_, complaints := Load(memory{"clam.yaml": []byte(study), "clam.csv": []byte(table)},
+		"clam.yaml")
 	if err := diag.WriteText(&b, complaints); err != nil {
 		t.Fatal(err)
 	}
@@ -183,17 +185,20 @@ func TestEverythingArrivesInTheLigandsUnit(t *testing.T) {
 	if diff := cmp.Diff([]float64{1, 500}, one.Points[3].Effectors); diff != "" {
 		t.Error(diff)
 	}
-	if one.Points[5].LeftOut != "pipette slipped" || one.Points[2].Y != 5 || one.Points[3].Row != 4 {
+	if one.Points[5].LeftOut != "pipette slipped" || one.Points[2].Y != 5 ||
+		one.Points[3].Row != 4 {
 		t.Errorf("points %+v", one.Points)
 	}
 	near(t, "incubation", one.Incubation, 5400)
 	near(t, "10 uM in mM", two.Points[0].X, 0.01)
 	near(t, "0.06 U/mg in nkat/mg", two.Points[0].Y, 1)
 	near(t, "sites present", two.SitesPresent.Value, 0.003)
-	if two.Points[1].Weight != 2 || two.Noise != saturation.Proportional || two.Response.High != (saturation.Setting{Value: 100}) {
+	if two.Points[1].Weight != 2 || two.Noise != saturation.Proportional ||
+		two.Response.High != (saturation.Setting{Value: 100}) {
 		t.Errorf("data set %+v", two)
 	}
-	if one.Noise != saturation.GivenSigma || !one.Response.High.Free || one.Response.Differs["V"] != "preparation" {
+	if one.Noise != saturation.GivenSigma || !one.Response.High.Free ||
+		one.Response.Differs["V"] != "preparation" {
 		t.Errorf("data set %+v", one)
 	}
 	// pH is asked for by a mechanism: from the conditions here, from `at` there.
@@ -204,10 +209,12 @@ func TestEverythingArrivesInTheLigandsUnit(t *testing.T) {
 		t.Error(diff)
 	}
 	near(t, "kelvin", a.Kelvin, 293.15)
-	if !strings.Contains(strings.Join(two.Notes, "; "), "decimal commas") || !strings.Contains(strings.Join(two.Notes, "; "), "3 of its 4 rows") {
+	if !strings.Contains(strings.Join(two.Notes, "; "), "decimal commas") ||
+		!strings.Contains(strings.Join(two.Notes, "; "), "3 of its 4 rows") {
 		t.Errorf("notes %q", two.Notes)
 	}
-	if s.Defaults["data.alone.response.low"] != "0" || s.Defaults["data.surface.noise"] != "given" || s.Defaults["fit.decide.draws"] != "199" {
+	if s.Defaults["data.alone.response.low"] != "0" ||
+		s.Defaults["data.surface.noise"] != "given" || s.Defaults["fit.decide.draws"] != "199" {
 		t.Errorf("defaults %v", s.Defaults)
 	}
 	sum := sha256.Sum256([]byte(surfaceTables["a.csv"]))
@@ -243,14 +250,17 @@ func TestRequestsArriveInTheLigandsUnit(t *testing.T) {
 	_, a := build(t, surface, surfaceTables)
 	near(t, "from", a.Curve.From, 0.001)
 	near(t, "to", a.Curve.To, 10)
-	if diff := cmp.Diff([]saturation.Held{{Name: "alanine", Levels: []string{"0", "500 uM"}, Values: []float64{0, 0.5}}}, a.Curve.At); diff != "" {
+	if diff := cmp.Diff([]saturation.Held{{Name: "alanine", Levels: []string{"0", "500 uM"},
+		Values: []float64{0, 0.5}}}, a.Curve.At); diff != "" {
 		t.Error(diff)
 	}
-	want := []saturation.Phase{{Add: 0.01, Seconds: 1800}, {Dilute: 100, Seconds: 3600}, {Block: 1, Seconds: 300}, {Wash: true, Seconds: 10}}
+	want := []saturation.Phase{{Add: 0.01, Seconds: 1800}, {Dilute: 100, Seconds: 3600},
+		{Block: 1, Seconds: 300}, {Wash: true, Seconds: 10}}
 	if diff := cmp.Diff(want, a.Course.Phases); diff != "" {
 		t.Error(diff)
 	}
-	if a.Plan.Series != 2 || a.Plan.Low != 0.001 || a.Plan.Aim != "discriminate" || a.Plan.At[0].Values[0] != 5 {
+	if a.Plan.Series != 2 || a.Plan.Low != 0.001 || a.Plan.Aim != "discriminate" ||
+		a.Plan.At[0].Values[0] != 5 {
 		t.Errorf("plan %+v", a.Plan)
 	}
 }
@@ -291,7 +301,8 @@ func TestFormsOfMechanisms(t *testing.T) {
 	study := "format: ligancy/1\ntitle: forms\nligand: {name: L, unit: uM}\ndata:\n  - {name: d, file: t.csv, columns: {ligand: x, response: y}, factors: [k], response: {kind: saturation}, sites_present: 2 uM}\nmechanisms:" + list
 	table := "x,y,k\n"
 	for i := range 40 {
-		table += strings.Join([]string{number(float64(i + 1)), number(float64(i+1) / (float64(i) + 9)), string(rune('a' + i%2))}, ",") + "\n"
+		table += strings.Join([]string{number(float64(i + 1)),
+			number(float64(i+1) / (float64(i) + 9)), string(rune('a' + i%2))}, ",") + "\n"
 	}
 	_, a := build(t, study, map[string]string{"t.csv": table})
 	for _, c := range a.Candidates {
@@ -303,9 +314,13 @@ func TestFormsOfMechanisms(t *testing.T) {
 
 func TestFilesThatAreNoStudies(t *testing.T) {
 	for name, c := range map[string]struct{ data, code string }{
-		"binary": {"\x7fELF\x02\x01\x01\x00\x00", "binary-file"}, "UTF-16": {"\xff\xfef\x00o\x00", "utf-16"}, "Latin-1": {"title: \xb5\n", "not-utf-8"},
-		"10 MB line": {"title: " + strings.Repeat("x", 10<<20), "file-too-large"}, "long line": {"title: " + strings.Repeat("x", 1<<17), "line-too-long"},
-		"nothing": {"", "empty-study"}, "a list": {"- a\n- b\n", "wrong-form"}, "a word": {"hello\n", "wrong-form"}, "a workbook": {"PK\x03\x04\x00\x00", "binary-file"},
+		"binary": {"\x7fELF\x02\x01\x01\x00\x00", "binary-file"}, "UTF-16": {"\xff\xfef\x00o\x00",
+			"utf-16"}, "Latin-1": {"title: \xb5\n", "not-utf-8"},
+		"10 MB line": {"title: " + strings.Repeat("x", 10<<20), "file-too-large"},
+		"long line":  {"title: " + strings.Repeat("x", 1<<17), "line-too-long"},
+		"nothing":    {"", "empty-study"}, "a list": {"- a\n- b\n", "wrong-form"},
+		"a word": {"hello\n", "wrong-form"}, "a workbook": {"PK\x03\x04\x00\x00",
+			"binary-file"},
 	} {
 		t.Run(name, func(t *testing.T) {
 			_, complaints := Load(memory{"s.yaml": []byte(c.data)}, "s.yaml")
@@ -335,7 +350,8 @@ func TestLinksOnADisk(t *testing.T) {
 	}
 	write("study/study.yaml", spoil(t, base, []edit{{"clam.csv", "tables/clam.csv"}}))
 	write("outside/clam.csv", baseTable)
-	if err := os.Symlink(filepath.Join(dir, "outside"), filepath.Join(dir, "study", "tables")); err != nil {
+	if err := os.Symlink(filepath.Join(dir, "outside"), filepath.Join(dir, "study",
+		"tables")); err != nil {
 		t.Skip(err)
 	}
 	root, err := os.OpenRoot(filepath.Join(dir, "study"))
@@ -354,7 +370,8 @@ func TestLinksOnADisk(t *testing.T) {
 }
 
 func TestStudyInAFolder(t *testing.T) {
-	s, complaints := Load(memory{"a/b/study.yaml": []byte(base), "a/b/clam.csv": []byte(baseTable)}, "a/b/study.yaml")
+	s, complaints := Load(memory{"a/b/study.yaml": []byte(base), "a/b/clam.csv": []byte(baseTable)},
+		"a/b/study.yaml")
 	if len(complaints) > 0 || s == nil {
 		t.Fatal(complaints)
 	}
@@ -363,9 +380,11 @@ func TestStudyInAFolder(t *testing.T) {
 // A complaint of which there are very many is said some times and counted.
 func TestManyComplaints(t *testing.T) {
 	table := "pH,prep,pO2_torr,sat,sd\n" + strings.Repeat("7.0,A,5,low,0.1\n", 50_000)
-	_, complaints := Load(memory{"study.yaml": []byte(base), "clam.csv": []byte(table)}, "study.yaml")
+	_, complaints := Load(memory{"study.yaml": []byte(base), "clam.csv": []byte(table)},
+		"study.yaml")
 	last := complaints[len(complaints)-1]
-	if len(complaints) != maxComplaints || last.Notes[len(last.Notes)-1] != "There are 49980 more of this kind in clam.csv." {
+	if len(complaints) != maxComplaints ||
+		last.Notes[len(last.Notes)-1] != "There are 49980 more of this kind in clam.csv." {
 		t.Errorf("%d complaints; the last: %v", len(complaints), last)
 	}
 }
@@ -385,9 +404,11 @@ func FuzzLoad(f *testing.F) {
 		}
 	}
 	f.Fuzz(func(t *testing.T, study, table []byte) {
-		s, complaints := Load(memory{"study.yaml": study, "clam.csv": table, "a.csv": table}, "study.yaml")
+		s, complaints := Load(memory{"study.yaml": study, "clam.csv": table, "a.csv": table},
+			"study.yaml")
 		for _, d := range complaints {
-			if d.Problem == "" || d.Code == "" || d.Line < 0 || d.Column < 0 || d.Column > 0 && d.End < d.Column {
+			if d.Problem == "" || d.Code == "" || d.Line < 0 || d.Column < 0 || d.Column > 0 &&
+				d.End < d.Column {
 				t.Fatalf("complaint %+v", d)
 			}
 		}
@@ -411,7 +432,8 @@ func FuzzLoad(f *testing.F) {
 		}
 		for _, d := range a.Data {
 			for _, p := range d.Points {
-				if p.LeftOut == "" && (math.IsNaN(p.X) || math.IsInf(p.X, 0) || p.X < 0 || math.IsNaN(p.Y) || math.IsInf(p.Y, 0)) {
+				if p.LeftOut == "" && (math.IsNaN(p.X) || math.IsInf(p.X, 0) || p.X < 0 ||
+					math.IsNaN(p.Y) || math.IsInf(p.Y, 0)) {
 					t.Fatalf("point %+v", p)
 				}
 			}

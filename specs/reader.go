@@ -26,7 +26,8 @@ func (r *reader) complain(d diag.Diagnostic) {
 		return // named already, in better words
 	}
 	for _, c := range r.complaints {
-		if d.Line > 0 && c.Severity == diag.Error && c.Code != "missing-key" && c.File == d.File && c.Line == d.Line && c.Column <= d.Column && d.End <= c.End {
+		if d.Line > 0 && c.Severity == diag.Error && c.Code != "missing-key" && c.File == d.File &&
+			c.Line == d.Line && c.Column <= d.Column && d.End <= c.End {
 			return // follows from what was named there
 		}
 	}
@@ -36,7 +37,8 @@ func (r *reader) complain(d diag.Diagnostic) {
 // isMuted reports a place that a slip was named at.
 func (r *reader) isMuted(p diag.Position) bool {
 	for _, m := range r.muted {
-		if m.Line == p.Line && m.File == p.File && p.Column < m.End && m.Column < max(p.End, p.Column+1) {
+		if m.Line == p.Line && m.File == p.File && p.Column < m.End && m.Column < max(p.End,
+			p.Column+1) {
 			return true
 		}
 	}
@@ -73,8 +75,10 @@ func (r *reader) describe(n *yaml.Node) string {
 
 // isNull reports a value that was not written, ~ and null.
 func isNull(n *yaml.Node) bool {
-	return n.Kind == yaml.ScalarNode && n.Style&(yaml.DoubleQuotedStyle|yaml.SingleQuotedStyle|yaml.LiteralStyle|yaml.FoldedStyle) == 0 &&
-		(n.Value == "" || n.Value == "~" || n.Value == "null" || n.Value == "Null" || n.Value == "NULL")
+	return n.Kind == yaml.ScalarNode &&
+		n.Style&(yaml.DoubleQuotedStyle|yaml.SingleQuotedStyle|yaml.LiteralStyle|yaml.FoldedStyle) == 0 &&
+		(n.Value == "" || n.Value == "~" || n.Value == "null" || n.Value == "Null" ||
+			n.Value == "NULL")
 }
 
 // isQuoted reports a text in quotation marks.
@@ -104,13 +108,16 @@ func join(path, name string) string {
 
 // entries walks a mapping: one call per key. Repeated keys and keys that are no
 // words are left out and complained of, and the answer is false.
-func (r *reader) entries(n *yaml.Node, path string, each func(name string, key, value *yaml.Node)) bool {
+func (r *reader) entries(n *yaml.Node, path string, each func(name string, key,
+	value *yaml.Node)) bool {
 	ok := true
 	seen := map[string]*yaml.Node{}
 	for i := 0; i+1 < len(n.Content); i += 2 {
 		key, value := n.Content[i], n.Content[i+1]
 		if key.Kind != yaml.ScalarNode {
-			r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(key), Problem: "a key is one word before a colon, not " + r.describe(key), Remedies: []diag.Remedy{{Write: "key: value"}}})
+			r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(key),
+				Problem:  "a key is one word before a colon, not " + r.describe(key),
+				Remedies: []diag.Remedy{{Write: "key: value"}}})
 			ok = false
 			continue
 		}
@@ -120,8 +127,10 @@ func (r *reader) entries(n *yaml.Node, path string, each func(name string, key, 
 		}
 		name := key.Value
 		if first, ok := seen[name]; ok {
-			r.complain(diag.Diagnostic{Code: "repeated-key", Position: r.at(key), Problem: fmt.Sprintf("%q stands here a second time", name),
-				Notes: []string{fmt.Sprintf("The first is in line %d.", first.Line)}, Remedies: []diag.Remedy{{Say: "Keep one of the two."}}})
+			r.complain(diag.Diagnostic{Code: "repeated-key", Position: r.at(key),
+				Problem:  fmt.Sprintf("%q stands here a second time", name),
+				Notes:    []string{fmt.Sprintf("The first is in line %d.", first.Line)},
+				Remedies: []diag.Remedy{{Say: "Keep one of the two."}}})
 			ok = false
 			continue
 		}
@@ -144,18 +153,22 @@ func (r *reader) lostComma(n *yaml.Node, i int) bool {
 		before := n.Content[i-1]
 		from := r.at(before)
 		line := r.text.Line(at.Line)
-		if before.Kind == yaml.ScalarNode && from.Line == at.Line && from.Column < at.Column && line[from.End-1:at.Column-1] == "," {
-			r.commaEndedName(n.Content[i-2].Value, line[from.Column-1:at.End-1], before.Value, diag.Position{File: at.File, Line: at.Line, Column: from.Column, End: at.End})
+		if before.Kind == yaml.ScalarNode && from.Line == at.Line && from.Column < at.Column &&
+			line[from.End-1:at.Column-1] == "," {
+			r.commaEndedName(n.Content[i-2].Value, line[from.Column-1:at.End-1], before.Value,
+				diag.Position{File: at.File, Line: at.Line, Column: from.Column, End: at.End})
 			return true
 		}
 	}
 	if name, rest, ok := strings.Cut(key.Value, ":"); ok && rest != "" {
-		r.complain(diag.Diagnostic{Code: "no-blank-after-colon", Position: at, Problem: "a blank is missing after the colon",
+		r.complain(diag.Diagnostic{Code: "no-blank-after-colon", Position: at,
+			Problem:  "a blank is missing after the colon",
 			Notes:    []string{fmt.Sprintf("Without it %q is one word.", key.Value)},
 			Remedies: []diag.Remedy{{Write: name + ": " + strings.TrimSpace(rest)}}})
 		return true
 	}
-	r.complain(diag.Diagnostic{Code: "no-value", Position: at, Problem: fmt.Sprintf("%q has no value", key.Value),
+	r.complain(diag.Diagnostic{Code: "no-value", Position: at,
+		Problem:  fmt.Sprintf("%q has no value", key.Value),
 		Notes:    []string{"Inside { } every entry is   key: value; a text that holds a comma is put in quotation marks."},
 		Remedies: []diag.Remedy{{Say: "Write a value after it, as", Write: key.Value + ": …"}}})
 	return true
@@ -164,12 +177,14 @@ func (r *reader) lostComma(n *yaml.Node, i int) bool {
 // commaEndedName names {name: 2,3-BPG} and {start: 1,5}.
 func (r *reader) commaEndedName(key, written, kept string, at diag.Position) {
 	if number := strings.Replace(written, ",", ".", 1); isNumber(number) && isNumber(kept) {
-		r.complain(diag.Diagnostic{Code: "decimal-comma", Position: at, Problem: "a comma ended this number",
+		r.complain(diag.Diagnostic{Code: "decimal-comma", Position: at,
+			Problem:  "a comma ended this number",
 			Notes:    []string{fmt.Sprintf("Inside { } a comma begins the next entry, so the number would be %s.", kept)},
 			Remedies: []diag.Remedy{{Write: key + ": " + number}}})
 		return
 	}
-	r.complain(diag.Diagnostic{Code: "comma-ended-name", Position: at, Problem: "a comma ended this name",
+	r.complain(diag.Diagnostic{Code: "comma-ended-name", Position: at,
+		Problem:  "a comma ended this name",
 		Notes:    []string{fmt.Sprintf("Inside { } a comma begins the next entry, so the %s would be %q.", key, kept)},
 		Remedies: []diag.Remedy{{Write: key + ": " + quoteText(written)}}})
 }

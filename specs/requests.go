@@ -17,16 +17,22 @@ import (
 func (b *builder) requests() {
 	s, a := b.study, b.analysis
 	if c := s.Curve; c != nil {
-		a.Curve = &saturation.CurveRequest{From: b.positive("curve.from", c.From), To: b.positive("curve.to", c.To), Points: c.Points, At: b.held("curve.at", c.At)}
+		a.Curve = &saturation.CurveRequest{From: b.positive("curve.from", c.From),
+			To: b.positive("curve.to", c.To), Points: c.Points, At: b.held("curve.at", c.At)}
 		if a.Curve.From > 0 && a.Curve.To > 0 && a.Curve.From >= a.Curve.To {
-			b.fault("curve.to", "out-of-bounds", fmt.Sprintf("the curve would end at %s, not above its beginning %s", c.To, c.From), nil, diag.Remedy{Write: fmt.Sprintf("from: %s, to: %s", c.To, c.From)})
+			b.fault("curve.to", "out-of-bounds",
+				fmt.Sprintf("the curve would end at %s, not above its beginning %s", c.To, c.From),
+				nil, diag.Remedy{Write: fmt.Sprintf("from: %s, to: %s", c.To, c.From)})
 		}
 		if len(s.Data) == 0 && (c.From == nil || c.To == nil) && !b.said("data") {
-			b.faultAtKey("curve", "missing-key", "without data a curve needs from and to", nil, diag.Remedy{Write: fmt.Sprintf("curve: {from: 0.1 %s, to: 100 %s}", s.Ligand.Unit, s.Ligand.Unit)})
+			b.faultAtKey("curve", "missing-key", "without data a curve needs from and to", nil,
+				diag.Remedy{Write: fmt.Sprintf("curve: {from: 0.1 %s, to: 100 %s}", s.Ligand.Unit,
+					s.Ligand.Unit)})
 		}
 	}
 	if c := s.Course; c != nil {
-		a.Course = &saturation.CourseRequest{Phases: b.phases("course.phases", c.Phases), Points: c.Points, At: b.heldOne("course.at", c.At)}
+		a.Course = &saturation.CourseRequest{Phases: b.phases("course.phases", c.Phases),
+			Points: c.Points, At: b.heldOne("course.at", c.At)}
 	}
 	if c := s.Plan; c != nil {
 		a.Plan = b.plan(c)
@@ -36,11 +42,16 @@ func (b *builder) requests() {
 var foldSeries = regexp.MustCompile(`^([0-9.]+)-fold$`)
 
 func (b *builder) plan(c *Plan) *saturation.PlanRequest {
-	out := &saturation.PlanRequest{Points: c.Points, Replicates: c.Replicates, Aim: c.Aim, At: b.heldOne("plan.at", c.At)}
+	out := &saturation.PlanRequest{Points: c.Points, Replicates: c.Replicates, Aim: c.Aim,
+		At: b.heldOne("plan.at", c.At)}
 	if len(c.Range) == 2 {
-		out.Low, out.High = b.positive("plan.range[0]", &c.Range[0]), b.positive("plan.range[1]", &c.Range[1])
+		out.Low, out.High = b.positive("plan.range[0]", &c.Range[0]), b.positive("plan.range[1]",
+			&c.Range[1])
 		if out.Low > 0 && out.High > 0 && out.Low >= out.High {
-			b.fault("plan.range", "out-of-bounds", fmt.Sprintf("the range would end at %s, not above its beginning %s", c.Range[1], c.Range[0]), nil, diag.Remedy{Write: fmt.Sprintf("range: [%s, %s]", c.Range[1], c.Range[0])})
+			b.fault("plan.range", "out-of-bounds",
+				fmt.Sprintf("the range would end at %s, not above its beginning %s", c.Range[1],
+					c.Range[0]), nil, diag.Remedy{Write: fmt.Sprintf("range: [%s, %s]", c.Range[1],
+					c.Range[0])})
 		}
 	}
 	if !b.said("plan.aim") {
@@ -53,7 +64,8 @@ func (b *builder) plan(c *Plan) *saturation.PlanRequest {
 			out.Series, _ = strconv.ParseFloat(m[1], 64)
 		}
 		if out.Series <= 1 {
-			b.fault("plan.series", "unknown-word", fmt.Sprintf("series cannot be %q", c.Series), nil, diag.Remedy{Write: "series: 2-fold"})
+			b.fault("plan.series", "unknown-word", fmt.Sprintf("series cannot be %q", c.Series),
+				nil, diag.Remedy{Write: "series: 2-fold"})
 		}
 	}
 	return out
@@ -84,7 +96,9 @@ func (b *builder) held(p string, list []Named[[]string]) []saturation.Held {
 		} else if levels := b.levelsOf(e.Name); len(levels) > 0 {
 			b.knownLevels(p, e, levels)
 		} else if !slices.Contains(b.asked(), e.Name) {
-			b.faultAtKey(join(p, e.Name), "unknown-factor", fmt.Sprintf("the study has no effector or factor %q", e.Name), []string{"Its effectors are: " + b.effectorNames() + "."})
+			b.faultAtKey(join(p, e.Name), "unknown-factor",
+				fmt.Sprintf("the study has no effector or factor %q", e.Name),
+				[]string{"Its effectors are: " + b.effectorNames() + "."})
 		}
 		out = append(out, h)
 	}
@@ -100,7 +114,10 @@ func (b *builder) knownLevels(p string, e Named[[]string], levels []string) {
 			return l == want || err == nil && werr == nil && v == w
 		})
 		if !ok {
-			b.fault(join(p, e.Name), "no-such-value", fmt.Sprintf("no point has %s %s", e.Name, want), []string{fmt.Sprintf("The levels of %s are: %s.", e.Name, shortList(levels, 12))}, diag.Remedy{Write: fmt.Sprintf("at: {%s: %s}", plainOrQuoted(e.Name), levels[0])})
+			b.fault(join(p, e.Name), "no-such-value", fmt.Sprintf("no point has %s %s", e.Name,
+				want), []string{fmt.Sprintf("The levels of %s are: %s.", e.Name, shortList(levels,
+				12))}, diag.Remedy{Write: fmt.Sprintf("at: {%s: %s}", plainOrQuoted(e.Name),
+				levels[0])})
 		}
 	}
 }
@@ -133,7 +150,9 @@ func (b *builder) rates(p string, list []Named[Rate]) map[string]saturation.Rate
 			r.Each = append(r.Each, *read(where, &e.Value.Each[i]))
 		}
 		says := &e.Value.Says
-		r.Given = mechanisms.Given{Start: read(at+".start", says.Start), Fixed: read(at+".fixed", says.Fixed), Value: read(at+".value", says.Value), Low: read(at+".range[0]", says.Low), High: read(at+".range[1]", says.High)}
+		r.Given = mechanisms.Given{Start: read(at+".start", says.Start), Fixed: read(at+".fixed",
+			says.Fixed), Value: read(at+".value", says.Value), Low: read(at+".range[0]", says.Low),
+			High: read(at+".range[1]", says.High)}
 		out[e.Name] = r
 	}
 	return out
@@ -162,9 +181,11 @@ func (b *builder) rate(at, name string, q *units.Quantity) (float64, int) {
 		v, _ := q.In(second)
 		return v, 2
 	case strings.HasPrefix(q.Unit.Kind(), "a rate constant"):
-		b.fault(at, "wrong-unit", fmt.Sprintf("%s: %s does not go with a ligand in %s", name, q.Unit, u), nil, example)
+		b.fault(at, "wrong-unit", fmt.Sprintf("%s: %s does not go with a ligand in %s", name,
+			q.Unit, u), nil, example)
 	default:
-		b.fault(at, "wrong-unit", fmt.Sprintf("%s: %s is %s, not a rate constant", name, q.Unit, q.Unit.Kind()), nil, example)
+		b.fault(at, "wrong-unit", fmt.Sprintf("%s: %s is %s, not a rate constant", name, q.Unit,
+			q.Unit.Kind()), nil, example)
 	}
 	return 0, 0
 }

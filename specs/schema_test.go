@@ -83,8 +83,10 @@ func checkExamples[T any](t *testing.T, record string, keys []key[T]) {
 		doc := parseText(k.example + "\n")
 		r := &reader{document: doc, places: map[string]place{}, failed: map[string]bool{}}
 		var v T
-		if doc.root == nil || !c.read(r, doc.root, "", &v) || len(r.complaints)+len(doc.complaints) > 0 {
-			t.Errorf("%s, key %s: the example %q cannot be read: %v %v", record, k.name, k.example, r.complaints, doc.complaints)
+		if doc.root == nil || !c.read(r, doc.root, "", &v) ||
+			len(r.complaints)+len(doc.complaints) > 0 {
+			t.Errorf("%s, key %s: the example %q cannot be read: %v %v", record, k.name, k.example,
+				r.complaints, doc.complaints)
 		}
 	}
 }

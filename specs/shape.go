@@ -36,7 +36,8 @@ func (r *reader) scalar(n *yaml.Node, path, form string) (string, bool) {
 		return "", false // it stands for something that was named
 	}
 	if strings.TrimSpace(n.Value) == "" {
-		r.complain(diag.Diagnostic{Code: "empty-text", Position: r.at(n), Problem: lastName(path) + " is empty", Remedies: r.exampleRemedy()})
+		r.complain(diag.Diagnostic{Code: "empty-text", Position: r.at(n),
+			Problem: lastName(path) + " is empty", Remedies: r.exampleRemedy()})
 		return "", false
 	}
 	return n.Value, true
@@ -71,8 +72,9 @@ func (w wordShape) read(r *reader, n *yaml.Node, path string, v *string) bool {
 			return true
 		}
 	}
-	d := diag.Diagnostic{Code: "unknown-word", Position: r.at(n), Problem: fmt.Sprintf("%s cannot be %q", lastName(path), s),
-		Notes: []string{"It is one of: " + strings.Join(w, ", ") + "."}}
+	d := diag.Diagnostic{Code: "unknown-word", Position: r.at(n),
+		Problem: fmt.Sprintf("%s cannot be %q", lastName(path), s),
+		Notes:   []string{"It is one of: " + strings.Join(w, ", ") + "."}}
 	if near := diag.Nearest(s, w); near != "" {
 		d.Remedies = []diag.Remedy{{Write: lastName(path) + ": " + near}}
 	}
@@ -103,8 +105,10 @@ func (flagShape) read(r *reader, n *yaml.Node, path string, v *bool) bool {
 		*v = s == "true"
 		return true
 	}
-	write := map[bool]string{true: "true", false: "false"}[strings.EqualFold(s, "yes") || strings.EqualFold(s, "on") || strings.EqualFold(s, "true")]
-	r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(n), Problem: fmt.Sprintf("%s: true or false belongs here, not %q", lastName(path), s),
+	write := map[bool]string{true: "true", false: "false"}[strings.EqualFold(s, "yes") ||
+		strings.EqualFold(s, "on") || strings.EqualFold(s, "true")]
+	r.complain(diag.Diagnostic{Code: "wrong-form", Position: r.at(n),
+		Problem:  fmt.Sprintf("%s: true or false belongs here, not %q", lastName(path), s),
 		Remedies: []diag.Remedy{{Write: lastName(path) + ": " + write}}})
 	return false
 }
@@ -145,7 +149,8 @@ func (r *reader) badNumber(n *yaml.Node, path, form string, e *units.SyntaxError
 		r.wrong(n, path, form)
 		return
 	}
-	r.complain(diag.Diagnostic{Code: "not-a-number", Position: r.at(n), Problem: lastName(path) + ": " + e.Problem,
+	r.complain(diag.Diagnostic{Code: "not-a-number", Position: r.at(n),
+		Problem:  lastName(path) + ": " + e.Problem,
 		Remedies: []diag.Remedy{{Write: e.Write}}})
 }
 
@@ -228,7 +233,8 @@ func (quantityShape) read(r *reader, n *yaml.Node, path string, v *units.Quantit
 
 // badQuantity complains of the part of a quantity that cannot be read.
 func (r *reader) badQuantity(n *yaml.Node, path string, e *units.SyntaxError) {
-	d := diag.Diagnostic{Code: "bad-quantity", Position: r.within(n, e.Start, e.End), Problem: lastName(path) + ": " + e.Problem}
+	d := diag.Diagnostic{Code: "bad-quantity", Position: r.within(n, e.Start, e.End),
+		Problem: lastName(path) + ": " + e.Problem}
 	switch {
 	case e.Write != "":
 		d.Remedies = []diag.Remedy{{Write: lastName(path) + ": " + e.Write}}
@@ -252,7 +258,10 @@ func (r *reader) within(n *yaml.Node, start, end int) diag.Position {
 	return p
 }
 
-func (quantityShape) schema(*schemata) object { return object{"type": []string{"number", "string"}} }
+func (quantityShape) schema(*schemata) object {
+	return object{"type": []string{"number",
+		"string"}}
+}
 
 // unitShape is a unit; a text in quotation marks that is none is a label.
 type unitShape struct{}
@@ -272,11 +281,14 @@ func (unitShape) read(r *reader, n *yaml.Node, path string, v *units.Unit) bool 
 		*v = units.Label(text)
 		return true
 	}
-	d := diag.Diagnostic{Code: "unknown-unit", Position: r.within(n, e.Start, e.End), Problem: lastName(path) + ": " + e.Problem}
+	d := diag.Diagnostic{Code: "unknown-unit", Position: r.within(n, e.Start, e.End),
+		Problem: lastName(path) + ": " + e.Problem}
 	if e.Write != "" {
 		d.Remedies = append(d.Remedies, diag.Remedy{Write: lastName(path) + ": " + e.Write})
 	}
-	d.Remedies = append(d.Remedies, diag.Remedy{Say: "A unit of your own is put in quotation marks:", Write: lastName(path) + ": " + quoteText(text)})
+	d.Remedies = append(d.Remedies,
+		diag.Remedy{Say: "A unit of your own is put in quotation marks:",
+			Write: lastName(path) + ": " + quoteText(text)})
 	r.complain(d)
 	return false
 }
@@ -310,7 +322,8 @@ func (s settingShape) read(r *reader, n *yaml.Node, path string, v *Setting) boo
 	x, err := units.ParseNumber(text)
 	if err != nil {
 		if near := diag.Nearest(text, words); near != "" {
-			r.complain(diag.Diagnostic{Code: "unknown-word", Position: r.at(n), Problem: fmt.Sprintf("%s cannot be %q", lastName(path), text),
+			r.complain(diag.Diagnostic{Code: "unknown-word", Position: r.at(n),
+				Problem:  fmt.Sprintf("%s cannot be %q", lastName(path), text),
 				Remedies: []diag.Remedy{{Write: lastName(path) + ": " + near}}})
 			return false
 		}
@@ -322,5 +335,11 @@ func (s settingShape) read(r *reader, n *yaml.Node, path string, v *Setting) boo
 }
 
 func (s settingShape) schema(*schemata) object {
-	return object{"anyOf": []object{{"type": "number"}, {"enum": append([]string{"free"}, s.more...)}}}
+	return object{"anyOf": []object{{"type": "number"}, {"enum": append([]string{"free"},
+		s.more...)}}}
+}
+
+func isNumber(s string) bool {
+	_, err := units.ParseNumber(s)
+	return err == nil
 }

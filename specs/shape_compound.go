@@ -44,10 +44,14 @@ func (l listShape[V]) read(r *reader, n *yaml.Node, path string, v *[]V) bool {
 	}
 	switch {
 	case len(n.Content) < l.least:
-		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n), Problem: fmt.Sprintf("%s: %s belongs here; there should be at least %d, not %d", lastName(path), l.form, l.least, len(n.Content)), Remedies: r.exampleRemedy()})
+		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n),
+			Problem: fmt.Sprintf("%s: %s belongs here; there should be at least %d, not %d",
+				lastName(path), l.form, l.least, len(n.Content)), Remedies: r.exampleRemedy()})
 		return false
 	case l.most > 0 && len(n.Content) > l.most:
-		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n), Problem: fmt.Sprintf("%s: %s belongs here; there may be at most %d, not %d", lastName(path), l.form, l.most, len(n.Content)), Remedies: r.exampleRemedy()})
+		r.complain(diag.Diagnostic{Code: "wrong-length", Position: r.at(n),
+			Problem: fmt.Sprintf("%s: %s belongs here; there may be at most %d, not %d",
+				lastName(path), l.form, l.most, len(n.Content)), Remedies: r.exampleRemedy()})
 		return false
 	}
 	return ok
@@ -118,7 +122,10 @@ type key[T any] struct {
 // with makes a key that is read by a shape into a field of the record.
 func with[T, V any](name string, s shape[V], at func(*T) *V, doc, example string) key[T] {
 	return key[T]{name: name, doc: doc, example: example,
-		read:   func(r *reader, n *yaml.Node, path string, t *T) bool { return s.read(r, n, path, at(t)) },
+		read: func(r *reader, n *yaml.Node, path string, t *T) bool {
+			return s.read(r, n, path,
+				at(t))
+		},
 		schema: s.schema}
 }
 
@@ -192,8 +199,9 @@ func keyNames[T any](keys []key[T]) []string {
 
 // unknownKey names a key that means nothing here, and the nearest that does.
 func (r *reader) unknownKey(n *yaml.Node, record, name string, valid []string) {
-	d := diag.Diagnostic{Code: "unknown-key", Position: r.at(n), Problem: fmt.Sprintf("%s has no key %q", record, name),
-		Notes: []string{"Its keys are: " + strings.Join(valid, ", ") + "."}}
+	d := diag.Diagnostic{Code: "unknown-key", Position: r.at(n),
+		Problem: fmt.Sprintf("%s has no key %q", record, name),
+		Notes:   []string{"Its keys are: " + strings.Join(valid, ", ") + "."}}
 	if near := diag.Nearest(name, valid); near != "" {
 		d.Remedies = []diag.Remedy{{Write: near + ":"}}
 	}
@@ -209,7 +217,8 @@ func (r *reader) missingKey(n *yaml.Node, path, record, name, example string) {
 	if path == "" {
 		at = diag.Position{File: r.text.Name}
 	}
-	r.complain(diag.Diagnostic{Code: "missing-key", Position: at, Problem: fmt.Sprintf("%s needs the key %q", record, name),
+	r.complain(diag.Diagnostic{Code: "missing-key", Position: at,
+		Problem:  fmt.Sprintf("%s needs the key %q", record, name),
 		Remedies: []diag.Remedy{{Write: example}}})
 }
 

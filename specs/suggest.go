@@ -21,7 +21,8 @@ func Suggest(name string, data []byte) ([]byte, diag.List) {
 	}
 	g := newGuess(t)
 	if g.ligand == nil || len(g.response) == 0 {
-		return nil, diag.List{{Code: "no-curve", Position: diag.Position{File: name}, Problem: name + " has no two columns of numbers that could be a curve",
+		return nil, diag.List{{Code: "no-curve", Position: diag.Position{File: name},
+			Problem:  name + " has no two columns of numbers that could be a curve",
 			Notes:    []string{"Its columns are: " + shortList(t.Header(), 40) + "."},
 			Remedies: []diag.Remedy{{Say: "Write the ligand and the response as two columns of numbers."}}}}
 	}
@@ -71,7 +72,8 @@ var candidates = []candidate{
 
 // kept are the candidates that were not dropped.
 func (g *guess) kept() []candidate {
-	return slices.DeleteFunc(slices.Clone(candidates), func(c candidate) bool { return slices.Contains(g.left, c) })
+	return slices.DeleteFunc(slices.Clone(candidates),
+		func(c candidate) bool { return slices.Contains(g.left, c) })
 }
 
 // mechanisms writes the entries of the list, each on one line.
@@ -122,7 +124,8 @@ func (g *guess) study() []byte {
 		line("  - %s", m)
 	}
 	if len(g.left) > 0 {
-		line("# Left out, because these points are too few for it: %s.", strings.Join(g.leftNames(), ", "))
+		line("# Left out, because these points are too few for it: %s.", strings.Join(g.leftNames(),
+			", "))
 	}
 	if len(g.factors) > 0 {
 		line("")
@@ -151,7 +154,8 @@ func (g *guess) writeLigand(line func(string, ...any)) {
 			u, why = g.effector.unit.Linear().String(), "its unit is from the header"
 		}
 		line("effectors:")
-		line("  - {name: %s, unit: %s}   # column %s looks like a second ligand; %s", g.effectorName, u, oneLine(g.effector.name), why)
+		line("  - {name: %s, unit: %s}   # column %s looks like a second ligand; %s",
+			g.effectorName, u, oneLine(g.effector.name), why)
 	}
 	line("")
 }
@@ -182,13 +186,17 @@ func (g *guess) writeData(line func(string, ...any), base string) {
 		for _, c := range g.response {
 			names = append(names, g.column(c))
 		}
-		line("      response: [%s]   # columns of one name and a number are taken for replicates", strings.Join(names, ", "))
+		line("      response: [%s]   # columns of one name and a number are taken for replicates",
+			strings.Join(names, ", "))
 	}
 	for _, r := range []struct {
 		key, what string
 		c         *columnGuess
-	}{{"sem", "standard error of the mean", g.sem}, {"n", "how many values each mean is of", g.n}, {"sigma", "standard deviation", g.sigma},
-		{"preparation", "which preparation a row comes from", g.preparation}, {"blocked", "which tubes see only nonspecific binding", g.blocked}, {"left_out", "reason for leaving a row out; empty means kept", g.leftOut}} {
+	}{{"sem", "standard error of the mean", g.sem}, {"n", "how many values each mean is of", g.n},
+		{"sigma", "standard deviation", g.sigma},
+		{"preparation", "which preparation a row comes from", g.preparation},
+		{"blocked", "which tubes see only nonspecific binding", g.blocked},
+		{"left_out", "reason for leaving a row out; empty means kept", g.leftOut}} {
 		if r.c != nil {
 			line("      %s: %s   # %s", r.key, plainOrQuoted(r.c.name), r.what)
 		}
@@ -199,7 +207,8 @@ func (g *guess) writeData(line func(string, ...any), base string) {
 	g.writeFactors(line)
 	line("    response: %s", g.responseKind())
 	line("    # %s", g.responseWhy)
-	line("    ligand_axis: free   # or total, with   sites_present: 80 uM   under it%s", g.axisHint())
+	line("    ligand_axis: free   # or total, with   sites_present: 80 uM   under it%s",
+		g.axisHint())
 	noise, why := "constant", "or proportional, mixed: look at the residuals"
 	if g.sigma != nil || g.sem != nil && g.n != nil {
 		noise, why = "given", "the standard deviations of the table"
@@ -216,7 +225,8 @@ func (g *guess) writeFactors(line func(string, ...any)) {
 		factors = append(factors, plainOrQuoted(f.name)+": "+plainOrQuoted(f.name))
 	}
 	if len(factors) > 0 {
-		line("    factors: {%s}   # few values, many rows each: tells curves apart", strings.Join(factors, ", "))
+		line("    factors: {%s}   # few values, many rows each: tells curves apart",
+			strings.Join(factors, ", "))
 	}
 }
 
@@ -293,7 +303,8 @@ func kindOf(c *columnGuess) (kind string, percent bool) {
 			return "saturation", false
 		}
 		return "signal", false
-	case has("veloc", "rate", "activity") || strings.HasPrefix(name, "v_") || name == "v" || c.hasUnit && strings.HasPrefix(unit.Kind(), "a catalytic activity"):
+	case has("veloc", "rate", "activity") || strings.HasPrefix(name, "v_") || name == "v" ||
+		c.hasUnit && strings.HasPrefix(unit.Kind(), "a catalytic activity"):
 		return "velocity", false
 	case has("bound", "binding") || c.hasUnit && unit.Kind() == "an amount per mass":
 		return "bound", false

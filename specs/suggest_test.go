@@ -62,14 +62,21 @@ func TestSuggestions(t *testing.T) {
 		name, table string
 		has         []string
 	}{
-		{"replicates and a decimal comma", "conc_uM;sat_1;sat_2\n0,1;0,05;0,06\n0,5;0,2;0,25\n2;0,5;0,6\n8;0,8;0,9\n32;0,95;0,97\n128;0,98;0,99\n", []string{
-			"unit: uM}", "response: [sat_1, sat_2]", "decimal commas were read", "kind: saturation, unit: fraction"}},
-		{"percent", "pO2_kPa,saturation\n1,4\n2,20\n4,60\n6,80\n9,92\n12,97\n20,99\n", []string{"unit: kPa}", "{name: saturation, unit: percent}", "kind: saturation"}},
-		{"logarithms", "log10_M,signal\n-9,1\n-8,2\n-7,5\n-6,9\n-5,10\n-4,10.5\n-3,10.4\n", []string{"{name: log10_M, unit: log10 M}", "unit: M}", "kind: signal"}},
-		{"no units at all", "a,b\n1,0.1\n2,0.2\n3,0.3\n5,0.35\n8,0.4\n13,0.45\n", []string{`unit: "unit not stated"`, "which the header does not name", "check this"}},
+		{"replicates and a decimal comma",
+			"conc_uM;sat_1;sat_2\n0,1;0,05;0,06\n0,5;0,2;0,25\n2;0,5;0,6\n8;0,8;0,9\n32;0,95;0,97\n128;0,98;0,99\n", []string{
+				"unit: uM}", "response: [sat_1, sat_2]", "decimal commas were read",
+				"kind: saturation, unit: fraction"}},
+		{"percent", "pO2_kPa,saturation\n1,4\n2,20\n4,60\n6,80\n9,92\n12,97\n20,99\n",
+			[]string{"unit: kPa}", "{name: saturation, unit: percent}", "kind: saturation"}},
+		{"logarithms", "log10_M,signal\n-9,1\n-8,2\n-7,5\n-6,9\n-5,10\n-4,10.5\n-3,10.4\n",
+			[]string{"{name: log10_M, unit: log10 M}", "unit: M}", "kind: signal"}},
+		{"no units at all", "a,b\n1,0.1\n2,0.2\n3,0.3\n5,0.35\n8,0.4\n13,0.45\n",
+			[]string{`unit: "unit not stated"`, "which the header does not name", "check this"}},
 		{"mean, sem and n", "dose_nM,response,sem,n\n1,2,0.1,3\n3,4,0.1,3\n10,9,0.2,3\n30,15,0.2,3\n100,18,0.1,3\n300,19,0.1,3\n", []string{"sem: sem", "n: n", "noise: given"}},
-		{"few points", "conc_uM,sat\n1,0.1\n2,0.3\n4,0.6\n8,0.8\n", []string{"Left out, because these points are too few", "Hill equation"}},
-		{"added ligand", "added_nM,bound_fmol_mg\n1,20\n2,40\n4,70\n8,100\n16,120\n32,130\n", []string{`the header says "added"`, "kind: bound, unit: fmol/mg"}},
+		{"few points", "conc_uM,sat\n1,0.1\n2,0.3\n4,0.6\n8,0.8\n",
+			[]string{"Left out, because these points are too few", "Hill equation"}},
+		{"added ligand", "added_nM,bound_fmol_mg\n1,20\n2,40\n4,70\n8,100\n16,120\n32,130\n",
+			[]string{`the header says "added"`, "kind: bound, unit: fmol/mg"}},
 	} {
 		t.Run(c.name, func(t *testing.T) {
 			text, _, complaints := started(t, "t.csv", []byte(c.table))
@@ -86,7 +93,8 @@ func TestSuggestions(t *testing.T) {
 }
 
 func TestNothingToSuggest(t *testing.T) {
-	for table, code := range map[string]string{"": "empty-table", "name,place\nA,here\nB,there\n": "no-curve", "x y\n1 2\n": "one-column"} {
+	for table, code := range map[string]string{"": "empty-table",
+		"name,place\nA,here\nB,there\n": "no-curve", "x y\n1 2\n": "one-column"} {
 		text, complaints := Suggest("t.csv", []byte(table))
 		if text != nil || len(complaints) == 0 || complaints[0].Code != code {
 			t.Errorf("%q: %q, %v; want %s", table, text, complaints, code)
@@ -96,8 +104,10 @@ func TestNothingToSuggest(t *testing.T) {
 
 func TestUnitsInHeaders(t *testing.T) {
 	for header, want := range map[string]string{
-		"pO2_torr": "torr", "conc (uM)": "uM", "L / nM": "nM", "conc_ng_per_ml": "ng/mL", "log10_M": "log10 M", "v_nkat_mg": "nkat/mg",
-		"bound [fmol/mg]": "fmol/mg", "saturation_percent": "percent", "sat": "", "pH": "", "K": "", "prep_A": "", "x_m": "", "t_min": "min",
+		"pO2_torr": "torr", "conc (uM)": "uM", "L / nM": "nM", "conc_ng_per_ml": "ng/mL",
+		"log10_M": "log10 M", "v_nkat_mg": "nkat/mg",
+		"bound [fmol/mg]": "fmol/mg", "saturation_percent": "percent", "sat": "", "pH": "", "K": "",
+		"prep_A": "", "x_m": "", "t_min": "min",
 	} {
 		u, ok := unitInHeader(header)
 		got := ""
@@ -111,7 +121,8 @@ func TestUnitsInHeaders(t *testing.T) {
 }
 
 func FuzzSuggest(f *testing.F) {
-	for _, s := range []string{"conc_uM,sat\n1,0.1\n2,0.3\n", "a;b\n0,5;1\n1;2\n3;4\n", "\"x\ny\",null\n1,2\n2,3\n4,5\n", "~,a: b\n1,2\n2,3\n4,5\n", "[x],#y\n1,2\n2,3\n4,5\n"} {
+	for _, s := range []string{"conc_uM,sat\n1,0.1\n2,0.3\n", "a;b\n0,5;1\n1;2\n3;4\n",
+		"\"x\ny\",null\n1,2\n2,3\n4,5\n", "~,a: b\n1,2\n2,3\n4,5\n", "[x],#y\n1,2\n2,3\n4,5\n"} {
 		f.Add([]byte(s))
 	}
 	f.Fuzz(func(t *testing.T, data []byte) {
@@ -125,7 +136,9 @@ func FuzzSuggest(f *testing.F) {
 		_, complaints = Load(memory{"t.yaml": text, "t.csv": data}, "t.yaml")
 		for _, d := range complaints {
 			switch d.Code {
-			case "not-yaml", "unknown-key", "missing-column", "wrong-form", "second-colon", "odd-blank", "open-quotation", "open-bracket", "unknown-unit", "repeated-key", "missing-key":
+			case "not-yaml", "unknown-key", "missing-column", "wrong-form", "second-colon",
+				"odd-blank", "open-quotation", "open-bracket", "unknown-unit", "repeated-key",
+				"missing-key":
 				var b bytes.Buffer
 				_ = diag.WriteText(&b, complaints)
 				t.Fatalf("%s\n%s", text, b.String())

@@ -12,7 +12,8 @@ import (
 
 // quantities are what a contrast may compare beside constants.
 var quantities = []string{
-	"x_half", "x_median", "x_10", "x_90", "n_H", "n_H_half", "n_H_max", "n_H_max_at", "n_H_10_90", "n_H_1_99", "width_1_99",
+	"x_half", "x_median", "x_10", "x_90", "n_H", "n_H_half", "n_H_max", "n_H_max_at", "n_H_10_90",
+	"n_H_1_99", "width_1_99",
 	"n_H_hill_reading", "dG_interaction", "low", "high", "V", "Bmax", "nonspecific",
 }
 
@@ -46,10 +47,13 @@ func (b *builder) contrasts() {
 			if near := diag.Nearest(of, known); near != "" {
 				remedies = []diag.Remedy{{Write: near}}
 			}
-			b.fault(at, "unknown-name", fmt.Sprintf("no mechanism of the study has %q", of), []string{"It is a constant, or one of: " + strings.Join(quantities, ", ") + "."}, remedies...)
+			b.fault(at, "unknown-name", fmt.Sprintf("no mechanism of the study has %q", of),
+				[]string{"It is a constant, or one of: " + strings.Join(quantities, ", ") + "."},
+				remedies...)
 		}
 		b.between(p+".between", c.Between)
-		b.analysis.Contrasts = append(b.analysis.Contrasts, saturation.Contrast{Of: c.Of, Between: c.Between})
+		b.analysis.Contrasts = append(b.analysis.Contrasts, saturation.Contrast{Of: c.Of,
+			Between: c.Between})
 	}
 }
 
@@ -86,7 +90,8 @@ func (b *builder) between(at, factor string) {
 		if near := diag.Nearest(factor, known); near != "" {
 			remedies = []diag.Remedy{{Write: "between: " + near}}
 		}
-		b.fault(at, "unknown-factor", fmt.Sprintf("the study has no factor %q", factor), []string{"It has: " + strings.Join(unique(known), ", ") + "."}, remedies...)
+		b.fault(at, "unknown-factor", fmt.Sprintf("the study has no factor %q", factor),
+			[]string{"It has: " + strings.Join(unique(known), ", ") + "."}, remedies...)
 	case len(levels) == 1:
 		b.fault(at, "one-level", fmt.Sprintf("%s has only one level, %s, so there is nothing to compare", factor, levels[0]), nil, diag.Remedy{Say: "Take the contrast out, or name a factor with two levels."})
 	}
@@ -137,8 +142,10 @@ func (b *builder) sitesOfMechanisms() {
 			if _, own := c.Ends["Bmax"]; c.Mechanism == nil || c.Mechanism.Sites() > 0 || own {
 				continue
 			}
-			b.fault(indexed("data", i)+".response.Bmax", "no-sites", fmt.Sprintf("mechanism %q has no number of sites for Bmax to be", c.Name), nil,
-				diag.Remedy{Write: "Bmax: free"}, diag.Remedy{Say: "or say the number,", Write: "sites: 4"})
+			b.fault(indexed("data", i)+".response.Bmax", "no-sites",
+				fmt.Sprintf("mechanism %q has no number of sites for Bmax to be", c.Name), nil,
+				diag.Remedy{Write: "Bmax: free"}, diag.Remedy{Say: "or say the number,",
+					Write: "sites: 4"})
 		}
 	}
 }
@@ -170,7 +177,8 @@ func (b *builder) enoughPoints(p string, c *saturation.Candidate) {
 		free += b.freeEnds(d.Response, c.Ends)
 	}
 	if free >= points {
-		b.fault(b.nameOf(p), "too-few-points", fmt.Sprintf("%d points cannot hold %d constants", points, free),
+		b.fault(b.nameOf(p), "too-few-points", fmt.Sprintf("%d points cannot hold %d constants",
+			points, free),
 			[]string{"The free numbers of the response are counted, and each constant once for every level by which it differs."},
 			diag.Remedy{Say: "Measure more points, share or fix constants, or take this mechanism out."})
 	}
@@ -221,7 +229,8 @@ func (b *builder) assemblyNeedsSites(p string) {
 		if d.SitesPresent.Value > 0 || b.said(indexed("data", i)+".sites_present") {
 			continue
 		}
-		b.fault(p+".family", "missing-key", fmt.Sprintf("how far the parts assemble depends on their concentration, which data set %q does not say", d.Name), nil, diag.Remedy{Write: "sites_present: 80 uM", Where: "under the data set."})
+		b.fault(p+".family", "missing-key",
+			fmt.Sprintf("how far the parts assemble depends on their concentration, which data set %q does not say", d.Name), nil, diag.Remedy{Write: "sites_present: 80 uM", Where: "under the data set."})
 	}
 }
 
@@ -235,7 +244,10 @@ func (b *builder) displacement(i int) {
 		if c.Mechanism == nil || slices.Contains(c.Mechanism.Effectors(), of) {
 			continue
 		}
-		b.fault(b.nameOf(b.candidatePath(c.Name)), "ligand-not-bound", fmt.Sprintf("data set %q counts %s, which this mechanism does not bind", b.study.Data[i].Name, of), nil,
-			diag.Remedy{Write: fmt.Sprintf("effectors: {%s: {at: ligand site}}", plainOrQuoted(of))})
+		b.fault(b.nameOf(b.candidatePath(c.Name)), "ligand-not-bound",
+			fmt.Sprintf("data set %q counts %s, which this mechanism does not bind",
+				b.study.Data[i].Name, of), nil,
+			diag.Remedy{Write: fmt.Sprintf("effectors: {%s: {at: ligand site}}",
+				plainOrQuoted(of))})
 	}
 }

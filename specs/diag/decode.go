@@ -12,25 +12,30 @@ import (
 // longest bytes. A byte-order mark is passed over and reported in marked.
 func Decode(name string, data []byte, longest int) (text Text, marked bool, complaints List) {
 	saveAs := Remedy{Say: "Save the file again as plain text with the encoding UTF-8."}
-	if bytes.HasPrefix(data, []byte{0xff, 0xfe}) || bytes.HasPrefix(data, []byte{0xfe, 0xff}) || looksUTF16(data) {
-		return Text{}, false, List{{Code: "utf-16", Position: Position{File: name}, Problem: name + " is saved as UTF-16", Remedies: []Remedy{saveAs}}}
+	if bytes.HasPrefix(data, []byte{0xff, 0xfe}) || bytes.HasPrefix(data, []byte{0xfe, 0xff}) ||
+		looksUTF16(data) {
+		return Text{}, false, List{{Code: "utf-16", Position: Position{File: name},
+			Problem: name + " is saved as UTF-16", Remedies: []Remedy{saveAs}}}
 	}
 	data, marked = bytes.CutPrefix(data, []byte("\ufeff"))
 	text = NewText(name, data)
 	if i := bytes.IndexByte(data, 0); i >= 0 {
-		d := Diagnostic{Code: "binary-file", Position: text.byteAt(data, i), Problem: name + " is not a text file: it holds a zero byte",
+		d := Diagnostic{Code: "binary-file", Position: text.byteAt(data, i),
+			Problem:  name + " is not a text file: it holds a zero byte",
 			Remedies: []Remedy{{Say: "Export it as plain text from the program that wrote it."}}}
 		return text, marked, List{text.Quote(d)}
 	}
 	if !utf8.Valid(data) {
 		i := firstInvalid(data)
-		d := Diagnostic{Code: "not-utf-8", Position: text.byteAt(data, i), Problem: fmt.Sprintf("byte 0x%02X is not UTF-8", data[i]), Remedies: []Remedy{saveAs}}
+		d := Diagnostic{Code: "not-utf-8", Position: text.byteAt(data, i),
+			Problem: fmt.Sprintf("byte 0x%02X is not UTF-8", data[i]), Remedies: []Remedy{saveAs}}
 		return text, marked, List{text.Quote(d)}
 	}
 	for n, line := range text.Lines {
 		if len(line) > longest {
 			d := Diagnostic{Code: "line-too-long", Position: text.At(n+1, longest+1, longest+1),
-				Problem:  fmt.Sprintf("this line has %d bytes; a line may have %d", len(line), longest),
+				Problem: fmt.Sprintf("this line has %d bytes; a line may have %d", len(line),
+					longest),
 				Remedies: []Remedy{{Say: "Break it into several lines."}}}
 			return text, marked, List{text.Quote(d)}
 		}

@@ -135,7 +135,8 @@ func (l List) Capped(each int) List {
 	for k, n := range seen {
 		if n > each {
 			d := &kept[last[k]]
-			d.Notes = append(slices.Clone(d.Notes), fmt.Sprintf("There are %d more of this kind in %s.", n-each, k.file))
+			d.Notes = append(slices.Clone(d.Notes),
+				fmt.Sprintf("There are %d more of this kind in %s.", n-each, k.file))
 		}
 	}
 	return kept

@@ -41,7 +41,8 @@ func TestBlock(t *testing.T) {
 
 func TestRemedyWithCondition(t *testing.T) {
 	d := Diagnostic{Position: Position{File: "clam.csv"}, Problem: "p", Remedies: []Remedy{
-		{Say: "If the whole file has decimal commas, say", Write: "decimal: comma", Where: "under this data set in clam.yaml."},
+		{Say: "If the whole file has decimal commas, say", Write: "decimal: comma",
+			Where: "under this data set in clam.yaml."},
 		{Say: "Save the table again."}}}
 	want := `clam.csv   p
    If the whole file has decimal commas, say   decimal: comma   under this data set in clam.yaml.
@@ -56,7 +57,8 @@ func TestRemedyWithCondition(t *testing.T) {
 func marks(t *testing.T, line string, column, end int) (string, string) {
 	t.Helper()
 	src := NewText("f", []byte(line))
-	out := strings.Split(text(t, src.Quote(Diagnostic{Position: src.At(1, column, end), Problem: "p"})), "\n")
+	out := strings.Split(text(t, src.Quote(Diagnostic{Position: src.At(1, column, end),
+		Problem: "p"})), "\n")
 	return strings.TrimPrefix(out[1], "     1 | "), strings.TrimPrefix(out[2], "       | ")
 }
 
@@ -105,7 +107,8 @@ func TestLongLinesAreCut(t *testing.T) {
 		}
 	}
 	huge := strings.Repeat("x", 10<<20)
-	d := NewText("f", []byte(huge)).Quote(Diagnostic{Position: Position{"f", 1, 5 << 20, 5<<20 + 3, ""}})
+	d := NewText("f", []byte(huge)).Quote(Diagnostic{Position: Position{"f", 1, 5 << 20, 5<<20 + 3,
+		""}})
 	if len(d.Source) > 3*keptBytes {
 		t.Errorf("%d bytes of a long line are kept", len(d.Source))
 	}
@@ -122,7 +125,8 @@ func TestSortedAndOnce(t *testing.T) {
 	at := func(f string, l, c int) Diagnostic {
 		return Diagnostic{Position: Position{File: f, Line: l, Column: c}, Code: "x", Problem: "p"}
 	}
-	got := List{at("s.yaml", 5, 1), at("a.csv", 1, 1), at("s.yaml", 2, 9), at("s.yaml", 5, 1), at("s.yaml", 2, 1)}.Sorted()
+	got := List{at("s.yaml", 5, 1), at("a.csv", 1, 1), at("s.yaml", 2, 9), at("s.yaml", 5, 1),
+		at("s.yaml", 2, 1)}.Sorted()
 	want := List{at("s.yaml", 2, 1), at("s.yaml", 2, 9), at("s.yaml", 5, 1), at("a.csv", 1, 1)}
 	if diff := cmp.Diff(want, got); diff != "" {
 		t.Error(diff)
@@ -132,7 +136,8 @@ func TestSortedAndOnce(t *testing.T) {
 func TestCapped(t *testing.T) {
 	var l List
 	for i := range 50 {
-		l = append(l, Diagnostic{Code: "not-a-number", Position: Position{File: "a.csv", Line: i + 1}})
+		l = append(l, Diagnostic{Code: "not-a-number", Position: Position{File: "a.csv",
+			Line: i + 1}})
 	}
 	l = append(l, Diagnostic{Code: "other", Position: Position{File: "a.csv"}})
 	got := l.Capped(5)
@@ -145,7 +150,8 @@ func TestCapped(t *testing.T) {
 }
 
 func TestNearest(t *testing.T) {
-	valid := []string{"name", "file", "columns", "factors", "response", "ligand_axis", "noise", "K_half", "n_H"}
+	valid := []string{"name", "file", "columns", "factors", "response", "ligand_axis", "noise",
+		"K_half", "n_H"}
 	for word, want := range map[string]string{
 		"colums": "columns", "nosie": "noise", "ligand-axis": "ligand_axis", "Response": "response",
 		"k_half": "K_half", "xyzzy": "", "": "", "fil": "file", "n_h": "n_H",
@@ -158,7 +164,8 @@ func TestNearest(t *testing.T) {
 
 func TestJSON(t *testing.T) {
 	var b bytes.Buffer
-	d := Diagnostic{Severity: Warning, Code: "c", Position: Position{File: "f", Line: 1, Column: 2, End: 3}, Problem: "a < b"}
+	d := Diagnostic{Severity: Warning, Code: "c", Position: Position{File: "f", Line: 1, Column: 2,
+		End: 3}, Problem: "a < b"}
 	if err := WriteJSON(&b, List{d}); err != nil {
 		t.Fatal(err)
 	}
@@ -166,7 +173,8 @@ func TestJSON(t *testing.T) {
 	if err := json.Unmarshal(b.Bytes(), &rows); err != nil {
 		t.Fatal(err)
 	}
-	want := []map[string]any{{"severity": "warning", "code": "c", "file": "f", "line": 1.0, "column": 2.0, "end": 3.0, "problem": "a < b"}}
+	want := []map[string]any{{"severity": "warning", "code": "c", "file": "f", "line": 1.0,
+		"column": 2.0, "end": 3.0, "problem": "a < b"}}
 	if diff := cmp.Diff(want, rows); diff != "" {
 		t.Error(diff)
 	}

@@ -36,7 +36,8 @@ func visible(r rune, written string) string {
 		return string(rune(0x2400) + r)
 	case r == 0x7f:
 		return "␡"
-	case unicode.IsControl(r), unicode.In(r, unicode.Bidi_Control), r == 0xfeff, r == 0x2028, r == 0x2029, r == 0x200b, r == 0x2060:
+	case unicode.IsControl(r), unicode.In(r, unicode.Bidi_Control), r == 0xfeff, r == 0x2028,
+		r == 0x2029, r == 0x200b, r == 0x2060:
 		return fmt.Sprintf("<U+%04X>", r)
 	}
 	return written
@@ -46,8 +47,10 @@ func visible(r rune, written string) string {
 // under it would lie.
 func rightToLeft(s string) bool {
 	for _, r := range s {
-		if r > 0x590 && unicode.In(r, unicode.Hebrew, unicode.Arabic, unicode.Syriac, unicode.Thaana,
-			unicode.Nko, unicode.Samaritan, unicode.Mandaic, unicode.Adlam, unicode.Hanifi_Rohingya) {
+		if r > 0x590 && unicode.In(r, unicode.Hebrew, unicode.Arabic, unicode.Syriac,
+			unicode.Thaana,
+			unicode.Nko, unicode.Samaritan, unicode.Mandaic, unicode.Adlam,
+			unicode.Hanifi_Rohingya) {
 			return true
 		}
 	}

@@ -102,7 +102,8 @@ func writeSource(out io.Writer, d Diagnostic) {
 		span, _ := screen(d.Source[start:end])
 		fmt.Fprintf(out, "       | bytes %d to %d: %s\n", d.Column, max(d.End-1, d.Column), span)
 	default:
-		fmt.Fprintf(out, "       | %s%s\n", strings.Repeat(" ", v.before), strings.Repeat("‾", v.marks))
+		fmt.Fprintf(out, "       | %s%s\n", strings.Repeat(" ", v.before), strings.Repeat("‾",
+			v.marks))
 	}
 }
 

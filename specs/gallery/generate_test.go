@@ -36,7 +36,8 @@ func oyster() []byte {
 				q := l * math.Pow((1+ala/alaninT)/(1+ala/alaninR), sites)
 				bound := a*math.Pow(1+a, sites-1) + q*c*a*math.Pow(1+c*a, sites-1)
 				y := bound / (math.Pow(1+a, sites) + q*math.Pow(1+c*a, sites))
-				fmt.Fprintf(&b, "%s,%v,%v,%.4g\n", prep, ala, pep, v[i]*y*(1+scatter*r.NormFloat64()))
+				fmt.Fprintf(&b, "%s,%v,%v,%.4g\n", prep, ala, pep,
+					v[i]*y*(1+scatter*r.NormFloat64()))
 			}
 		}
 	}
@@ -76,7 +77,8 @@ func crab() []byte {
 						high = x
 					}
 				}
-				fmt.Fprintf(&b, "%s,%s,%v,%.4g\n", prep, tube, added, bound(low)*(1+scatter*r.NormFloat64()))
+				fmt.Fprintf(&b, "%s,%s,%v,%.4g\n", prep, tube, added,
+					bound(low)*(1+scatter*r.NormFloat64()))
 			}
 		}
 	}
@@ -84,7 +86,8 @@ func crab() []byte {
 }
 
 func TestInventedTables(t *testing.T) {
-	for name, data := range map[string][]byte{"studies/oyster/oyster.csv": oyster(), "studies/crab/crab.csv": crab()} {
+	for name, data := range map[string][]byte{"studies/oyster/oyster.csv": oyster(),
+		"studies/crab/crab.csv": crab()} {
 		if *update {
 			if err := os.WriteFile(name, data, 0o644); err != nil {
 				t.Fatal(err)

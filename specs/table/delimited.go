@@ -27,7 +27,8 @@ type delimited struct {
 func readDelimited(name string, data []byte) (*Table, diag.List) {
 	if len(bytes.TrimSpace(bytes.TrimPrefix(data, []byte("\ufeff")))) == 0 {
 		return nil, whole(name, "empty-table", name+" is empty",
-			diag.Remedy{Say: "Write a first line that names the columns, as", Write: "conc_uM,response"})
+			diag.Remedy{Say: "Write a first line that names the columns, as",
+				Write: "conc_uM,response"})
 	}
 	text, marked, complaints := diag.Decode(name, data, MaxLine)
 	if complaints != nil {
@@ -54,7 +55,8 @@ func readDelimited(name string, data []byte) (*Table, diag.List) {
 
 func (d *delimited) note(s string) { d.Notes = append(d.Notes, s) }
 
-func (d *delimited) complain(c Cell, code, problem string, notes []string, remedies ...diag.Remedy) {
+func (d *delimited) complain(c Cell, code, problem string, notes []string,
+	remedies ...diag.Remedy) {
 	d.complaints = append(d.complaints, d.Complain(c, code, problem, notes, remedies...))
 }
 
@@ -108,7 +110,8 @@ func (d *delimited) records(text string) {
 			return
 		}
 		if err != nil {
-			d.complaints = append(d.complaints, whole(d.Name, "unreadable", d.Name+" cannot be read: "+err.Error())...)
+			d.complaints = append(d.complaints, whole(d.Name, "unreadable",
+				d.Name+" cannot be read: "+err.Error())...)
 			return
 		}
 		if !d.take(r, record) {
@@ -150,7 +153,8 @@ func (d *delimited) header(cells []Cell) bool {
 		cells = cells[:len(cells)-1]
 	}
 	if len(cells) > MaxColumns {
-		d.complain(cells[MaxColumns], "too-many-columns", fmt.Sprintf("a table may have %d columns", MaxColumns), nil,
+		d.complain(cells[MaxColumns], "too-many-columns", fmt.Sprintf("a table may have %d columns",
+			MaxColumns), nil,
 			diag.Remedy{Say: "Write one row per measurement."})
 		return false
 	}
@@ -173,10 +177,13 @@ func (d *delimited) row(line int, cells []Cell) {
 	remedy := diag.Remedy{Say: "Write one cell for each column; an empty cell is nothing between two separators."}
 	if i := splitDecimal(cells); len(cells) > n && i >= 0 && d.separator == ',' {
 		at = cells[i]
-		notes = []string{fmt.Sprintf("A decimal comma may have cut %s,%s in two.", cells[i].Text, cells[i+1].Text)}
-		remedy = diag.Remedy{Write: cells[i].Text + "." + cells[i+1].Text, Where: "or separate the columns with semicolons."}
+		notes = []string{fmt.Sprintf("A decimal comma may have cut %s,%s in two.", cells[i].Text,
+			cells[i+1].Text)}
+		remedy = diag.Remedy{Write: cells[i].Text + "." + cells[i+1].Text,
+			Where: "or separate the columns with semicolons."}
 	}
-	d.complain(at, "ragged-row", fmt.Sprintf("this row has %s, the header has %d", count(len(cells), "cell"), n), notes, remedy)
+	d.complain(at, "ragged-row", fmt.Sprintf("this row has %s, the header has %d", count(len(cells),
+		"cell"), n), notes, remedy)
 }
 
 // splitDecimal finds two neighbouring cells that look like 0 and 83 of 0,83.
@@ -204,7 +211,8 @@ func (d *delimited) remarks(line int) {
 		n++
 		if d.started {
 			s := d.Text.Line(l)
-			w := d.Text.Quote(diag.Diagnostic{Severity: diag.Warning, Code: "hidden-row", Position: d.Text.At(l, 1, 1+len(s)),
+			w := d.Text.Quote(diag.Diagnostic{Severity: diag.Warning, Code: "hidden-row",
+				Position: d.Text.At(l, 1, 1+len(s)),
 				Problem:  "this line begins with # and is not read",
 				Remedies: []diag.Remedy{{Say: "To leave a measurement out, give the table a column of reasons and say", Write: "left_out: COLUMN", Where: "under columns."}}})
 			d.complaints = append(d.complaints, w)
@@ -217,15 +225,19 @@ func (d *delimited) remarks(line int) {
 
 // quoting complains of quotation marks in our own words.
 func (d *delimited) quoting(e *csv.ParseError) {
-	at, problem := d.Text.At(e.Line, e.Column, e.Column+1), "this cell holds a quotation mark but does not begin with one"
+	at, problem := d.Text.At(e.Line, e.Column, e.Column+1),
+		"this cell holds a quotation mark but does not begin with one"
 	if errors.Is(e.Err, csv.ErrQuote) {
-		at, problem = d.Text.At(e.Line, max(e.Column, 1), e.Column+1), "text follows the closing quotation mark of this cell"
+		at, problem = d.Text.At(e.Line, max(e.Column, 1), e.Column+1),
+			"text follows the closing quotation mark of this cell"
 		if e.StartLine != e.Line || e.Line >= len(d.Text.Lines) {
 			s := d.Text.Line(e.StartLine)
-			at, problem = d.Text.At(e.StartLine, max(strings.LastIndex(s, `"`)+1, 1), len(s)+1), "the quotation mark that opens here is never closed"
+			at, problem = d.Text.At(e.StartLine, max(strings.LastIndex(s, `"`)+1, 1), len(s)+1),
+				"the quotation mark that opens here is never closed"
 		}
 	}
-	d.complaints = append(d.complaints, d.Text.Quote(diag.Diagnostic{Code: "quotation-mark", Position: at, Problem: problem,
+	d.complaints = append(d.complaints, d.Text.Quote(diag.Diagnostic{Code: "quotation-mark",
+		Position: at, Problem: problem,
 		Remedies: []diag.Remedy{{Say: "Put the whole cell in quotation marks and double those inside it, as", Write: `"5"" disk"`}}}))
 }
 
@@ -235,11 +247,13 @@ func (d *delimited) judge() {
 	case len(d.Columns) == 0:
 		if len(d.complaints) == 0 {
 			d.complaints = whole(d.Name, "empty-table", d.Name+" holds no table, only remarks",
-				diag.Remedy{Say: "Write a line that names the columns, as", Write: "conc_uM,response"})
+				diag.Remedy{Say: "Write a line that names the columns, as",
+					Write: "conc_uM,response"})
 		}
 		return
 	case len(d.Columns) == 1:
-		d.complain(d.Columns[0], "one-column", d.Name+" has only one column", []string{"Columns are set apart by commas, semicolons or tabs."},
+		d.complain(d.Columns[0], "one-column", d.Name+" has only one column",
+			[]string{"Columns are set apart by commas, semicolons or tabs."},
 			diag.Remedy{Say: "Save the table again with one of these between the columns."})
 		return
 	}
@@ -249,12 +263,15 @@ func (d *delimited) judge() {
 		numbers = numbers && err == nil
 	}
 	if numbers {
-		d.complain(d.Columns[0], "no-header", "the first line holds numbers only, so the columns have no names", nil,
-			diag.Remedy{Say: "Write a first line that names the columns, as", Write: "conc_uM,response"})
+		d.complain(d.Columns[0], "no-header",
+			"the first line holds numbers only, so the columns have no names", nil,
+			diag.Remedy{Say: "Write a first line that names the columns, as",
+				Write: "conc_uM,response"})
 	}
 	d.repeated()
 	if len(d.Rows) == 0 && len(d.complaints) == 0 {
-		d.complain(d.Columns[0], "no-rows", d.Name+" has a header and no rows", nil, diag.Remedy{Say: "Write one row per measurement."})
+		d.complain(d.Columns[0], "no-rows", d.Name+" has a header and no rows", nil,
+			diag.Remedy{Say: "Write one row per measurement."})
 	}
 }
 
@@ -266,7 +283,8 @@ func (d *delimited) repeated() {
 			continue
 		}
 		if j, ok := seen[c.Text]; ok {
-			d.complain(c, "repeated-column", fmt.Sprintf("columns %d and %d are both named %q", j+1, i+1, c.Text), nil,
+			d.complain(c, "repeated-column", fmt.Sprintf("columns %d and %d are both named %q", j+1,
+				i+1, c.Text), nil,
 				diag.Remedy{Say: "Give each column a name of its own, as", Write: c.Text + "_2"})
 			continue
 		}

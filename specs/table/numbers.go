@@ -24,7 +24,9 @@ func (t *Table) Number(c Cell, column string) (float64, *diag.Diagnostic) {
 	text := c.Text
 	if t.Decimal == Comma {
 		if strings.Contains(text, ".") {
-			d := t.Complain(c, "not-a-number", fmt.Sprintf("column %s: %q has a point, but decimals are written with commas here", column, text), nil,
+			d := t.Complain(c, "not-a-number",
+				fmt.Sprintf("column %s: %q has a point, but decimals are written with commas here",
+					column, text), nil,
 				diag.Remedy{Write: withComma(text)})
 			return 0, &d
 		}
@@ -49,16 +51,19 @@ func withComma(s string) string {
 func (t *Table) notNumber(c Cell, column string, e *units.SyntaxError) diag.Diagnostic {
 	leaveOut := diag.Remedy{Say: "Write the number, or leave the row out: with a column of reasons, say", Write: "left_out: COLUMN", Where: "under columns."}
 	if c.IsEmpty() {
-		return t.Complain(c, "empty-cell", fmt.Sprintf("column %s: a number is missing", column), nil, leaveOut)
+		return t.Complain(c, "empty-cell", fmt.Sprintf("column %s: a number is missing", column),
+			nil, leaveOut)
 	}
 	problem := fmt.Sprintf("column %s: %s", column, e.Problem)
-	if t.Decimal == Point && strings.Count(c.Text, ",") == 1 && !strings.Contains(c.Text, ".") && e.Write != "" {
+	if t.Decimal == Point && strings.Count(c.Text, ",") == 1 && !strings.Contains(c.Text, ".") &&
+		e.Write != "" {
 		study := t.Study
 		if study == "" {
 			study = "the study"
 		}
 		return t.Complain(c, "decimal-comma", problem, nil,
-			diag.Remedy{Say: "If the whole file has decimal commas, say", Write: "decimal: comma", Where: "under this data set in " + study + "."},
+			diag.Remedy{Say: "If the whole file has decimal commas, say", Write: "decimal: comma",
+				Where: "under this data set in " + study + "."},
 			diag.Remedy{Say: "If only this cell has one, write", Write: e.Write})
 	}
 	if e.Write != "" {

@@ -28,7 +28,8 @@ var formats = []format{
 // there is nothing to work with.
 func Read(name string, data []byte) (*Table, diag.List) {
 	if len(data) > MaxBytes {
-		return nil, whole(name, "file-too-large", fmt.Sprintf("%s has %d MB; a table may have %d", name, len(data)>>20, MaxBytes>>20),
+		return nil, whole(name, "file-too-large", fmt.Sprintf("%s has %d MB; a table may have %d",
+			name, len(data)>>20, MaxBytes>>20),
 			diag.Remedy{Say: "Keep the measurements that the study needs, one row each."})
 	}
 	for _, f := range formats {
@@ -41,16 +42,19 @@ func Read(name string, data []byte) (*Table, diag.List) {
 
 // whole is a complaint about a file as a whole.
 func whole(name, code, problem string, remedies ...diag.Remedy) diag.List {
-	return diag.List{{Code: code, Position: diag.Position{File: name}, Problem: problem, Remedies: remedies}}
+	return diag.List{{Code: code, Position: diag.Position{File: name}, Problem: problem,
+		Remedies: remedies}}
 }
 
 // isWorkbook knows XLSX and ODS (zip archives) and the older XLS by their first bytes.
 func isWorkbook(_ string, data []byte) bool {
-	return bytes.HasPrefix(data, []byte("PK\x03\x04")) || bytes.HasPrefix(data, []byte("\xd0\xcf\x11\xe0"))
+	return bytes.HasPrefix(data, []byte("PK\x03\x04")) || bytes.HasPrefix(data,
+		[]byte("\xd0\xcf\x11\xe0"))
 }
 
 func refuseWorkbook(name string, _ []byte) (*Table, diag.List) {
 	csv := strings.TrimSuffix(path.Base(name), path.Ext(name)) + ".csv"
 	return nil, whole(name, "workbook", name+" is a spreadsheet workbook, which cannot be read yet",
-		diag.Remedy{Say: "Save the sheet as CSV (UTF-8) beside the study, and write", Write: "file: " + csv})
+		diag.Remedy{Say: "Save the sheet as CSV (UTF-8) beside the study, and write",
+			Write: "file: " + csv})
 }

@@ -115,6 +115,8 @@ func (t *Table) written(c Cell) int {
 }
 
 // Complain is a complaint about a cell, its line quoted.
-func (t *Table) Complain(c Cell, code, problem string, notes []string, remedies ...diag.Remedy) diag.Diagnostic {
-	return t.Text.Quote(diag.Diagnostic{Code: code, Position: t.At(c), Problem: problem, Notes: notes, Remedies: remedies})
+func (t *Table) Complain(c Cell, code, problem string, notes []string,
+	remedies ...diag.Remedy) diag.Diagnostic {
+	return t.Text.Quote(diag.Diagnostic{Code: code, Position: t.At(c), Problem: problem,
+		Notes: notes, Remedies: remedies})
 }

@@ -64,7 +64,8 @@ func TestNotesSayWhatWasRecognised(t *testing.T) {
 	table := read(t, "t.csv", "\ufeff# one\n# two\nx;y\n0,5;1,25\n2;3,5\n;\n")
 	table.FindDecimal([]int{0, 1})
 	want := []string{
-		"its byte-order mark was passed over", "its columns are set apart by semicolons", "2 lines of remarks above the header",
+		"its byte-order mark was passed over", "its columns are set apart by semicolons",
+		"2 lines of remarks above the header",
 		"1 row without any text passed over", "its decimal commas were read as such",
 	}
 	if diff := cmp.Diff(want, table.Notes); diff != "" {
@@ -78,7 +79,8 @@ func TestNotesSayWhatWasRecognised(t *testing.T) {
 // Quoted cells may hold separators, quotation marks and line ends (RFC 4180, section 2).
 func TestQuotedCells(t *testing.T) {
 	table := read(t, "t.csv", "x,note\n1,\"a \"\"b\"\", c\"\n2,\"two\nlines\"\n3,z\n")
-	if diff := cmp.Diff([][]string{{"1", `a "b", c`}, {"2", "two\nlines"}, {"3", "z"}}, cells(table)); diff != "" {
+	if diff := cmp.Diff([][]string{{"1", `a "b", c`}, {"2", "two\nlines"}, {"3", "z"}},
+		cells(table)); diff != "" {
 		t.Error(diff)
 	}
 	for i, line := range []int{2, 3, 5} {
@@ -91,7 +93,8 @@ func TestQuotedCells(t *testing.T) {
 func TestPlaces(t *testing.T) {
 	table := read(t, "clam.csv", "pH,prep,pO2_torr,sat\n7.0,B,9,\"0,83\"\n7.0,µ,10,0.9\n7.0, C ,\"1\"\"\",\n")
 	for _, c := range []struct{ row, column, from, end int }{
-		{0, 3, 9, 15}, {0, 0, 1, 4}, {1, 1, 5, 7}, {1, 3, 11, 14}, {2, 1, 5, 8}, {2, 2, 9, 14}, {2, 3, 15, 15},
+		{0, 3, 9, 15}, {0, 0, 1, 4}, {1, 1, 5, 7}, {1, 3, 11, 14}, {2, 1, 5, 8}, {2, 2, 9, 14},
+		{2, 3, 15, 15},
 	} {
 		p := table.At(table.Rows[c.row].Cells[c.column])
 		if p.Line != c.row+2 || p.Column != c.from || p.End != c.end {
@@ -337,7 +340,9 @@ func TestHugeInputs(t *testing.T) {
 
 func FuzzRead(f *testing.F) {
 	for _, s := range []string{
-		"x,y\n1,2\n", "x;y\n0,5;1\n", "\ufeff# r\nx\ty\n1\t2\n", "x,\"y\"\"\n1,2", "x,y\n1,\"2\n3\"\n#h\n", "a\rb,c\r1,2", "\xff\xfea\x00", "x,y,x\n1\n,,,\n", "\"\n\",b\n#\n1,2",
+		"x,y\n1,2\n", "x;y\n0,5;1\n", "\ufeff# r\nx\ty\n1\t2\n", "x,\"y\"\"\n1,2",
+		"x,y\n1,\"2\n3\"\n#h\n", "a\rb,c\r1,2", "\xff\xfea\x00", "x,y,x\n1\n,,,\n",
+		"\"\n\",b\n#\n1,2",
 	} {
 		f.Add([]byte(s))
 	}
@@ -363,7 +368,8 @@ func FuzzRead(f *testing.F) {
 			}
 			for _, c := range r.Cells {
 				p := table.At(c)
-				if line := table.Text.Line(p.Line); p.Line < 1 || p.Column < 1 || p.Column > len(line)+1 || p.End > len(line)+1 {
+				if line := table.Text.Line(p.Line); p.Line < 1 || p.Column < 1 ||
+					p.Column > len(line)+1 || p.End > len(line)+1 {
 					t.Fatalf("cell %q at %+v of line %q", c.Text, p, line)
 				}
 				table.Number(c, "x")

@@ -27,7 +27,8 @@ func ParseNumber(text string) (float64, error) {
 	case isDecimalComma(s):
 		e.Problem, e.Write = notNumber(s), strings.Replace(s, ",", ".", 1)
 	case isGrouped(s):
-		e.Problem, e.Write = notNumber(s), strings.NewReplacer(",", "", "_", "", " ", "", "'", "").Replace(s)
+		e.Problem, e.Write = notNumber(s), strings.NewReplacer(",", "", "_", "", " ", "", "'",
+			"").Replace(s)
 	case strings.Contains(lower, "nan"), strings.Contains(lower, "inf"):
 		e.Problem = fmt.Sprintf("%q is not a measurement", s)
 	case timesTen(s) != "":
@@ -45,9 +46,11 @@ func inRange(text, s string) (float64, error) {
 	v, _ := strconv.ParseFloat(s, 64)
 	switch {
 	case math.IsInf(v, 0):
-		return 0, &SyntaxError{Text: text, End: len(text), Problem: fmt.Sprintf("%q is too large", s)}
+		return 0, &SyntaxError{Text: text, End: len(text), Problem: fmt.Sprintf("%q is too large",
+			s)}
 	case math.Abs(v) < 1e-300 && strings.ContainsAny(mantissa(s), "123456789"):
-		return 0, &SyntaxError{Text: text, End: len(text), Problem: fmt.Sprintf("%q is too small", s), Write: "0"}
+		return 0, &SyntaxError{Text: text, End: len(text), Problem: fmt.Sprintf("%q is too small",
+			s), Write: "0"}
 	}
 	return v, nil
 }

@@ -35,9 +35,11 @@ func Parse(written string) (Unit, error) {
 	case s == "":
 		return Unit{}, &SyntaxError{Text: written, Problem: "the unit is empty", Write: "1"}
 	case len(s) > maxWritten:
-		return Unit{}, &SyntaxError{Text: written, End: len(written), Problem: "no unit is as long as this"}
+		return Unit{}, &SyntaxError{Text: written, End: len(written),
+			Problem: "no unit is as long as this"}
 	case !utf8.ValidString(s):
-		return Unit{}, &SyntaxError{Text: written, End: len(written), Problem: "the unit holds bytes that are not UTF-8"}
+		return Unit{}, &SyntaxError{Text: written, End: len(written),
+			Problem: "the unit holds bytes that are not UTF-8"}
 	}
 	scale, rest := cutLogarithm(s)
 	p := parser{text: rest}
@@ -47,7 +49,8 @@ func Parse(written string) (Unit, error) {
 	}
 	u.written, u.scale = s, scale
 	if scale != linear && u.zero != 0 {
-		return Unit{}, &SyntaxError{Text: written, End: len(written), Problem: "a temperature has no logarithm here"}
+		return Unit{}, &SyntaxError{Text: written, End: len(written),
+			Problem: "a temperature has no logarithm here"}
 	}
 	return u, nil
 }
@@ -73,7 +76,8 @@ func cutLogarithm(s string) (scaleKind, string) {
 			continue
 		}
 		after = strings.TrimSpace(after)
-		if strings.HasPrefix(after, "(") && strings.HasSuffix(after, ")") && strings.Count(after, "(") == 1 {
+		if strings.HasPrefix(after, "(") && strings.HasSuffix(after, ")") && strings.Count(after,
+			"(") == 1 {
 			after = strings.TrimSpace(after[1 : len(after)-1])
 		}
 		return scale, after
@@ -102,7 +106,8 @@ type parser struct {
 }
 
 func (p *parser) fail(start, end int, write, format string, args ...any) *SyntaxError {
-	return &SyntaxError{Text: p.text, Start: start, End: end, Problem: fmt.Sprintf(format, args...), Write: write}
+	return &SyntaxError{Text: p.text, Start: start, End: end, Problem: fmt.Sprintf(format, args...),
+		Write: write}
 }
 
 // all reads the whole text.
@@ -279,7 +284,8 @@ func (p *parser) symbol() (Unit, *SyntaxError) {
 	if after, ok := strings.CutPrefix(p.text[p.at:], "{"); ok {
 		i := strings.Index(after, "}")
 		if i < 0 {
-			return Unit{}, p.fail(p.at, len(p.text), p.text+"}", "the remark in %q is not closed", p.text)
+			return Unit{}, p.fail(p.at, len(p.text), p.text+"}", "the remark in %q is not closed",
+				p.text)
 		}
 		p.at += i + 2
 		if word == "" {
@@ -290,7 +296,8 @@ func (p *parser) symbol() (Unit, *SyntaxError) {
 		return u, nil
 	}
 	if word == "" {
-		return Unit{}, p.fail(start, min(start+1, len(p.text)), "", "%q does not belong in a unit", p.text[start:])
+		return Unit{}, p.fail(start, min(start+1, len(p.text)), "", "%q does not belong in a unit",
+			p.text[start:])
 	}
 	return Unit{}, p.unknown(start, word)
 }
@@ -313,8 +320,10 @@ func (p *parser) unknown(start int, word string) *SyntaxError {
 
 // common are the units that a mistaken word is compared with.
 var common = []string{
-	"M", "mM", "uM", "nM", "pM", "fM", "mol/L", "umol/L", "torr", "mmHg", "kPa", "Pa", "atm", "bar", "ppm",
-	"mg/mL", "ng/mL", "ug/mL", "mg", "mL", "ug", "nkat", "kat", "U", "fmol", "pmol", "nmol", "umol", "mol",
+	"M", "mM", "uM", "nM", "pM", "fM", "mol/L", "umol/L", "torr", "mmHg", "kPa", "Pa", "atm", "bar",
+	"ppm",
+	"mg/mL", "ng/mL", "ug/mL", "mg", "mL", "ug", "nkat", "kat", "U", "fmol", "pmol", "nmol", "umol",
+	"mol",
 	"percent", "fraction", "ms", "s", "min", "h", "degC", "Cel", "K",
 }
 

@@ -32,7 +32,8 @@ func ParseQuantity(text string) (Quantity, error) {
 	start := strings.Index(text, s)
 	n := numberLength(s)
 	number, unit := s[:n], strings.TrimSpace(s[n:])
-	if n == 0 || strings.HasPrefix(s[n:], ",") || strings.HasPrefix(s[n:], "_") || strings.HasPrefix(s[n:], "*10") {
+	if n == 0 || strings.HasPrefix(s[n:], ",") || strings.HasPrefix(s[n:], "_") ||
+		strings.HasPrefix(s[n:], "*10") {
 		number, unit = cutNumber(s)
 	}
 	v, err := ParseNumber(number)

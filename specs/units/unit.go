@@ -76,7 +76,10 @@ func (u Unit) IsNumber() bool { return !u.label && u.dim == dimension{} }
 func (u Unit) IsPercent() bool { return u.IsNumber() && u.factor() == 1 && u.exponent == -2 }
 
 // IsConcentration reports amount of substance per volume: M, umol/L.
-func (u Unit) IsConcentration() bool { return !u.label && u.dim == dimension{length: -3, amount: 1} }
+func (u Unit) IsConcentration() bool {
+	return !u.label && u.dim == dimension{length: -3,
+		amount: 1}
+}
 
 // IsPressure reports torr, kPa and their like.
 func (u Unit) IsPressure() bool {
@@ -185,7 +188,8 @@ func Convert(v float64, from, to Unit) (float64, error) {
 
 // sameScale reports whether numbers mean the same in both units.
 func (u Unit) sameScale(v Unit) bool {
-	return u.scale == v.scale && u.factor() == v.factor() && u.exponent == v.exponent && u.zero == v.zero
+	return u.scale == v.scale && u.factor() == v.factor() && u.exponent == v.exponent &&
+		u.zero == v.zero
 }
 
 // shift converts between linear units of one dimension.

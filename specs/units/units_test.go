@@ -75,7 +75,8 @@ func TestPowersOfTenAreExact(t *testing.T) {
 		from, to string
 		want     float64
 	}{
-		{5, "uM", "mM", 0.005}, {0.3, "mM", "uM", 300}, {1.7, "nM", "uM", 0.0017}, {60, "percent", "fraction", 0.6},
+		{5, "uM", "mM", 0.005}, {0.3, "mM", "uM", 300}, {1.7, "nM", "uM", 0.0017}, {60, "percent",
+			"fraction", 0.6},
 	} {
 		got, err := Convert(c.v, MustParse(c.from), MustParse(c.to))
 		if err != nil || got != c.want {
@@ -103,7 +104,8 @@ func TestLogarithms(t *testing.T) {
 		from, to string
 		want     float64
 	}{
-		{-6, "log10 M", "uM", 1}, {-6, "log10(M)", "uM", 1}, {6, "-log10 M", "uM", 1}, {0, "log10 uM", "M", 1e-6}, {1, "uM", "log10 M", -6},
+		{-6, "log10 M", "uM", 1}, {-6, "log10(M)", "uM", 1}, {6, "-log10 M", "uM", 1},
+		{0, "log10 uM", "M", 1e-6}, {1, "uM", "log10 M", -6},
 	} {
 		got, err := Convert(c.v, MustParse(c.from), MustParse(c.to))
 		if err != nil {
@@ -119,7 +121,8 @@ func TestLogarithms(t *testing.T) {
 
 func TestNeverConverts(t *testing.T) {
 	for _, c := range [][2]string{
-		{"torr", "uM"}, {"mg/mL", "mM"}, {"nkat", "nkat/mg"}, {"fmol/mg", "nM"}, {"s", "1/s"}, {"1", "M"}, {"degC", "torr"},
+		{"torr", "uM"}, {"mg/mL", "mM"}, {"nkat", "nkat/mg"}, {"fmol/mg", "nM"}, {"s", "1/s"},
+		{"1", "M"}, {"degC", "torr"},
 	} {
 		if v, err := Convert(1, MustParse(c[0]), MustParse(c[1])); err == nil {
 			t.Errorf("1 %s became %v %s", c[0], v, c[1])
@@ -136,24 +139,31 @@ func TestNeverConverts(t *testing.T) {
 
 func TestKinds(t *testing.T) {
 	for written, want := range map[string]string{
-		"mM": "a concentration", "torr": "a pressure", "mg/mL": "a mass per volume", "fmol/mg": "an amount per mass",
-		"nkat/mg": "a catalytic activity per mass", "1/s": "a rate constant of first order", "1/(M s)": "a rate constant of second order",
-		"percent": "a plain number", "min": "a time", "log10 M": "a logarithm of a concentration", "mol2": "something else",
+		"mM": "a concentration", "torr": "a pressure", "mg/mL": "a mass per volume",
+		"fmol/mg": "an amount per mass",
+		"nkat/mg": "a catalytic activity per mass", "1/s": "a rate constant of first order",
+		"1/(M s)": "a rate constant of second order",
+		"percent": "a plain number", "min": "a time", "log10 M": "a logarithm of a concentration",
+		"mol2": "something else",
 	} {
 		if got := MustParse(written).Kind(); got != want {
 			t.Errorf("%s is %s, want %s", written, got, want)
 		}
 	}
-	if !MustParse("percent").IsPercent() || MustParse("fraction").IsPercent() || MustParse("ppm").IsPercent() {
+	if !MustParse("percent").IsPercent() || MustParse("fraction").IsPercent() ||
+		MustParse("ppm").IsPercent() {
 		t.Error("percent and fraction are not told apart")
 	}
 }
 
 func TestUnitComplaints(t *testing.T) {
 	for written, want := range map[string]string{
-		"uMM": "uM", "micromolar": "uM", "mm Hg": "mmHg", "Torrs": "torr", "sec": "s", "hours": "h", "C": "degC", "MM": "mM",
-		"nkatt/mg": "nkat/mg", "1/(M s": "1/(M s)", "log10 uMM": "log10 uM", "": "1", "furlongs": "", "mM/": "", "M^": "", "mM)": "",
-		"((((((M": "", "M99": "", "M0": "", "M9.M9": "", "$": "", "log10 degC": "", "mm{x": "mm{x}", "optical density": "", "µ": "",
+		"uMM": "uM", "micromolar": "uM", "mm Hg": "mmHg", "Torrs": "torr", "sec": "s", "hours": "h",
+		"C": "degC", "MM": "mM",
+		"nkatt/mg": "nkat/mg", "1/(M s": "1/(M s)", "log10 uMM": "log10 uM", "": "1",
+		"furlongs": "", "mM/": "", "M^": "", "mM)": "",
+		"((((((M": "", "M99": "", "M0": "", "M9.M9": "", "$": "", "log10 degC": "", "mm{x": "mm{x}",
+		"optical density": "", "µ": "",
 		"GM": "uM",
 	} {
 		u, err := Parse(written)
@@ -176,15 +186,18 @@ func TestUnitComplaints(t *testing.T) {
 
 func TestNumbers(t *testing.T) {
 	for text, want := range map[string]float64{
-		"5": 5, "-0.3": -0.3, "+2": 2, ".5": 0.5, "5.": 5, "1e-9": 1e-9, "1E-9": 1e-9, "1e+3": 1000, " 7 ": 7, "0": 0, "0e-400": 0,
+		"5": 5, "-0.3": -0.3, "+2": 2, ".5": 0.5, "5.": 5, "1e-9": 1e-9, "1E-9": 1e-9, "1e+3": 1000,
+		" 7 ": 7, "0": 0, "0e-400": 0,
 	} {
 		if got, err := ParseNumber(text); err != nil || got != want {
 			t.Errorf("%q = %v, %v", text, got, err)
 		}
 	}
 	for text, write := range map[string]string{
-		"0,83": "0.83", "-1,5e-3": "-1.5e-3", "1,234,567": "1234567", "1_000": "1000", "12 000": "12000", "5*10^-3": "5e-3", "5x10-3": "5e-3",
-		"10^-3": "1e-3", "−5": "-5", "1e-400": "0", "": "", "abc": "", "NaN": "", "Inf": "", "-inf": "", "0x1F": "", "1e999": "", "1.2.3": "",
+		"0,83": "0.83", "-1,5e-3": "-1.5e-3", "1,234,567": "1234567", "1_000": "1000",
+		"12 000": "12000", "5*10^-3": "5e-3", "5x10-3": "5e-3",
+		"10^-3": "1e-3", "−5": "-5", "1e-400": "0", "": "", "abc": "", "NaN": "", "Inf": "",
+		"-inf": "", "0x1F": "", "1e999": "", "1.2.3": "",
 		"1.234,5": "", "e5": "", "-": "", ".": "", "5e": "", "1 2 x": "", "<0.01": "", "n.d.": "",
 	} {
 		v, err := ParseNumber(text)
@@ -199,8 +212,10 @@ func TestNumbers(t *testing.T) {
 
 func TestQuantities(t *testing.T) {
 	for text, want := range map[string]string{
-		"5 mM": "5 mM", "0.30 mg/mL": "0.3 mg/mL", "90 min": "90 min", "15 degC": "15 degC", "5mM": "5 mM", "1e7 1/(M s)": "1e+07 1/(M s)",
-		"1e3 1/s": "1000 1/s", "80 μM": "80 µM", "7.0": "7", "50 %": "50 %", " 3  h ": "3 h", "5E-3 M": "0.005 M", "5 e": "",
+		"5 mM": "5 mM", "0.30 mg/mL": "0.3 mg/mL", "90 min": "90 min", "15 degC": "15 degC",
+		"5mM": "5 mM", "1e7 1/(M s)": "1e+07 1/(M s)",
+		"1e3 1/s": "1000 1/s", "80 μM": "80 µM", "7.0": "7", "50 %": "50 %", " 3  h ": "3 h",
+		"5E-3 M": "0.005 M", "5 e": "",
 	} {
 		q, err := ParseQuantity(text)
 		if want == "" {
@@ -214,7 +229,8 @@ func TestQuantities(t *testing.T) {
 		}
 	}
 	for text, write := range map[string]string{
-		"1,5 mM": "1.5 mM", "5 uMM": "5 uM", "mM": "", "": "", "5 mM mM )": "", "5 log10 M": "", "5*10^-3 M": "5e-3 M", "ninety min": "",
+		"1,5 mM": "1.5 mM", "5 uMM": "5 uM", "mM": "", "": "", "5 mM mM )": "", "5 log10 M": "",
+		"5*10^-3 M": "5e-3 M", "ninety min": "",
 	} {
 		q, err := ParseQuantity(text)
 		var e *SyntaxError
@@ -231,12 +247,15 @@ func TestQuantities(t *testing.T) {
 // There and back again changes nothing, between any two units of one kind.
 func TestRoundTrips(t *testing.T) {
 	groups := [][]string{
-		{"M", "mM", "uM", "µM", "nM", "pM", "fM", "mol/L", "umol/L"}, {"torr", "mmHg", "kPa", "Pa", "atm", "bar"},
-		{"mg/mL", "ng/mL", "g/L"}, {"nkat/mg", "U/mg"}, {"ms", "s", "min", "h"}, {"degC", "K"}, {"log10 M", "uM", "-log10 nM"},
+		{"M", "mM", "uM", "µM", "nM", "pM", "fM", "mol/L", "umol/L"}, {"torr", "mmHg", "kPa", "Pa",
+			"atm", "bar"},
+		{"mg/mL", "ng/mL", "g/L"}, {"nkat/mg", "U/mg"}, {"ms", "s", "min", "h"}, {"degC", "K"},
+		{"log10 M", "uM", "-log10 nM"},
 	}
 	rapid.Check(t, func(t *rapid.T) {
 		g := rapid.SampledFrom(groups).Draw(t, "kind")
-		a, b := MustParse(rapid.SampledFrom(g).Draw(t, "from")), MustParse(rapid.SampledFrom(g).Draw(t, "to"))
+		a, b := MustParse(rapid.SampledFrom(g).Draw(t, "from")),
+			MustParse(rapid.SampledFrom(g).Draw(t, "to"))
 		v := rapid.Float64Range(0.01, 5).Draw(t, "value")
 		w, err := Convert(v, a, b)
 		if err != nil {
@@ -250,7 +269,8 @@ func TestRoundTrips(t *testing.T) {
 }
 
 func FuzzParseQuantity(f *testing.F) {
-	for _, s := range []string{"5 mM", "1e7 1/(M s)", "log10 M", "-log10(M)", "mol·L⁻¹", "((M", "M^-", "{x}", "mm[Hg]", "1,5 uMM", "%", "5*10^-3 M", "°C/K"} {
+	for _, s := range []string{"5 mM", "1e7 1/(M s)", "log10 M", "-log10(M)", "mol·L⁻¹", "((M",
+		"M^-", "{x}", "mm[Hg]", "1,5 uMM", "%", "5*10^-3 M", "°C/K"} {
 		f.Add(s)
 	}
 	f.Fuzz(func(t *testing.T, s string) {
