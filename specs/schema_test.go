@@ -1,6 +1,16 @@
 package specs
 
 import (
+	"bytes"
+	"io/fs"
+	"os"
+	"path/filepath"
+
+	"github.com/santhosh-tekuri/jsonschema/v6"
+	"gopkg.in/yaml.v3"
+
+	"ligancy/specs/gallery"
+
 	"encoding/json"
 	"slices"
 	"testing"
@@ -87,6 +97,57 @@ func checkExamples[T any](t *testing.T, record string, keys []key[T]) {
 			len(r.complaints)+len(doc.complaints) > 0 {
 			t.Errorf("%s, key %s: the example %q cannot be read: %v %v", record, k.name, k.example,
 				r.complaints, doc.complaints)
+		}
+	}
+}
+
+// A validator of JSON Schema accepts the studies that the reader accepts, and
+// refuses a key that means nothing.
+func TestSchemaBeforeAValidator(t *testing.T) {
+	doc, err := jsonschema.UnmarshalJSON(bytes.NewReader(Schema()))
+	if err != nil {
+		t.Fatal(err)
+	}
+	c := jsonschema.NewCompiler()
+	if err := c.AddResource("study.json", doc); err != nil {
+		t.Fatal(err)
+	}
+	schema, err := c.Compile("study.json")
+	if err != nil {
+		t.Fatal(err)
+	}
+	studies := map[string]string{"base": base, "surface": surface}
+	for _, name := range gallery.Names() {
+		text, err := fs.ReadFile(gallery.Files(name), name+".yaml")
+		if err != nil {
+			t.Fatal(err)
+		}
+		studies[name] = string(text)
+	}
+	files, _ := filepath.Glob("../testdata/*.yaml")
+	for _, f := range files {
+		text, err := os.ReadFile(f)
+		if err != nil {
+			t.Fatal(err)
+		}
+		studies[f] = string(text)
+	}
+	for name, text := range studies {
+		var v any
+		if err := yaml.Unmarshal([]byte(text), &v); err != nil {
+			t.Fatal(err)
+		}
+		if err := schema.Validate(v); err != nil {
+			t.Errorf("%s: %v", name, err)
+		}
+	}
+	for _, e := range []edit{{"noise:", "nosie:"}, {"sites: 4}", "sites: 4, zebra: 1}"}, {"kind: saturation", "kind: saturated"}, {"format: ligancy/1\n", ""}} {
+		var v any
+		if err := yaml.Unmarshal([]byte(spoil(t, base, []edit{e})), &v); err != nil {
+			t.Fatal(err)
+		}
+		if schema.Validate(v) == nil {
+			t.Errorf("%q is accepted", e.to)
 		}
 	}
 }
