@@ -26,16 +26,16 @@ type average struct {
 
 	scaled bool // Horner's scheme is safe
 	lifted bool // q is written for the bound θ
-	s      float64
+	s, mu  float64
 	b, bo  []float64 // n+1: b_i and b_i o_i
 	e      []float64 // (n+1)×k: E_ik
 	q      []float64 // k×(2n+1)
 
-	axis        axis
-	lnW, p, eps []float64 // n+1, n+1, (n+1)×k: terms of one point
-	lnP         float64   // ln Σ B_i xⁱ
-	dMean, dCov []float64 // k: ∂ln P/∂θ and Cov(i, ∂ln B_i/∂θ)
-	jets        jet
+	axis         axis
+	term, p, eps []float64 // n+1, n+1, (n+1)×k: terms of one point
+	lnP          float64   // ln Σ B_i xⁱ
+	dMean, dCov  []float64 // k: ∂ln P/∂θ and Cov(i, ∂ln B_i/∂θ)
+	jets         jet
 }
 
 func newAverage(c *coefficients, o, rest, do []float64) *average {
@@ -44,7 +44,7 @@ func newAverage(c *coefficients, o, rest, do []float64) *average {
 		c: c, o: o, rest: rest, do: do,
 		b: make([]float64, n+1), bo: make([]float64, n+1),
 		e: make([]float64, (n+1)*k), q: make([]float64, k*(2*n+1)),
-		lnW: make([]float64, n+1), p: make([]float64, n+1), eps: make([]float64, (n+1)*k),
+		term: make([]float64, n+1), p: make([]float64, n+1), eps: make([]float64, (n+1)*k),
 		dMean: make([]float64, k), dCov: make([]float64, k), jets: newJet(k),
 	}
 }
@@ -62,16 +62,16 @@ func (a *average) rebind() {
 		return
 	}
 	a.s = -(c.lnB[n] - c.lnB[0]) / float64(n)
-	mu := math.Inf(-1)
+	a.mu = math.Inf(-1)
 	for i, l := range c.lnB {
-		mu = math.Max(mu, l+float64(i)*a.s)
+		a.mu = math.Max(a.mu, l+float64(i)*a.s)
 	}
 	for i, l := range c.lnB {
 		zero := math.IsInf(l, -1)
 		if zero {
 			l = 0
 		}
-		t := l + float64(i)*a.s - mu
+		t := l + float64(i)*a.s - a.mu
 		if !(t > -spread && t < spread) {
 			a.scaled = false
 			return

@@ -14,7 +14,8 @@ type Definition struct {
 	Parts         []Part           // `parts: {tight: 1, loose: 1}` or a mechanism per part
 	Small, Large  *Part            // `small: …`, `large: …` of an assembly
 	Conformations []Conformation   // `conformations: {A: {sites: 2, K: K_A}}`
-	States        []State          // `states: [{name: E, ligands: 0}]`
+	States        []State          // `states: [{name: E, ligands: 0}]`; of a cycle, names alone
+	Steps         []Step           // `steps: [{from: E, to: ES, ligand: 1, rate: k1, back: k2}]` of a cycle
 	Constants     map[string]Given // `constants: {K_R: {start: 1}}`, keys as Constant.Key writes them
 
 	// SiteScale asks for the site constants themselves to be fitted, on ln
@@ -74,6 +75,15 @@ type State struct {
 	Effectors map[string]int
 	Ways      int                // degeneracy; 0 means 1
 	Constants map[string]float64 // exponents that multiply the weight
+}
+
+// Step is one step of a cycle.
+type Step struct {
+	From, To   string
+	Ligands    int    // of the varied ligand, taken up on the way
+	Effector   string // another ligand taken up; "" for none
+	Rate, Back string // names of the rate constants; Back "" where there is no way back
+	Product    bool   // `yields: product`: the step is counted as turnover
 }
 
 // Given is what the study says of one constant; nil means not said.

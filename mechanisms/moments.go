@@ -20,14 +20,18 @@ func (a *average) terms(lnx float64, grad bool) {
 		a.limit(lnx < 0)
 		return
 	}
+	if t := lnx - a.s; a.scaled && math.Abs(t)*float64(a.c.n) <= 400 {
+		a.powers(t, grad)
+		return
+	}
 	c := a.c
 	top := math.Inf(-1)
 	for i, l := range c.lnB {
-		a.lnW[i] = l + float64(i)*lnx
-		top = math.Max(top, a.lnW[i])
+		a.term[i] = l + float64(i)*lnx
+		top = math.Max(top, a.term[i])
 	}
 	var z float64
-	for i, l := range a.lnW {
+	for i, l := range a.term {
 		a.p[i] = math.Exp(l - top)
 		z += a.p[i]
 	}
@@ -44,6 +48,40 @@ func (a *average) terms(lnx float64, grad bool) {
 		e := a.eps[i*c.k : (i+1)*c.k]
 		for k, d := range c.row(i) {
 			e[k] = unit * d
+		}
+	}
+}
+
+// powers is terms by powers of z = eᵗ, t = ln x − s, or of 1/z where that is
+// smaller: one exponential for all.
+func (a *average) powers(t float64, grad bool) {
+	n, z := a.c.n, math.Exp(-math.Abs(t))
+	a.lnP = a.mu
+	if t > 0 {
+		a.lnP += float64(n) * t
+	}
+	w, sum := 1.0, 0.0
+	for j := range a.p {
+		i := j
+		if t > 0 {
+			i = n - j
+		}
+		a.term[i] = w
+		a.p[i] = a.b[i] * w
+		sum += a.p[i]
+		w *= z
+	}
+	a.lnP += math.Log(sum)
+	k := a.c.k
+	for i := range a.p {
+		a.p[i] /= sum
+		if !grad {
+			continue
+		}
+		w := a.term[i] / sum
+		eps := a.eps[i*k : (i+1)*k]
+		for m, e := range a.e[i*k : (i+1)*k] {
+			eps[m] = w * e
 		}
 	}
 }

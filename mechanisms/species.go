@@ -27,6 +27,7 @@ func newSpecies(s part) *species {
 func (s *species) settle(theta []float64, env Environment) {
 	s.bind(theta, env)
 	s.smooth.(factored).polynomial()
+	s.sum.rebind()
 	zero := s.poly
 	if s.bare != nil {
 		for i, b := range s.local {

@@ -105,6 +105,7 @@ func (w *watch) scale() {
 			d[k] = sign * (d[k] - part*w.dSpan[k]) / w.span
 		}
 	}
+	w.share.rebind()
 }
 
 // observe writes the observable of every state.
