@@ -59,6 +59,9 @@ func (b *builder) definition(p string, m *Mechanism,
 	if reads("states") {
 		d.States = asStates(m.States)
 	}
+	if reads("steps") {
+		d.Steps = asSteps(m.Steps)
+	}
 	d.Constants = b.given(p+".constants", m.Constants)
 	return d
 }
@@ -142,6 +145,15 @@ func asStates(list []State) []mechanisms.State {
 			st.Constants[e.Name] = e.Value
 		}
 		out = append(out, st)
+	}
+	return out
+}
+
+func asSteps(list []Step) []mechanisms.Step {
+	var out []mechanisms.Step
+	for _, s := range list {
+		out = append(out, mechanisms.Step{From: s.From, To: s.To, Ligands: s.Ligand, Effector: s.Effector,
+			Rate: s.Rate, Back: s.Back, Product: s.Yields != ""})
 	}
 	return out
 }
