@@ -77,7 +77,7 @@ type curvesLayout struct {
 func (c *Curves) Draw(s Style) *Drawing {
 	l := &curvesLayout{Curves: c, s: s, d: &Drawing{Width: s.Width, Title: c.Name, Description: c.Description}}
 	y := l.keys()
-	y = l.field(y + 2.1*s.Size)
+	y = l.field(y + 2.6*s.Size)
 	if c.Rulers {
 		y = l.rulers(y)
 	}
@@ -102,7 +102,7 @@ func (l *curvesLayout) keys() float64 {
 	for _, r := range l.Rivals {
 		if r.Shown {
 			f, w := lineSample(Muted, 1.8, dashes[r.Dash%len(dashes)])
-			entries = append(entries, keyEntry{f, w, Words(Sans, r.Name)})
+			entries = append(entries, keyEntry{f, w, Prose(Sans, r.Name)})
 		}
 	}
 	if !l.Dense && len(l.Preparations) > 1 && len(l.Preparations) <= Shapes {
@@ -372,11 +372,11 @@ func (l *curvesLayout) names() {
 			busy.at = append(busy.at, XY{l.x.at(q.X), l.main.y.held(q.Y)})
 		}
 	}
+	var curves []named
 	for i, line := range l.Lines {
-		label := Words(SansBold, line.Name).Cut(l.s.Size, 0.4*(l.x.x1-l.x.x0))
-		at := busy.place(between(l.main.places(line.At), l.x.x0, l.x.x1), label.Width(l.s.Size), l.s.Size, l.main)
-		l.d.add(&lettering{x: at.X, y: at.Y, size: l.s.Size, ink: NameInk(l.lead + i), runs: label, halo: true})
+		curves = append(curves, named{line.Name, line.Short, NameInk(l.lead + i), between(l.main.places(line.At), l.x.x0, l.x.x1)})
 	}
+	busy.names(l.main, curves)
 }
 
 // rulers draws one ruler a curve: thick from 10 to 90 %, thin from 1 to 99 %,

@@ -19,7 +19,7 @@ type HillPlot struct {
 
 // HillLine is one curve. What does not exist is NaN.
 type HillLine struct {
-	Name        string
+	Name, Short string
 	At          []XY // ligand, log10[Ȳ/(1−Ȳ)]
 	From, To    float64
 	Half        float64
@@ -58,7 +58,6 @@ func (f *HillPlot) Draw(s Style) *Drawing {
 	}
 	f.marks(p)
 	f.distances(p)
-	f.names(p)
 	p.reading(false, all(len(f.Lines))...)
 	if f.Remark != "" {
 		below += s.lead()
@@ -127,8 +126,13 @@ func (f *HillPlot) marks(p *panel) {
 	}
 }
 
-// distances draws the distance of the asymptotes at half saturation.
+// distances draws the distance of the asymptotes at half saturation, then the
+// names of the curves, clear of one another.
 func (f *HillPlot) distances(p *panel) {
+	var busy obstacles
+	for _, l := range f.Lines {
+		busy.polyline(between(p.places(l.At), p.x.x0, p.x.x1))
+	}
 	for i, l := range f.Lines {
 		if l.Distance == "" || !(l.Half > 0) || !p.x.inside(l.Half) || !finite(l.First) || !finite(l.Last) {
 			continue
@@ -139,29 +143,18 @@ func (f *HillPlot) distances(p *panel) {
 			continue
 		}
 		x := p.x.at(l.Half)
-		p.d.line(x, p.y.at(lo), x, p.y.at(hi), CurveInk(i), 1)
+		line := []XY{{x, p.y.at(lo)}, {x, p.y.at(hi)}}
+		p.d.line(x, line[0].Y, x, line[1].Y, CurveInk(i), 1)
+		busy.polyline(line)
 		label := Words(Sans, l.Distance)
-		y, anchor, dx := p.y.at(hi)+1.2*p.s.Size+1.4*p.s.Size*float64(i), End, -0.5*p.s.Size
-		if x-label.Width(p.s.Size) < p.x.x0+p.s.Size {
-			anchor, dx = Start, 0.5*p.s.Size
-		}
-		p.d.add(&lettering{x: x + dx, y: y, anchor: anchor, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
-	}
-}
-
-func (f *HillPlot) names(p *panel) {
-	if len(f.Lines) < 2 {
-		return
-	}
-	var busy obstacles
-	for _, l := range f.Lines {
-		busy.polyline(between(p.places(l.At), p.x.x0, p.x.x1))
-	}
-	for i, l := range f.Lines {
-		label := Words(SansBold, l.Name).Cut(p.s.Size, 0.4*(p.x.x1-p.x.x0))
-		at := busy.place(between(p.places(l.At), p.x.x0, p.x.x1), label.Width(p.s.Size), p.s.Size, p)
+		at := busy.along(line, label.Width(p.s.Size), p.s.Size, p)
 		p.d.add(&lettering{x: at.X, y: at.Y, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
 	}
+	var curves []named
+	for i, l := range f.Lines {
+		curves = append(curves, named{l.Name, l.Short, NameInk(i), between(p.places(l.At), p.x.x0, p.x.x1)})
+	}
+	busy.names(p, curves)
 }
 
 // all lists 0 … n−1.

@@ -1,6 +1,7 @@
 package figure
 
 import (
+	"regexp"
 	"strings"
 	"unicode"
 )
@@ -76,6 +77,33 @@ func Symbol(name string) Label {
 	}
 	return l.And(Words(Serif, rest))
 }
+
+// Prose sets words in a face, with quantities among them as the trade prints
+// them: "concerted, K_R differs", "1.5e3 torr".
+func Prose(f Face, s string) Label {
+	var l Label
+	rest := s
+	for _, m := range quantities.FindAllStringSubmatchIndex(s, -1) {
+		part := func(k int) string {
+			if m[2*k] < 0 {
+				return ""
+			}
+			return s[m[2*k]:m[2*k+1]]
+		}
+		l = append(l, Words(f, s[len(s)-len(rest):m[0]])...)
+		rest = s[m[1]:]
+		if base := part(1); base != "" {
+			l = append(l, Run{Text: base, Face: SerifItalic}, Run{Text: part(2), Face: f, Rise: Sub})
+			continue
+		}
+		l = append(l, Run{Text: part(3) + "\u2009·\u200910", Face: f}, Run{Text: minus(part(4)), Face: f, Rise: Super})
+	}
+	return append(l, Words(f, rest)...)
+}
+
+// quantities in running text: a symbol of at most three letters with an index,
+// or a number with an exponent.
+var quantities = regexp.MustCompile(`\b([A-Za-zα-ωΔ]{1,3})_([A-Za-z0-9]+(?:\.[0-9]+)?)\b|\b([0-9]+(?:\.[0-9]+)?)e(-?[0-9]+)\b`)
 
 func isKd(s string) bool { return strings.HasPrefix(s, "Kd") && onlyDigits(s[2:]) }
 

@@ -122,3 +122,15 @@ func markSample(n int, r float64) (func(*Drawing, float64, float64), float64) {
 		d.add(&stroke{path: p, ink: Text, fill: Ground, width: 1.2})
 	}, 2.8 * r
 }
+
+// DashPattern is the dash of the n-th rival as an attribute of SVG.
+func DashPattern(n int) string {
+	s := svgWriter{places: 1}
+	for i, x := range dashes[n%len(dashes)] {
+		if i > 0 {
+			s.b.WriteByte(' ')
+		}
+		s.b.WriteString(s.num(x))
+	}
+	return s.b.String()
+}

@@ -29,6 +29,8 @@ type Population struct {
 type State struct {
 	Name string
 	At   []XY
+
+	place int // among the states of its curve
 }
 
 // seldom is the share that a state must reach somewhere on the axis to be drawn.
@@ -75,23 +77,35 @@ func (f *Populations) field(d *Drawing, s Style, pop Population, x, y, width flo
 	for _, st := range states {
 		busy.polyline(between(p.places(st.At), p.x.x0, p.x.x1))
 	}
-	for i, st := range states {
-		p.state(st, pop, i)
+	for _, st := range states {
+		p.state(st, pop)
 	}
 	for _, st := range states {
-		top := f.top(st)
-		label := Words(Sans, st.Name).Cut(s.Size, 0.45*width)
-		w := label.Width(s.Size)
-		at := busy.beside(XY{p.x.at(top.X), p.y.at(top.Y)}, w, s.Size, p)
-		d.add(&lettering{x: at.X, y: at.Y, size: s.Size, ink: NameInk(pop.Ink), runs: label, halo: true})
+		f.label(p, st, pop.Ink, &busy)
 	}
 	p.reading(false, pop.Curve)
 	return below
 }
 
+// label names a state beside the top of its line, with a hairline to it where
+// it has to stand apart.
+func (f *Populations) label(p *panel, st State, ink int, busy *obstacles) {
+	size := p.s.Size
+	top := f.top(st)
+	tip := XY{p.x.at(top.X), p.y.at(top.Y)}
+	label := Words(Sans, st.Name).Cut(size, 0.45*(p.x.x1-p.x.x0))
+	w := label.Width(size)
+	at := busy.beside(tip, w, size, p)
+	near := XY{min(max(tip.X, at.X), at.X+w), min(max(tip.Y, at.Y-0.7*size), at.Y)}
+	if math.Hypot(near.X-tip.X, near.Y-tip.Y) > 1.6*size {
+		p.d.line(near.X, near.Y, tip.X, tip.Y, Muted, 0.7)
+	}
+	p.d.add(&lettering{x: at.X, y: at.Y, size: size, ink: NameInk(ink), runs: label, halo: true})
+}
+
 // state draws one state's line: thin beyond the tested range, each with a dash of its own.
-func (p *panel) state(st State, pop Population, i int) {
-	dash := [][]float64{nil, {6, 3}, {2, 2.5}, {9, 3, 2, 3}, {4, 2}, {1, 2}, {12, 3}, {6, 2, 1, 2, 1, 2}}[i%8]
+func (p *panel) state(st State, pop Population) {
+	dash := [][]float64{nil, {6, 3}, {2, 2.5}, {9, 3, 2, 3}, {4, 2}, {1, 2}, {12, 3}, {6, 2, 1, 2, 1, 2}}[st.place%8]
 	at := p.places(st.At)
 	for _, part := range [][3]float64{{p.x.x0, p.x.at(pop.From), 1}, {p.x.at(pop.From), p.x.at(pop.To), 1.9}, {p.x.at(pop.To), p.x.x1, 1}} {
 		if !(pop.From > 0) {
@@ -124,6 +138,7 @@ func (f *Populations) drawn(pop Population) []State {
 	out := make([]State, len(all))
 	for k, r := range all {
 		out[k] = pop.States[r.i]
+		out[k].place = r.i
 	}
 	return out
 }

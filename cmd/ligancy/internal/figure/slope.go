@@ -22,7 +22,7 @@ type Slope struct {
 
 // SlopeLine is n_H along one curve of the leader. What does not exist is NaN.
 type SlopeLine struct {
-	Name          string
+	Name, Short   string
 	At, Low, High []XY
 	From, To      float64 // tested range
 	Half, Max     XY      // ligand and n_H there
@@ -40,7 +40,7 @@ func (f *Slope) Draw(s Style) *Drawing {
 	if !s.narrow() {
 		margin = Words(Sans, "0.00 decades").Width(s.Size) + s.Size
 	}
-	p := &panel{d: d, s: s, ligand: f.Ligand, x: newLogAxis(f.Ligand, left, math.Floor(s.Width-margin)), top: y + 2.1*s.Size}
+	p := &panel{d: d, s: s, ligand: f.Ligand, x: newLogAxis(f.Ligand, left, math.Floor(s.Width-margin)), top: y + 2.6*s.Size}
 	p.bottom = p.top + max(10*s.Size, 0.26*(p.x.x1-p.x.x0))
 	p.y = linear{low: low, high: high, y0: p.bottom, y1: p.top}
 	p.hatch()
@@ -88,7 +88,7 @@ func (f *Slope) key(d *Drawing, s Style) float64 {
 	for _, r := range f.Rivals {
 		if r.Shown {
 			draw, w := lineSample(Muted, 1.8, dashes[r.Dash%len(dashes)])
-			entries = append(entries, keyEntry{draw, w, Words(Sans, r.Name)})
+			entries = append(entries, keyEntry{draw, w, Prose(Sans, r.Name)})
 		}
 	}
 	dot := func(fill Ink) func(*Drawing, float64, float64) {
@@ -202,9 +202,9 @@ func (f *Slope) names(p *panel) {
 			busy.polyline([]XY{{p.x.at(l.From), y}, {p.x.at(l.To), y}})
 		}
 	}
+	var curves []named
 	for i, l := range f.Lines {
-		label := Words(SansBold, l.Name).Cut(p.s.Size, 0.4*(p.x.x1-p.x.x0))
-		at := busy.place(between(p.places(l.At), p.x.x0, p.x.x1), label.Width(p.s.Size), p.s.Size, p)
-		p.d.add(&lettering{x: at.X, y: at.Y, size: p.s.Size, ink: NameInk(f.lead + i), runs: label, halo: true})
+		curves = append(curves, named{l.Name, l.Short, NameInk(f.lead + i), between(p.places(l.At), p.x.x0, p.x.x1)})
 	}
+	busy.names(p, curves)
 }

@@ -75,22 +75,26 @@ func (f *Standing) columns(s Style) scale {
 	}
 	names, words := 0.0, 0.0
 	for _, r := range f.Rows {
-		names = max(names, Words(Serif, r.Name).Width(s.title()))
+		names = max(names, r.name().Width(s.title()))
 		words = max(words, Words(Sans, r.Word).Width(s.Size))
 	}
 	names, words = min(names, 0.36*s.Width), min(words, 0.26*s.Width)
 	return scale{x0: names + 1.4*s.Size, x1: s.Width - words - 5*s.Size, names: names, end: words}
 }
 
+// name of a mechanism, the leader's set bold.
+func (r StandingRow) name() Label {
+	if r.Leads {
+		return Prose(SerifBold, r.Name)
+	}
+	return Prose(Serif, r.Name)
+}
+
 // row writes one mechanism; its bar is drawn later, over the hairlines.
 func (f *Standing) row(d *Drawing, s Style, x scale, r StandingRow, y float64) (bar func(), next float64) {
-	face := Serif
-	if r.Leads {
-		face = SerifBold
-	}
 	middle := y + 0.95*s.Size
 	next = y + 1.9*s.Size
-	name, ink := Words(face, r.Name), Text
+	name, ink := r.name(), Text
 	word := Words(Sans, r.Word)
 	if s.narrow() {
 		base := y + 1.3*s.Size

@@ -24,7 +24,7 @@ type Strip struct {
 	Low, High float64
 	// ends as factors of the best value; 0 and +Inf where an end does not exist
 	Ridge []XY // factor, relative likelihood from 0 to 1
-	Mark  string
+	Ink   Ink  // of its curve; Text where it holds for all
 }
 
 // Tie joins two rows.
@@ -41,13 +41,13 @@ func (f *Strips) Draw(s Style) *Drawing {
 	d := &Drawing{Width: s.Width, Title: f.Name, Description: f.Description}
 	reach := f.reach()
 	x := logAxis{low: -math.Log10(reach), high: math.Log10(reach), zero: math.NaN()}
-	brackets := float64(min(len(f.Ties), mostTies))*0.9*s.Size + 0.6*s.Size
+	brackets := float64(min(len(f.Ties), mostTies))*0.9*s.Size + 1.2*s.Size
 	labels, values := 0.0, 0.0
 	if s.narrow() {
 		x.x0, x.x1 = 2, s.Width-brackets-2
 	} else {
 		for _, r := range f.Rows {
-			labels, values = max(labels, r.Label.Width(s.title())), max(values, Words(Sans, r.Value).Width(s.Size))
+			labels, values = max(labels, r.Label.Width(s.title())), max(values, Prose(Sans, r.Value).Width(s.Size))
 		}
 		labels, values = min(labels, 0.3*s.Width), min(values, 0.36*s.Width)
 		x.x0, x.x1 = labels+1.2*s.Size, s.Width-values-brackets-1.2*s.Size
@@ -68,16 +68,16 @@ func (f *Strips) Draw(s Style) *Drawing {
 		f.strip(d, s, x, r, middles[i])
 		if s.narrow() {
 			base := middles[i] - 1.75*s.Size
-			value := Words(Sans, r.Value).Cut(s.Size, 0.68*x.x1)
+			value := Prose(Sans, r.Value).Cut(s.Size, 0.68*x.x1)
 			d.add(&lettering{y: base, size: s.title(), ink: Text, halo: true,
 				runs: r.Label.Cut(s.title(), x.x1-value.Width(s.Size)-s.Size)})
 			d.add(&lettering{x: x.x1, y: base, anchor: End, size: s.Size, ink: Text, runs: value, halo: true})
 			continue
 		}
 		d.text(0, middles[i]+0.2*s.Size, Start, s.title(), Text, r.Label.Cut(s.title(), labels))
-		d.text(x.x1+1.2*s.Size, middles[i]+0.2*s.Size, Start, s.Size, Text, Words(Sans, r.Value).Cut(s.Size, values))
+		d.text(x.x1+1.2*s.Size, middles[i]+0.2*s.Size, Start, s.Size, Text, Prose(Sans, r.Value).Cut(s.Size, values))
 	}
-	f.brackets(d, s, middles, s.Width-brackets+0.6*s.Size)
+	f.brackets(d, s, middles, s.Width-brackets+1.2*s.Size)
 	y = f.foot(d, s, x, y)
 	d.Height = math.Ceil(y)
 	return d
@@ -173,13 +173,13 @@ func (f *Strips) strip(d *Drawing, s Style, x logAxis, r Strip, y float64) {
 	best := x.at(1)
 	if !(r.Low > 0) {
 		solid[0] = best - 0.3*(best-x.x0)
-		d.fade(solid[0], x.x0, y, thick)
+		d.fade(solid[0], x.x0, y, thick, r.Ink)
 	}
 	if math.IsInf(r.High, 1) {
 		solid[1] = best + 0.3*(x.x1-best)
-		d.fade(solid[1], x.x1, y, thick)
+		d.fade(solid[1], x.x1, y, thick, r.Ink)
 	}
-	d.line(solid[0], y, solid[1], y, CurveInk(0), thick)
+	d.line(solid[0], y, solid[1], y, r.Ink, thick)
 	if len(r.Ridge) > 1 {
 		var pts []XY
 		for _, q := range r.Ridge {
@@ -195,7 +195,7 @@ func (f *Strips) strip(d *Drawing, s Style, x logAxis, r Strip, y float64) {
 }
 
 // fade draws a strip that pales from one place to another.
-func (d *Drawing) fade(from, to, y, thick float64) {
+func (d *Drawing) fade(from, to, y, thick float64, ink Ink) {
 	const steps = 12
 	for k := range steps {
 		a := from + (to-from)*float64(k)/steps
@@ -203,7 +203,7 @@ func (d *Drawing) fade(from, to, y, thick float64) {
 		var p Path
 		p.MoveTo(a, y)
 		p.LineTo(b, y)
-		d.add(&stroke{path: p, ink: CurveInk(0), width: thick, opacity: 0.9 * (1 - float64(k+1)/(steps+1))})
+		d.add(&stroke{path: p, ink: ink, width: thick, opacity: 0.9 * (1 - float64(k+1)/(steps+1))})
 	}
 }
 
@@ -223,7 +223,7 @@ func (f *Strips) brackets(d *Drawing, s Style, middles []float64, x float64) {
 // foot writes the axis's title and what the brackets say.
 func (f *Strips) foot(d *Drawing, s Style, x logAxis, y float64) float64 {
 	y += 2.7 * s.Size
-	title := Words(SerifItalic, "factor of the best value")
+	title := Words(SerifItalic, "times the best value")
 	d.text(max(x.x1, x.x0+title.Width(s.title())), y, End, s.title(), Text, title)
 	for _, t := range f.Ties[:min(len(f.Ties), mostTies)] {
 		y += s.lead()
@@ -233,7 +233,7 @@ func (f *Strips) foot(d *Drawing, s Style, x logAxis, y float64) float64 {
 		p.LineTo(0.45*s.Size, y)
 		p.LineTo(0, y)
 		d.add(&stroke{path: p, ink: Text, width: 1.2})
-		d.text(s.Size, y, Start, s.Size, Muted, Words(Sans, t.Text).Cut(s.Size, s.Width-s.Size))
+		d.text(s.Size, y, Start, s.Size, Muted, Prose(Sans, t.Text).Cut(s.Size, s.Width-s.Size))
 	}
 	if f.Remark != "" {
 		y += s.lead()

@@ -10,7 +10,7 @@ import (
 )
 
 // words for figures and the page: printable text in the sans.
-func words(s string) figure.Label { return figure.Words(figure.Sans, printable(s)) }
+func words(s string) figure.Label { return figure.Prose(figure.Sans, printable(s)) }
 
 // ligandTitle is the title of the ligand axis: quantity / unit.
 func (d *Document) ligandTitle() string {

@@ -59,7 +59,14 @@ func (v *view) strip(q *saturation.QuantityRow) (figure.Strip, bool) {
 	if q.Held == "fixed" || !(value > 0) || !finite(value) || q.Interval == "none" || q.Of == "contrast" && strings.Contains(q.Curve, " − ") {
 		return figure.Strip{}, false
 	}
-	s := figure.Strip{Label: v.quantity(q), Low: 0, High: math.Inf(1)}
+	s := figure.Strip{Label: v.quantity(q), Low: 0, High: math.Inf(1), Ink: figure.Text}
+	if lines := v.lines[v.leader]; len(lines) <= figure.Colours {
+		for i, c := range lines {
+			if c.name == q.Curve && len(lines) > 1 {
+				s.Ink = figure.CurveInk(i)
+			}
+		}
+	}
 	if low > 0 {
 		s.Low = low / value
 	}
@@ -119,7 +126,7 @@ func (v *view) constantCells(q *saturation.QuantityRow) []entry {
 	}
 	p := &page{d: v.d}
 	c := p.constantCells(q)
-	head := entry{Text: printable(name), Head: true}
+	head := entry{Text: printable(name), Head: true, Quantity: true}
 	value := entry{Text: minus(c[1]), Marks: v.marks(q), Number: true}
 	if text, lo, hi := rowFigures(q); text != "" {
 		value.Say = v.saying(q, text, lo, hi)
@@ -164,13 +171,14 @@ func (v *view) hillPlot() figure.Figure {
 		return nil
 	}
 	f := &figure.HillPlot{Ligand: v.axis, Marks: max(1, min(len(v.preps), figure.Shapes))}
+	short := v.shortCurves(all(min(len(lines), figure.Colours)))
 	for i, c := range lines[:min(len(lines), figure.Colours)] {
 		logits := make([]float64, len(c.x))
 		for k, s := range c.saturation {
 			logits[k] = math.Log10(s / (1 - s))
 		}
 		from, to := v.testedOn(i)
-		f.Lines = append(f.Lines, figure.HillLine{Name: printable(curveLabel(c.name)), At: c.xy(logits), From: from, To: to,
+		f.Lines = append(f.Lines, figure.HillLine{Name: printable(curveLabel(c.name)), Short: short[i], At: c.xy(logits), From: from, To: to,
 			Half: v.value(c.name, "position", "x_half"), First: v.value(c.name, "position", "x_first"),
 			Last: v.value(c.name, "position", "x_last"), Distance: v.energyOf(c.name)})
 	}

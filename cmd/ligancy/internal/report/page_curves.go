@@ -143,7 +143,7 @@ func (v *view) curves(g *responseGroup, lines []int) *figure.Curves {
 	for _, i := range lines {
 		names = append(names, v.lines[v.leader][i].name)
 	}
-	short := shortNames(names)
+	short := v.shortCurves(lines)
 	for k, i := range lines {
 		c.Lines = append(c.Lines, v.line(g, i, short[k]))
 	}
@@ -166,7 +166,7 @@ func printables(all []string) []string {
 // line is one curve of the leader, ready to draw.
 func (v *view) line(g *responseGroup, i int, short string) figure.Line {
 	c := v.lines[v.leader][i]
-	l := figure.Line{Name: printable(curveLabel(c.name)), Short: printable(curveLabel(short)),
+	l := figure.Line{Name: printable(curveLabel(c.name)), Short: short,
 		At: c.xy(g.values(c)), Ruler: v.reach(c.name)}
 	if g.scaled || g.sets[0].Response.Kind == "saturation" && !g.sets[0].Response.Percent {
 		l.Low, l.High = c.xy(c.low), c.xy(c.high)
@@ -194,10 +194,43 @@ func (v *view) testedOn(line int) (from, to float64) {
 func (v *view) rivalLines(g *responseGroup, lines []int) []figure.Rival {
 	var out []figure.Rival
 	for _, r := range v.rivalFrames(lines) {
-		for _, c := range r.curves {
-			r.Lines = append(r.Lines, c.xy(g.values(c)))
+		for i, c := range r.curves {
+			r.Lines = append(r.Lines, c.xy(v.overlaid(g, r.mechanism, r.places[i])))
 		}
 		out = append(out, r.Rival)
+	}
+	return out
+}
+
+// overlaid is a mechanism's curve on the group's axis. Where points are drawn
+// as the leader reads them, the curve of a rival, whose ends of the response
+// are its own, is put on the leader's scale: the mean over its points of
+// [low + span·s + slope·x]_rival as the leader reads it.
+func (v *view) overlaid(g *responseGroup, mechanism string, line int) []float64 {
+	c := v.lines[mechanism][line]
+	if !g.scaled || mechanism == v.leader {
+		return g.values(c)
+	}
+	type place struct {
+		data string
+		row  int
+	}
+	own := map[place]ends{}
+	for _, r := range v.measured[v.leader] {
+		own[place{r.Data, r.Row}] = r.ends
+	}
+	var low, span, slope, n float64
+	for _, r := range v.measured[mechanism] {
+		if l := own[place{r.Data, r.Row}]; r.line == line && r.LeftOut == nil && !r.blocked && l.span != 0 && g.has(r.Data) {
+			low += (r.ends.low - l.low) / l.span
+			span += r.ends.span / l.span
+			slope += (r.ends.slope - l.slope) / l.span
+			n++
+		}
+	}
+	out := make([]float64, len(c.x))
+	for i := range out {
+		out[i] = (low + span*c.saturation[i] + slope*c.x[i]) / n
 	}
 	return out
 }

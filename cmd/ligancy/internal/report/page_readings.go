@@ -12,6 +12,7 @@ type reading struct {
 	*saturation.PointRow
 	line    int     // of the mechanism's curves; −1 where it lies on none
 	free    float64 // free ligand: on a total axis what the fit says it was
+	level   float64 // free ligand of all that were given the same amount
 	blocked bool    // sees no specific binding
 	ends    ends    // of the response
 }
@@ -34,7 +35,36 @@ func (v *view) read() {
 		}
 		m := reading{PointRow: r, line: line, blocked: v.blocked[r.Data][r.Row], ends: ends[k]}
 		m.free = v.free(&m)
+		m.level = m.free
 		v.measured[r.Mechanism] = append(v.measured[r.Mechanism], m)
+	}
+	v.level()
+}
+
+// level gathers measurements on a total axis that were given the same amount:
+// their free ligands differ a little, and share the mean of their logarithms.
+func (v *view) level() {
+	type amount struct {
+		data    string
+		x       saturation.Real
+		blocked bool
+	}
+	for _, all := range v.measured {
+		sum, n := map[amount]float64{}, map[amount]float64{}
+		for i := range all {
+			r := &all[i]
+			if set := v.sets[r.Data]; set != nil && set.Total && r.free > 0 && finite(r.free) {
+				k := amount{r.Data, r.X, r.blocked}
+				sum[k] += math.Log(r.free)
+				n[k]++
+			}
+		}
+		for i := range all {
+			r := &all[i]
+			if k := (amount{r.Data, r.X, r.blocked}); n[k] > 0 && r.free > 0 {
+				r.level = roundTo(math.Exp(sum[k]/n[k]), 6)
+			}
+		}
 	}
 }
 

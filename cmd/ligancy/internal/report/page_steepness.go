@@ -42,10 +42,11 @@ func all(n int) []int {
 func (v *view) slopes(lines []int) *figure.Slope {
 	f := &figure.Slope{Ligand: v.axis, Leader: words(v.leader), Places: lines}
 	var told []string
-	for _, i := range lines {
+	short := v.shortCurves(lines)
+	for k, i := range lines {
 		c := v.lines[v.leader][i]
 		from, to := v.testedOn(i)
-		l := figure.SlopeLine{Name: printable(curveLabel(c.name)), At: c.xy(c.slope), From: from, To: to,
+		l := figure.SlopeLine{Name: printable(curveLabel(c.name)), Short: short[k], At: c.xy(c.slope), From: from, To: to,
 			Half: figure.XY{X: math.NaN(), Y: math.NaN()}, HillFit: math.NaN()}
 		l.Max = l.Half
 		l.Low, l.High = c.xy(c.slopeLow), c.xy(c.slopeTop)
@@ -78,6 +79,20 @@ func (v *view) slopes(lines []int) *figure.Slope {
 	return f
 }
 
+// shortCurves are the names of some of the leader's curves without what all
+// of them share in front.
+func (v *view) shortCurves(lines []int) []string {
+	names := make([]string, len(lines))
+	for k, i := range lines {
+		names[k] = v.lines[v.leader][i].name
+	}
+	short := shortNames(names)
+	for k := range short {
+		short[k] = printable(curveLabel(short[k]))
+	}
+	return short
+}
+
 // value of one quantity of the leader; NaN where there is none.
 func (v *view) value(curve, of, name string) float64 {
 	if q := v.rows[key{v.leader, curve, of, name}]; q != nil {
@@ -99,7 +114,9 @@ func (c *curveLine) where(saturation float64) float64 {
 // rivalFrame is a rival with its curves through some of the leader's points.
 type rivalFrame struct {
 	figure.Rival
-	curves []*curveLine
+	mechanism string
+	curves    []*curveLine
+	places    []int // of the curves among the rival's
 }
 
 // rivalFrames are the other mechanisms beside some of the leader's curves, each
@@ -109,7 +126,7 @@ func (v *view) rivalFrames(lines []int) []rivalFrame {
 	first := v.rival()
 	dash := 0
 	for _, m := range v.rivals() {
-		r := rivalFrame{Rival: figure.Rival{Name: printable(m.Name), ID: v.mechanismID(m.Name), Shown: m.Name == first}}
+		r := rivalFrame{mechanism: m.Name, Rival: figure.Rival{Name: printable(m.Name), ID: v.mechanismID(m.Name), Shown: m.Name == first}}
 		if !r.Shown {
 			dash++
 			r.Dash = dash
@@ -117,7 +134,7 @@ func (v *view) rivalFrames(lines []int) []rivalFrame {
 		through := v.through(m.Name, lines)
 		for i, c := range v.lines[m.Name] {
 			if through[i] {
-				r.curves = append(r.curves, c)
+				r.curves, r.places = append(r.curves, c), append(r.places, i)
 			}
 		}
 		out = append(out, r)
@@ -132,7 +149,7 @@ func (v *view) slopeTable() *table {
 	if len(curves) == 0 {
 		return nil
 	}
-	t := &table{Caption: "Hill coefficients by name, " + v.basis()}
+	t := &table{Caption: "Hill coefficients by name: " + v.basis(), Class: "stacked"}
 	t.Head = []string{"", v.halfTitle(), "n_H at half saturation", "steepest", "from 10–90 %", "from 1–99 %", "a Hill fit would say"}
 	names := []string{"n_H_half", "n_H_max", "n_H_10_90", "n_H_1_99", "n_H_hill_reading"}
 	for _, c := range curves[:min(len(curves), mostPanels)] {
@@ -140,8 +157,11 @@ func (v *view) slopeTable() *table {
 		for _, n := range names {
 			q := v.rows[key{v.leader, c, "hill", n}]
 			k := v.number(q)
-			if at := v.value(c, "position", "n_H_max_at"); n == "n_H_max" && finite(at) && k.Text != "–" {
-				k.After = fmt.Sprintf(" at %.0f %%", 100*at)
+			if n == "n_H_max" && k.Text != "" && k.Text != "–" {
+				k.After = " at an end"
+				if at := v.value(c, "position", "n_H_max_at"); finite(at) {
+					k.After = fmt.Sprintf(" at %.0f %%", 100*at)
+				}
 			}
 			row = append(row, k)
 		}

@@ -17,6 +17,7 @@ type entry struct {
 	Marks    []int  // cautions
 	Say      string // what pointing at it says
 	Head     bool   // heads its row
+	Quantity bool   // begins with a symbol
 	Name     string // a mechanism that can be shown over the leader: its place in the result
 	Number   bool   // set against the right edge
 	Colour   int    // 1-based place of the curve whose colour it has; 0 for none
@@ -43,4 +44,12 @@ func (t *table) dropEmpty() *table {
 		}
 	}
 	return t
+}
+
+// dropColumn takes out one column.
+func (t *table) dropColumn(k int) {
+	t.Head = append(t.Head[:k:k], t.Head[k+1:]...)
+	for i, r := range t.Rows {
+		t.Rows[i] = append(r[:k:k], r[k+1:]...)
+	}
 }

@@ -38,6 +38,7 @@ type view struct {
 	preps     []string
 	boots     map[key][]*saturation.QuantityRow // numbers again, by bootstrap
 	axis      figure.Ligand
+	levels    map[levelKey][]reading // kept measurements of the leader; gathered when asked for
 }
 
 func newView(d *Document) *view {
@@ -117,8 +118,8 @@ func (v *view) layAxis() {
 	v.axis.Title = figure.Words(figure.SerifItalic, printable(v.d.ligandTitle()))
 	var tested []float64
 	for _, r := range v.measured[v.leader] {
-		if r.LeftOut == nil && finite(r.free) && r.free >= 0 {
-			tested = append(tested, r.free)
+		if r.LeftOut == nil && !r.blocked && finite(r.level) && r.level >= 0 {
+			tested = append(tested, r.level)
 		}
 	}
 	v.axis.Tested = distinct(tested)
