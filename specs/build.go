@@ -38,6 +38,7 @@ func (b *builder) build() {
 	for i := range s.Data {
 		b.analysis.Data = append(b.analysis.Data, b.dataset(i))
 	}
+	b.commonTemperature()
 	b.candidates()
 	b.contrasts()
 	b.requests()
@@ -181,6 +182,21 @@ func (b *builder) temperature(p string) {
 		return
 	}
 	b.analysis.Kelvin = k
+}
+
+// commonTemperature takes the temperature from the data sets, where all say the same.
+func (b *builder) commonTemperature() {
+	if _, ok := b.analysis.Conditions["temperature"]; ok || len(b.analysis.Data) == 0 {
+		return
+	}
+	text := b.analysis.Data[0].Conditions["temperature"]
+	for _, d := range b.analysis.Data {
+		if text == "" || d.Conditions["temperature"] != text {
+			return
+		}
+	}
+	b.analysis.Conditions["temperature"] = text
+	b.temperature("data[0].at")
 }
 
 // settings are those of the fit, with their defaults.

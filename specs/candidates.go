@@ -14,6 +14,9 @@ import (
 
 // candidates settles every mechanism.
 func (b *builder) candidates() {
+	if len(b.study.Mechanisms) > maxMechanisms {
+		return // complained of already
+	}
 	names := map[string]int{}
 	for i := range b.study.Mechanisms {
 		p := indexed("mechanisms", i)

@@ -91,7 +91,10 @@ func inOurWords(err error) (string, []string) {
 // readableLines is the longest run of lines, from the first, that YAML can
 // read, and what it reads.
 func readableLines(lines []string) (*yaml.Node, int) {
-	const patience = 200 // lines that may belong to one unfinished text or list
+	patience := 100 // lines that may belong to one unfinished text or list
+	if len(lines) > 5000 {
+		patience = 10
+	}
 	for n := len(lines); n > max(len(lines)-patience, 0); n-- {
 		if root, _, err := parseLines(lines[:n]); err == nil {
 			return root, n

@@ -36,7 +36,7 @@ func studyKeys() []key[Study] {
 			"the tables, and what their columns are",
 			"data: [{name: curves, file: clam.csv, columns: {ligand: pO2_torr, response: sat}, response: {kind: saturation}}]"),
 		with("mechanisms", listShape[Mechanism]{of: mechanismShape(), form: "a list of mechanisms",
-			least: 1, most: 300},
+			least: 1, most: maxMechanisms},
 			func(s *Study) *[]Mechanism { return &s.Mechanisms },
 			"the mechanisms to try", "mechanisms: [hill, {family: mwc, sites: 4}]").must(),
 		with("contrasts", listShape[Contrast]{of: contrastShape(), form: "a list of contrasts"},

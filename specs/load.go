@@ -24,6 +24,7 @@ const (
 	maxStudy      = 1 << 20 // bytes
 	maxStudyLine  = 1 << 16
 	maxComplaints = 20
+	maxMechanisms = 300
 )
 
 // Load reads the study `name` and the tables beside it, and finds every

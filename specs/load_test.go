@@ -4,12 +4,14 @@ import (
 	"bytes"
 	"crypto/sha256"
 	"encoding/hex"
+	"fmt"
 	"math"
 	"os"
 	"path/filepath"
 	"strings"
 	"testing"
 	"testing/fstest"
+	"time"
 
 	"github.com/google/go-cmp/cmp"
 
@@ -386,6 +388,43 @@ func TestManyComplaints(t *testing.T) {
 	if len(complaints) != maxComplaints ||
 		last.Notes[len(last.Notes)-1] != "There are 49980 more of this kind in clam.csv." {
 		t.Errorf("%d complaints; the last: %v", len(complaints), last)
+	}
+}
+
+// Nothing that fits into a study file keeps the reader busy for long.
+func TestHugeStudies(t *testing.T) {
+	many := func(f func(i int) string) string {
+		var b strings.Builder
+		for i := 0; b.Len() < maxStudy-200; i++ {
+			b.WriteString(f(i))
+		}
+		return b.String()
+	}
+	for name, text := range map[string]string{
+		"unknown keys":  many(func(i int) string { return fmt.Sprintf("k%d: 1\n", i) }),
+		"one key":       many(func(int) string { return "a: 1\n" }),
+		"tabs":          many(func(int) string { return "a:\t1\n" }),
+		"second colons": many(func(int) string { return "a: b: c\n" }),
+		"dashes":        many(func(int) string { return "- " }),
+		"deep":          many(func(i int) string { return strings.Repeat(" ", min(i, 900)) + "a:\n" }),
+		"brackets":      many(func(int) string { return "[" }),
+		"open quotes":   many(func(int) string { return "a: \"\n" }),
+		"bad lines":     many(func(i int) string { return fmt.Sprintf("k%d: x\n  y: z\n", i) }),
+		"mechanisms":    base + many(func(int) string { return "  - hill\n" }),
+		"more of them":  strings.Replace(base, "mechanisms:", "mechanisms:\n"+many(func(int) string { return "  - hill\n" })[:maxStudy/2], 1),
+		"aliases":       many(func(i int) string { return fmt.Sprintf("a%d: &a%d [*a%d, *a%d]\n", i+1, i+1, i, i) }),
+	} {
+		t.Run(name, func(t *testing.T) {
+			start := time.Now()
+			_, complaints := Load(memory{"study.yaml": []byte(text), "clam.csv": []byte(baseTable)}, "study.yaml")
+			if !complaints.HasErrors() {
+				t.Error("nothing was complained of")
+			}
+			if d := time.Since(start); d > 20*time.Second {
+				t.Errorf("it took %v", d)
+			}
+			t.Logf("%v, %d complaints", time.Since(start), len(complaints))
+		})
 	}
 }
 

@@ -22,8 +22,8 @@ type reader struct {
 }
 
 func (r *reader) complain(d diag.Diagnostic) {
-	if r.isMuted(d.Position) {
-		return // named already, in better words
+	if r.isMuted(d.Position) || len(r.complaints) >= enough {
+		return // named already, in better words; or more than anybody reads
 	}
 	for _, c := range r.complaints {
 		if d.Line > 0 && c.Severity == diag.Error && c.Code != "missing-key" && c.File == d.File &&

@@ -199,6 +199,9 @@ func keyNames[T any](keys []key[T]) []string {
 
 // unknownKey names a key that means nothing here, and the nearest that does.
 func (r *reader) unknownKey(n *yaml.Node, record, name string, valid []string) {
+	if len(r.complaints) >= enough {
+		return
+	}
 	d := diag.Diagnostic{Code: "unknown-key", Position: r.at(n),
 		Problem: fmt.Sprintf("%s has no key %q", record, name),
 		Notes:   []string{"Its keys are: " + strings.Join(valid, ", ") + "."}}

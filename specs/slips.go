@@ -9,6 +9,9 @@ import (
 	"ligancy/specs/diag"
 )
 
+// enough is how many complaints about one study are gathered.
+const enough = 1000
+
 // deepest is how many brackets, or dashes on one line, may stand inside each other.
 const deepest = 40
 
@@ -74,6 +77,9 @@ func (s *slips) complain(p diag.Position, code, problem string, notes []string,
 	s.complaints = append(s.complaints, s.text.Quote(diag.Diagnostic{Code: code, Position: p,
 		Problem: problem, Notes: notes, Remedies: remedies}))
 	s.muted = append(s.muted, p)
+	if len(s.complaints) >= enough {
+		s.fatal = true
+	}
 }
 
 func (s *slips) unclosed(b bracket) {
