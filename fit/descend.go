@@ -6,6 +6,7 @@ const (
 	enough  = 1e-6  // relative offset at which a fit has converged
 	loose   = 1e-5  // the same, for refits of replicate data
 	stale   = 0.3   // least part of the residuals' square by which settling has to move them for the Jacobian to be evaluated again
+	lost    = 1e12  // settling that moves residuals so much further than they then are loses digits: once more
 	hardly  = 1e-4  // least share of the predicted gain that is a gain
 	tiniest = 1e-15 // least radius relative to ‖D θ‖
 	epsilon = 0x1p-52
@@ -38,11 +39,19 @@ func (s *solver) begun(theta []float64) bool {
 	if !s.evaluate(s.cur) {
 		return false
 	}
-	if len(s.linear) == 0 {
-		return true
+	for range 3 {
+		if len(s.linear) == 0 {
+			return true
+		}
+		moved := s.settle(s.cur)
+		if !s.evaluate(s.cur) {
+			return false
+		}
+		if moved < lost*s.total(s.cur) {
+			return true
+		}
 	}
-	s.settle(s.cur)
-	return s.evaluate(s.cur)
+	return true
 }
 
 // place puts the current point at theta, clamped into the box.
@@ -84,7 +93,7 @@ func (s *solver) descend(done <-chan struct{}, tol float64, most int) ending {
 			if ratio >= hardly {
 				break
 			}
-			if radius <= tiniest*s.size() || length == 0 {
+			if !(radius > tiniest*s.size()) || length == 0 {
 				return stalled
 			}
 		}
@@ -144,7 +153,7 @@ func (s *solver) atRounding() bool {
 func (s *solver) attempt(radius float64) (length, ratio float64) {
 	s.propose(radius)
 	length = norm(s.step.t[:s.cur.f.m-s.cur.lin])
-	if s.step.gain <= 0 {
+	if !(s.step.gain > 0) {
 		return 0, math.Inf(-1)
 	}
 	if !s.evaluate(s.try) {
@@ -155,7 +164,10 @@ func (s *solver) attempt(radius float64) (length, ratio float64) {
 			return length, math.Inf(-1)
 		}
 	}
-	return length, (s.cur.obj - s.try.obj) / s.step.gain
+	if ratio = (s.cur.obj - s.try.obj) / s.step.gain; math.IsNaN(ratio) {
+		ratio = math.Inf(-1)
+	}
+	return length, ratio
 }
 
 // propose writes the θ of the trial point.

@@ -19,6 +19,7 @@ type extreme struct {
 	w, u, v   []float64
 	force     float64 // of the constraint: R_jᵀ(z + R·s) = force·d·c_j where free
 	pinned    bool    // nothing that is free changes the quantity
+	inside    bool    // the region is not empty
 	loose     bool    // the quantity changes where no residual does
 }
 
@@ -100,7 +101,7 @@ func (e *extreme) reduced(m int, rho2, d float64) {
 	}
 	rho2 -= dot(c.rhs, c.rhs)
 	f := 0.0
-	e.pinned = ww == 0
+	e.pinned, e.inside = ww == 0, rho2 > 0
 	if rho2 > 0 && ww > 0 {
 		f = d * math.Sqrt(rho2/ww)
 	}
@@ -135,10 +136,11 @@ func (e *extreme) wrong(m int, d float64) int {
 			continue
 		}
 		out := float64(e.stop[j])
-		if e.force == 0 && out*d*e.c[j] > 0 {
-			continue // it is this bound that ends the quantity
+		gain := out * (g - e.force*d*e.c[j])
+		if e.pinned && e.inside && e.c[j] != 0 {
+			gain = -out * d * e.c[j] // bounds alone end the quantity
 		}
-		gain := out * (g - e.force*d*e.c[j]) / math.Sqrt(length)
+		gain /= math.Sqrt(length)
 		if gain > max(worst, 1e-9*norm(e.z[:m])) {
 			worst, which = gain, j
 		}

@@ -118,7 +118,8 @@ func (p *pull) turn(ctx context.Context, dial float64, theta []float64) (station
 // follow walks along the profile from the estimate until it meets the limit, a
 // bound, or nothing any more.
 func (f *Profiler) follow(ctx context.Context, t target, v, d float64) end {
-	step, stiffness := f.scale(t, v, d)
+	first, stiffness := f.scale(t, v, d)
+	step := first
 	var g guide
 	if t.parameter >= 0 {
 		g = f.hold(t.parameter)
@@ -127,13 +128,14 @@ func (f *Profiler) follow(ctx context.Context, t target, v, d float64) end {
 	}
 	low, high := g.bounds()
 	last := station{v, v, f.result.Objective, f.result.Theta}
+	before := last
 	still := 0
 	for range 80 {
 		if ctx.Err() != nil {
 			return end{value: last.value, open: true, why: "interrupted"}
 		}
 		dial := min(max(last.dial+d*step, low), high)
-		next, ok := g.turn(ctx, dial, last.theta)
+		next, ok := f.advance(ctx, g, before, last, dial)
 		if !ok {
 			if step /= 4; step < 1e-6*(math.Abs(last.dial)+step) {
 				return end{value: last.value, open: true, why: "nothing finite lies beyond"}
@@ -153,11 +155,42 @@ func (f *Profiler) follow(ctx context.Context, t target, v, d float64) end {
 		if still > 6 {
 			return end{value: next.value, open: true, why: "goes no further, below the limit"}
 		}
+		if f.flat(last, next, math.Abs(next.dial-v)/first) {
+			return end{value: next.value, open: true, why: "levels off below the limit"}
+		}
 		step = f.stride(last, next, step)
-		last = next
+		before, last = last, next
 	}
 	return end{value: last.value, open: true,
 		why: "stays below the limit as far as " + strconv.FormatFloat(last.value, 'g', 6, 64)}
+}
+
+// flat says whether a profile that has been followed so many times further than
+// where its limit was expected has all but ceased to rise.
+func (f *Profiler) flat(last, next station, times float64) bool {
+	rise, rest := f.root(next)-f.root(last), math.Sqrt(f.limit-f.result.Objective)-f.root(next)
+	return times > 1e4 && rise < 1e-3*rest
+}
+
+// advance turns the guide to the next dial: from where the last two stations
+// point to, and, should that end above the limit, from the last one too.
+func (f *Profiler) advance(ctx context.Context, g guide, before, last station, dial float64) (station, bool) {
+	f.ahead = append(f.ahead[:0], last.theta...)
+	if last.dial != before.dial {
+		share := (dial - last.dial) / (last.dial - before.dial)
+		for j, v := range last.theta {
+			f.ahead[j] += share * (v - before.theta[j])
+		}
+	}
+	next, ok := g.turn(ctx, dial, f.ahead)
+	if ok && next.objective < f.limit {
+		return next, true
+	}
+	again, okAgain := g.turn(ctx, dial, last.theta)
+	if okAgain && (!ok || again.objective < next.objective) {
+		return again, true
+	}
+	return next, ok
 }
 
 // meet keeps a θ whose objective is below all before.
@@ -244,6 +277,9 @@ func (f *Profiler) between(ctx context.Context, t target, g guide, below, above 
 			}
 			side = -1
 		}
+	}
+	if f.root(below) < 0.999*goal {
+		return end{value: below.value, open: true, why: "breaks off below the limit"}
 	}
 	return end{value: nearest.value}
 }

@@ -43,6 +43,7 @@ type Profiler struct {
 	e      *extreme
 	free   []int     // parameters that are not fixed
 	grad   []float64 // of the quantity
+	ahead  []float64 // θ to which the last two stations of a profile point
 	better []float64 // θ of a lower objective, met on the way
 	lowest float64
 }
@@ -73,7 +74,9 @@ func (p *Problem) searched() *Problem {
 	q := *p
 	q.Parameters = append([]Parameter(nil), p.Parameters...)
 	for j := range q.Parameters {
-		q.Parameters[j].Linear = false
+		if r := &q.Parameters[j]; r.Linear {
+			r.Linear, r.StartLow, r.StartHigh = false, math.NaN(), math.NaN()
+		}
 	}
 	return &q
 }
@@ -183,7 +186,19 @@ func (f *Profiler) end(ctx context.Context, t target, v, d float64) end {
 		}
 	}
 	if g, ok := f.leap(t, v, d); ok {
+		f.probe(ctx)
 		return end{value: g}
 	}
-	return f.follow(ctx, t, v, d)
+	e := f.follow(ctx, t, v, d)
+	f.probe(ctx)
+	return e
+}
+
+// probe goes down from where an end was found, all parameters free: if that
+// leads to a lower minimum than the result's, it is kept.
+func (f *Profiler) probe(ctx context.Context) {
+	if f.s.begun(f.s.cur.theta) {
+		f.s.descend(ctx.Done(), 1e-3, 50)
+		f.meet(f.s.cur.obj, f.s.cur.theta)
+	}
 }

@@ -134,7 +134,7 @@ func newSolver(p *Problem, clone bool) *solver {
 	s.low, s.high, s.width = make([]float64, s.p), make([]float64, s.p), make([]float64, s.p)
 	for j, q := range p.Parameters {
 		s.low[j], s.high[j] = q.Low, q.High
-		if q.StartLow < q.StartHigh {
+		if q.StartLow < q.StartHigh && !q.Linear {
 			s.width[j] = (q.StartHigh - q.StartLow) / 4
 		}
 		switch {
