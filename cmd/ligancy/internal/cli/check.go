@@ -1,23 +1,27 @@
 package cli
 
 import (
+	"context"
 	"fmt"
 
 	"github.com/spf13/cobra"
 
 	"ligancy/cmd/ligancy/internal/report"
+	"ligancy/fit/saturation"
 )
 
 const checkHelp = `ligancy check STUDY…
 
 Reads a study and its tables and says all that must be mended, each with its place and what to
-write. A study that can be used is summed up in one line. Nothing is written.
+write. Of a study that can be used it says what a careful reviewer will ask, grouped by what to do:
+settle first, say in the paper, for completeness, asked and found good. Nothing is written, and only
+a Hill equation is fitted; fit asks more.
 
   --json     prints one JSON document instead (a list of them for several studies)
-  --strict   exits 3 where a warning stands or something is left to settle first or to say in the
-             paper
+  --strict   exits 3 where a warning stands or something is left to settle first
 
-Exit codes: 0 the study can be used, 1 something to mend, 2 wrong usage, 3 see --strict.
+Exit codes: 0 the study can be used, 1 something to mend, 2 wrong usage, 3 see --strict,
+130 interrupted.
 `
 
 type checkOptions struct{ json, strict bool }
@@ -28,19 +32,26 @@ func (p *program) checkCommand() *cobra.Command {
 		Use:  "check STUDY…",
 		Long: checkHelp,
 		Args: names("study", 0),
-		RunE: func(_ *cobra.Command, args []string) error { return p.checkAll(args, opts) },
+		RunE: func(c *cobra.Command, args []string) error { return p.checkAll(c.Context(), args, opts) },
 	}
 	c.Flags().BoolVar(&opts.json, "json", false, "one JSON document")
 	c.Flags().BoolVar(&opts.strict, "strict", false, "exit 3 where something is left to settle")
 	return c
 }
 
-func (p *program) checkAll(studies []string, opts checkOptions) error {
+func (p *program) checkAll(ctx context.Context, studies []string, opts checkOptions) error {
 	documents := []*report.Check{}
 	mend, held := false, true
 	for i, name := range studies {
 		o := p.open(name)
-		c := report.NewCheck(o.analysis, o.source(), o.complaints, nil)
+		var asked []saturation.Objection
+		if o.analysis != nil {
+			asked = o.analysis.Objections(ctx)
+		}
+		if ctx.Err() != nil {
+			return exit(Interrupted)
+		}
+		c := report.NewCheck(o.analysis, o.source(), o.complaints, asked)
 		documents = append(documents, c)
 		mend, held = mend || !c.Usable, held && c.Holds()
 		if opts.json {

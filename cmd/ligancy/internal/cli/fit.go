@@ -116,10 +116,14 @@ func (p *program) fitOne(ctx context.Context, name string, opts fitOptions) (*re
 			return nil, Unusable
 		}
 	}
-	if opts.printOnly {
-		return d, code(ctx)
+	kept := Success
+	if !opts.printOnly {
+		kept = p.keep(d, resultsFolder(name), folder, stands, opts)
 	}
-	return d, max(code(ctx), p.keep(d, resultsFolder(name), folder, stands, opts))
+	if !opts.json && len(d.Objections) > 0 {
+		fmt.Fprintf(p.out, "  next      ligancy check %s   what a reviewer will ask, with sources and remedies\n", name)
+	}
+	return d, max(code(ctx), kept)
 }
 
 // code of a run that ended without an error of its own.

@@ -30,21 +30,52 @@ type caution struct {
 }
 
 // cautionsOn lists what the reader must know about one mechanism's numbers,
-// then what a reviewer will ask.
+// then what a reviewer will ask. Where a reviewer's question says the same as a
+// warning of our own, the question stands and the values carry its number.
 func (d *Document) cautionsOn(mechanism string) []caution {
-	var all []caution
-	all = append(all, d.onDefinitions(mechanism)...)
-	all = append(all, d.onEdges(mechanism)...)
-	all = append(all, d.onTies(mechanism)...)
-	all = append(all, d.onStarts(mechanism)...)
+	definitions, ties := d.onDefinitions(mechanism), d.onTies(mechanism)
+	var asked []caution
 	for _, group := range objectionGroups[:3] {
 		for i := range d.Objections {
-			if d.Objections[i].Group == group {
-				all = append(all, caution{text: objectionText(&d.Objections[i])})
+			o := &d.Objections[i]
+			if o.Group != group {
+				continue
 			}
+			c := caution{text: briefly(o)}
+			switch o.ID {
+			case "n_H-definition":
+				c.about, definitions = anyOf(definitions), nil
+			case "tied-constants":
+				c.about, ties = anyOf(ties), nil
+			case "plateau":
+				c.about = func(q *saturation.QuantityRow) bool {
+					return q.Mechanism == mechanism && q.Of == "response" && slices.Contains([]string{"high", "V", "Bmax"}, q.Name)
+				}
+			}
+			asked = append(asked, c)
 		}
 	}
-	return all
+	return slices.Concat(definitions, d.onEdges(mechanism), ties, d.onStarts(mechanism), asked)
+}
+
+// anyOf is about what any of some cautions is about; nil if there are none.
+func anyOf(cautions []caution) func(*saturation.QuantityRow) bool {
+	if len(cautions) == 0 {
+		return nil
+	}
+	return func(q *saturation.QuantityRow) bool {
+		return slices.ContainsFunc(cautions, func(c caution) bool { return c.about(q) })
+	}
+}
+
+// briefly is an objection as a caution: what must be done about it says how
+// large its effect is, what completes the record does not.
+func briefly(o *saturation.Objection) string {
+	text := sentence(o.Text)
+	if o.Effect != nil && o.Group != objectionGroups[2] {
+		text += " " + sentence(*o.Effect)
+	}
+	return text
 }
 
 // onDefinitions warns where two things called n_H are two numbers.

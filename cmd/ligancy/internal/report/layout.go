@@ -116,11 +116,11 @@ func padLeft(s string, w int) string {
 }
 
 // wrap breaks a paragraph into lines of at most w columns. A word that is
-// longer than a line is broken.
+// longer than a line is broken; a percent sign stays with its number.
 func wrap(s string, w int) []string {
 	var lines []string
 	line := ""
-	for _, word := range strings.Fields(printable(s)) {
+	for _, word := range wrapWords(printable(s)) {
 		for width(word) > w {
 			if line != "" {
 				lines, line = append(lines, line), ""
@@ -144,6 +144,19 @@ func wrap(s string, w int) []string {
 		lines = append(lines, line)
 	}
 	return lines
+}
+
+// wrapWords are the words of a text; a sign of percent belongs to the word before it.
+func wrapWords(s string) []string {
+	var all []string
+	for _, w := range strings.Fields(s) {
+		if n := len(all); n > 0 && strings.HasPrefix(w, "%") {
+			all[n-1] += " " + w
+			continue
+		}
+		all = append(all, w)
+	}
+	return all
 }
 
 // hanging writes a paragraph behind a mark, its further lines indented as far.

@@ -31,6 +31,7 @@ func (d *Document) WriteText(w io.Writer, colour bool) error {
 	}
 	p.preparations()
 	p.standing()
+	p.explanations()
 	p.before()
 	_, err := io.WriteString(w, p.b.String())
 	return err
