@@ -167,6 +167,11 @@ func (o *Options) checkSizes(n int) (all []error) {
 		if r, c := o.Totals.Dims(); c != n || r > n {
 			bad("totals are %d×%d for %d components", r, c, n)
 		}
+		for i := range o.Totals.RawMatrix().Rows {
+			if row := o.Totals.RawRowView(i); notFinite(row) >= 0 {
+				bad("total %d has the factor %g", i+1, row[notFinite(row)])
+			}
+		}
 	}
 	if o.HoldTotals && o.Totals == nil {
 		bad("totals are to be held but none are given")

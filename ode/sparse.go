@@ -200,7 +200,7 @@ func (f *sparseLU[T]) use(q *plan) {
 }
 
 // largestMultiplier is where an elimination without exchanges is given up.
-const largestMultiplier = 1e8
+const largestMultiplier = 1e4
 
 // factor overwrites the matrix; false where a pivot is zero or too small.
 func (f *sparseLU[T]) factor() bool {

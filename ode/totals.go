@@ -1,6 +1,7 @@
 package ode
 
 import (
+	"errors"
 	"fmt"
 	"math"
 
@@ -34,11 +35,11 @@ func (t *totals) begin(o *Options, p *point, n, params int) error {
 	t.start, t.off = grown(t.start, t.m), grown(t.off, t.m)
 	t.slopes = grown(t.slopes, t.m*params)
 	t.var2 = grown(t.var2, n)
+	if t.hold && !independent(t.c) {
+		return errors.New("totals cannot be held: one follows from the others")
+	}
 	for i := range t.m {
 		row := t.c.RawRowView(i)
-		if k := notFinite(row); k >= 0 {
-			return fmt.Errorf("total %d has the factor %g", i+1, row[k])
-		}
 		if sum, size := dot(row, p.f); math.Abs(sum) > leastKept*size {
 			return fmt.Errorf("total %d is not kept: it changes at %.3g at the start", i+1, sum)
 		}
@@ -48,6 +49,16 @@ func (t *totals) begin(o *Options, p *point, n, params int) error {
 		}
 	}
 	return nil
+}
+
+// independent reports whether no row of c follows from the others.
+func independent(c *mat.Dense) bool {
+	var svd mat.SVD
+	if !svd.Factorize(c, mat.SVDNone) {
+		return false
+	}
+	v := svd.Values(nil)
+	return v[len(v)-1] > 1e-10*v[0]
 }
 
 // dot is c·y and Σ|cᵢyᵢ|, summed with the rounding errors carried along.
