@@ -162,7 +162,7 @@ func (b *builder) mechanism(p string, m *Mechanism, c *saturation.Candidate) {
 		return
 	}
 	d := b.definition(p, m, family)
-	c.Given = d.Constants
+	c.Given = givenOfAll(d)
 	if b.failed[p] {
 		return // what is missing may be what could not be read
 	}

@@ -5,6 +5,7 @@ import (
 	"flag"
 	"os"
 	"path/filepath"
+	"regexp"
 	"strings"
 	"testing"
 	"testing/fstest"
@@ -378,6 +379,46 @@ func TestComplaints(t *testing.T) {
 				t.Error(diff)
 			}
 		})
+	}
+}
+
+// Every code in the sources occurs in a case here, or in a test that is named.
+func TestEveryComplaintHasACase(t *testing.T) {
+	seen := map[string]bool{}
+	for _, elsewhere := range []string{
+		"bad-mechanism",                                                         // TestFaultsThatFamiliesFind
+		"binary-file", "file-too-large", "line-too-long", "not-utf-8", "utf-16", // TestFilesThatAreNoStudies
+		"no-curve",                                                                                  // TestNothingToSuggest
+		"hidden-row", "no-header", "no-rows", "quotation-mark", "too-many-columns", "too-many-rows", // package table
+	} {
+		seen[elsewhere] = true
+	}
+	for _, c := range complaintCases {
+		for _, d := range complaintsOf(t, c.study, c.table) {
+			seen[d.Code] = true
+		}
+	}
+	code := regexp.MustCompile(`"([a-z0-9]+(?:-[a-z0-9]+)+)"`)
+	for _, pattern := range []string{"*.go", "table/*.go", "diag/*.go"} {
+		files, err := filepath.Glob(pattern)
+		if err != nil {
+			t.Fatal(err)
+		}
+		for _, f := range files {
+			source, err := os.ReadFile(f)
+			if err != nil || strings.HasSuffix(f, "_test.go") {
+				continue
+			}
+			for _, m := range code.FindAllStringSubmatch(string(source), -1) {
+				if !seen[m[1]] {
+					t.Errorf("%s: no case complains of %s", f, m[1])
+				}
+			}
+		}
+	}
+	golden, err := filepath.Glob("testdata/complaints/*.txt")
+	if err != nil || len(golden) != len(complaintCases) {
+		t.Errorf("%d golden files for %d cases, %v", len(golden), len(complaintCases), err)
 	}
 }
 

@@ -2,6 +2,7 @@ package specs
 
 import (
 	"fmt"
+	"maps"
 	"slices"
 	"strings"
 
@@ -208,6 +209,32 @@ func (b *builder) given(p string, list []Named[ConstantSays]) map[string]mechani
 		out[e.Name] = g
 	}
 	return out
+}
+
+// givenOfAll is what is said of the constants of a mechanism and of its parts,
+// those of parts with the part's name before theirs: loose.K_R.
+func givenOfAll(d mechanisms.Definition) map[string]mechanisms.Given {
+	all := maps.Clone(d.Constants)
+	parts := slices.Clone(d.Parts)
+	for _, p := range []*mechanisms.Part{d.Small, d.Large} {
+		if p != nil {
+			parts = append(parts, *p)
+		}
+	}
+	for _, p := range parts {
+		if p.Definition == nil {
+			continue
+		}
+		for name, g := range givenOfAll(*p.Definition) {
+			if all == nil {
+				all = map[string]mechanisms.Given{}
+			}
+			if _, said := all[p.Name+"."+name]; !said {
+				all[p.Name+"."+name] = g
+			}
+		}
+	}
+	return all
 }
 
 // unitOf is the unit of a constant by its name: an effector's where it belongs to one.
