@@ -12,6 +12,10 @@ import (
 // from it lets the best candidate win by as much as it did.
 const outShare = 0.01
 
+// noLead is the T that rounding may make of none: what holds the curves of all
+// others never loses to them, and is not out for the last digit of its fit.
+const noLead = 0.1
+
 // decider settles which candidates behind the leader are out.
 //
 // For a candidate m, studies are simulated from m at its own fit and refitted
@@ -80,7 +84,7 @@ func (d *decider) out(ctx context.Context, i int) bool {
 	if d.hopeless(i, observed) {
 		return true
 	}
-	if d.draws <= 0 || observed <= 0 { // nothing wins by less than nothing
+	if d.draws <= 0 || observed <= noLead {
 		return false
 	}
 	t := d.trial(ctx, i, observed)

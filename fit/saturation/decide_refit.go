@@ -140,28 +140,35 @@ func (r *refitter) shifted(ctx context.Context, theta []float64) float64 {
 }
 
 // least follows a smooth function of one variable down from u, within bounds,
-// to where the parabola through its last three values promises nothing more.
+// to where the parabola through three of its values promises nothing more.
 func least(f func(float64) float64, u, low, high float64) {
-	const step, enough, most = 0.5, 1e-4, 12
+	const step, enough, near, most = 0.5, 1e-4, 0.1, 16
 	clamp := func(v float64) float64 { return math.Min(math.Max(v, low), high) }
 	a, b, c := clamp(u-step), u, clamp(u+step)
 	fa, fb, fc := f(a), f(b), f(c)
 	for range most {
 		switch {
-		case fa < fb && fa <= fc: // downhill to the left
-			if a == low {
-				return
-			}
+		case fa < fb && fa <= fc && a > low: // downhill to the left
 			b, fb, c, fc = a, fa, b, fb
 			a = clamp(b - 2*(c-b))
 			fa = f(a)
-		case fc < fb:
-			if c == high {
-				return
-			}
+		case fc < fb && fc < fa && c < high:
 			a, fa, b, fb = b, fb, c, fc
 			c = clamp(b + 2*(b-a))
 			fc = f(c)
+		case fa < fb || fc < fb: // downhill to a bound, or to before it
+			v := (a + b) / 2
+			if fc < fa {
+				v = (b + c) / 2
+			}
+			if math.Abs(v-b) < near {
+				return
+			}
+			if fv := f(v); v < b {
+				b, fb, c, fc = v, fv, b, fb
+			} else {
+				a, fa, b, fb = b, fb, v, fv
+			}
 		default:
 			v, gain := vertex(a, b, c, fa, fb, fc)
 			if !(gain > enough) {

@@ -4,6 +4,7 @@ import (
 	"cmp"
 	"context"
 	"fmt"
+	"math"
 	"slices"
 
 	"ligancy/fit"
@@ -252,6 +253,23 @@ func (t *factoring) share(ctx context.Context, rows []FactorRow, cells []int) {
 	}
 }
 
+// farOff is the factor beyond which an end of an interval is where a bound of
+// the fit stopped it, not where the data did.
+const farOff = 1e4
+
+// siteRow is the constant of one site.
+func siteRow(q *QuantityRow) SiteRow {
+	s := SiteRow{Value: q.Value, Low: q.Low, High: q.High, Unit: q.Unit}
+	if s.High > farOff*s.Value {
+		s.High = nan
+	}
+	if s.Low < s.Value/farOff {
+		s.Low = nan
+	}
+	s.Held = held(math.IsNaN(float64(s.Low)), math.IsNaN(float64(s.High)))
+	return s
+}
+
 // sites are the constants of the independent sites on one curve, ascending.
 func (t *factoring) sites(ctx context.Context, curve string) []SiteRow {
 	g := t.free
@@ -261,7 +279,7 @@ func (t *factoring) sites(ctx context.Context, curve string) []SiteRow {
 		for _, w := range g.wantedRows() {
 			if w.row.Of == "constant" && (w.row.Curve == curve || w.row.Curve == "all") {
 				q := g.withInterval(ctx, w, pr)
-				out = append(out, SiteRow{Value: q.Value, Low: q.Low, High: q.High, Unit: q.Unit, Held: q.Held})
+				out = append(out, siteRow(&q))
 			}
 		}
 		if pr == nil || !g.moveTo(ctx, [][]float64{pr.Better()}) {

@@ -9,18 +9,19 @@ import (
 
 // fitted is one candidate with its best fit.
 type fitted struct {
-	m       *model
-	problem *fit.Problem
-	result  *fit.Result // nil where there is no answer
-	err     error
-	row     MechanismRow
-	lnL     float64
-	k       int // numbers estimated, scatters counted
-	ss      float64
-	scatter float64
-	slopes  []slope
-	twinOf  int  // index of the first candidate with the same curves; −1
-	decided bool // the bootstrap has settled whether it is out
+	m         *model
+	problem   *fit.Problem
+	result    *fit.Result // nil where there is no answer
+	err       error
+	row       MechanismRow
+	lnL       float64
+	k         int // numbers estimated, scatters counted
+	ss        float64
+	scatter   float64
+	slopes    []slope
+	twinOf    int  // index of the first candidate with the same curves; −1
+	decided   bool // the bootstrap has settled whether it is out
+	holdsLead bool // its curves hold all those of the leader
 }
 
 // fitCandidate lays a candidate over the data and fits it.

@@ -47,6 +47,9 @@ func (a *Analysis) compare(ctx context.Context, fits []*fitted, rec Recorder) (o
 	stand(fits, order)
 	d := &decider{a: a, fits: fits, order: order, draws: a.Settings.Draws, rec: rec, curves: c}
 	d.decide(ctx)
+	for n, i := range order {
+		fits[i].holdsLead = n > 0 && fits[i].row.Standing == "open" && c.hold(i, order[0])
+	}
 	a.slopes(ctx, fits, order)
 	return order
 }

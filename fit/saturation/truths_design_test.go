@@ -55,6 +55,9 @@ func curveOf(m mechanisms.Mechanism, theta ...float64) func(float64) float64 {
 	}
 }
 
+// newRand is a generator of its own for study k of a test.
+func newRand(seed uint64, k int) *rand.Rand { return rand.New(rand.NewPCG(seed, uint64(k))) }
+
 // site is one site of dissociation constant k.
 func site(k float64) func(float64) float64 { return func(x float64) float64 { return x / (k + x) } }
 

@@ -152,7 +152,7 @@ func TestTruths(t *testing.T) {
 		t.Logf("%2d %-28s right %3d tie %3d wrong %3d truth out %3d of %d; %.2f s a study; %v", tr.number, tr.name,
 			s.right, s.tie, s.wrong, s.truthOut, n, time.Since(begin).Seconds()/float64(n), reasons)
 		wrong, all = wrong+s.wrong, all+n
-		if goals && (s.right*200 < 188*n || s.wrong*200 > 8*n) {
+		if goals && (s.right*200 < 188*n || s.wrong*200 > 8*n) || !goals && s.right < (n+1)/2 {
 			t.Errorf("truth %d misses its goals", tr.number)
 		}
 	}

@@ -13,7 +13,7 @@ func (w *verdictWriter) constants() string {
 		name := w.constantName(q)
 		switch k := math.Sqrt(float64(q.High / q.Low)); {
 		case q.Held == "fixed":
-		case q.Held != "both" || !(q.Low > 0):
+		case q.Held != "both" || !(q.Low > 0) || k > farOff:
 			open = append(open, name)
 		case k < looseFactor:
 			firm = append(firm, name+" at "+withInterval(q))

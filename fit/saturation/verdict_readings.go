@@ -20,7 +20,7 @@ func (w *verdictWriter) readings() string {
 
 // several lists the readings of a shallow curve that are left.
 func (w *verdictWriter) several() string {
-	var unlike, populations, negative, spread []string
+	var unlike, populations, negative, interacting, spread []string
 	for _, f := range w.kept {
 		name := quoted(f.row.Name)
 		switch f.row.Family {
@@ -31,7 +31,11 @@ func (w *verdictWriter) several() string {
 		case "hill":
 			spread = append(spread, name)
 		default:
-			negative = append(negative, name)
+			if f.row.Sites == 2 || f.row.Family == "sequential" {
+				negative = append(negative, name)
+			} else {
+				interacting = append(interacting, name) // some of them, it may be, positively
+			}
 		}
 	}
 	var all []string
@@ -39,7 +43,7 @@ func (w *verdictWriter) several() string {
 		words string
 		names []string
 	}{{"unlike sites on each molecule", unlike}, {"separate populations", populations},
-		{"negative cooperativity", negative}, {"a spread of affinities", spread}} {
+		{"negative cooperativity", negative}, {"sites that interact", interacting}, {"a spread of affinities", spread}} {
 		if len(r.names) > 0 {
 			all = append(all, fmt.Sprintf("%s (%s)", r.words, list(r.names)))
 		}
@@ -75,7 +79,7 @@ func (w *verdictWriter) factorWords() string {
 	case shared != nil:
 		return w.sharedSites(shared)
 	case refused != nil && !built:
-		return fmt.Sprintf("For %s sites, no set of independent sites gives this curve.", countWord(refused.Sites))
+		return fmt.Sprintf("For %s sites, no set of independent sites gives this curve: they interact, or belong to molecules of several kinds.", countWord(refused.Sites))
 	}
 	return ""
 }

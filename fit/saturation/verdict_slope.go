@@ -73,6 +73,16 @@ func (f *fitted) slopeOf(ctx context.Context, pr *fit.Profiler, cell int) slope 
 	return s
 }
 
+// builtOn says whether n_H is 1 by construction on a curve.
+func (f *fitted) builtOn(label string) bool {
+	for _, s := range f.slopes {
+		if s.curve == label && s.built {
+			return true
+		}
+	}
+	return false
+}
+
 // still says whether a gradient is zero but for rounding.
 func still(grad []float64) bool {
 	for _, g := range grad {
@@ -214,7 +224,7 @@ func (w *verdictWriter) steepnessOf(label string) string {
 	s += withInterval(x)
 	switch {
 	case n == nil || math.IsNaN(float64(n.Value)):
-	case w.lead.row.Sites == 1 && n.Low == n.High:
+	case w.lead.builtOn(label):
 		s += " and n_H there is 1 by construction"
 	default:
 		s += " and n_H there is " + withInterval(n)
@@ -262,15 +272,30 @@ func (w *verdictWriter) slopeWords() string {
 // slopeSentence is the sentence on n_H of one curve, or of all where none is set apart.
 func (w *verdictWriter) slopeSentence(curve, said string) string {
 	where := "n_H at half saturation" + onCurve(curve)
+	which, share := "In every mechanism that is not out", "what they share is "
+	if len(w.kept) == 1 {
+		which, share = "In the one mechanism tried that is not out", ""
+	}
 	switch said {
 	case slopeAbove:
-		return fmt.Sprintf("In every mechanism that is not out, %s lies above 1 (%s): what they share is positive cooperativity%s.", where, decidingLevel(), w.sitesWords())
+		return fmt.Sprintf("%s, %s lies above 1 (%s): %spositive cooperativity%s.%s", which, where, decidingLevel(), share, w.sitesWords(), w.velocityWords())
 	case slopeBelow:
-		return fmt.Sprintf("In every mechanism that is not out, %s lies below 1 (%s).", where, decidingLevel())
+		return fmt.Sprintf("%s, %s lies below 1 (%s).%s", which, where, decidingLevel(), w.velocityWords())
 	case slopeOne:
 		return w.oneWords(curve, where)
 	case slopeOpen:
 		return w.openWords(curve, where)
+	}
+	return ""
+}
+
+// velocityWords says that velocities are not binding (Storer & Cornish-Bowden
+// 1976 Biochem J 159:7: glucokinase, one site, h 1.2 to 1.5).
+func (w *verdictWriter) velocityWords() string {
+	for i := range w.a.Data {
+		if w.a.Data[i].Response.Kind == "velocity" {
+			return " These are velocities: one catalytic site can give such a slope by its kinetics alone."
+		}
 	}
 	return ""
 }

@@ -80,18 +80,24 @@ func (w *verdictWriter) refused() string {
 }
 
 func (w *verdictWriter) open() string {
-	var rivals, freer []string
+	var rivals, holders, freer []string
 	for _, f := range w.kept {
-		switch f.row.Standing {
-		case "open":
-			rivals = append(rivals, fmt.Sprintf("%s (%s, AICc %s behind)", quoted(f.row.Name), constantsWord(f.row.Constants), figures(float64(f.row.AICcBehind), 2)))
-		case "open: leader, freer":
+		switch {
+		case f.row.Standing == "open: leader, freer":
 			freer = append(freer, f.row.Name)
+		case f.row.Standing != "open":
+		case f.holdsLead:
+			holders = append(holders, f.row.Name)
+		default:
+			rivals = append(rivals, fmt.Sprintf("%s (%s, AICc %s behind)", quoted(f.row.Name), constantsWord(f.row.Constants), figures(float64(f.row.AICcBehind), 2)))
 		}
 	}
 	s := ""
 	if len(rivals) > 0 {
 		s = fmt.Sprintf("Still open, since these data cannot refuse %s: %s.", verb(len(rivals), "it", "them"), list(rivals))
+	}
+	if len(holders) > 0 {
+		s = join(s, fmt.Sprintf("Open as a matter of course, since %s the leader as a special case: %s.", verb(len(holders), "it holds", "they hold"), quotedList(holders)))
 	}
 	if len(freer) > 0 {
 		s = join(s, fmt.Sprintf("Letting more of the leader's constants differ (%s) brings nothing that pays for them.", quotedList(freer)))
