@@ -69,6 +69,9 @@ func (b *builder) sitesFromBmax(p string, d *Data) saturation.SitesPresent {
 	if !one.Bare {
 		made = units.Multiply(made, one.Unit)
 	}
+	if b.failed["ligand.unit"] || b.failed[p+".response.unit"] {
+		return saturation.SitesPresent{} // nothing is known of the units
+	}
 	f, err := units.Factor(made, ligand)
 	if err != nil || one.Value <= 0 {
 		needs := units.Divide(ligand, *d.Response.Unit)

@@ -98,7 +98,8 @@ func (r *points) listColumns() []string {
 	return []string{"Its columns are: " + shortList(r.t.Header(), 40) + "."}
 }
 
-// nearestColumn also takes a header that begins with the word, or the reverse.
+// nearestColumn also takes a header that begins with the word, or the reverse,
+// or whose first word is near.
 func nearestColumn(name string, header []string) string {
 	if near := diag.Nearest(name, header); near != "" {
 		return near
@@ -107,6 +108,11 @@ func nearestColumn(name string, header []string) string {
 	for _, h := range header {
 		l := strings.ToLower(h)
 		if len(lower) > 1 && (strings.HasPrefix(l, lower) || strings.HasPrefix(lower, l)) {
+			return h
+		}
+	}
+	for _, h := range header {
+		if i := strings.IndexAny(h, "_ (.["); i > 2 && diag.Nearest(name, []string{h[:i]}) != "" {
 			return h
 		}
 	}
