@@ -311,6 +311,9 @@ func (m *stated) Sites() int            { return m.sites }
 func (m *stated) Constants() []Constant { return slices.Clone(m.constants) }
 func (m *stated) Effectors() []string   { return slices.Clone(m.effectors) }
 
+// lnWays is ln of a degeneracy; none given means one.
+func lnWays(ways int) float64 { return math.Log(float64(max(1, ways))) }
+
 func (m *stated) Curve() Curve {
 	k := len(m.constants)
 	ligation, of := make([]int, len(m.states)), make([]int, len(m.states))
@@ -324,7 +327,7 @@ func (m *stated) Curve() Curve {
 		l.count[j] = make([]float64, len(m.states))
 	}
 	for s, state := range m.states {
-		l.lnG[s] = math.Log(float64(max(1, state.Ways)))
+		l.lnG[s] = lnWays(state.Ways)
 		copy(l.row(s), m.exponents(state, k))
 		for j, e := range m.effectors {
 			l.count[j][s] = float64(state.Effectors[e])
