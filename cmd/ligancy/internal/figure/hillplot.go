@@ -82,19 +82,25 @@ func (f *HillPlot) span() (low, high float64) {
 
 // asymptote draws a line of slope 1 through zero at a ligand value.
 func (f *HillPlot) asymptote(p *panel, at float64, i int) {
+	if ends := f.ends(p, at); len(ends) > 0 {
+		var path Path
+		path.MoveTo(ends[0].X, ends[0].Y)
+		path.LineTo(ends[1].X, ends[1].Y)
+		p.d.add(&stroke{path: path, ink: CurveInk(i), width: 1, dash: []float64{7, 4}})
+	}
+}
+
+// ends are those of an asymptote inside the field; none where it does not exist.
+func (f *HillPlot) ends(p *panel, at float64) []XY {
 	if !(at > 0) || !finite(at) {
-		return
+		return nil
 	}
 	lx := math.Log10(at)
-	x0 := max(p.x.low, lx+p.y.low)
-	x1 := min(p.x.high, lx+p.y.high)
+	x0, x1 := max(p.x.low, lx+p.y.low), min(p.x.high, lx+p.y.high)
 	if x1 <= x0 {
-		return
+		return nil
 	}
-	var path Path
-	path.MoveTo(p.x.at(math.Pow(10, x0)), p.y.at(x0-lx))
-	path.LineTo(p.x.at(math.Pow(10, x1)), p.y.at(x1-lx))
-	p.d.add(&stroke{path: path, ink: CurveInk(i), width: 1, dash: []float64{7, 4}})
+	return []XY{{p.x.at(math.Pow(10, x0)), p.y.at(x0 - lx)}, {p.x.at(math.Pow(10, x1)), p.y.at(x1 - lx)}}
 }
 
 // clipped draws a line's part inside the field.
@@ -130,25 +136,30 @@ func (f *HillPlot) marks(p *panel) {
 // names of the curves, clear of one another.
 func (f *HillPlot) distances(p *panel) {
 	var busy obstacles
-	for _, l := range f.Lines {
-		busy.polyline(between(p.places(l.At), p.x.x0, p.x.x1))
-	}
+	uprights := make([][]XY, len(f.Lines))
 	for i, l := range f.Lines {
+		busy.polyline(between(p.places(l.At), p.x.x0, p.x.x1))
+		for _, at := range []float64{l.First, l.Last} {
+			busy.polyline(f.ends(p, at))
+		}
 		if l.Distance == "" || !(l.Half > 0) || !p.x.inside(l.Half) || !finite(l.First) || !finite(l.Last) {
 			continue
 		}
 		a, b := math.Log10(l.Half/l.First), math.Log10(l.Half/l.Last)
 		lo, hi := max(min(a, b), p.y.low), min(max(a, b), p.y.high)
-		if hi <= lo {
-			continue
+		if hi > lo {
+			x := p.x.at(l.Half)
+			uprights[i] = []XY{{x, p.y.at(lo)}, {x, p.y.at(hi)}}
+			busy.polyline(uprights[i])
+			p.d.line(x, p.y.at(lo), x, p.y.at(hi), CurveInk(i), 1)
 		}
-		x := p.x.at(l.Half)
-		line := []XY{{x, p.y.at(lo)}, {x, p.y.at(hi)}}
-		p.d.line(x, line[0].Y, x, line[1].Y, CurveInk(i), 1)
-		busy.polyline(line)
-		label := Words(Sans, l.Distance)
-		at := busy.along(line, label.Width(p.s.Size), p.s.Size, p)
-		p.d.add(&lettering{x: at.X, y: at.Y, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
+	}
+	for i, line := range uprights {
+		if len(line) > 0 {
+			label := Words(Sans, f.Lines[i].Distance)
+			at := busy.along(line, label.Width(p.s.Size), p.s.Size, p)
+			p.d.add(&lettering{x: at.X, y: at.Y, size: p.s.Size, ink: NameInk(i), runs: label, halo: true})
+		}
 	}
 	var curves []named
 	for i, l := range f.Lines {

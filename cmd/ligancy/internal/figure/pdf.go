@@ -15,8 +15,6 @@ import (
 	"sync"
 	"unicode"
 	"unicode/utf16"
-
-	"golang.org/x/image/font/sfnt"
 )
 
 // pdfWriter writes a drawing as a portable document of one page (ISO 32000-1)
@@ -159,19 +157,6 @@ func (p *pdfWriter) typeface(f Face) {
 var parsedOutlines = func() (all [faces]func() *outlines) {
 	for f := range all {
 		all[f] = sync.OnceValue(func() *outlines { return parseOutlines(typefaces[f].ttf) })
-	}
-	return all
-}()
-
-var parsedGlyphs = func() (all [faces]func() *sfnt.Font) {
-	for f := range all {
-		all[f] = sync.OnceValue(func() *sfnt.Font {
-			font, err := sfnt.Parse(typefaces[f].ttf)
-			if err != nil {
-				panic("figure: an embedded typeface cannot be read")
-			}
-			return font
-		})
 	}
 	return all
 }()
@@ -351,16 +336,15 @@ func (p *pdfWriter) glyphs(f Face, s string) string {
 		p.used[f] = map[int]rune{}
 	}
 	var b strings.Builder
-	var buf sfnt.Buffer
 	for _, r := range s {
-		g, err := parsedGlyphs[f]().GlyphIndex(&buf, r)
-		if err != nil || g == 0 {
+		g := f.glyph(r)
+		if g == 0 {
 			if unicode.In(r, unicode.Mn, unicode.Me, unicode.Cf) {
 				continue
 			}
-			g, r = 0, unicode.ReplacementChar
+			r = unicode.ReplacementChar
 		}
-		p.used[f][int(g)] = r
+		p.used[f][g] = r
 		fmt.Fprintf(&b, "%04X", g)
 	}
 	return b.String()

@@ -35,15 +35,19 @@ func (o *obstacles) place(own []XY, width, size float64, p *panel) (at XY, cost 
 		}
 		for _, c := range []XY{
 			{q.X - 0.8*size - width, q.Y}, {q.X + 0.8*size, q.Y + 0.7*size},
+			{q.X - 0.6*size - width, q.Y}, {q.X + 0.6*size, q.Y + 0.7*size},
 			{q.X - 1.6*size - width, q.Y}, {q.X + 1.6*size, q.Y + 0.7*size},
 			{q.X - width/2, q.Y - size}, {q.X - width/2, q.Y + 1.8*size},
 		} {
-			box := [4]float64{c.X - 5, c.Y - size - 2, c.X + width + 5, c.Y + 0.3*size + 2}
+			box := [4]float64{c.X - 4, c.Y - size - 1, c.X + width + 4, c.Y + 0.3*size + 1}
 			if box[0] < p.x.x0 || box[2] > p.x.x1 || box[1] < p.top || box[3] > p.bottom {
 				continue
 			}
 			// The middle of the curve is where curves are apart.
-			cost := 3*math.Abs((p.bottom-q.Y)/height-0.5) + 0.4*o.covered(box)
+			cost := 3 * math.Abs((p.bottom-q.Y)/height-0.5)
+			if cost < least {
+				cost += 0.4 * o.covered(box, (least-cost)/0.4)
+			}
 			if cost < least {
 				best, least = c, cost
 			}
@@ -111,7 +115,7 @@ func (o *obstacles) along(line []XY, width, size float64, p *panel) XY {
 			if box[0] < p.x.x0 || box[2] > p.x.x1 {
 				continue
 			}
-			if cost := o.covered(box); cost < least {
+			if cost := o.covered(box, least); cost < least {
 				best, least = XY{x, q.Y}, cost
 			}
 		}
@@ -120,17 +124,20 @@ func (o *obstacles) along(line []XY, width, size float64, p *panel) XY {
 	return best
 }
 
-// covered counts what lies under a box; another label counts most.
-func (o *obstacles) covered(box [4]float64) float64 {
+// covered counts what lies under a box; another label counts most. It stops
+// counting once there is more than a limit.
+func (o *obstacles) covered(box [4]float64, limit float64) float64 {
 	n := 0.0
-	for _, q := range o.at {
-		if q.X > box[0] && q.X < box[2] && q.Y > box[1] && q.Y < box[3] {
-			n++
-		}
-	}
 	for _, b := range o.boxes {
 		if b[0] < box[2] && box[0] < b[2] && b[1] < box[3] && box[1] < b[3] {
 			n += 40
+		}
+	}
+	for _, q := range o.at {
+		if q.X > box[0] && q.X < box[2] && q.Y > box[1] && q.Y < box[3] {
+			if n++; n > limit {
+				return n
+			}
 		}
 	}
 	return n

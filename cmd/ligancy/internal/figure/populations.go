@@ -163,7 +163,10 @@ func (o *obstacles) beside(top XY, width, size float64, p *panel) XY {
 			c.X = min(max(c.X, p.x.x0+2), p.x.x1-width-2)
 			c.Y = min(max(c.Y, p.top+0.9*size), p.bottom-0.3*size)
 			box := [4]float64{c.X - 2, c.Y - 0.8*size, c.X + width + 2, c.Y + 0.2*size}
-			cost := 1.2*o.covered(box) + math.Abs(dx) + math.Abs(dy)
+			cost := math.Abs(dx) + math.Abs(dy)
+			if cost < least {
+				cost += 1.2 * o.covered(box, (least-cost)/1.2)
+			}
 			if cost < least {
 				best, least = c, cost
 			}

@@ -3,6 +3,7 @@ package figure
 import (
 	"math"
 	"strconv"
+	"strings"
 )
 
 // Slope is the figure of steepness: the Hill coefficient along each curve, with
@@ -49,7 +50,8 @@ func (f *Slope) Draw(s Style) *Drawing {
 	for i, l := range f.Lines {
 		p.band(l.Low, l.High, CurveInk(f.lead+i))
 	}
-	f.hillFits(p)
+	var busy obstacles
+	f.hillFits(p, &busy)
 	for _, r := range f.Rivals {
 		d.within(group{class: "rival", data: [][2]string{{"m", r.ID}}, hidden: !r.Shown}, func() {
 			for _, line := range r.Lines {
@@ -61,7 +63,7 @@ func (f *Slope) Draw(s Style) *Drawing {
 		p.curve(l.At, l.From, l.To, CurveInk(f.lead+i))
 	}
 	f.dots(p)
-	f.names(p)
+	f.names(p, &busy)
 	p.reading(true, f.Places...)
 	d.Height = math.Ceil(below)
 	return d
@@ -144,7 +146,7 @@ func (f *Slope) span() (low, high float64) {
 }
 
 // hillFits draws the level of a Hill fit of each curve over its tested range.
-func (f *Slope) hillFits(p *panel) {
+func (f *Slope) hillFits(p *panel, busy *obstacles) {
 	var at []float64
 	var which []int
 	for i, l := range f.Lines {
@@ -161,10 +163,16 @@ func (f *Slope) hillFits(p *panel) {
 	for k, i := range which {
 		text := "a Hill fit " + strconv.FormatFloat(f.Lines[i].HillFit, 'f', 2, 64)
 		if p.s.narrow() {
-			text = strconv.FormatFloat(f.Lines[i].HillFit, 'f', 2, 64)
-			if k == 0 {
-				text = "a Hill fit " + text
+			if len(which) > 2 { // no room: the table has the numbers
+				text = "a Hill fit"
+				if k > 0 {
+					continue
+				}
+			} else if k > 0 {
+				text = strings.TrimPrefix(text, "a Hill fit ")
 			}
+			w := Words(Sans, text).Width(p.s.Size)
+			busy.take(XY{p.x.x1 - 2 - w, places[k] + 0.36*p.s.Size}, w, p.s.Size)
 			p.d.add(&lettering{x: p.x.x1 - 2, y: places[k] + 0.36*p.s.Size, anchor: End, size: p.s.Size,
 				ink: NameInk(f.lead + i), runs: Words(Sans, text), halo: true})
 			continue
@@ -190,11 +198,10 @@ func (f *Slope) dots(p *panel) {
 	}
 }
 
-func (f *Slope) names(p *panel) {
+func (f *Slope) names(p *panel, busy *obstacles) {
 	if len(f.Lines) < 2 {
 		return
 	}
-	var busy obstacles
 	for _, l := range f.Lines {
 		busy.polyline(between(p.places(l.At), p.x.x0, p.x.x1))
 		if finite(l.HillFit) && l.From > 0 {

@@ -2,6 +2,7 @@ package figure
 
 import (
 	"encoding/binary"
+	"maps"
 	"slices"
 )
 
@@ -76,7 +77,10 @@ func components(g []byte) []int {
 // subset is a TrueType file with the outlines of some glyphs, which keep their
 // numbers; all others are blank. It has the tables that a PDF viewer reads
 // (ISO 32000-1, 9.9) and no others.
-func (o *outlines) subset(used []int) []byte {
+func (o *outlines) subset(used []int) []byte { return assemble(o.reduced(used)) }
+
+// reduced are the tables of a subset.
+func (o *outlines) reduced(used []int) map[string][]byte {
 	keep := map[int]bool{0: true}
 	for todo := slices.Clone(used); len(todo) > 0; {
 		g := todo[len(todo)-1]
@@ -100,10 +104,45 @@ func (o *outlines) subset(used []int) []byte {
 	head := slices.Clone(o.tables["head"])
 	binary.BigEndian.PutUint16(head[50:], 1) // long places
 	binary.BigEndian.PutUint32(head[8:], 0)
-	return assemble(map[string][]byte{
+	return map[string][]byte{
 		"glyf": glyf, "loca": loca, "head": head,
 		"hhea": o.tables["hhea"], "hmtx": o.tables["hmtx"], "maxp": o.tables["maxp"],
-	})
+	}
+}
+
+// webFont is a subset that a browser takes: with names and with the way from
+// letters to glyphs. A letter that the face lacks is left to another typeface.
+func webFont(f Face, letters map[rune]bool) []byte {
+	o := parsedOutlines[f]()
+	glyphs := map[rune]int{}
+	var used []int
+	for _, r := range slices.Sorted(maps.Keys(letters)) {
+		if g := f.glyph(r); g > 0 {
+			glyphs[r] = g
+			used = append(used, g)
+		}
+	}
+	tables := o.reduced(used)
+	for _, name := range []string{"OS/2", "name", "post"} {
+		tables[name] = o.tables[name]
+	}
+	tables["cmap"] = letterMap(glyphs)
+	return assemble(tables)
+}
+
+// letterMap is a cmap table of format 12, a group a letter.
+func letterMap(glyphs map[rune]int) []byte {
+	out := []byte{0, 0, 0, 1, 0, 3, 0, 10, 0, 0, 0, 12} // version, one table: Windows, all of Unicode
+	out = append(out, 0, 12, 0, 0)
+	out = binary.BigEndian.AppendUint32(out, uint32(16+12*len(glyphs)))
+	out = append(out, 0, 0, 0, 0)
+	out = binary.BigEndian.AppendUint32(out, uint32(len(glyphs)))
+	for _, r := range slices.Sorted(maps.Keys(glyphs)) {
+		out = binary.BigEndian.AppendUint32(out, uint32(r))
+		out = binary.BigEndian.AppendUint32(out, uint32(r))
+		out = binary.BigEndian.AppendUint32(out, uint32(glyphs[r]))
+	}
+	return out
 }
 
 // assemble writes a TrueType file.

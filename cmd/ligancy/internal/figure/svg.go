@@ -16,8 +16,8 @@ import (
 // svgWriter writes a drawing as SVG.
 type svgWriter struct {
 	b      bytes.Buffer
-	places int // decimals of coordinates
-	used   [faces]bool
+	places int                  // decimals of coordinates
+	used   [faces]map[rune]bool // letters in use
 }
 
 // WriteSVG writes the drawing as an element to stand inside a page whose style
@@ -46,7 +46,7 @@ func (d *Drawing) WriteSVGFile(w io.Writer) error {
 	fmt.Fprintf(&b, `<svg xmlns="http://www.w3.org/2000/svg" width="%smm" height="%smm" viewBox="0 0 %s %s" fill="none">`+"\n",
 		s.num(d.Width/perMM), s.num(d.Height/perMM), s.num(d.Width), s.num(d.Height))
 	fmt.Fprintf(&b, "<title>%s</title><desc>%s</desc>\n<style>", escape(d.Title), escape(d.Description))
-	b.WriteString(fontFaces(s.used))
+	b.WriteString(s.fontFaces())
 	b.WriteString(StyleSheet(":root", false))
 	b.WriteString("</style>\n")
 	fmt.Fprintf(&b, `<rect class="f-gr" width="%s" height="%s"/>`, s.num(d.Width), s.num(d.Height))
@@ -94,29 +94,28 @@ func StyleSheet(selector string, onDark bool) string {
 func (f Face) class() string { return [faces]string{"sa", "sb", "se", "si", "sx"}[f] }
 
 // FontFaces is the style sheet that embeds every typeface of a page.
-func FontFaces() string { return allFaces() }
-
-var allFaces = sync.OnceValue(func() string {
-	var all [faces]bool
-	for f := range all {
-		all[f] = true
+var FontFaces = sync.OnceValue(func() string {
+	var b strings.Builder
+	for _, t := range typefaces {
+		b.WriteString(fontFace(t, "woff2", t.woff2))
 	}
-	return fontFaces(all)
+	return b.String()
 })
 
-func fontFaces(used [faces]bool) string {
+// fontFaces embeds what a file uses of each face.
+func (s *svgWriter) fontFaces() string {
 	var b strings.Builder
-	for f, t := range typefaces {
-		if used[f] {
-			b.WriteString(fontFace(t))
+	for f := range faces {
+		if s.used[f] != nil {
+			b.WriteString(fontFace(typefaces[f], "truetype", webFont(f, s.used[f])))
 		}
 	}
 	return b.String()
 }
 
-func fontFace(t typeface) string {
-	return fmt.Sprintf("@font-face{font-family:'%s';font-style:%s;font-weight:%s;src:url(data:font/woff2;base64,%s) format('woff2')}",
-		t.family, t.style, t.weight, base64.StdEncoding.EncodeToString(t.woff2))
+func fontFace(t typeface, format string, file []byte) string {
+	return fmt.Sprintf("@font-face{font-family:'%s';font-style:%s;font-weight:%s;src:url(data:font/%s;base64,%s) format('%s')}",
+		t.family, t.style, t.weight, strings.Replace(format, "truetype", "ttf", 1), base64.StdEncoding.EncodeToString(file), format)
 }
 
 func (s *svgWriter) items(items []item) {
@@ -255,12 +254,22 @@ func (s *svgWriter) lettering(t *lettering) {
 	}
 	s.b.WriteByte('>')
 	if single {
-		s.used[t.runs[0].Face] = true
+		s.letters(t.runs[0])
 		s.b.WriteString(escape(t.runs[0].Text))
 	} else {
 		s.runs(t)
 	}
 	s.b.WriteString("</text>")
+}
+
+// letters notes the letters of a run.
+func (s *svgWriter) letters(r Run) {
+	if s.used[r.Face] == nil {
+		s.used[r.Face] = map[rune]bool{}
+	}
+	for _, c := range r.Text {
+		s.used[r.Face][c] = true
+	}
 }
 
 // runs writes the pieces of a label, each put back to the line before the next.
@@ -274,7 +283,7 @@ func (s *svgWriter) runs(t *lettering) {
 		case Super:
 			size, want = t.size*small, -t.size*supBy
 		}
-		s.used[r.Face] = true
+		s.letters(r)
 		fmt.Fprintf(&s.b, `<tspan class="%s" style="font-size:%spx"`, r.Face.class(), s.num(size))
 		if dy := want - offset; math.Abs(dy) > 1e-9 {
 			fmt.Fprintf(&s.b, ` dy="%s"`, s.num(dy))

@@ -69,10 +69,12 @@ var typefaces = [faces]typeface{
 	SerifBold:   {"STIX Two Text", "600", "normal", serifBoldTTF, serifBoldWOFF2},
 }
 
-// metrics holds the advance widths of a face, in thousandths of its size.
+// metrics holds the glyphs of a face's letters and their advance widths, in
+// thousandths of its size.
 type metrics struct {
 	once    sync.Once
 	advance map[rune]float64
+	glyph   map[rune]int
 }
 
 var measured [faces]metrics
@@ -85,7 +87,7 @@ const unknownWidth = 800
 func (f Face) load() *metrics {
 	m := &measured[f]
 	m.once.Do(func() {
-		m.advance = map[rune]float64{}
+		m.advance, m.glyph = map[rune]float64{}, map[rune]int{}
 		parsed, err := sfnt.Parse(typefaces[f].ttf)
 		if err != nil {
 			panic("figure: an embedded typeface cannot be read")
@@ -98,7 +100,7 @@ func (f Face) load() *metrics {
 			}
 			a, err := parsed.GlyphAdvance(&b, g, fixed.I(1000), font.HintingNone)
 			if err == nil {
-				m.advance[r] = float64(a) / 64
+				m.advance[r], m.glyph[r] = float64(a)/64, int(g)
 			}
 		}
 	})
@@ -110,6 +112,9 @@ func (f Face) Has(r rune) bool {
 	_, ok := f.load().advance[r]
 	return ok
 }
+
+// glyph is the number of a letter's glyph; 0 where the face lacks it.
+func (f Face) glyph(r rune) int { return f.load().glyph[r] }
 
 // Width is the length of a text set in the face at a size.
 func (f Face) Width(s string, size float64) float64 {

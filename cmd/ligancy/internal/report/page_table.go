@@ -1,5 +1,10 @@
 package report
 
+import (
+	"strconv"
+	"strings"
+)
+
 // table of a page.
 type table struct {
 	Caption string
@@ -21,6 +26,26 @@ type entry struct {
 	Name     string // a mechanism that can be shown over the leader: its place in the result
 	Number   bool   // set against the right edge
 	Colour   int    // 1-based place of the curve whose colour it has; 0 for none
+}
+
+// longText is the number of letters from which an entry may take several lines.
+const longText = 36
+
+// Class is the entry's class in the style sheet.
+func (c entry) Class() string {
+	class := ""
+	switch {
+	case c.Colour > 0:
+		class = "f-l" + strconv.Itoa(c.Colour)
+	case c.Colour < 0:
+		class = "blank"
+	case c.Number:
+		class = "num"
+	}
+	if len([]rune(c.Text+c.After)) > longText {
+		class = strings.TrimSpace(class + " wrap")
+	}
+	return class
 }
 
 // empty says whether a cell has nothing to show.

@@ -47,6 +47,9 @@ var operators = map[string]bool{"ln": true, "log": true, "exp": true, "Var": tru
 // indexed quantities that are written without an underscore.
 var indexed = map[string]string{"p50": "<i>p</i><sub>50</sub>", "EC50": "EC<sub>50</sub>", "Bmax": "<i>B</i><sub>max</sub>", "Kd": "<i>K</i><sub>d</sub>"}
 
+// macron over the letter before it: a mean.
+const macron = '\u0304'
+
 // raised and lowered signs of plain text and what they stand for.
 const (
 	superSigns = "⁰¹²³⁴⁵⁶⁷⁸⁹⁺⁻ⁿⁱʰ"
@@ -156,8 +159,15 @@ func (t *typesetter) raise(r []rune, i *int) {
 // word typesets a word, with its index if it has one.
 func (t *typesetter) word(r []rune, i *int) {
 	from := *i
-	for *i < len(r) && (unicode.IsLetter(r[*i]) && !strings.ContainsRune(superSigns+subSigns, r[*i]) || r[*i] == '\u0304' || unicode.IsDigit(r[*i])) {
+	for *i < len(r) && (unicode.IsLetter(r[*i]) && !strings.ContainsRune(superSigns+subSigns, r[*i]) || unicode.IsDigit(r[*i])) {
+		if *i > from && *i+1 < len(r) && r[*i+1] == macron { // a barred letter is a word of its own
+			break
+		}
 		*i++
+		if *i < len(r) && r[*i] == macron {
+			*i++
+			break
+		}
 	}
 	name := string(r[from:*i])
 	index := ""
