@@ -33,7 +33,7 @@ var outside = []struct {
 }{
 	{"gopkg.in/yaml.v3", []string{"specs", "cmd"}},
 	{"os", []string{"cmd"}},
-	{"syscall", []string{"cmd"}},
+	{"syscall", []string{"cmd", "ode/odetest"}}, // the test bench of ode counts processor time
 	{"net", []string{"cmd"}},
 	{"flag", []string{"cmd"}},
 	{"log", []string{"cmd"}},

@@ -65,34 +65,41 @@ func (a axis) column(x float64) int {
 	return int(math.Round(max(-1, min(c, float64(a.columns)))))
 }
 
-// scale writes the numbers of the axis: 1, 2, 5 of each decade where there is
-// room, else decades, else every few decades.
+// scale writes the numbers of the axis: 1, 2, 5 of each decade where all of
+// them have room, else 1 and 3, else decades, else every few decades.
 func (a axis) scale() string {
-	line := []rune(strings.Repeat(" ", a.columns+6))
-	free := 0
-	for _, v := range a.numbers() {
-		text := axisNumber(v)
-		at := max(0, a.column(v)-(width(text)-1)/2)
-		if at < free || at >= a.columns {
-			continue
+	for _, within := range [][]float64{{1, 2, 5}, {1, 3}, {1}} {
+		if line, ok := a.numbered(within, 1); ok {
+			return line
 		}
-		copy(line[at:], []rune(text))
-		free = at + width(text) + 2
 	}
-	return strings.TrimRight(string(line), " ")
+	for every := 2; ; every++ {
+		if line, ok := a.numbered([]float64{1}, every); ok {
+			return line
+		}
+	}
 }
 
-func (a axis) numbers() []float64 {
-	perDecade := float64(a.columns) / (a.high - a.low)
-	within, every := []float64{1}, 1
-	switch {
-	case perDecade >= 18:
-		within = []float64{1, 2, 5}
-	case perDecade >= 14:
-		within = []float64{1, 3}
-	case perDecade < 7:
-		every = int(math.Ceil(7 / perDecade))
+// numbered sets numbers over the axis; ok is false where two come too close.
+func (a axis) numbered(within []float64, every int) (line string, ok bool) {
+	runes := []rune(strings.Repeat(" ", a.columns+6))
+	free := 0
+	for _, v := range a.numbers(within, every) {
+		text := axisNumber(v)
+		at := max(0, a.column(v)-(width(text)-1)/2)
+		if at < free {
+			return "", false
+		}
+		if at < a.columns {
+			copy(runes[at:], []rune(text))
+			free = at + width(text) + 2
+		}
 	}
+	return strings.TrimRight(string(runes), " "), true
+}
+
+// numbers lists the multiples of every so many decades that lie on the axis.
+func (a axis) numbers(within []float64, every int) []float64 {
 	var all []float64
 	for e := int(math.Floor(a.low)); e <= int(math.Ceil(a.high)); e++ {
 		if e%every != 0 {
