@@ -107,7 +107,7 @@ func (w *verdictWriter) text() string {
 	}
 	return paragraphs(
 		join(w.leader(), w.ties(), w.refused(), w.open(), w.twins(), w.notToldApart(), w.failed()),
-		join(w.steepness(), w.slopeWords(), w.readings(), w.ends(), w.shifts(), w.explained()),
+		join(w.steepness(), w.contrasts(), w.slopeWords(), w.readings(), w.ends(), w.shifts(), w.explained()),
 		join(w.constants(), w.edges(), w.limits(), w.next()))
 }
 
@@ -139,15 +139,6 @@ func quotedList(names []string) string {
 		q[i] = quoted(n)
 	}
 	return list(q)
-}
-
-// names of fits, in order.
-func names(fits []*fitted) []string {
-	out := make([]string, len(fits))
-	for i, f := range fits {
-		out[i] = f.row.Name
-	}
-	return out
 }
 
 // find looks up a row of a mechanism; nil where there is none.

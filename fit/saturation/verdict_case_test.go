@@ -130,7 +130,7 @@ func TestOneSiteKeepsItsSlope(t *testing.T) {
 		if out.Verdict.Slope != slopeOne {
 			t.Errorf("study %d: n_H is called %q", k, out.Verdict.Slope)
 		}
-		says(t, out.Verdict, []string{"is not different from 1", "no cooperativity"}, []string{"are not stated", "shallow"})
+		says(t, out.Verdict, []string{"is not different from 1", "no cooperativity"}, []string{"Not stated", "shallow"})
 		checkNumbers(t, out)
 	}
 }
@@ -175,12 +175,12 @@ func TestLimitsAreSaid(t *testing.T) {
 		d.Points[i].Preparation = "A"
 	}
 	out := outcomeOf(t, a)
-	says(t, out.Verdict, []string{"No point was measured twice", "There is one preparation", "are not stated"}, nil)
+	says(t, out.Verdict, []string{"No point was measured twice", "There is one preparation", "Not stated"}, nil)
 	for i := range d.Points {
 		d.Points[i].Preparation = string(rune('A' + i%2))
 	}
 	a.Conditions = stated
-	says(t, outcomeOf(t, a).Verdict, nil, []string{"There is one preparation", "No preparation is named", "are not stated"})
+	says(t, outcomeOf(t, a).Verdict, nil, []string{"There is one preparation", "No preparation is named", "Not stated"})
 }
 
 // Nothing fitted, nothing said.

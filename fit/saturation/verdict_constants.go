@@ -1,6 +1,9 @@
 package saturation
 
-import "math"
+import (
+	"fmt"
+	"math"
+)
 
 // constants says how firmly the leader's constants are held.
 func (w *verdictWriter) constants() string {
@@ -43,7 +46,37 @@ func (w *verdictWriter) quotes(q *QuantityRow) bool {
 	if q.Mechanism != w.lead.row.Name || q.Interval == "bootstrap" || !(q.Value > 0) {
 		return false
 	}
-	return (q.Of == "constant" || q.Of == "contrast") && q.Name != "n_H_half" && q.Name != "x_half"
+	return q.Of == "constant" || q.Of == "contrast" && !curveContrasts[q.Name]
+}
+
+// curveContrasts are contrasts of curves, not of constants.
+var curveContrasts = map[string]bool{"x_half": true, "n_H_half": true, bohrName: true}
+
+// bohrName is the row of the Bohr coefficient.
+const bohrName = "Bohr_coefficient"
+
+// contrasts gives the leader's contrasts of half saturation and of n_H.
+func (w *verdictWriter) contrasts() string {
+	const most = 2
+	var s []string
+	for i := range w.out.Quantities {
+		q := &w.out.Quantities[i]
+		mine := q.Mechanism == w.lead.row.Name && q.Of == "contrast" && q.Interval != "bootstrap"
+		if !mine || math.IsNaN(float64(q.Value)) || len(s) == 2*most {
+			continue
+		}
+		switch q.Name {
+		case "x_half":
+			t := fmt.Sprintf("The ratio of half saturation at %s is %s", q.Curve, withInterval(q))
+			if b := w.find(q.Mechanism, "contrast", bohrName, q.Curve); b != nil && !math.IsNaN(float64(b.Value)) {
+				t += ", a Bohr coefficient of " + withInterval(b)
+			}
+			s = append(s, t+".")
+		case "n_H_half":
+			s = append(s, fmt.Sprintf("The difference of n_H there (%s) is %s.", q.Curve, withInterval(q)))
+		}
+	}
+	return join(s...)
 }
 
 // constantName is how the text calls a constant: "K_T of alanine (pH 7.0)".
@@ -85,11 +118,11 @@ func withInterval(q *QuantityRow) string {
 	s := toInterval(v, l, h) + unit
 	switch {
 	case !math.IsNaN(low) && !math.IsNaN(high):
-		s += " (" + toInterval(low, l, h) + " to " + toInterval(high, l, h) + ")"
+		s += " (" + intervalEnd(low, v, l, h) + " to " + intervalEnd(high, v, l, h) + ")"
 	case !math.IsNaN(low):
-		s += " (" + toInterval(low, l, h) + " or more, without an upper end)"
+		s += " (" + intervalEnd(low, v, l, h) + " or more, without an upper end)"
 	case !math.IsNaN(high):
-		s += " (" + toInterval(high, l, h) + " or less, without a lower end)"
+		s += " (" + intervalEnd(high, v, l, h) + " or less, without a lower end)"
 	}
 	return s
 }

@@ -2,6 +2,8 @@ package saturation
 
 import (
 	"fmt"
+	"math"
+	"slices"
 	"strings"
 )
 
@@ -17,7 +19,8 @@ func (w *verdictWriter) nothing() string {
 		return ""
 	}
 	why := fmt.Sprintf("with so few, mechanisms of %s pass or fail by chance", constantsRange(w.fits))
-	return fmt.Sprintf("Nothing can be concluded about the mechanism from %s: %s, and n_H is not judged.", plural(n, "point"), why)
+	return fmt.Sprintf("Nothing can be concluded about the mechanism from %s: %s, and n_H is not judged.",
+		plural(n, "point"), why)
 }
 
 // constantsRange is "one to four constants" over the mechanisms tried.
@@ -36,7 +39,8 @@ func constantsRange(fits []*fitted) string {
 func (w *verdictWriter) limits() string {
 	var s []string
 	if !w.replicated() {
-		s = append(s, "No point was measured twice: scatter and misfit are not told apart, and the scatter is that about the curves themselves.")
+		s = append(s, "No point was measured twice: scatter and misfit are not told apart, "+
+			"and the scatter is that about the curves themselves.")
 	}
 	switch preparations := w.a.levels(byPreparation); {
 	case len(preparations) == 1 && preparations[0] != "":
@@ -44,10 +48,28 @@ func (w *verdictWriter) limits() string {
 	case len(preparations) < 2:
 		s = append(s, "No preparation is named: the intervals speak of these readings, not of the next preparation.")
 	}
-	if len(w.a.Conditions) == 0 {
-		s = append(s, "Temperature, buffer and pH are not stated: the constants hold for no known conditions.")
+	if missing := w.a.unstated(); len(missing) > 0 && missing[0] == "temperature" {
+		s = append(s, fmt.Sprintf("Not stated: %s. The constants hold for no known conditions.", list(missing)))
 	}
 	return strings.Join(s, " ")
+}
+
+// unstated lists the conditions without which constants mean little that
+// neither the study nor a table or factor of it states.
+func (a *Analysis) unstated() []string {
+	var missing []string
+	for _, key := range []string{"temperature", "buffer", "pH"} {
+		_, said := a.Conditions[key]
+		said = said || key == "temperature" && !math.IsNaN(a.Kelvin)
+		for i := range a.Data {
+			_, here := a.Data[i].Conditions[key]
+			said = said || here || slices.Contains(a.Data[i].Factors, key)
+		}
+		if !said {
+			missing = append(missing, key)
+		}
+	}
+	return missing
 }
 
 // replicated says whether any two points see the same prediction.
@@ -71,10 +93,14 @@ func (w *verdictWriter) next() string {
 	shallow := w.v.Slope == slopeBelow
 	add(w.nothing() != "", "eight to twelve ligand values over the whole curve, each measured twice or more")
 	add(w.unfilled() != nil, "ligand values at which more than nine tenths of the sites are filled")
-	add(shallow, "dissociation after dilution with and without unlabelled ligand (interacting sites change each other's off-rates, unlike sites do not)")
+	add(shallow, "dissociation after dilution with and without unlabelled ligand "+
+		"(interacting sites change each other's off-rates, unlike sites do not)")
 	add(shallow, "a signal, an effector or a mutation that acts on one kind of site")
-	add(w.undecided() && w.v.Slope == slopeAbove, "the ends of the curve (below one twentieth and above nineteen twentieths of saturation), where the mechanisms left differ most")
-	add(len(w.left("mwc", "conformations")) > 0 && w.v.Slope == slopeAbove, "a signal of the conformation, or the curve with an effector that prefers one")
+	steep := w.v.Slope == slopeAbove
+	add(w.undecided() && steep, "the ends of the curve "+
+		"(below one twentieth and above nineteen twentieths of saturation), where the mechanisms left differ most")
+	add(len(w.left("mwc", "conformations")) > 0 && steep,
+		"a signal of the conformation, or the curve with an effector that prefers one")
 	add(w.nothing() == "" && !w.replicated(), "replicates")
 	if len(s) == 0 {
 		return ""

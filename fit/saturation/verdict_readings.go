@@ -79,7 +79,8 @@ func (w *verdictWriter) factorWords() string {
 	case shared != nil:
 		return w.sharedSites(shared)
 	case refused != nil && !built:
-		return fmt.Sprintf("For %s sites, no set of independent sites gives this curve: they interact, or belong to molecules of several kinds.", countWord(refused.Sites))
+		return fmt.Sprintf("For %s sites, no set of independent sites gives this curve: they interact, or belong to molecules of several kinds.",
+			countWord(refused.Sites))
 	}
 	return ""
 }
@@ -97,9 +98,11 @@ func (w *verdictWriter) sharedSites(r *FactorRow) string {
 		share = fmt.Sprintf("; the fitted polynomial factors in %s %% of draws", figures(100*float64(r.Share), 2))
 	}
 	if len(kd) > 2 {
-		return fmt.Sprintf("%s independent sites would give the curve of %s as well%s.", capital(countWord(len(kd))), quoted(r.Mechanism), share)
+		return fmt.Sprintf("%s independent sites would give the curve of %s as well%s.",
+			capital(countWord(len(kd))), quoted(r.Mechanism), share)
 	}
-	return fmt.Sprintf("%s independent sites with Kd %s would give the curve of %s as well%s.", capital(countWord(len(kd))), list(kd), quoted(r.Mechanism), share)
+	return fmt.Sprintf("%s independent sites with Kd %s would give the curve of %s as well%s.",
+		capital(countWord(len(kd))), list(kd), quoted(r.Mechanism), share)
 }
 
 func (w *verdictWriter) keeps(name string) bool {
@@ -161,7 +164,8 @@ func (w *verdictWriter) spreadWords() string {
 			}
 		}
 		if len(s) > 0 {
-			return fmt.Sprintf("Simple sites whose affinities are spread with an SD of ln K of %s are identical to a Hill curve of this exponent (Sips).", list(s))
+			return fmt.Sprintf("Simple sites whose affinities are spread with an SD of ln K of %s are identical to a Hill curve of this exponent (Sips).",
+				list(s))
 		}
 	}
 	return ""
@@ -274,7 +278,8 @@ func (w *verdictWriter) shifts() string {
 	}
 	s := "The preparations differ by a shift of ln K by preparation"
 	if q := w.find(w.lead.row.Name, "noise", shiftName, "all"); q != nil {
-		s += fmt.Sprintf(" (%s %s)", strings.TrimSuffix(shiftName, " between preparations"), figures(float64(q.Value), 2))
+		s += fmt.Sprintf(" (%s %s)",
+			strings.TrimSuffix(shiftName, " between preparations"), figures(float64(q.Value), 2))
 	}
 	switch {
 	case len(pooled) == 0:

@@ -19,7 +19,8 @@ func (w *verdictWriter) leader() string {
 	}
 	kind := familyWords(f) + differsWords(f)
 	if len(w.order) == 1 {
-		return fmt.Sprintf("%s described by %s (%s), the only mechanism that could be compared%s.", what, quoted(f.row.Name), kind, w.scatterWords())
+		return fmt.Sprintf("%s described by %s (%s), the only mechanism that could be compared%s.",
+			what, quoted(f.row.Name), kind, w.scatterWords())
 	}
 	return fmt.Sprintf("%s described best by %s (%s)%s.", what, quoted(f.row.Name), kind, w.scatterWords())
 }
@@ -59,7 +60,8 @@ func (w *verdictWriter) ties() string {
 	if len(tied) == 0 {
 		return ""
 	}
-	return fmt.Sprintf("%s %s as well: this is a tie, and these data do not choose.", capital(list(tied)), verb(len(tied), "does", "do"))
+	return fmt.Sprintf("%s %s as well: this is a tie, and these data do not choose.",
+		capital(list(tied)), verb(len(tied), "does", "do"))
 }
 
 // behind is how far a mechanism lies behind the leader; nothing for its twins.
@@ -89,18 +91,22 @@ func (w *verdictWriter) open() string {
 		case f.holdsLead:
 			holders = append(holders, f.row.Name)
 		default:
-			rivals = append(rivals, fmt.Sprintf("%s (%s, AICc %s behind)", quoted(f.row.Name), constantsWord(f.row.Constants), figures(float64(f.row.AICcBehind), 2)))
+			rivals = append(rivals, fmt.Sprintf("%s (%s, AICc %s behind)",
+				quoted(f.row.Name), constantsWord(f.row.Constants), figures(float64(f.row.AICcBehind), 2)))
 		}
 	}
 	s := ""
 	if len(rivals) > 0 {
-		s = fmt.Sprintf("Still open, since these data cannot refuse %s: %s.", verb(len(rivals), "it", "them"), list(rivals))
+		s = fmt.Sprintf("Still open, since these data cannot refuse %s: %s.",
+			verb(len(rivals), "it", "them"), list(rivals))
 	}
 	if len(holders) > 0 {
-		s = join(s, fmt.Sprintf("Open as a matter of course, since %s the leader as a special case: %s.", verb(len(holders), "it holds", "they hold"), quotedList(holders)))
+		s = join(s, fmt.Sprintf("Open as a matter of course, since %s the leader as a special case: %s.",
+			verb(len(holders), "it holds", "they hold"), quotedList(holders)))
 	}
 	if len(freer) > 0 {
-		s = join(s, fmt.Sprintf("Letting more of the leader's constants differ (%s) brings nothing that pays for them.", quotedList(freer)))
+		s = join(s, fmt.Sprintf("Letting more of the leader's constants differ (%s) brings nothing that pays for them.",
+			quotedList(freer)))
 	}
 	return s
 }
@@ -112,7 +118,8 @@ func (w *verdictWriter) twins() string {
 		if w.allOut(group) {
 			continue
 		}
-		s = append(s, fmt.Sprintf("%s give the same curve: no equilibrium measurement of this kind separates them.", quotedList(group)))
+		s = append(s, fmt.Sprintf("%s give the same curve: no equilibrium measurement of this kind separates them.",
+			quotedList(group)))
 	}
 	return strings.Join(s, " ")
 }
@@ -141,7 +148,8 @@ func (w *verdictWriter) notToldApart() string {
 	case len(concerted) > 0 && len(pairwise) > 0:
 		return capital(fmt.Sprintf(both, " ("+quotedList(concerted)+")", " ("+quotedList(pairwise)+")")) + "."
 	case len(stepwise) > 0 && w.tried("mwc", "conformations") && w.tried("sequential"):
-		return fmt.Sprintf("%s leaves open how its sites interact and is not out: "+both+".", capital(quoted(stepwise[0])), "", "")
+		return fmt.Sprintf("%s leaves open how its sites interact and is not out: "+both+".",
+			capital(quoted(stepwise[0])), "", "")
 	}
 	return ""
 }

@@ -25,17 +25,48 @@ func figures(v float64, digits int) string {
 // uncertainty is given two figures when it begins with 1, else one (JCGM 100),
 // but the value at least two.
 func toInterval(v, low, high float64) string {
-	half := (high - low) / 2
-	if !(half > 0) || math.IsInf(half, 0) || math.IsNaN(v) {
+	e, ok := lastFigure(v, low, high)
+	if !ok {
 		return figures(v, 3)
 	}
-	e := int(math.Floor(math.Log10(half)))
+	return atFigure(v, e)
+}
+
+// intervalEnd writes an end of the interval of v with the places of v, or more
+// where it would have less than two figures.
+func intervalEnd(end, v, low, high float64) string {
+	e, ok := lastFigure(v, low, high)
+	if !ok {
+		return figures(end, 3)
+	}
+	if end != 0 {
+		two := int(math.Floor(math.Log10(math.Abs(end)))) - 1
+		if e = min(e, two); math.Abs(end) > 1000*math.Abs(v) {
+			e = two
+		}
+	}
+	return atFigure(end, e)
+}
+
+// lastFigure is the power of ten of the last figure that an interval allows a
+// value; false where there is no interval.
+func lastFigure(v, low, high float64) (e int, ok bool) {
+	half := (high - low) / 2
+	if !(half > 0) || math.IsInf(half, 0) || math.IsNaN(v) {
+		return 0, false
+	}
+	e = int(math.Floor(math.Log10(half)))
 	if half/math.Pow(10, float64(e)) < 2 {
 		e--
 	}
 	if v != 0 {
 		e = min(e, int(math.Floor(math.Log10(math.Abs(v))))-1)
 	}
+	return e, true
+}
+
+// atFigure writes a value to the figure of 10^e.
+func atFigure(v float64, e int) string {
 	exp := e + 1
 	if v != 0 {
 		exp = int(math.Floor(math.Log10(math.Abs(v))))
