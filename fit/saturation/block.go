@@ -15,13 +15,15 @@ import (
 // Measurements that see the same prediction share a row; where the scatter
 // model allows, a row is their weighted mean (fit.Pooled).
 type block struct {
-	m    *model
-	data int
-	ends ends
-	resp Response // with what the mechanism settles of it
-	pts  []datum
-	rows []row
-	y    []float64 // per point: what was measured, or simulated in its place
+	m      *model
+	data   int
+	ends   ends
+	mech   mechanisms.Mechanism // whose response is that of the data set
+	tracer int                  // the effector that the response counts, in displacement; −1
+	resp   Response             // with what the mechanism settles of it
+	pts    []datum
+	rows   []row
+	y      []float64 // per point: what was measured, or simulated in its place
 
 	curves  []curveAt // curves that this data set visits
 	noise   scatterModel
@@ -69,8 +71,9 @@ type workspace struct {
 	jHat  *mat.Dense   // rows × Θ
 	mean  []float64    // Θ: mean gradient of ln g
 
-	point, seenPoint    *mechanisms.Point // of the curve and of what is seen
-	oneX, oneY          [1]float64        // one point of what is seen
+	point, seenPoint    *mechanisms.Point      // of the curve and of what is seen
+	env                 mechanisms.Environment // with the free tracer of a tube
+	oneX, oneY          [1]float64             // one point of what is seen
 	oneGrad             *mat.Dense
 	limitLow, limitHigh []float64
 }
@@ -129,7 +132,7 @@ func (b *block) prepare() {
 
 func (b *block) newWorkspace() *workspace {
 	k, p := len(b.m.consts), len(b.m.params)
-	w := &workspace{curve: b.m.c.Mechanism.Curve(), theta: make([]float64, k),
+	w := &workspace{curve: b.mech.Curve(), theta: make([]float64, k),
 		yHat: make([]float64, len(b.rows)), jHat: mat.NewDense(max(len(b.rows), 1), p, nil), mean: make([]float64, p)}
 	w.seen = watch(w.curve)
 	w.point = newPoint(k)
@@ -192,7 +195,11 @@ func (b *block) Eval(res []float64, jac *mat.Dense, theta []float64) error {
 func (b *block) predict(theta []float64, gradient bool) {
 	w := b.work
 	if b.m.a.Data[b.data].Total {
-		b.predictTotal(theta, gradient)
+		if b.tracer >= 0 {
+			b.predictDisplaced(theta, gradient)
+		} else {
+			b.predictTotal(theta, gradient)
+		}
 		return
 	}
 	for i := range b.curves {
@@ -214,7 +221,7 @@ func (b *block) predict(theta []float64, gradient bool) {
 		if q.blocked {
 			s = 0
 		}
-		w.yHat[i] = low + span*s + ns*q.x
+		w.yHat[i] = low + span*s + ns*b.counted(q)
 		if gradient {
 			b.gradient(i, s, span, theta)
 		}
@@ -229,7 +236,7 @@ func (b *block) gradient(i int, s, span float64, theta []float64) {
 	if !q.blocked {
 		b.m.chain(row, w.grad[q.curve].RawRowView(q.at), span, q.cell, theta)
 	}
-	b.endsGradient(row, q, s, q.x)
+	b.endsGradient(row, q, s, b.counted(q))
 }
 
 // bind sets the workspace's curve to the constants of a cell.

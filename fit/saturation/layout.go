@@ -1,6 +1,7 @@
 package saturation
 
 import (
+	"errors"
 	"fmt"
 	"math"
 	"slices"
@@ -67,6 +68,9 @@ func newModel(a *Analysis, c *Candidate) (*model, error) {
 	cellAt := map[string]int{} // cell signature → cells
 	for di := range a.Data {
 		b := &block{m: m, data: di}
+		if b.mech, b.tracer, err = countedMechanism(c.Mechanism, &a.Data[di]); err != nil {
+			return nil, err
+		}
 		m.blocks = append(m.blocks, b)
 		for pi := range a.Data[di].Points {
 			p := &a.Data[di].Points[pi]
@@ -76,6 +80,9 @@ func newModel(a *Analysis, c *Candidate) (*model, error) {
 			ci := m.cellOf(di, p, effectors, index, cellAt)
 			b.add(pi, p, ci)
 		}
+	}
+	if m.points() == 0 {
+		return m, errors.New("no points are kept")
 	}
 	m.layResponses()
 	m.layNoise()
@@ -223,6 +230,21 @@ func (m *model) enoughPoints() error {
 		return fmt.Errorf("%d points cannot hold %d constants: leave out this mechanism, share or fix constants, or measure more", n, free)
 	}
 	return nil
+}
+
+// seen is the mechanism whose response derived numbers speak of: that of the
+// data sets, where all of them see the same.
+func (m *model) seen() mechanisms.Mechanism {
+	first := m.c.Mechanism
+	for i, b := range m.blocks {
+		if i == 0 && b.tracer >= 0 {
+			first = b.mech
+		}
+		if b.tracer != m.blocks[0].tracer {
+			return m.c.Mechanism
+		}
+	}
+	return first
 }
 
 // problem is the least-squares problem of the model.

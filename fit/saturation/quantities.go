@@ -95,7 +95,7 @@ func (m *model) responseUnit(data int, quantity string) string {
 // measured turns a measure of one cell's curve into a function of Θ.
 func (m *model) measured(cell int, f func(mechanisms.Curve) mechanisms.Measure) func() fit.Quantity {
 	return func() fit.Quantity {
-		curve := m.c.Mechanism.Curve()
+		curve := m.seen().Curve()
 		seen := watch(curve)
 		local := make([]float64, len(m.consts))
 		return func(theta, grad []float64) float64 {
@@ -131,7 +131,7 @@ func (m *model) whyNot(cell int, theta []float64, f func(mechanisms.Curve) mecha
 
 // boundCurve is a cell's binding curve at Θ.
 func (m *model) boundCurve(cell int, theta []float64) mechanisms.Curve {
-	curve := m.c.Mechanism.Curve()
+	curve := m.seen().Curve()
 	local := make([]float64, len(m.consts))
 	for k, j := range m.cells[cell].theta {
 		local[k] = theta[j]

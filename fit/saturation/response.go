@@ -107,7 +107,7 @@ func (m *model) setResponseRange(i int) {
 		}
 		y := d.Points[q.index].Y
 		yLow, yHigh = min(yLow, y), max(yHigh, y)
-		xHigh = max(xHigh, d.Points[q.index].X)
+		xHigh = max(xHigh, b.counted(&row{x: d.Points[q.index].X, part: q.part}))
 	}
 	span := max(yHigh-yLow, 1e-12*math.Abs(yHigh), math.SmallestNonzeroFloat64)
 	p.Low, p.High = math.Inf(-1), math.Inf(1)

@@ -230,6 +230,7 @@ func (f *fitted) wantedRows() []wanted {
 	for _, c := range f.m.curveCells() {
 		list = append(list, f.m.curveWanted(c)...)
 		list = append(list, f.m.totalWanted(c)...)
+		list = append(list, f.m.displacementWanted(c)...)
 	}
 	return append(list, f.m.contrastsWanted()...)
 }

@@ -15,7 +15,7 @@ import (
 func (m *model) totalWanted(cell int) []wanted {
 	var out []wanted
 	for _, b := range m.blocks {
-		if !m.a.Data[b.data].Total {
+		if !m.a.Data[b.data].Total || b.tracer >= 0 {
 			continue
 		}
 		done := map[[2]int]bool{}
