@@ -12,14 +12,17 @@ import (
 	"ligancy/cmd/ligancy/internal/numerics"
 	"ligancy/cmd/ligancy/internal/report"
 	"ligancy/fit/fittest"
+	"ligancy/ode/odetest"
 )
 
 const numericsHelp = `ligancy numerics identities
 ligancy numerics regression
+ligancy numerics stiff
 
 Shows on this machine that the numerics reach what they must, for a laboratory that records it.
 identities compares binding curves with exact mathematics; regression fits the 27 certified
-problems of NIST's nonlinear collection from both starts with default settings.
+problems of NIST's nonlinear collection from both starts with default settings; stiff integrates
+initial-value problems with known solutions over a range of tolerances.
 
   --json       prints one JSON document instead
   --csv FILE   also writes the rows as a table; a file that exists is not written over
@@ -32,6 +35,9 @@ type numericsOptions struct {
 	json bool
 	csv  string
 }
+
+// tests of the numerics.
+var tests = []string{"identities", "regression", "stiff"}
 
 // tested is what one test of the numerics hands over.
 type tested struct {
@@ -46,7 +52,7 @@ func (p *program) numericsCommand() *cobra.Command {
 	c := &cobra.Command{
 		Use:       "numerics TEST",
 		Long:      numericsHelp,
-		ValidArgs: []string{"identities", "regression"},
+		ValidArgs: tests,
 		Args:      names("test", 1),
 		RunE:      func(c *cobra.Command, args []string) error { return p.testNumerics(c.Context(), args[0], opts) },
 	}
@@ -67,9 +73,11 @@ func (p *program) testNumerics(ctx context.Context, name string, opts numericsOp
 		t = p.identities()
 	case "regression":
 		t = p.regression(ctx)
+	case "stiff":
+		t = p.stiff(ctx)
 	default:
-		return &usageError{problem: fmt.Sprintf("there is no test %q of the numerics; there are identities and regression", name),
-			write: "ligancy numerics " + nearestWord(name, "identities", "regression")}
+		return &usageError{problem: fmt.Sprintf("there is no test %q of the numerics; there are %s", name, strings.Join(tests, ", ")),
+			write: "ligancy numerics " + nearestWord(name, tests...)}
 	}
 	if ctx.Err() != nil {
 		return exit(Interrupted)
@@ -116,6 +124,15 @@ func (p *program) regression(ctx context.Context) tested {
 	return tested{held: s.Right == s.Runs, rows: report.CertifiedRows(runs),
 		text: func(w io.Writer) error { return report.WriteCertified(w, runs, p.colour()) },
 		csv:  func(w io.Writer) error { return fittest.WriteCSV(w, runs) }}
+}
+
+// stiff integrates every problem with a known solution; at the smallest
+// tolerance that is judged each stiff one has to reach its digits.
+func (p *program) stiff(ctx context.Context) tested {
+	rows, err := odetest.WorkPrecision(ctx, odetest.Precision{Repeats: 3})
+	return tested{held: err == nil && report.StiffHeld(rows), rows: report.StiffRows(rows),
+		text: func(w io.Writer) error { return report.WriteStiff(w, rows, p.colour()) },
+		csv:  func(w io.Writer) error { return odetest.WriteRows(w, rows) }}
 }
 
 // nearestWord is the word that begins like the one given, else the first.
