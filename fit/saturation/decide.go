@@ -64,7 +64,7 @@ func (d *decider) restore() {
 			continue
 		}
 		for _, j := range d.order {
-			if d.fits[j].row.Standing != "out" && d.fits[i].lnL >= d.fits[j].lnL-0.01 && d.curves.hold(i, j) {
+			if d.fits[j].row.Standing != "out" && d.curves.hold(i, j) {
 				d.fits[i].row.Standing = "open"
 				break
 			}

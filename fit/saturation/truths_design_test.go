@@ -15,11 +15,12 @@ type truth struct {
 	name       string
 	simulate   func(rng *rand.Rand) Dataset
 	candidates func(t testing.TB) []Candidate
-	holders    []string // candidates whose curves hold the truth: itself and its twins
-	out        []string // must be out
-	nH         string   // what is true of n_H: "1", "above 1", "below 1"
-	said       []string // each must be said
-	pairs      [][]string
+	holders    []string   // candidates whose curves hold the truth: itself and its twins
+	out        []string   // must be out
+	nH         string     // what is true of n_H: "1", "above 1", "below 1"
+	silent     bool       // n_H may be left open
+	said       []string   // each must be said
+	pairs      [][]string // twins that must be named together
 }
 
 // series is n ligand values from low to high in equal steps of ln x.

@@ -48,11 +48,11 @@ func truths(t testing.TB) []truth {
 			holders:  []string{"Hill"}, out: []string{"one site", "unlike pair", "interacting pair", "two classes"},
 			said: []string{saysSpread, saysHillTwin}},
 		nonspecificTruth(),
-		{number: 10, name: "upper end not reached", nH: "1", candidates: ordinary, simulate: unfinished,
+		{number: 10, name: "upper end not reached", nH: "1", silent: true, candidates: ordinary, simulate: unfinished,
 			holders: []string{"one site", "Hill", "interacting pair", "unlike pair"},
 			said:    []string{saysEndNotReached, saysSlopeOpen}},
 		shiftTruth(),
-		{number: 12, name: "concerted, six points", nH: "above 1", candidates: ordinary,
+		{number: 12, name: "concerted, six points", nH: "above 1", silent: true, candidates: ordinary,
 			simulate: curveWith(0.1, series(6, 0.3, 100), 1, concerted(t, 1e4, 0.01, 1)),
 			holders:  []string{"concerted"}, said: []string{saysNothing}},
 	}

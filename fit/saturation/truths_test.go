@@ -83,11 +83,11 @@ func (tr *truth) judge(v *Verdict) (f finding) {
 			miss("unsaid: " + s)
 		}
 	}
-	if len(tr.said) == 0 && said != tr.nH {
+	if !tr.silent && said != tr.nH {
 		miss("n_H not called " + tr.nH + " but " + said)
 	}
 	for _, p := range tr.pairs {
-		if !twinned(v, p[0], p[1]) {
+		if !twinned(v, p[0], p[1]) || kept(p[0]) != kept(p[1]) {
 			miss("twins not named: " + p[0] + ", " + p[1])
 			f.wrong = true
 		}

@@ -143,6 +143,9 @@ func (c *curves) holds(j, i int) bool {
 	if to == nil || from == nil {
 		return false
 	}
+	if c.fits[j].lnL < c.fits[i].lnL-twinLikelihood || to.freedom() < from.freedom() {
+		return false // what holds the curves of i fits no worse, and is no less free
+	}
 	starts := append([][]float64{to.theta}, to.boxed(4, 1)...)
 	if !to.draws(from.curve(from.theta), starts...) {
 		return false
