@@ -24,11 +24,12 @@ func NewAgain(p *Problem, tol float64) (*Again, error) {
 func (a *Again) From(ctx context.Context, theta []float64, most int) Status {
 	s := a.s
 	s.renew()
-	if !s.begun(theta) {
+	s.place(theta)
+	end, ok := s.again(ctx.Done(), RefitSettings{Offset: a.tol, MaxIter: most})
+	switch {
+	case !ok:
 		return NoAnswer
-	}
-	switch s.descend(ctx.Done(), a.tol, most) {
-	case stationary, rounding:
+	case end == stationary || end == rounding:
 		return Converged
 	}
 	return Stopped

@@ -21,6 +21,7 @@ const (
 	briskMost   = 6
 	briskSteps  = 25
 	briskDamp   = 1e-2 // first λ
+	briskLeast  = 1e-5 // λ after a whole step has failed
 	briskPivots = 1e-9 // least part of a diagonal element that has to remain
 )
 
@@ -43,7 +44,11 @@ func (s *solver) descendBriskly(tol float64) bool {
 		}
 		gain := b.solve() // gᵀ(A + λ diag A)⁻¹g
 		if gain <= tol*tol*s.cur.obj {
-			return lambda <= briskDamp
+			if lambda == 0 {
+				return true
+			}
+			lambda = 0 // damping hides what is left along loose directions
+			continue
 		}
 		for j := range b.m {
 			v := s.cur.theta[j] + b.delta[j]
@@ -53,7 +58,7 @@ func (s *solver) descendBriskly(tol float64) bool {
 			s.try.theta[j] = v
 		}
 		if !s.evaluate(s.try) || s.try.obj >= s.cur.obj {
-			lambda *= up
+			lambda = max(lambda*up, briskLeast)
 			up *= 2
 			if lambda > 1e6 {
 				return false

@@ -1,6 +1,7 @@
 package fit
 
 import (
+	"errors"
 	"math"
 
 	"gonum.org/v1/gonum/mat"
@@ -24,16 +25,7 @@ func (s *solver) covariance(r *Result) {
 	}
 	s.begin(s.cur)
 	for _, j := range interior {
-		a := s.cur.f.next()
-		for b, sigma := range r.Sigma {
-			if sigma *= sigma; sigma == 0 {
-				sigma = s.floor[b] / max(s.count[b], 1)
-			}
-			sigma = math.Sqrt(sigma)
-			for i := s.rows[b]; i < s.rows[b+1]; i++ {
-				a[i] = s.cur.jraw[i*s.p+j] / sigma
-			}
-		}
+		s.loadScaled(j, r.Sigma)
 		if before, after := s.cur.f.push(); after == 0 {
 			if before == 0 {
 				r.warn("%s changes no residual", s.prob.Parameters[j].Name)
@@ -43,21 +35,39 @@ func (s *solver) covariance(r *Result) {
 			return
 		}
 	}
-	m := len(interior)
-	if m == 0 {
-		return
+	if len(interior) > 0 {
+		r.Cov = s.inverse(interior, r)
 	}
+}
+
+// loadScaled writes column j of the Jacobian of the current point, in units of
+// the standard deviations, into the next column.
+func (s *solver) loadScaled(j int, sigma []float64) {
+	a := s.cur.f.next()
+	for b, v := range sigma {
+		if v == 0 {
+			v = math.Sqrt(s.floor[b] / max(s.count[b], 1))
+		}
+		for i := s.rows[b]; i < s.rows[b+1]; i++ {
+			a[i] = s.cur.jraw[i*s.p+j] / v
+		}
+	}
+}
+
+// inverse is (RᵀR)^{−1} of the columns just taken apart, at the places of their
+// parameters; nil where it cannot be had.
+func (s *solver) inverse(interior []int, r *Result) *mat.SymDense {
+	m, f := len(interior), s.cur.f
 	inv := mat.NewTriDense(m, mat.Upper, nil)
 	for i := 0; i < m; i++ {
 		for k := i; k < m; k++ {
-			inv.SetTri(i, k, s.cur.f.r[i*s.cur.f.most+k])
+			inv.SetTri(i, k, f.r[i*f.most+k])
 		}
 	}
-	if err := inv.InverseTri(inv); err != nil {
-		if _, ok := err.(mat.Condition); !ok {
-			r.warn("the covariance matrix does not exist: %v", err)
-			return
-		}
+	var condition mat.Condition
+	if err := inv.InverseTri(inv); err != nil && !errors.As(err, &condition) {
+		r.warn("the covariance matrix does not exist: %v", err)
+		return nil
 	}
 	cov := mat.NewSymDense(s.p, nil)
 	for i, j := range interior {
@@ -69,5 +79,5 @@ func (s *solver) covariance(r *Result) {
 			cov.SetSym(j, interior[k], v)
 		}
 	}
-	r.Cov = cov
+	return cov
 }

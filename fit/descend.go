@@ -5,11 +5,16 @@ import "math"
 const (
 	enough  = 1e-6  // relative offset at which a fit has converged
 	loose   = 1e-5  // the same, for refits of replicate data
-	stale   = 0.3   // least part of the residuals' square by which settling has to move them for the Jacobian to be evaluated again
-	lost    = 1e12  // settling that moves residuals so much further than they then are loses digits: once more
 	hardly  = 1e-4  // least share of the predicted gain that is a gain
 	tiniest = 1e-15 // least radius relative to ‖D θ‖
 	epsilon = 0x1p-52
+
+	// Settling the linear parameters makes the Jacobian of the others stale: it
+	// is evaluated again where residuals moved by that part of their square. To
+	// settle from so far that they shrink by this factor loses digits: then once
+	// more.
+	stale = 0.3
+	lost  = 1e12
 
 	// A step that would end on a bound goes but a part of the way there until as
 	// many steps in a row have wanted to: a bound is often a saddle (equal
@@ -97,14 +102,18 @@ func (s *solver) descend(done <-chan struct{}, tol float64, most int) ending {
 				return stalled
 			}
 		}
-		for k, j := range s.cur.free[s.cur.lin:] {
-			if s.step.stop[k] != 0 {
-				s.hits[j]++
-			} else {
-				s.hits[j] = 0
-			}
-		}
+		s.countHits()
 		s.cur, s.try = s.try, s.cur
+	}
+}
+
+// countHits notes which parameters the step has taken towards a bound.
+func (s *solver) countHits() {
+	for k, j := range s.cur.free[s.cur.lin:] {
+		s.hits[j]++
+		if s.step.stop[k] == 0 {
+			s.hits[j] = 0
+		}
 	}
 }
 
@@ -153,7 +162,7 @@ func (s *solver) atRounding() bool {
 func (s *solver) attempt(radius float64) (length, ratio float64) {
 	s.propose(radius)
 	length = norm(s.step.t[:s.cur.f.m-s.cur.lin])
-	if !(s.step.gain > 0) {
+	if !(s.gain > 0) {
 		return 0, math.Inf(-1)
 	}
 	if !s.evaluate(s.try) {
@@ -164,7 +173,7 @@ func (s *solver) attempt(radius float64) (length, ratio float64) {
 			return length, math.Inf(-1)
 		}
 	}
-	if ratio = (s.cur.obj - s.try.obj) / s.step.gain; math.IsNaN(ratio) {
+	if ratio = (s.cur.obj - s.try.obj) / s.gain; math.IsNaN(ratio) {
 		ratio = math.Inf(-1)
 	}
 	return length, ratio
@@ -172,6 +181,36 @@ func (s *solver) attempt(radius float64) (length, ratio float64) {
 
 // propose writes the θ of the trial point.
 func (s *solver) propose(radius float64) {
+	q := s.cur.lin
+	s.frame()
+	b, m := s.step, s.cur.f.m-q
+	b.solve(m, m, radius)
+	z := s.cur.f.z[:q]
+	s.gain = b.gain + dot(z, z)
+	for k := 0; k < m; k++ {
+		s.change[q+k] = 0
+		if d := s.span[s.cur.free[q+k]]; d > 0 {
+			s.change[q+k] = b.t[k] / d
+		}
+	}
+	s.follow()
+	copy(s.try.theta, s.cur.theta)
+	for k, j := range s.cur.free {
+		v := min(max(s.cur.theta[j]+s.change[k], s.low[j]), s.high[j])
+		switch {
+		case k < q || s.hits[j] < meetings:
+		case b.stop[k-q] < 0:
+			v = s.low[j]
+		case b.stop[k-q] > 0:
+			v = s.high[j]
+		}
+		s.try.theta[j] = v
+	}
+}
+
+// frame sets up the problem of a step of the curved parameters, in units in
+// which each column has been at most of length one.
+func (s *solver) frame() {
 	f, b, q := s.cur.f, s.step, s.cur.lin
 	m := f.m - q
 	for k := 0; k < m; k++ {
@@ -190,29 +229,6 @@ func (s *solver) propose(radius float64) {
 		for i := 0; i <= k; i++ {
 			b.s[i*m+k] = f.r[(q+i)*f.most+q+k] * inv
 		}
-	}
-	b.solve(m, m, radius)
-	copy(s.try.theta, s.cur.theta)
-	for k := 0; k < m; k++ {
-		j := s.cur.free[q+k]
-		s.change[q+k] = 0
-		if s.span[j] > 0 {
-			s.change[q+k] = b.t[k] / s.span[j]
-		}
-	}
-	s.follow()
-	for k, j := range s.cur.free {
-		v := min(max(s.cur.theta[j]+s.change[k], s.low[j]), s.high[j])
-		if k >= q {
-			switch {
-			case s.hits[j] < meetings:
-			case b.stop[k-q] < 0:
-				v = s.low[j]
-			case b.stop[k-q] > 0:
-				v = s.high[j]
-			}
-		}
-		s.try.theta[j] = v
 	}
 }
 
@@ -239,7 +255,7 @@ func (s *solver) resize(radius, length, ratio float64, first bool) float64 {
 		return 0.25 * min(radius, length)
 	case ratio <= 0.25:
 		shrink := 0.5
-		if actual := ratio * s.step.gain; actual < 0 {
+		if actual := ratio * s.gain; actual < 0 {
 			shrink = s.step.slope / (2*s.step.slope + actual)
 		}
 		return min(max(shrink, 0.1), 0.5) * min(radius, 10*length)

@@ -58,6 +58,27 @@ func (e *extreme) solve(m int, rho2, d float64) {
 
 // reduced solves for the columns that are not on a bound.
 func (e *extreme) reduced(m int, rho2, d float64) {
+	e.gather(m)
+	c, k := e.rest, e.rest.m
+	ww := e.direction()
+	rho2 -= dot(c.rhs, c.rhs)
+	e.pinned, e.inside = ww == 0, rho2 > 0
+	f := 0.0
+	if rho2 > 0 && ww > 0 {
+		f = d * math.Sqrt(rho2/ww)
+	}
+	e.force = math.Abs(f)
+	for i := 0; i < k; i++ {
+		e.u[i] = c.z[i] - f*e.w[i]
+	}
+	c.solve(e.v, e.u, k)
+	for i, j := range e.index {
+		e.s[j] = e.v[i]
+	}
+}
+
+// gather takes the free columns of R apart, and z with what the others change.
+func (e *extreme) gather(m int) {
 	c := e.rest
 	c.reset(m)
 	e.index = e.index[:0]
@@ -82,37 +103,26 @@ func (e *extreme) reduced(m int, rho2, d float64) {
 		c.push()
 		e.index = append(e.index, j)
 	}
-	k := c.m
+}
+
+// direction writes w = R⁻ᵀc of the free columns and returns ‖w‖².
+func (e *extreme) direction() (ww float64) {
+	c := e.rest
 	e.loose = false
-	var ww float64
-	for i := 0; i < k; i++ {
-		cc := e.c[e.index[i]]
-		v := cc
+	for i, j := range e.index {
+		v := e.c[j]
 		for l := 0; l < i; l++ {
 			v -= c.r[l*c.most+i] * e.w[l]
 		}
+		e.w[i] = 0
 		if g := c.r[i*c.most+i]; g != 0 {
 			e.w[i] = v / g
-		} else {
-			e.w[i] = 0
-			e.loose = e.loose || math.Abs(v) > 1e-9*math.Abs(cc)
+		} else if math.Abs(v) > 1e-9*math.Abs(e.c[j]) {
+			e.loose = true
 		}
 		ww += e.w[i] * e.w[i]
 	}
-	rho2 -= dot(c.rhs, c.rhs)
-	f := 0.0
-	e.pinned, e.inside = ww == 0, rho2 > 0
-	if rho2 > 0 && ww > 0 {
-		f = d * math.Sqrt(rho2/ww)
-	}
-	e.force = math.Abs(f)
-	for i := 0; i < k; i++ {
-		e.u[i] = c.z[i] - f*e.w[i]
-	}
-	c.solve(e.v, e.u, k)
-	for i, j := range e.index {
-		e.s[j] = e.v[i]
-	}
+	return ww
 }
 
 // first returns the free column whose bound s meets first, −1 for none.

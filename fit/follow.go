@@ -4,116 +4,7 @@ import (
 	"context"
 	"math"
 	"strconv"
-
-	"gonum.org/v1/gonum/mat"
 )
-
-// guide leads a fit along a profile: at each value of its dial it minimises the
-// objective and says what the quantity and the objective came to.
-type guide interface {
-	// turn refits from theta at that value of the dial. ok is false where
-	// nothing finite was found.
-	turn(ctx context.Context, dial float64, theta []float64) (at station, ok bool)
-	// range of the dial
-	bounds() (low, high float64)
-}
-
-// station is a point of a profile.
-type station struct {
-	dial      float64 // what the guide was turned to
-	value     float64 // of the quantity
-	objective float64
-	theta     []float64
-}
-
-// hold is the guide of a parameter: it is held at the dial.
-type hold struct {
-	s         *solver
-	j         int
-	low, high float64
-}
-
-func (f *Profiler) hold(j int) *hold {
-	p := *f.original
-	p.Blocks = f.s.blocks
-	p.Parameters = append([]Parameter(nil), p.Parameters...)
-	q := p.Parameters[j]
-	p.Parameters[j].Low, p.Parameters[j].High = 0, 0
-	return &hold{s: newSolver(&p, false), j: j, low: q.Low, high: q.High}
-}
-
-func (h *hold) bounds() (low, high float64) { return h.low, h.high }
-
-func (h *hold) turn(ctx context.Context, dial float64, theta []float64) (station, bool) {
-	h.s.low[h.j], h.s.high[h.j] = dial, dial
-	if !h.s.begun(theta) {
-		return station{}, false
-	}
-	h.s.descend(ctx.Done(), 1e-7, 300)
-	return h.s.station(dial, dial, h.s.cur.obj), true
-}
-
-func (s *solver) station(dial, value, objective float64) station {
-	return station{dial, value, objective, append([]float64(nil), s.cur.theta...)}
-}
-
-// pull is the guide of a quantity g: a further residual κ·(g(θ) − dial) draws it
-// towards the dial. Wherever that ends, ∇objective is along ∇g: the point lies
-// on the profile of g exactly, at the value that g then has.
-type pull struct {
-	s     *solver
-	block *tether
-}
-
-// tether is the block of the further residual.
-type tether struct {
-	g     Quantity
-	kappa float64
-	dial  float64
-	grad  []float64
-	value float64
-}
-
-func (t *tether) Len() int { return 1 }
-
-func (t *tether) Eval(res []float64, jac *mat.Dense, theta []float64) error {
-	t.value = t.g(theta, t.grad)
-	res[0] = t.kappa * (t.value - t.dial)
-	if jac != nil {
-		for j, v := range t.grad {
-			jac.Set(0, j, t.kappa*v)
-		}
-	}
-	return nil
-}
-
-// pull makes the guide; stiffness κ² is in units of the objective.
-func (f *Profiler) pull(g Quantity, stiffness float64) *pull {
-	b := &tether{g: g, kappa: math.Sqrt(stiffness), grad: make([]float64, len(f.grad))}
-	p := *f.problem
-	p.Blocks = append(append([]Block(nil), f.s.blocks...), b)
-	p.Scatter = make([]Scatter, len(p.Blocks))
-	for i, known := range f.s.known {
-		if known || !f.s.joint {
-			p.Scatter[i] = Known
-		}
-	}
-	p.Scatter[len(p.Blocks)-1] = Known
-	return &pull{newSolver(&p, false), b}
-}
-
-func (p *pull) bounds() (low, high float64) { return math.Inf(-1), math.Inf(1) }
-
-func (p *pull) turn(ctx context.Context, dial float64, theta []float64) (station, bool) {
-	p.block.dial = dial
-	if !p.s.begun(theta) {
-		return station{}, false
-	}
-	p.s.descend(ctx.Done(), 1e-7, 300)
-	r := p.s.cur.res[len(p.s.cur.res)-1]
-	value := p.block.g(p.s.cur.theta, p.block.grad)
-	return p.s.station(dial, value, p.s.cur.obj-r*r), true
-}
 
 // follow walks along the profile from the estimate until it meets the limit, a
 // bound, or nothing any more.
@@ -131,39 +22,39 @@ func (f *Profiler) follow(ctx context.Context, t target, v, d float64) end {
 	before := last
 	still := 0
 	for range 80 {
-		if ctx.Err() != nil {
-			return end{value: last.value, open: true, why: "interrupted"}
-		}
 		dial := min(max(last.dial+d*step, low), high)
 		next, ok := f.advance(ctx, g, before, last, dial)
-		if !ok {
-			if step /= 4; step < 1e-6*(math.Abs(last.dial)+step) {
-				return end{value: last.value, open: true, why: "nothing finite lies beyond"}
-			}
+		switch {
+		case ctx.Err() != nil:
+			return last.open("interrupted")
+		case !ok && step < 1e-6*math.Abs(last.dial)+math.SmallestNonzeroFloat64:
+			return last.open("nothing finite lies beyond")
+		case !ok:
+			step /= 4
 			continue
 		}
 		f.meet(next.objective, next.theta)
-		if next.objective >= f.limit {
-			return f.between(ctx, t, g, last, next, d)
-		}
-		if dial == low || dial == high {
-			return end{value: dial, edge: true, why: "reaches a bound below the limit"}
-		}
 		if still++; math.Abs(next.value-last.value) > 1e-3*math.Abs(next.dial-last.dial) {
 			still = 0
 		}
-		if still > 6 {
-			return end{value: next.value, open: true, why: "goes no further, below the limit"}
-		}
-		if f.flat(last, next, math.Abs(next.dial-v)/first) {
-			return end{value: next.value, open: true, why: "levels off below the limit"}
+		switch {
+		case next.objective >= f.limit:
+			return f.between(ctx, t, g, last, next, d)
+		case dial == low || dial == high:
+			return end{value: dial, edge: true, why: "reaches a bound below the limit"}
+		case still > 6:
+			return next.open("goes no further, below the limit")
+		case f.flat(last, next, math.Abs(next.dial-v)/first):
+			return next.open("levels off below the limit")
 		}
 		step = f.stride(last, next, step)
 		before, last = last, next
 	}
-	return end{value: last.value, open: true,
-		why: "stays below the limit as far as " + strconv.FormatFloat(last.value, 'g', 6, 64)}
+	return last.open("stays below the limit as far as " + strconv.FormatFloat(last.value, 'g', 6, 64))
 }
+
+// open is the end of a profile that has none, followed as far as s.
+func (s station) open(why string) end { return end{value: s.value, open: true, why: why} }
 
 // flat says whether a profile that has been followed so many times further than
 // where its limit was expected has all but ceased to rise.
@@ -237,22 +128,13 @@ func (f *Profiler) scale(t target, v, d float64) (step, stiffness float64) {
 	return step, 100 * (f.limit - f.result.Objective) / (step * step)
 }
 
-// between finds the end between a station below and one above the limit: by a
-// leap from the nearer one, else by regula falsi on the dial (the Illinois
-// variant) with a refit at each.
+// between finds the end between a station below and one above the limit: by
+// regula falsi on the dial (the Illinois variant) with a refit at each, and a
+// leap once that is near.
 func (f *Profiler) between(ctx context.Context, t target, g guide, below, above station, d float64) end {
 	goal := math.Sqrt(f.limit - f.result.Objective)
 	a, b := f.root(below)-goal, f.root(above)-goal
-	nearest := above
-	for n, side := 0, 0; n < 100; n++ {
-		if n == 2 || n == 12 {
-			if value, ok := f.land(t, d, nearest); ok && d*(value-below.value) >= 0 && d*(above.value-value) >= 0 {
-				return end{value: value}
-			}
-		}
-		if math.Abs(above.dial-below.dial) <= 1e-12*(math.Abs(above.dial)+math.Abs(below.dial)) || ctx.Err() != nil {
-			break
-		}
+	for n, side := 0, 0.0; n < 100 && ctx.Err() == nil; n++ {
 		dial := (below.dial*b - above.dial*a) / (b - a)
 		at, ok := g.turn(ctx, dial, below.theta)
 		if !ok {
@@ -260,28 +142,37 @@ func (f *Profiler) between(ctx context.Context, t target, g guide, below, above 
 		}
 		f.meet(at.objective, at.theta)
 		c := f.root(at) - goal
-		nearest = at
 		if math.Abs(c) <= 1e-10*goal {
-			break
+			return end{value: at.value}
+		}
+		if n == 1 || n == 11 {
+			if value, ok := f.land(t, d, at); ok && d*(value-below.value) >= 0 && d*(above.value-value) >= 0 {
+				return end{value: value}
+			}
 		}
 		if c > 0 {
 			above, b = at, c
-			if side == 1 {
+			if side > 0 {
 				a /= 2
 			}
-			side = 1
 		} else {
 			below, a = at, c
-			if side == -1 {
+			if side < 0 {
 				b /= 2
 			}
-			side = -1
+		}
+		side = c
+		if math.Abs(above.dial-below.dial) <= 1e-12*(math.Abs(above.dial)+math.Abs(below.dial)) {
+			break
 		}
 	}
-	if f.root(below) < 0.999*goal {
-		return end{value: below.value, open: true, why: "breaks off below the limit"}
+	switch {
+	case ctx.Err() != nil:
+		return below.open("interrupted")
+	case f.root(below) < 0.999*goal:
+		return below.open("breaks off below the limit")
 	}
-	return end{value: nearest.value}
+	return end{value: below.value}
 }
 
 // land iterates the linearised problem from a station near the end.

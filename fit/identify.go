@@ -3,6 +3,7 @@ package fit
 import (
 	"errors"
 	"math"
+	"slices"
 	"sort"
 
 	"gonum.org/v1/gonum/mat"
@@ -73,46 +74,38 @@ func Combinations(p *Problem, r *Result, which []int) ([]Combination, error) {
 // information returns a square root of the information matrix of the free ones
 // of which, the others eliminated, and where they stand in which.
 func information(p *Problem, r *Result, which []int) (*mat.Dense, []int, error) {
+	if slices.Contains(r.Sigma, 0) {
+		return nil, nil, errors.New("fit: the scatter is not known")
+	}
 	s := newSolver(p.searched(), false)
 	if len(r.Theta) != s.p || !s.begun(r.Theta) {
 		return nil, nil, errors.New("fit: the result cannot be evaluated again")
 	}
-	for b, sigma := range r.Sigma {
-		if sigma == 0 {
-			return nil, nil, errors.New("fit: the scatter is not known")
+	var others, asked, place []int
+	for i, j := range which {
+		if s.low[j] < s.high[j] && r.Edges[j] == Inside {
+			asked, place = append(asked, j), append(place, i)
 		}
-		s.cur.scale[b] = 1 / sigma
 	}
-	s.joint = true // load takes the scales just set
-	asked := map[int]bool{}
-	for _, j := range which {
-		asked[j] = true
+	for _, j := range s.curved {
+		if r.Edges[j] == Inside && !slices.Contains(asked, j) {
+			others = append(others, j)
+		}
+	}
+	if len(asked) == 0 {
+		return nil, nil, nil
 	}
 	f := s.cur.f
 	f.reset(f.n)
-	for _, j := range s.curved {
-		if !asked[j] && r.Edges[j] == Inside {
-			s.load(s.cur, j)
-			f.push()
-		}
+	for _, j := range append(others, asked...) {
+		s.loadScaled(j, r.Sigma)
+		f.push()
 	}
-	others := f.m
-	var place []int
-	for i, j := range which {
-		if s.low[j] < s.high[j] && r.Edges[j] == Inside {
-			s.load(s.cur, j)
-			f.push()
-			place = append(place, i)
-		}
-	}
-	k := len(place)
-	if k == 0 {
-		return nil, nil, nil
-	}
+	k, o := len(asked), len(others)
 	root := mat.NewDense(k, k, nil)
 	for i := range k {
 		for j := i; j < k; j++ {
-			root.Set(i, j, f.r[(others+i)*f.most+others+j])
+			root.Set(i, j, f.r[(o+i)*f.most+o+j])
 		}
 	}
 	return root, place, nil

@@ -30,26 +30,12 @@ func (l LeftOut) RootMeanSquare() float64 { return math.Sqrt(l.SS / max(float64(
 // what stays undetermined there; it keeps its estimate.
 //
 // Stone M (1974) J R Stat Soc B 36, 111–147.
-func LeaveOut(ctx context.Context, p *Problem, r *Result, group []int, set RefitSettings) (LeftOut, error) {
-	if err := p.Check(); err != nil {
+func LeaveOut(ctx context.Context, p *Problem, r *Result, group []int,
+	set RefitSettings) (LeftOut, error) {
+
+	n, groups, err := p.grouped(r, group)
+	if err != nil {
 		return LeftOut{}, fmt.Errorf("fit: %w", err)
-	}
-	n := 0
-	for _, b := range p.Blocks {
-		n += b.Len()
-	}
-	if len(group) != n || len(r.Theta) != len(p.Parameters) {
-		return LeftOut{}, errors.New("fit: groups or result do not belong to the problem")
-	}
-	groups := 0
-	for _, g := range group {
-		if g < 0 || g >= n {
-			return LeftOut{}, fmt.Errorf("fit: a group of number %d among %d rows", g, n)
-		}
-		groups = max(groups, g+1)
-	}
-	if groups < 2 {
-		return LeftOut{}, errors.New("fit: nothing is left without the only group")
 	}
 	set = set.filled(p)
 	out := LeftOut{Groups: make([]float64, groups)}
@@ -81,9 +67,32 @@ func LeaveOut(ctx context.Context, p *Problem, r *Result, group []int, set Refit
 	return out, ctx.Err()
 }
 
+// grouped checks the groups of rows and counts both.
+func (p *Problem) grouped(r *Result, group []int) (rows, groups int, err error) {
+	if err := p.Check(); err != nil {
+		return 0, 0, err
+	}
+	rows, _ = p.count()
+	if len(group) != rows || len(r.Theta) != len(p.Parameters) {
+		return 0, 0, errors.New("groups or result do not belong to the problem")
+	}
+	for _, g := range group {
+		if g < 0 || g >= rows {
+			return 0, 0, fmt.Errorf("a group of number %d among %d rows", g, rows)
+		}
+		groups = max(groups, g+1)
+	}
+	if groups < 2 {
+		return 0, 0, errors.New("nothing is left without the only group")
+	}
+	return rows, groups, nil
+}
+
 // without fits all but one group and returns the sum of squares of that group;
 // −1 where nothing can be fitted.
-func (s *solver) without(ctx context.Context, g int, group []int, weight, theta []float64, set RefitSettings) float64 {
+func (s *solver) without(ctx context.Context, g int, group []int, weight, theta []float64,
+	set RefitSettings) float64 {
+
 	for i, k := range group {
 		weight[i] = 1
 		if k == g {

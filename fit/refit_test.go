@@ -225,7 +225,6 @@ func TestGroupDraws(t *testing.T) {
 // have to be replaced, shifting residuals would not do.
 type growing struct {
 	simple
-	seen [][]float64
 }
 
 func (g *growing) Clone() fit.Block { c := *g; return &c }

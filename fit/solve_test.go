@@ -279,6 +279,24 @@ func TestSeveralScatters(t *testing.T) {
 	}
 }
 
+// Two tables, everything linear: the weights alone have to be found.
+func TestSeveralScattersLinear(t *testing.T) {
+	x := []float64{0, 1, 2, 3, 4, 5}
+	one := &simple{x: x, y: []float64{1, 3, 2, 5, 4, 6}, f: straight}
+	two := &simple{x: x, y: []float64{1.3, 1.9, 3.1, 3.8, 5.2, 6.1}, f: straight}
+	p := &fit.Problem{Parameters: free("a", "b"), Blocks: []fit.Block{one, two}}
+	want := minimum(t, p.Blocks, []float64{6, 6}, []float64{1, 1})
+	for _, linear := range []bool{true, false} {
+		p.Parameters[0].Linear, p.Parameters[1].Linear = linear, linear
+		r := solve(t, p, fit.Settings{})
+		if r.Status != fit.Converged || r.Offset > 1e-10 {
+			t.Errorf("linear %v: %v, offset %g", linear, r.Status, r.Offset)
+		}
+		near(t, "a", r.Theta[0], want[0], 1e-6)
+		near(t, "b", r.Theta[1], want[1], 1e-6)
+	}
+}
+
 // minimum of Σ N ln SS (N > 0) + Σ SS (N = 0) by gonum's BFGS.
 func minimum(tb testing.TB, blocks []fit.Block, n, start []float64) []float64 {
 	tb.Helper()

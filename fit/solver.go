@@ -1,11 +1,6 @@
 package fit
 
-import (
-	"errors"
-	"fmt"
-	"math"
-	"slices"
-)
+import "slices"
 
 // solver is the workspace of one worker: nothing in it is allocated after
 // newSolver, however many fits it makes.
@@ -26,80 +21,24 @@ type solver struct {
 
 	shift, weight []float64 // replicate data: added to residuals, and on rows
 
-	cur, try, best *point
-	f              *columns  // [Φ | J] of the current point, then its trial
-	free           []int     // columns of f: the parameter of each
-	lin            int       // how many of them are linear
-	span           []float64 // D: the longest that each column has been
-	step           *boxedStep
-	brisk          brisk
-	change         []float64 // of θ
-	hits           []int     // of each parameter: steps in a row that ended on its bound
-	left, offset   float64   // ‖z‖ of the current point; relative to its residuals
-	width          []float64 // a quarter of each start box, 0 where there is none
-	evals          int
-	fault          error
+	cur, try *point
+	span     []float64 // D: the longest that each column has been
+	width    []float64 // a quarter of each start box, 0 where there is none
+	hits     []int     // of each parameter: steps in a row that ended on its bound
+	step     *boxedStep
+	brisk    brisk
+	change   []float64 // of the parameters of the current point's columns
+	gain     float64   // what the proposed change promises
+
+	left, offset float64 // ‖z‖ of the current point; relative to its residuals
+	evals        int
+	fault        error // of a block
 }
 
 const (
 	perfect = 1e-28  // a sum of squares below this share of the first is zero
 	least   = 1e-290 // and so is one below this
 )
-
-// Pooled is a Block whose rows are weighted means of replicates. What lies
-// within the replicates is constant, but counts: Pooled returns its sum of
-// squares and how many residuals there are beyond Len.
-type Pooled interface {
-	Block
-	Pooled() (ss float64, more int)
-}
-
-// Check says what is wrong with a problem.
-func (p *Problem) Check() error {
-	if len(p.Parameters) == 0 {
-		return errors.New("no parameters")
-	}
-	if len(p.Scatter) != 0 && len(p.Scatter) != len(p.Blocks) {
-		return fmt.Errorf("scatter is given for %d of %d blocks", len(p.Scatter), len(p.Blocks))
-	}
-	n, free := 0, 0
-	for _, b := range p.Blocks {
-		n += b.Len()
-	}
-	if n == 0 {
-		return errors.New("no residuals")
-	}
-	var errs []error
-	for _, q := range p.Parameters {
-		if !(q.Low <= q.High) || math.IsInf(q.Low, 1) || math.IsInf(q.High, -1) {
-			errs = append(errs, fmt.Errorf("parameter %s: bounds %v and %v are not in order", q.Name, q.Low, q.High))
-		}
-		if q.StartLow > q.StartHigh || math.IsInf(q.StartLow, 0) || math.IsInf(q.StartHigh, 0) {
-			errs = append(errs, fmt.Errorf("parameter %s: starts cannot be drawn between %v and %v", q.Name, q.StartLow, q.StartHigh))
-		}
-		if q.Low < q.High {
-			free++
-		}
-	}
-	for i, s := range p.Starts {
-		if len(s) != len(p.Parameters) {
-			errs = append(errs, fmt.Errorf("start %d has %d values for %d parameters", i+1, len(s), len(p.Parameters)))
-		}
-		if !allFinite(s) {
-			errs = append(errs, fmt.Errorf("start %d is not finite", i+1))
-		}
-	}
-	for _, b := range p.Blocks {
-		if q, ok := b.(Pooled); ok {
-			_, more := q.Pooled()
-			n += more
-		}
-	}
-	if n < free {
-		errs = append(errs, fmt.Errorf("%d residuals cannot settle %d parameters", n, free))
-	}
-	return errors.Join(errs...)
-}
 
 // newSolver lays out the workspace. clone asks for copies of the blocks; it is
 // an error of the caller to ask it of blocks that cannot be cloned.
@@ -111,11 +50,22 @@ func newSolver(p *Problem, clone bool) *solver {
 			s.blocks[i] = b.(Cloner).Clone()
 		}
 	}
-	nb := len(s.blocks)
-	s.rows = make([]int, nb+1)
-	s.known, s.within = make([]bool, nb), make([]float64, nb)
-	s.count, s.floor = make([]float64, nb), make([]float64, nb)
-	unknown := 0
+	s.layRows()
+	s.layParameters()
+	m := len(s.linear) + len(s.curved)
+	s.cur, s.try = newPoint(s.rows, s.p, m), newPoint(s.rows, s.p, m)
+	s.span, s.change = make([]float64, s.p), make([]float64, s.p)
+	s.step = newBoxedStep(m)
+	s.hits = make([]int, s.p)
+	return s
+}
+
+// layRows counts the residuals and says what is known of their scatter.
+func (s *solver) layRows() {
+	n := len(s.blocks)
+	s.rows = make([]int, n+1)
+	s.known, s.within = make([]bool, n), make([]float64, n)
+	s.count, s.floor = make([]float64, n), make([]float64, n)
 	for i, b := range s.blocks {
 		s.rows[i+1] = s.rows[i] + b.Len()
 		s.count[i] = float64(b.Len())
@@ -125,14 +75,15 @@ func newSolver(p *Problem, clone bool) *solver {
 			s.count[i] += float64(more)
 		}
 		s.floor[i] = least
-		s.known[i] = p.Scatter != nil && p.Scatter[i] == Known
-		if !s.known[i] {
-			unknown++
-		}
+		s.known[i] = s.prob.Scatter != nil && s.prob.Scatter[i] == Known
 	}
-	s.joint = unknown > 0 && nb > 1
+	s.joint = n > 1 && slices.Contains(s.known, false)
+}
+
+// layParameters tells fixed, linear and curved parameters apart.
+func (s *solver) layParameters() {
 	s.low, s.high, s.width = make([]float64, s.p), make([]float64, s.p), make([]float64, s.p)
-	for j, q := range p.Parameters {
+	for j, q := range s.prob.Parameters {
 		s.low[j], s.high[j] = q.Low, q.High
 		if q.StartLow < q.StartHigh && !q.Linear {
 			s.width[j] = (q.StartHigh - q.StartLow) / 4
@@ -145,12 +96,6 @@ func newSolver(p *Problem, clone bool) *solver {
 			s.curved = append(s.curved, j)
 		}
 	}
-	m := len(s.linear) + len(s.curved)
-	s.cur, s.try = newPoint(s.rows, s.p, m), newPoint(s.rows, s.p, m)
-	s.span, s.change = make([]float64, s.p), make([]float64, s.p)
-	s.step = newBoxedStep(m)
-	s.hits = make([]int, s.p)
-	return s
 }
 
 // allKnown says whether the scatter of every block is known.

@@ -52,54 +52,60 @@ func Derivatives(block fit.Block, theta []float64) (Difference, error) {
 	return d, nil
 }
 
-// slopes is the derivative of every residual by θ_j.
+// slopes is the derivative of every residual by θ_j: the entry of the
+// extrapolation table that differs least from its neighbours.
 func slopes(block fit.Block, theta []float64, j int) ([]float64, error) {
 	const (
 		rounds = 8
 		shrink = 1.6
 	)
 	n := block.Len()
-	at := append([]float64(nil), theta...)
-	up, down := make([]float64, n), make([]float64, n)
 	best, left := make([]float64, n), make([]float64, n)
 	for i := range left {
 		left[i] = math.Inf(1)
 	}
-	h := 1e-2 * max(math.Abs(theta[j]), 1e-2)
-	if theta[j] != 0 {
-		h = 1e-2 * math.Abs(theta[j])
+	h := 1e-2 * math.Abs(theta[j])
+	if h == 0 {
+		h = 1e-4
 	}
-	var last, table [][]float64 // of the previous and the present step
+	var last [][]float64 // the table's row of the step before
 	for k := range rounds {
-		at[j] = theta[j] + h
-		if err := block.Eval(up, nil, at); err != nil {
+		first, err := central(block, theta, j, h)
+		if err != nil {
 			return nil, err
 		}
-		at[j] = theta[j] - h
-		if err := block.Eval(down, nil, at); err != nil {
-			return nil, err
-		}
-		table = nil
-		first := make([]float64, n)
-		for i := range first {
-			first[i] = (up[i] - down[i]) / (2 * h)
-		}
-		table = append(table, first)
-		f := shrink * shrink
-		for m := 1; m <= k; m++ {
+		table := [][]float64{first}
+		for m, f := 1, shrink*shrink; m <= k; m, f = m+1, f*shrink*shrink {
 			next := make([]float64, n)
 			for i := range next {
-				next[i] = (f*table[m-1][i] - last[m-1][i]) / (f - 1)
-				err := max(math.Abs(next[i]-table[m-1][i]), math.Abs(next[i]-last[m-1][i]))
-				if err < left[i] {
-					left[i], best[i] = err, next[i]
+				a, b := table[m-1][i], last[m-1][i]
+				next[i] = (f*a - b) / (f - 1)
+				if off := max(math.Abs(next[i]-a), math.Abs(next[i]-b)); off < left[i] {
+					left[i], best[i] = off, next[i]
 				}
 			}
-			f *= shrink * shrink
 			table = append(table, next)
 		}
 		last = table
 		h /= shrink
 	}
 	return best, nil
+}
+
+// central is (r(θ_j + h) − r(θ_j − h))/2h.
+func central(block fit.Block, theta []float64, j int, h float64) ([]float64, error) {
+	at := append([]float64(nil), theta...)
+	up, down := make([]float64, block.Len()), make([]float64, block.Len())
+	at[j] = theta[j] + h
+	if err := block.Eval(up, nil, at); err != nil {
+		return nil, err
+	}
+	at[j] = theta[j] - h
+	if err := block.Eval(down, nil, at); err != nil {
+		return nil, err
+	}
+	for i := range up {
+		up[i] = (up[i] - down[i]) / (2 * h)
+	}
+	return up, nil
 }
