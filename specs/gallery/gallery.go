@@ -8,7 +8,7 @@ import (
 	"slices"
 )
 
-//go:embed studies
+//go:embed studies/*/*.yaml studies/*/*.csv
 var studies embed.FS
 
 // Names lists the studies, in the order in which they are worth reading.
