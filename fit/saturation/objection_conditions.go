@@ -49,8 +49,7 @@ func (r *review) withLeftOut(ctx context.Context, di int) string {
 	if g.result == nil {
 		return "With them there is no Hill fit."
 	}
-	move, curve := slopeMoves(f, g)
-	return fmt.Sprintf("With them n_H of a Hill fit moves by %s%s.", signed(move), readingLabel(curve))
+	return fmt.Sprintf("With them, by a Hill fit, %s.", moveBetween(f, g, nil).inWords())
 }
 
 // normalised asks whether a saturation was scaled to its own extremes: then the

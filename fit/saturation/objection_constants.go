@@ -128,12 +128,13 @@ func (r *review) asksTies(context.Context) {
 				continue
 			}
 			v := f.result.Cov.At(i, j) / math.Sqrt(f.result.Cov.At(i, i)*f.result.Cov.At(j, j))
-			if math.Abs(v) > math.Abs(strongest) {
+			if math.Abs(v) > math.Abs(strongest) && math.Abs(v) < 1+1e-9 { // edges have no variance
 				strongest, name = v, p.title()
 			}
 		}
 	}
 	if name == "" {
+		r.add(answer{id: "tied-constants", group: foundGood, source: tiesSource, text: "L and K_R are not both fitted, and so not tied."})
 		return
 	}
 	a := answer{id: "tied-constants", group: foundGood, source: tiesSource,

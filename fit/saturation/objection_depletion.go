@@ -136,9 +136,8 @@ func (r *review) depletionSolved(di int) {
 	}
 	_, own := depleted(ratio, worst.h)
 	a := answer{id: "ligand-depletion", group: foundGood, source: depletionSource,
-		text: fmt.Sprintf("%sDepletion is solved for: sites are %s of K_half%s.", r.where(di), figures(ratio, 2), r.onCurve(worst)),
-		effect: fmt.Sprintf("n_H at half saturation is %s against free and %s against total ligand: say which is printed.",
-			figures(worst.h, 4), figures(own, 4))}
+		text:   fmt.Sprintf("%sDepletion is solved for: sites are %s of K_half%s.", r.where(di), figures(ratio, 2), r.onCurve(worst)),
+		effect: fmt.Sprintf("n_H at half saturation is %.3f against free and %.3f against total ligand: say which is printed.", worst.h, own)}
 	if ratio >= titrationRatio {
 		a.group = sayInPaper
 		a.text += " With so many the curve is a titration, which holds the number of sites better than K."

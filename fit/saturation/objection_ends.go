@@ -79,16 +79,15 @@ func (r *review) endsFreed(ctx context.Context, a *answer) {
 		a.text += " Whether they matter cannot be asked: with free ends there is no fit."
 		return
 	}
-	move, curve := slopeMoves(r.lead, g)
+	m := moveBetween(r.lead, g, r.halfInterval)
 	factor, name := constantMove(r.lead, g)
-	a.effect = fmt.Sprintf("Fitted, n_H moves by %s%s and %s by %s.", signed(move), atLabel(curve), name, factorWords(factor))
-	half := r.halfInterval("n_H_half", curve)
+	a.effect = fmt.Sprintf("Fitted, %s, and %s by %s.", m.inWords(), name, factorWords(factor))
 	switch {
-	case math.IsNaN(half):
-	case math.Abs(move) <= half:
-		a.effect += " That is less than the interval of n_H."
+	case !m.compared:
+	case m.ratio <= 1:
+		a.effect += " That is less than the intervals."
 	default:
-		a.effect += " That is more than the interval of n_H says."
+		a.effect += " That is more than the intervals say."
 		a.group = settleFirst
 	}
 }
@@ -142,13 +141,17 @@ func atLabel(curve string) string {
 	return " at " + curve
 }
 
-// halfInterval is half of the width of the leader's interval of a number; NaN
-// where it has not both ends.
+// halfInterval is half of the width of the leader's interval of a number, of its
+// logarithm for a position; NaN where it has not both ends.
 func (r *review) halfInterval(name, curve string) float64 {
-	if q := r.leadRow(name, curve); q != nil {
-		return float64(q.High-q.Low) / 2
+	q := r.leadRow(name, curve)
+	switch {
+	case q == nil:
+		return math.NaN()
+	case q.Of == "position":
+		return math.Log(float64(q.High/q.Low)) / 2
 	}
-	return math.NaN()
+	return float64(q.High-q.Low) / 2
 }
 
 // leadRow is a row of the leader.

@@ -71,6 +71,9 @@ const readingStarts = 4
 
 func (a *Analysis) hillStudyOf(ctx context.Context, di int) *hillStudy {
 	s := &hillStudy{readings: a.curvesToRead(di)}
+	if len(s.readings) == 0 {
+		return s
+	}
 	why := ""
 	switch d := &a.Data[di]; {
 	case d.Trace:
@@ -78,7 +81,7 @@ func (a *Analysis) hillStudyOf(ctx context.Context, di int) *hillStudy {
 	case d.Response.Of != "":
 		why = "counts another ligand, so that no saturation curve of this one is drawn"
 	}
-	if why == "" && len(s.readings) > 0 {
+	if why == "" {
 		c, err := simpleCandidate("hill", mechanisms.Definition{})
 		if err != nil {
 			why = err.Error()

@@ -2,6 +2,7 @@ package saturation
 
 import (
 	"context"
+	"fmt"
 	"math"
 	"slices"
 
@@ -79,12 +80,14 @@ func (m *model) endSet(p *parameter, otherwise float64) float64 {
 	return otherwise
 }
 
-// halfSlopes is n_H at half saturation of every curve, by label.
-func (f *fitted) halfSlopes() map[string]float64 {
-	out := map[string]float64{}
+// halves is ln of half saturation and n_H there, of every curve, by label.
+func (f *fitted) halves() map[string][2]float64 {
+	out := map[string][2]float64{}
 	grad := make([]float64, len(f.m.params))
 	for _, c := range f.m.curveCells() {
-		out[f.m.cells[c].label] = f.m.measured(c, mechanisms.HillAtHalf)()(f.result.Theta, grad)
+		out[f.m.cells[c].label] = [2]float64{
+			f.m.measured(c, at(0.5))()(f.result.Theta, grad),
+			f.m.measured(c, mechanisms.HillAtHalf)()(f.result.Theta, grad)}
 	}
 	return out
 }
@@ -117,16 +120,58 @@ func (f *fitted) quotedConstants() (labels []string, values []float64) {
 	return labels, values
 }
 
-// slopeMoves is by how much n_H at half saturation moves between two fits of
-// one mechanism: the largest move, and of which curve.
-func slopeMoves(f, g *fitted) (move float64, curve string) {
-	from, to := f.halfSlopes(), g.halfSlopes()
+// move is by how much half saturation and n_H of a curve move between two fits
+// of one mechanism, and how that compares with their intervals.
+type move struct {
+	curve    string
+	lnX, nH  float64
+	ratio    float64 // of the larger one to half of its interval
+	compared bool    // there is an interval
+}
+
+// moveBetween is the largest move: relative to the intervals that half gives for
+// "x_half" (of the logarithm) and "n_H_half", or as it is where half is nil.
+func moveBetween(f, g *fitted, half func(name, curve string) float64) move {
+	from, to := f.halves(), g.halves()
+	best := move{ratio: -1}
 	for _, c := range f.m.curveCells() {
 		label := f.m.cells[c].label
 		v, ok := to[label]
-		if d := v - from[label]; ok && !(math.Abs(d) <= math.Abs(move)) && !math.IsNaN(d) {
-			move, curve = d, label
+		if !ok {
+			continue
+		}
+		m := move{curve: label, lnX: v[0] - from[label][0], nH: v[1] - from[label][1]}
+		for k, d := range []float64{m.lnX, m.nH} {
+			d = math.Abs(d)
+			if half != nil {
+				if h := half([]string{"x_half", "n_H_half"}[k], label); h > 0 {
+					d /= h
+					m.compared = true
+				} else {
+					d = 0
+				}
+			}
+			if !math.IsNaN(d) {
+				m.ratio = math.Max(m.ratio, d)
+			}
+		}
+		if m.ratio > best.ratio {
+			best = m
 		}
 	}
-	return move, curve
+	return best
+}
+
+// inWords is "n_H moves by +0.03 at pH 7.0, half saturation by 2.1 %".
+func (m move) inWords() string {
+	where := atLabel(trimEach(m.curve))
+	switch n, x := math.IsNaN(m.nH), math.IsNaN(m.lnX); {
+	case n && x:
+		return "half saturation is lost" + where
+	case n:
+		return fmt.Sprintf("half saturation moves by %s%s, and n_H there is lost", factorWords(math.Exp(m.lnX)), where)
+	case x:
+		return fmt.Sprintf("n_H moves by %s%s", signed(m.nH), where)
+	}
+	return fmt.Sprintf("n_H moves by %s%s, half saturation by %s", signed(m.nH), where, factorWords(math.Exp(m.lnX)))
 }

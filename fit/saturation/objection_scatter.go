@@ -186,8 +186,7 @@ func (r *review) underNoise(ctx context.Context, di int, n Noise) string {
 	if g.result == nil {
 		return ""
 	}
-	move, curve := slopeMoves(f, g)
-	return fmt.Sprintf("With it n_H of a Hill fit moves by %s%s.", signed(move), readingLabel(curve))
+	return fmt.Sprintf("With it, by a Hill fit, %s.", moveBetween(f, g, nil).inWords())
 }
 
 // givenSigmas asks whether given standard deviations are those of two or three
@@ -260,6 +259,8 @@ func (r *review) ligandScatterOn(c *reading) {
 		list = append(list, group{mean: slope, variance: e * e, freedom: 1})
 	}
 	if len(list) < 10 {
+		r.add(answer{id: "ligand-scatter", group: forCompleteness, source: ligandScatterSource,
+			text: fmt.Sprintf("%sWhether the ligand values scatter cannot be asked of %d points on a steep curve.", r.where(c.data), len(list))})
 		return
 	}
 	top := 0.0
@@ -282,6 +283,3 @@ func (r *review) ligandScatterOn(c *reading) {
 	}
 	r.add(a)
 }
-
-// readingLabel names the curve of a reading by its label.
-func readingLabel(label string) string { return atLabel(trimEach(label)) }

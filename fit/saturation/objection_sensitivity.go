@@ -9,6 +9,10 @@ import (
 
 const sensitivitySource = fromPractice + ": results should not hang on one preparation, nor on the outermost points"
 
+// farOut is the move, in halves of the interval, from which it is to be settled
+// first what hangs on what was left out.
+const farOut = 2
+
 // asksSensitivity fits the leader again without each preparation and without the
 // lowest and the highest ligand value of every curve.
 func (r *review) asksSensitivity(ctx context.Context) {
@@ -18,6 +22,8 @@ func (r *review) asksSensitivity(ctx context.Context) {
 	r.withoutPreparations(ctx)
 	r.withoutOuterPoints(ctx)
 }
+
+var omittedWords = map[string]string{"without-a-preparation": "one preparation", "without-the-outermost": "the outermost points"}
 
 // omission is one refit with something left out.
 type omission struct {
@@ -66,10 +72,10 @@ func (r *review) withoutOuterPoints(ctx context.Context) {
 	})
 }
 
-// sensitive adds the answer: the omission that moves n_H most.
+// sensitive adds the answer: the omission that moves half saturation or n_H most.
 func (r *review) sensitive(ctx context.Context, a answer, omissions []omission) {
 	var failed []string
-	move, curve, what, ratio := 0.0, "", "", -1.0
+	worst, what := move{ratio: -1}, ""
 	for _, o := range omissions {
 		g := r.lead.refit(ctx, func(b *Analysis, _ *Candidate) {
 			for di := range b.Data {
@@ -80,34 +86,31 @@ func (r *review) sensitive(ctx context.Context, a answer, omissions []omission) 
 			failed = append(failed, o.what)
 			continue
 		}
-		m, c := slopeMoves(r.lead, g)
-		half := r.halfInterval("n_H_half", c)
-		k := math.Abs(m) / half
-		if math.IsNaN(k) {
-			k = math.Abs(m)
-		}
-		if k > ratio {
-			move, curve, what, ratio = m, c, o.what, k
+		if m := moveBetween(r.lead, g, r.halfInterval); m.ratio > worst.ratio {
+			worst, what = m, o.what
 		}
 	}
 	a.group = foundGood
 	switch {
-	case ratio < 0:
+	case worst.ratio < 0:
 		a.group = sayInPaper
 		a.text = "Without " + list(failed) + " there is no fit: what hangs on it cannot be asked."
 		r.add(a)
 		return
-	case ratio > 1:
+	case !worst.compared:
+		a.group = forCompleteness
+		a.text = "What hangs on " + omittedWords[a.id] + " cannot be judged: neither half saturation nor n_H has an interval that ends on both sides."
+	case worst.ratio > 1:
 		a.group = sayInPaper
-		a.text = fmt.Sprintf("Without %s n_H at half saturation%s moves by more than its interval.", what, atLabel(curve))
+		a.text = fmt.Sprintf("Without %s a result%s moves by more than its interval.", what, atLabel(worst.curve))
 		a.remedy = "print the fit without it beside the fit with it"
-		if ratio > 2 {
+		if worst.ratio > farOut {
 			a.group = settleFirst
 		}
 	default:
-		a.text = fmt.Sprintf("Nothing hangs on %s: n_H at half saturation stays within its interval without it.", map[bool]string{true: "one preparation", false: "the outermost points"}[a.id == "without-a-preparation"])
+		a.text = fmt.Sprintf("No result hangs on %s: half saturation and n_H stay within their intervals without it.", omittedWords[a.id])
 	}
-	a.effect = fmt.Sprintf("Most without %s: n_H moves by %s%s.", what, signed(move), atLabel(curve))
+	a.effect = fmt.Sprintf("Most without %s: %s.", what, worst.inWords())
 	if len(failed) > 0 {
 		a.text += " There is no fit without " + list(failed) + "."
 	}

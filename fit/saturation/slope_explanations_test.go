@@ -29,8 +29,8 @@ const (
 	xCycle      = "a covalent cycle near zero order"
 )
 
-// standings checks how explanations stand.
-func standings(t *testing.T, out *Outcome, want map[string]string) {
+// explainedAs checks how explanations stand.
+func explainedAs(t *testing.T, out *Outcome, want map[string]string) {
 	t.Helper()
 	reportExplanations(t, out)
 	for what, standing := range want {
@@ -52,8 +52,8 @@ func sixDecades(y func(float64) float64) sketch {
 // Two unlike sites on a molecule (truth 5) are the twin of a negative pair,
 // stepwise or in contact, and MWC is ruled out.
 func TestShallowTwinsOfUnlikeSites(t *testing.T) {
-	out := run(t, sixDecades(func(x float64) float64 { return hyperbola(x)/2 + hyperbola(x/10)/2 }).study(t))
-	standings(t, out, map[string]string{xUnlike: "open", xTwo: "open", xSteps: "twin", xContact: "twin", xSpread: "out", xLine: "out", xEnds: "out", xShift: "out", xConcerted: "out"})
+	out := analysed(t, sixDecades(func(x float64) float64 { return hyperbola(x)/2 + hyperbola(x/10)/2 }).study(t))
+	explainedAs(t, out, map[string]string{xUnlike: "open", xTwo: "open", xSteps: "twin", xContact: "twin", xSpread: "out", xLine: "out", xEnds: "out", xShift: "out", xConcerted: "out"})
 	if r := explained(t, out, xSteps); deref(r.TwinOf) != xUnlike {
 		t.Errorf("twin of %q", deref(r.TwinOf))
 	}
@@ -69,8 +69,8 @@ func TestShallowTwinInTheStudy(t *testing.T) {
 		{Name: "interacting pair", Family: "adair", Mechanism: build(t, "adair", mechanisms.Definition{Sites: 2})},
 		{Name: "Hill equation", Family: "hill", Mechanism: build(t, "hill", mechanisms.Definition{})},
 	}
-	out := run(t, s.study(t))
-	standings(t, out, map[string]string{xUnlike: "twin", xSteps: "twin", xContact: "twin"})
+	out := analysed(t, s.study(t))
+	explainedAs(t, out, map[string]string{xUnlike: "twin", xSteps: "twin", xContact: "twin"})
 	if r := explained(t, out, xUnlike); deref(r.TwinOf) != quoted("interacting pair") || r.Mechanism != nil {
 		t.Errorf("twin of %s, mechanism %s", deref(r.TwinOf), deref(r.Mechanism))
 	}
@@ -81,8 +81,8 @@ func TestShallowTwinInTheStudy(t *testing.T) {
 
 // Populations with shares 0.35 and 0.65 (truth 7) cannot be equal classes.
 func TestShallowPopulations(t *testing.T) {
-	out := run(t, sixDecades(func(x float64) float64 { return 0.35*hyperbola(x) + 0.65*hyperbola(x/30) }).study(t))
-	standings(t, out, map[string]string{xTwo: "open", xUnlike: "out", xSteps: "out", xSpread: "out"})
+	out := analysed(t, sixDecades(func(x float64) float64 { return 0.35*hyperbola(x) + 0.65*hyperbola(x/30) }).study(t))
+	explainedAs(t, out, map[string]string{xTwo: "open", xUnlike: "out", xSteps: "out", xSpread: "out"})
 	if r := explained(t, out, xTwo); !(r.AICcAhead > 10) || !strings.Contains(out.Verdict.Text, "better than any mechanism tried") {
 		t.Errorf("%v ahead of the mechanisms, and the verdict does not say so", r.AICcAhead)
 	}
@@ -93,13 +93,13 @@ func TestShallowPopulations(t *testing.T) {
 func TestShallowSpread(t *testing.T) {
 	s := sixDecades(hillOf(0.7))
 	s.scatter = 1e-6
-	out := run(t, s.study(t))
+	out := analysed(t, s.study(t))
 	if r := explained(t, out, xSpread); math.Abs(float64(r.Value)-1.850) > 5e-4 || !(r.Low < r.Value && r.Value < r.High) || deref(r.Name) != spreadOfK {
 		t.Errorf("SD of ln K %.4f (%.4f to %.4f)", r.Value, r.Low, r.High)
 	}
 	s.scatter = 0.01
-	out = run(t, s.study(t))
-	standings(t, out, map[string]string{xSpread: "open", xUnlike: "out", xTwo: "out", xSteps: "out", xContact: "out"})
+	out = analysed(t, s.study(t))
+	explainedAs(t, out, map[string]string{xSpread: "open", xUnlike: "out", xTwo: "out", xSteps: "out", xContact: "out"})
 	if r := explained(t, out, xSpread); !(r.Low < 1.850 && 1.850 < r.High) {
 		t.Errorf("the interval %.3f to %.3f misses 1.850", r.Low, r.High)
 	}
@@ -110,10 +110,10 @@ func TestShallowArtefacts(t *testing.T) {
 	free := Response{Kind: "signal", Low: Setting{Free: true}, High: Setting{Free: true}}
 	line := plain(func(x float64) float64 { return hyperbola(x) + 0.004*x })
 	line.response = free
-	standings(t, run(t, line.study(t)), map[string]string{xLine: "open", "one site with both ends fitted": "out", xSpread: "out", xUnlike: "out"})
+	explainedAs(t, analysed(t, line.study(t)), map[string]string{xLine: "open", "one site with both ends fitted": "out", xSpread: "out", xUnlike: "out"})
 
 	low := plain(func(x float64) float64 { return 0.1 + 0.9*hyperbola(x) })
-	standings(t, run(t, low.study(t)), map[string]string{xEnds: "open", xLine: "out", xUnlike: "out", xSpread: "out"})
+	explainedAs(t, analysed(t, low.study(t)), map[string]string{xEnds: "open", xLine: "out", xUnlike: "out", xSpread: "out"})
 }
 
 // Preparations of one site whose ln K scatter with SD 1 (truth 11): the shift
@@ -122,15 +122,15 @@ func TestShallowPreparations(t *testing.T) {
 	a := shiftStudy(t, shallowSeed, "hill", 1)
 	a.Candidates = a.Candidates[:1]
 	a.Settings.Draws = 99
-	out := run(t, a)
-	standings(t, out, map[string]string{xShift: "open"})
+	out := analysed(t, a)
+	explainedAs(t, out, map[string]string{xShift: "open"})
 	if r := explained(t, out, xShift); !(r.Value > 0.8 && r.Value <= 1) || !strings.Contains(deref(r.Why), "shifted by preparation") {
 		t.Errorf("explains %.2f: %s", r.Value, deref(r.Why))
 	}
 	for i := range a.Data[0].Points {
 		a.Data[0].Points[i].Preparation = ""
 	}
-	if r := explained(t, run(t, a), xShift); r.Standing != "not asked" {
+	if r := explained(t, analysed(t, a), xShift); r.Standing != "not asked" {
 		t.Errorf("without preparations: %s", r.Standing)
 	}
 }
@@ -143,7 +143,7 @@ func TestShallowPreparationsAlone(t *testing.T) {
 	for i := range a.Data[0].Points {
 		a.Data[0].Points[i].Sigma = 0.02
 	}
-	out := run(t, a)
+	out := analysed(t, a)
 	if r := explained(t, out, xShift); r.Standing != "open" || !strings.Contains(deref(r.Why), "read alone, in six preparations") {
 		t.Errorf("%s: %s", r.Standing, deref(r.Why))
 	}
@@ -162,8 +162,8 @@ func bindingOf(t testing.TB, family string, d mechanisms.Definition, theta ...fl
 
 // Four concerted sites: no artefact of one site gives their curve.
 func TestSteepConcerted(t *testing.T) {
-	out := run(t, plain(bindingOf(t, "mwc", four(), math.Log(1e3), math.Log(0.01), 0)).study(t))
-	standings(t, out, map[string]string{xDepletion: "out", xIncubation: "out", xEnds: "out", "concerted binding (MWC) of four sites": "open",
+	out := analysed(t, plain(bindingOf(t, "mwc", four(), math.Log(1e3), math.Log(0.01), 0)).study(t))
+	explainedAs(t, out, map[string]string{xDepletion: "out", xIncubation: "out", xEnds: "out", "concerted binding (MWC) of four sites": "open",
 		"interaction of four sites in contact (sequential)": "out", "stepwise binding to four sites": "open", xAssembly: "open", "any equilibrium mechanism with one site": "out"})
 }
 
@@ -180,17 +180,17 @@ func depletedSite(s float64) func(float64) float64 {
 // are found where they are not stated, and exclude it where they are few.
 func TestSteepDepletion(t *testing.T) {
 	a := plain(depletedSite(10)).study(t)
-	out := run(t, a)
-	standings(t, out, map[string]string{xDepletion: "open", xIncubation: "out", "stepwise binding to four sites": "out"})
+	out := analysed(t, a)
+	explainedAs(t, out, map[string]string{xDepletion: "open", xIncubation: "out", "stepwise binding to four sites": "out"})
 	if r := explained(t, out, xDepletion); math.Abs(float64(r.Value)/10-1) > 0.1 || r.Unit != "nM" {
 		t.Errorf("sites needed %.3g %s, want 10 nM", r.Value, r.Unit)
 	}
 	a.Data[0].SitesPresent = SitesPresent{Value: 10, Unit: "nM"}
-	standings(t, run(t, a), map[string]string{xDepletion: "open"})
+	explainedAs(t, analysed(t, a), map[string]string{xDepletion: "open"})
 	a.Data[0].SitesPresent.Value = 0.1
-	standings(t, run(t, a), map[string]string{xDepletion: "out"})
+	explainedAs(t, analysed(t, a), map[string]string{xDepletion: "out"})
 	a.Data[0].Total, a.Data[0].SitesPresent.Value = true, 10
-	for _, r := range run(t, a).Explanations {
+	for _, r := range analysed(t, a).Explanations {
 		t.Errorf("depletion is solved for, yet %s is explained", r.Slope)
 	}
 }
@@ -198,15 +198,15 @@ func TestSteepDepletion(t *testing.T) {
 // One site stopped after one half-life; with the incubation known it is out.
 func TestSteepIncubation(t *testing.T) {
 	a := plain(func(x float64) float64 { return earlyShare(x, math.Ln2) }).study(t)
-	out := run(t, a)
-	standings(t, out, map[string]string{xIncubation: "open"})
+	out := analysed(t, a)
+	explainedAs(t, out, map[string]string{xIncubation: "open"})
 	if r := explained(t, out, xIncubation); math.Abs(float64(r.Value)-1) > 0.1 {
 		t.Errorf("half-lives %.3g, want 1", r.Value)
 	}
 	a.Data[0].Incubation = 3600
 	k := 0.01
 	a.Candidates[0].Rates = map[string]Rate{"k_on": {Given: mechanisms.Given{Value: &k}, Order: 2}}
-	standings(t, run(t, a), map[string]string{xIncubation: "out"})
+	explainedAs(t, analysed(t, a), map[string]string{xIncubation: "out"})
 }
 
 // The unrested curve: its gradient against differences, its limits.
@@ -250,19 +250,19 @@ func TestUnrestedCurve(t *testing.T) {
 func TestSteepByResponse(t *testing.T) {
 	s := plain(hillOf(1.4))
 	s.response = Response{Kind: "velocity", Unit: "nM/s", High: Setting{Free: true}}
-	standings(t, run(t, s.study(t)), map[string]string{xKinetic: "open"})
+	explainedAs(t, analysed(t, s.study(t)), map[string]string{xKinetic: "open"})
 	s.y = hillOf(2.5)
-	standings(t, run(t, s.study(t)), map[string]string{xKinetic: "out"})
+	explainedAs(t, analysed(t, s.study(t)), map[string]string{xKinetic: "out"})
 	s.response = Response{Kind: "signal", High: Setting{Free: true}, Low: Setting{Free: true}}
-	standings(t, run(t, s.study(t)), map[string]string{xCycle: "open"})
+	explainedAs(t, analysed(t, s.study(t)), map[string]string{xCycle: "open"})
 	a := plain(hillOf(2.5)).study(t)
 	a.Ligand.Unit = "torr"
-	standings(t, run(t, a), map[string]string{xDepletion: "out"})
+	explainedAs(t, analysed(t, a), map[string]string{xDepletion: "out"})
 }
 
 // One site has nothing to explain, and neither has what cannot be read.
 func TestNothingToExplain(t *testing.T) {
-	out := run(t, plain(hyperbola).study(t))
+	out := analysed(t, plain(hyperbola).study(t))
 	if len(out.Explanations) != 0 || out.Explanations == nil {
 		t.Errorf("%d explanations of n_H 1", len(out.Explanations))
 	}
@@ -277,9 +277,9 @@ func TestNothingToExplain(t *testing.T) {
 func TestExplanationsKeepTheirDigits(t *testing.T) {
 	a := sixDecades(func(x float64) float64 { return hyperbola(x)/2 + hyperbola(x/10)/2 }).study(t)
 	a.Settings.Workers = 1
-	one := run(t, a)
+	one := analysed(t, a)
 	a.Settings.Workers = 3
-	three := run(t, a)
+	three := analysed(t, a)
 	for i, r := range one.Explanations {
 		s := three.Explanations[i]
 		if r.Standing != s.Standing || r.AICcBehind != s.AICcBehind && r.AICcBehind == r.AICcBehind || deref(r.Why) != deref(s.Why) {

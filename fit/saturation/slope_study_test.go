@@ -63,8 +63,8 @@ func plain(y func(float64) float64) sketch {
 	return sketch{y: y, low: -2, high: 2, levels: 24, replicates: 3, names: []string{"A", "B", "C"}, scatter: 0.01, seed: 4}
 }
 
-// run analyses a study.
-func run(t testing.TB, a *Analysis) *Outcome {
+// analysed is the outcome of a study.
+func analysed(t testing.TB, a *Analysis) *Outcome {
 	t.Helper()
 	out, err := a.Run(context.Background(), nil)
 	if err != nil {
