@@ -2,7 +2,6 @@ package saturation
 
 import (
 	"math"
-	"slices"
 	"strconv"
 
 	"ligancy/fit"
@@ -68,7 +67,7 @@ func (m *model) constantContrast(name, la, lb string) ([]wanted, bool) {
 	var out []wanted
 	known := false
 	for k, c := range m.consts {
-		if !slices.Contains(constantNames(c), name) {
+		if c.Name != name && c.Key() != name {
 			continue
 		}
 		known = true

@@ -53,9 +53,10 @@ func (a *Analysis) givenCandidate(c *Candidate, out *Outcome) error {
 func (c *Candidate) givenTheta() ([]float64, error) {
 	var theta []float64
 	var missing []string
-	for _, k := range c.Mechanism.Constants() {
+	all := c.Mechanism.Constants()
+	for i, k := range all {
 		var g mechanisms.Given
-		for _, name := range constantNames(k) {
+		for _, name := range constantNames(all, i) {
 			if v, ok := c.Given[name]; ok {
 				g = v
 				break

@@ -108,8 +108,7 @@ func (m *model) effectorColumns() ([]int, error) {
 
 // differsBy says by which key a constant differs; "" if it is shared.
 func (m *model) differsBy(k int) string {
-	c := m.consts[k]
-	for _, name := range constantNames(c) {
+	for _, name := range constantNames(m.consts, k) {
 		if key, ok := m.c.Differs[name]; ok {
 			return key
 		}
@@ -120,21 +119,19 @@ func (m *model) differsBy(k int) string {
 	return ""
 }
 
-// constantNames are the names by which a study may call a constant.
-func constantNames(c mechanisms.Constant) []string {
-	names := []string{c.Name}
-	if c.Site != "" {
-		names = append([]string{c.Site + "." + c.Name}, names...)
-	}
-	if c.Ligand != "" {
-		names = []string{c.Ligand + "." + c.Name}
+// constantNames are the names by which a study may call constant k: its key,
+// and its bare symbol where no other constant has it.
+func constantNames(all []mechanisms.Constant, k int) []string {
+	names := []string{all[k].Key()}
+	if bare := all[k].Name; bare != names[0] && mechanisms.Find(all, bare) == k {
+		names = append(names, bare)
 	}
 	return names
 }
 
 // given is what the study says of a constant.
 func (m *model) given(k int) mechanisms.Given {
-	for _, name := range constantNames(m.consts[k]) {
+	for _, name := range constantNames(m.consts, k) {
 		if g, ok := m.c.Given[name]; ok {
 			return g
 		}

@@ -30,6 +30,9 @@ func (a *Analysis) preparationRows(ctx context.Context) []PreparationRow {
 	var out []PreparationRow
 	for di := range a.Data {
 		d := &a.Data[di]
+		if d.Response.Of != "" {
+			continue // a Hill equation does not bind a tracer
+		}
 		curves, byCurve := a.pointsByCurve(d)
 		for _, curve := range curves {
 			rows := a.preparationsOf(ctx, d, curve, byCurve[curve])
