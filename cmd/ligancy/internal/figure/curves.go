@@ -231,7 +231,7 @@ func (l *curvesLayout) field(y float64) float64 {
 		l.marks()
 	}
 	l.names()
-	p.reading(true, l.Places...)
+	p.reading(showsResponse, l.Places...)
 	return below
 }
 
@@ -467,7 +467,7 @@ func (l *curvesLayout) residuals(y float64) float64 {
 	l.d.within(group{class: "residuals"}, func() { l.residualMarks(p) })
 	l.d.add(&group{class: "residuals-of"})
 	l.d.add(endGroup{})
-	p.reading(false, l.Places...)
+	p.reading(showsResidual, l.Places...)
 	return p.bottom + 0.8*l.s.Size
 }
 

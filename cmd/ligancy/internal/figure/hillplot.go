@@ -58,7 +58,7 @@ func (f *HillPlot) Draw(s Style) *Drawing {
 	}
 	f.marks(p)
 	f.distances(p)
-	p.reading(false, all(len(f.Lines))...)
+	p.reading(showsOther, all(len(f.Lines))...)
 	if f.Remark != "" {
 		below += s.lead()
 		d.text(0, below-0.4*s.Size, Start, s.Size, Muted, Words(Sans, f.Remark).Cut(s.Size, s.Width))

@@ -105,24 +105,34 @@ func (p *panel) xAxis(title bool) (below float64) {
 }
 
 // reading marks the panel as one that shares the ligand axis: the page lays its
-// hairline through it. scale adds the linear axis, for a figure that is read;
-// curves are the places of its curves among the leader's.
-func (p *panel) reading(scale bool, curves ...int) {
+// hairline through it. What its linear axis shows is named, so that the page
+// can find a place on it; curves are the places of its curves among the leader's.
+func (p *panel) reading(shows shown, curves ...int) {
 	names := make([]string, len(curves))
 	for i, c := range curves {
 		names[i] = strconv.Itoa(c)
 	}
 	p.d.add(&group{class: "axis", data: [][2]string{{"c", strings.Join(names, " ")}},
-		axis: &frame{x: p.x, y: p.y, top: p.top, bottom: p.bottom, scale: scale}})
+		axis: &frame{x: p.x, y: p.y, top: p.top, bottom: p.bottom, shows: shows}})
 	p.d.add(endGroup{})
 }
+
+// shown is what the linear axis of a field shows.
+type shown string
+
+const (
+	showsResponse shown = "response"
+	showsSlope    shown = "slope"
+	showsResidual shown = "residual"
+	showsOther    shown = ""
+)
 
 // frame is where a field lies and what its axes say, for the page.
 type frame struct {
 	x           logAxis
 	y           linear
 	top, bottom float64
-	scale       bool // with the linear axis
+	shows       shown
 }
 
 // moved is the frame moved by (x, y).
@@ -152,8 +162,8 @@ func (f *frame) data() [][2]string {
 	if !math.IsNaN(f.x.zero) {
 		data = append(data, [2]string{"z", n(f.x.zero)})
 	}
-	if f.scale {
-		data = append(data, [2]string{"y0", n(f.y.y0)}, [2]string{"y1", n(f.y.y1)},
+	if f.shows != showsOther {
+		data = append(data, [2]string{"shows", string(f.shows)}, [2]string{"y0", n(f.y.y0)}, [2]string{"y1", n(f.y.y1)},
 			[2]string{"v0", n(f.y.low)}, [2]string{"v1", n(f.y.high)})
 	}
 	return data

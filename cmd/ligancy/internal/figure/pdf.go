@@ -42,7 +42,7 @@ func (d *Drawing) WritePDF(w io.Writer) error {
 	p.object("<</Type/Catalog/Pages 2 0 R/Lang(en)/ViewerPreferences<</DisplayDocTitle true>>>>")
 	p.object("<</Type/Pages/Kids[3 0 R]/Count 1>>")
 	p.object(fmt.Sprintf("<</Type/Page/Parent 2 0 R/MediaBox[0 0 %s %s]/Contents 4 0 R/Resources<<%s%s>>>>",
-		real(d.Width*pt), real(d.Height*pt), p.fontNames(), p.states()))
+		real((d.Width+2*rim)*pt), real((d.Height+2*rim)*pt), p.fontNames(), p.states()))
 	p.stream("", p.page.Bytes())
 	p.object(fmt.Sprintf("<</Title%s/Subject%s/Producer(ligancy)>>", pdfText(d.Title), pdfText(d.Description)))
 	for f := range faces {
@@ -217,7 +217,7 @@ func pdfText(s string) string { return "<FEFF" + hexUTF16(strings.ToValidUTF8(s,
 
 // content writes the drawing's operators, its y axis turned to point downwards.
 func (p *pdfWriter) content(d *Drawing) {
-	fmt.Fprintf(&p.page, "%s 0 0 -%s 0 %s cm\n", real(pt), real(pt), real(d.Height*pt))
+	fmt.Fprintf(&p.page, "%s 0 0 -%s %s %s cm\n", real(pt), real(pt), real(rim*pt), real((d.Height+rim)*pt))
 	depth, hiddenFrom := 0, -1
 	for _, i := range d.items {
 		switch i := i.(type) {

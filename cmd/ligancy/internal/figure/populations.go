@@ -83,7 +83,7 @@ func (f *Populations) field(d *Drawing, s Style, pop Population, x, y, width flo
 	for _, st := range states {
 		f.label(p, st, pop.Ink, &busy)
 	}
-	p.reading(false, pop.Curve)
+	p.reading(showsOther, pop.Curve)
 	return below
 }
 

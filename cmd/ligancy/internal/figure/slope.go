@@ -64,7 +64,7 @@ func (f *Slope) Draw(s Style) *Drawing {
 	}
 	f.dots(p)
 	f.names(p, &busy)
-	p.reading(true, f.Places...)
+	p.reading(showsSlope, f.Places...)
 	d.Height = math.Ceil(below)
 	return d
 }

@@ -71,7 +71,7 @@ func (c scale) at(v float64) float64 { return c.x0 + v/cutAt*(c.x1-c.x0) }
 // and words stand above their bar.
 func (f *Standing) columns(s Style) scale {
 	if s.narrow() {
-		return scale{x0: 2, x1: s.Width - 4*s.Size}
+		return scale{x0: 0.4 * s.Size, x1: s.Width - 4*s.Size}
 	}
 	names, words := 0.0, 0.0
 	for _, r := range f.Rows {

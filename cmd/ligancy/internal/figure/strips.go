@@ -44,7 +44,7 @@ func (f *Strips) Draw(s Style) *Drawing {
 	brackets := float64(min(len(f.Ties), mostTies))*0.9*s.Size + 1.2*s.Size
 	labels, values := 0.0, 0.0
 	if s.narrow() {
-		x.x0, x.x1 = 2, s.Width-brackets-2
+		x.x0, x.x1 = 0.3*s.Size, s.Width-brackets-2
 	} else {
 		for _, r := range f.Rows {
 			labels, values = max(labels, r.Label.Width(s.title())), max(values, Prose(Sans, r.Value).Width(s.Size))

@@ -11,9 +11,12 @@ type Style struct {
 var (
 	Wide         = Style{Width: 736, Size: 12.5}
 	Narrow       = Style{Width: 344, Size: 11.5}
-	SingleColumn = Style{Width: 85 * perMM, Size: 8 / pt}
-	DoubleColumn = Style{Width: 174 * perMM, Size: 8 / pt}
+	SingleColumn = Style{Width: 85*perMM - 2*rim, Size: 8 / pt}
+	DoubleColumn = Style{Width: 174*perMM - 2*rim, Size: 8 / pt}
 )
+
+// rim is the white around the drawing of a file, so that no letter touches its edge.
+const rim = 3
 
 // narrow says whether labels have to stand inside the field for want of margins.
 func (s Style) narrow() bool { return s.Width < 45*s.Size }

@@ -43,13 +43,13 @@ func (d *Drawing) WriteSVGFile(w io.Writer) error {
 	body := s.b.Bytes()
 	var b bytes.Buffer
 	b.WriteString(`<?xml version="1.0" encoding="UTF-8"?>` + "\n")
-	fmt.Fprintf(&b, `<svg xmlns="http://www.w3.org/2000/svg" width="%smm" height="%smm" viewBox="0 0 %s %s" fill="none">`+"\n",
-		s.num(d.Width/perMM), s.num(d.Height/perMM), s.num(d.Width), s.num(d.Height))
+	fmt.Fprintf(&b, `<svg xmlns="http://www.w3.org/2000/svg" width="%smm" height="%smm" viewBox="-%[3]d -%[3]d %[4]s %[5]s" fill="none">`+"\n",
+		s.num((d.Width+2*rim)/perMM), s.num((d.Height+2*rim)/perMM), rim, s.num(d.Width+2*rim), s.num(d.Height+2*rim))
 	fmt.Fprintf(&b, "<title>%s</title><desc>%s</desc>\n<style>", escape(d.Title), escape(d.Description))
 	b.WriteString(s.fontFaces())
 	b.WriteString(StyleSheet(":root", false))
 	b.WriteString("</style>\n")
-	fmt.Fprintf(&b, `<rect class="f-gr" width="%s" height="%s"/>`, s.num(d.Width), s.num(d.Height))
+	fmt.Fprintf(&b, `<rect class="f-gr" x="-%[1]d" y="-%[1]d" width="%[2]s" height="%[3]s"/>`, rim, s.num(d.Width+2*rim), s.num(d.Height+2*rim))
 	b.Write(body)
 	b.WriteString("</svg>\n")
 	_, err := w.Write(b.Bytes())

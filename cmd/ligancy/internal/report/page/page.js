@@ -86,7 +86,7 @@
 
   // Axes of the figures that share the ligand.
   function axisOf(g) {
-    var d = g.dataset, a = { g: g };
+    var d = g.dataset, a = { g: g, shows: g.dataset.shows };
     ['x0', 'x1', 'l0', 'l1', 't', 'b', 'z', 'y0', 'y1', 'v0', 'v1'].forEach(function (k) {
       a[k] = d[k] === undefined ? null : Number(d[k]);
     });
@@ -125,9 +125,8 @@
     });
   }
   function dot(a, x) {
-    if (a.v0 === null || a.c.indexOf(state.curve) < 0) { if (a.dot) { a.dot.setAttribute('visibility', 'hidden'); } return; }
-    var table = a.g.closest('#fig-steep') ? D.leader.n : D.leader.y;
-    var y = a.g.closest('#fig-steep') || a.g.closest('#fig-curves') ? along(table, state.curve, state.at) : null;
+    var y = a.c.indexOf(state.curve) < 0 ? null : along(tableOf(a), state.curve, state.at);
+    if (y === null && !a.dot) { return; }
     if (!a.dot) {
       a.dot = document.createElementNS(svgNS, 'circle');
       a.dot.setAttribute('r', '4');
@@ -138,6 +137,9 @@
     a.dot.setAttribute('visibility', on ? 'visible' : 'hidden');
     if (on) { a.dot.setAttribute('cx', x); a.dot.setAttribute('cy', a.y0 + (y - a.v0) / (a.v1 - a.v0) * (a.y1 - a.y0)); }
   }
+
+  // What a field's linear axis shows of the leader; nothing where it shows something else.
+  function tableOf(a) { return a.shows === 'slope' ? D.leader.n : a.shows === 'response' && a.g.closest('#fig-curves') ? D.leader.y : null; }
 
   // A mechanism's value along its curve, between the sampled points.
   function along(table, curve, x) {
@@ -249,8 +251,8 @@
   }
   function nearest(a, y) {
     if (a.c.length === 1) { state.curve = a.c[0]; return; }
-    if (a.v0 === null) { return; }
-    var table = a.g.closest('#fig-steep') ? D.leader.n : D.leader.y, least = Infinity;
+    var table = tableOf(a), least = Infinity;
+    if (table === null) { return; }
     a.c.forEach(function (c) {
       var v = along(table, c, state.at);
       if (v === null) { return; }
