@@ -61,7 +61,7 @@ func newModel(a *Analysis, c *Candidate) (*model, error) {
 		return nil, err
 	}
 	m.layShift()
-	if err := m.shiftable(); err != nil {
+	if err := errors.Join(m.shiftable(), m.assemblable()); err != nil {
 		return m, err
 	}
 	index := map[string]int{}  // constant and level → Θ
@@ -163,7 +163,12 @@ func (m *model) cellOf(di int, p *Point, effectors []int, index, cellAt map[stri
 		cl.env.Effectors = append(cl.env.Effectors, y)
 		used[m.a.Effectors[j].Name] = m.a.label(m.a.Effectors[j].Name, number(y))
 	}
-	cl.env.Protomers = d.SitesPresent.Value
+	if m.assembles() && d.SitesPresent.Value > 0 {
+		cl.env.Protomers = d.SitesPresent.Value
+		if len(m.a.Data) > 1 {
+			used[byData] = d.Name
+		}
+	}
 	cl.shift = m.shiftAt(p.Preparation)
 	cl.keys, cl.label = m.curveLabel(d, used)
 	sig := fmt.Sprint(cl.theta, cl.env, cl.shift)
@@ -173,6 +178,25 @@ func (m *model) cellOf(di int, p *Point, effectors []int, index, cellAt map[stri
 	cellAt[sig] = len(m.cells)
 	m.cells = append(m.cells, cl)
 	return len(m.cells) - 1
+}
+
+// assembles says whether the mechanism's curves depend on how much of the
+// macromolecule there is.
+func (m *model) assembles() bool {
+	return slices.ContainsFunc(m.consts, func(c mechanisms.Constant) bool { return c.Protomers != 0 })
+}
+
+// assemblable refuses an assembly whose concentration is not said.
+func (m *model) assemblable() error {
+	if !m.assembles() {
+		return nil
+	}
+	for i := range m.a.Data {
+		if !(m.a.Data[i].SitesPresent.Value > 0) {
+			return fmt.Errorf("data set %q does not say how much of the macromolecule there is, on which assembly depends: write sites_present: 80 uM under it", m.a.Data[i].Name)
+		}
+	}
+	return nil
 }
 
 // curveLabel joins the levels in the order of the data set's factors, then

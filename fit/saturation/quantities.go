@@ -70,6 +70,9 @@ func (w *wanted) constantRow(m *model, c mechanisms.Constant) {
 		w.row.Site = text(c.Site)
 	}
 	w.row.Unit = power(unit, c.Dimension)
+	if c.Protomers != 0 {
+		w.row.Unit = power(m.proteinUnit(), c.Protomers)
+	}
 }
 
 // power writes a unit to a whole power: "torr", "torr^-2", "1".
@@ -81,6 +84,17 @@ func power(unit string, d int) string {
 		return unit
 	}
 	return unit + "^" + strconv.Itoa(d)
+}
+
+// proteinUnit is the unit in which the study says how much of the
+// macromolecule there is.
+func (m *model) proteinUnit() string {
+	for i := range m.a.Data {
+		if u := m.a.Data[i].SitesPresent.Unit; u != "" {
+			return u
+		}
+	}
+	return m.a.Ligand.Unit
 }
 
 // responseUnit is the unit of an end of a response.

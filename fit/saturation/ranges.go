@@ -26,7 +26,7 @@ func (m *model) setRanges() {
 func (m *model) setConstantRange(i int) {
 	p := &m.params[i]
 	c := m.consts[p.constant]
-	unit := math.Pow(m.typical(i, c), float64(c.Dimension))
+	unit := math.Pow(m.typical(i, c), float64(c.Dimension)) * math.Pow(m.protomers(i), float64(c.Protomers))
 	p.Low, p.High = scaled(c, c.Low*unit), scaled(c, c.High*unit)
 	p.StartLow, p.StartHigh = scaled(c, c.StartLow*unit), scaled(c, c.StartHigh*unit)
 	g := m.given(p.constant)
@@ -47,6 +47,22 @@ func (m *model) setConstantRange(i int) {
 	}
 	p.StartLow = math.Min(math.Max(p.StartLow, p.Low), p.High)
 	p.StartHigh = math.Min(math.Max(p.StartHigh, p.Low), p.High)
+}
+
+// protomers is the geometric mean of the concentrations of protomers of the
+// cells that parameter i governs, or 1.
+func (m *model) protomers(i int) float64 {
+	sum, n := 0.0, 0.0
+	for ci := range m.cells {
+		if p := m.cells[ci].env.Protomers; p > 0 && m.governs(i, ci) {
+			sum += math.Log(p)
+			n++
+		}
+	}
+	if n == 0 {
+		return 1
+	}
+	return math.Exp(sum / n)
 }
 
 // scaled puts a constant on the scale on which it is fitted.
