@@ -16,8 +16,9 @@ const fitHelp = `ligancy fit STUDY…
 
 Fits every mechanism of a study and prints what the data say, how steep the curves are and where,
 how firmly each constant is held, how the mechanisms stand, and what to know before believing it.
-Writes STUDY.results/ beside the study: result.json and its lists as CSV tables. The folder is
-written whole or not at all; an older result of this program is replaced, nothing else ever is.
+Writes STUDY.results/ beside the study: report.html, which needs nothing beside itself, result.json,
+its lists as CSV tables, and figures as SVG and PDF. The folder is written whole or not at all; an
+older result of this program is replaced, nothing else ever is.
 
   --json         prints the result as one JSON document instead (a list of them for several studies)
   --print-only   writes no folder
@@ -168,7 +169,7 @@ func (p *program) keep(d *report.Document, shown, folder string, stands standing
 		return Unusable
 	}
 	if !opts.json {
-		fmt.Fprintf(p.out, "  written   %s%c   %s  %d tables\n", shown, filepath.Separator, resultFile, len(files)-1)
+		fmt.Fprintf(p.out, "  written   %s%c   %s\n", shown, filepath.Separator, contents(files))
 	}
 	return Success
 }

@@ -54,7 +54,7 @@ func (r *progress) Progress(stage string, done, of int) {
 	r.drawn, r.stands = now, true
 	line := report.Short(stage, 50)
 	if of > 0 {
-		line += fmt.Sprintf(", %d of %d", done, of)
+		line += fmt.Sprintf(", %d of %d done", done, of)
 	}
 	if left := timeLeft(now.Sub(r.entered), done, of); left > 0 {
 		line += ", " + duration(left) + " left"

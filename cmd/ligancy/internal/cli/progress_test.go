@@ -34,7 +34,7 @@ func TestProgressTellsTheTimeLeftAfterASecond(t *testing.T) {
 	}
 	c.pass(1400 * time.Millisecond)
 	p.Progress("fitting \x1b[2Jpair", 2, 7)
-	const want = "\r\x1b[K" + `fitting \x1b[2Jpair, 2 of 7, 5 s left`
+	const want = "\r\x1b[K" + `fitting \x1b[2Jpair, 2 of 7 done, 5 s left`
 	if b.String() != want {
 		t.Errorf("%q, want %q", b, want)
 	}
@@ -56,7 +56,7 @@ func TestProgressStartsItsPaceAnewWithEachRunOfSteps(t *testing.T) {
 	p.Progress("simulating", 0, 199)
 	c.pass(time.Second)
 	p.Progress("simulating", 1, 199)
-	if !strings.HasSuffix(b.String(), "simulating, 1 of 199, 3 min left") {
+	if !strings.HasSuffix(b.String(), "simulating, 1 of 199 done, 3 min left") {
 		t.Errorf("%q", b)
 	}
 }

@@ -13,16 +13,22 @@ import (
 	"ligancy/cmd/ligancy/internal/report"
 )
 
-// resultFile is the document in a results folder by which the folder is known as ours.
-const resultFile = "result.json"
+const (
+	resultFile = "result.json" // by which a results folder is known as ours
+	pageFile   = "report.html"
+)
 
-// file of a results folder.
+// figuresFolder is the folder of figures within a results folder.
+const figuresFolder = "figures"
+
+// file of a results folder; its name may begin with the folder of figures.
 type file struct {
 	name    string
 	content []byte
 }
 
-// resultFiles renders a document: result.json, then one CSV a list.
+// resultFiles renders a document: result.json, one CSV a list, the report page
+// and its figures.
 func resultFiles(d *report.Document) ([]file, error) {
 	var b bytes.Buffer
 	if err := report.WriteJSON(&b, d); err != nil {
@@ -36,7 +42,46 @@ func resultFiles(d *report.Document) ([]file, error) {
 		}
 		files = append(files, file{t.Name + ".csv", b.Bytes()})
 	}
+	var page bytes.Buffer
+	if err := report.Page(&page, d); err != nil {
+		return nil, err
+	}
+	files = append(files, file{pageFile, page.Bytes()})
+	figures, err := report.Figures(d)
+	if err != nil {
+		return nil, err
+	}
+	for _, f := range figures {
+		files = append(files, file{filepath.Join(figuresFolder, f.Name), f.Content})
+	}
 	return files, nil
+}
+
+// contents says what a results folder holds: "report.html  result.json  5 tables  7 figures".
+func contents(files []file) string {
+	tables, figures := 0, map[string]bool{}
+	for _, f := range files {
+		if strings.HasSuffix(f.name, ".csv") {
+			tables++
+		}
+		if filepath.Dir(f.name) == figuresFolder {
+			name, _, _ := strings.Cut(filepath.Base(f.name), "mm.")
+			figures[name[:strings.LastIndex(name, "-")]] = true // curves-85mm.svg: one of curves
+		}
+	}
+	s := pageFile + "  " + resultFile + "  " + counted(tables, "table")
+	if len(figures) > 0 {
+		s += "  " + counted(len(figures), "figure")
+	}
+	return s
+}
+
+// counted writes "1 table", "2 tables".
+func counted(n int, noun string) string {
+	if n == 1 {
+		return "1 " + noun
+	}
+	return fmt.Sprintf("%d %ss", n, noun)
 }
 
 // resultsFolder is the folder of a study's results: clam.yaml → clam.results.
@@ -112,7 +157,7 @@ func known(name string) bool {
 	if base, ok := strings.CutSuffix(name, ".csv"); ok {
 		return slices.Contains(report.TableNames(), base)
 	}
-	return slices.Contains([]string{resultFile, "report.html", "report.md", "figures", ".DS_Store", "Thumbs.db", "desktop.ini"}, name)
+	return slices.Contains([]string{resultFile, pageFile, "report.md", figuresFolder, ".DS_Store", "Thumbs.db", "desktop.ini"}, name)
 }
 
 // writeResults puts files into a folder, whole or not at all: they are written
@@ -130,15 +175,33 @@ func writeResults(disk Disk, folder string, files []file) (err error) {
 			disk.RemoveAll(fresh)
 		}
 	}()
-	for _, f := range files {
-		if err := disk.Create(filepath.Join(fresh, f.name), f.content); err != nil {
-			return err
-		}
-	}
-	if err := disk.Sync(fresh); err != nil {
+	if err := fill(disk, fresh, files); err != nil {
 		return err
 	}
 	return swap(disk, parent, base, fresh)
+}
+
+// fill writes files into a fresh folder, with the folders they lie in.
+func fill(disk Disk, fresh string, files []file) error {
+	folders := []string{fresh}
+	for _, f := range files {
+		path := filepath.Join(fresh, f.name)
+		if dir := filepath.Dir(path); !slices.Contains(folders, dir) {
+			if err := disk.Mkdir(dir); err != nil {
+				return err
+			}
+			folders = append(folders, dir)
+		}
+		if err := disk.Create(path, f.content); err != nil {
+			return err
+		}
+	}
+	for _, dir := range slices.Backward(folders) {
+		if err := disk.Sync(dir); err != nil {
+			return err
+		}
+	}
+	return nil
 }
 
 // swap moves a fresh folder to its place and what stood there aside. If the

@@ -92,13 +92,15 @@ const (
 	partialJSON = `{"format": "ligancy-result/1", "interrupted": true}`
 )
 
-var newFiles = []file{{resultFile, []byte(`{"format": "ligancy-result/1", "n": 2}`)}, {"curves.csv", []byte("x\n")}}
+var newFiles = []file{{resultFile, []byte(`{"format": "ligancy-result/1", "n": 2}`)}, {"curves.csv", []byte("x\n")},
+	{filepath.Join("figures", "curves-85mm.svg"), []byte("<svg/>")}, {filepath.Join("figures", "curves-85mm.pdf"), []byte("%PDF")}}
 
 // Whichever step of writing fails, the folder is the old one or the new one,
 // whole, and nothing is left beside it.
 func TestResultsAreWrittenWholeOrNotAtAll(t *testing.T) {
 	older := map[string]string{"clam.results/result.json": wholeJSON, "clam.results/points.csv": "old\n"}
-	newer := map[string]string{"clam.results/result.json": string(newFiles[0].content), "clam.results/curves.csv": "x\n"}
+	newer := map[string]string{"clam.results/result.json": string(newFiles[0].content), "clam.results/curves.csv": "x\n",
+		"clam.results/figures/curves-85mm.svg": "<svg/>", "clam.results/figures/curves-85mm.pdf": "%PDF"}
 	for _, before := range []map[string]string{nil, older} {
 		for fails := 1; ; fails++ {
 			dir := t.TempDir()
@@ -176,5 +178,11 @@ func TestResultsFolderIsNamedForTheStudy(t *testing.T) {
 		if got := resultsFolder(study); got != want {
 			t.Errorf("%s: %s, want %s", study, got, want)
 		}
+	}
+}
+
+func TestContentsOfAFolderAreCounted(t *testing.T) {
+	if got := contents(newFiles); got != "report.html  result.json  1 table  1 figure" {
+		t.Error(got)
 	}
 }

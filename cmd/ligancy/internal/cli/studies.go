@@ -96,12 +96,7 @@ func reason(err error) string {
 
 // refuse writes the complaints of a study that cannot be used.
 func (o *opened) refuse(w io.Writer, done string) error {
-	n := o.complaints.Errors()
-	things := "1 thing"
-	if n != 1 {
-		things = fmt.Sprintf("%d things", n)
-	}
-	if _, err := fmt.Fprintf(w, "%s cannot be used yet: %s to mend. %s\n\n", o.name, things, done); err != nil {
+	if _, err := fmt.Fprintf(w, "%s cannot be used yet: %s to mend. %s\n\n", o.name, counted(o.complaints.Errors(), "thing"), done); err != nil {
 		return err
 	}
 	if err := diag.WriteText(w, o.complaints); err != nil {
