@@ -183,6 +183,40 @@ func TestLimitsAreSaid(t *testing.T) {
 	says(t, outcomeOf(t, a).Verdict, nil, []string{"There is one preparation", "No preparation is named", "Not stated"})
 }
 
+// A run that was stopped says so; without draws nothing is said of any.
+func TestStoppedRunsSaySo(t *testing.T) {
+	ctx, cancel := context.WithCancel(context.Background())
+	a := truths(t)[1].study(t, 0)
+	rec := &stopper{at: "asking which mechanisms are out", stop: cancel}
+	out, err := a.Run(ctx, rec)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if !out.Interrupted {
+		t.Error("not marked as interrupted")
+	}
+	says(t, out.Verdict, []string{"The run was stopped"}, nil)
+	b := truths(t)[1].study(t, 0)
+	b.Settings.Draws = 0
+	out = outcomeOf(t, b)
+	if len(out.Verdict.Out) == 0 {
+		t.Error("what is hopelessly behind is out without draws")
+	}
+	says(t, out.Verdict, []string{"no study needs to be simulated"}, []string{"of studies simulated"})
+}
+
+// stopper ends a run at one stage.
+type stopper struct {
+	at   string
+	stop func()
+}
+
+func (s *stopper) Progress(stage string, _, _ int) {
+	if stage == s.at {
+		s.stop()
+	}
+}
+
 // Nothing fitted, nothing said.
 func TestNoAnswerIsSaid(t *testing.T) {
 	a := truths(t)[1].study(t, 0)

@@ -38,6 +38,9 @@ func constantsRange(fits []*fitted) string {
 // limits says what the data cannot support, and why.
 func (w *verdictWriter) limits() string {
 	var s []string
+	if w.out.Interrupted {
+		s = append(s, "The run was stopped: not all that is called open was asked.")
+	}
 	if !w.replicated() {
 		s = append(s, "No point was measured twice: scatter and misfit are not told apart, "+
 			"and the scatter is that about the curves themselves.")

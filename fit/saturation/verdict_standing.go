@@ -77,8 +77,11 @@ func (w *verdictWriter) refused() string {
 	if n == 0 {
 		return ""
 	}
-	return fmt.Sprintf("%s %s not describe them: of studies simulated from such a mechanism at most one in a hundred lets another win by as much.",
-		capital(quotedList(w.v.Out)), verb(n, "does", "do"))
+	why := "of studies simulated from such a mechanism at most one in a hundred lets another win by as much"
+	if w.a.Settings.Draws <= 0 {
+		why = "they lie so far behind that no study needs to be simulated"
+	}
+	return fmt.Sprintf("%s %s not describe them: %s.", capital(quotedList(w.v.Out)), verb(n, "does", "do"), why)
 }
 
 func (w *verdictWriter) open() string {
