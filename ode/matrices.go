@@ -1,5 +1,7 @@
 package ode
 
+import "slices"
+
 // matrices holds the factorisations a Radau step of s stages solves with:
 // γ/h − J and (αᵢ − iβᵢ)/h − J for (s−1)/2 pairs. Sparse ones are used where the
 // pattern saves work, dense ones with exchange of rows elsewhere.
@@ -12,44 +14,63 @@ type matrices struct {
 	pair    [maxStages / 2]denseLU[complex128]
 	sreal   sparseLU[float64]
 	spair   [maxStages / 2]sparseLU[complex128]
+	known   []knownPlan
 }
 
-func (m *matrices) resize(n int) {
+// knownPlan remembers what a pattern led to, for the next integration. The plan
+// depends on the pattern alone, so that remembering changes no digit.
+type knownPlan struct {
+	bits []uint64
+	q    *plan // nil: dense
+}
+
+// begin forgets the pattern of the integration before.
+func (m *matrices) begin(n int) {
 	if m.n != n {
-		m.n = n
-		m.forget()
+		m.n, m.known = n, nil
 	}
-}
-
-// forget drops what is known of the pattern.
-func (m *matrices) forget() {
-	m.pat.resize(m.n)
+	m.pat.resize(n)
 	m.planned = nil
 }
 
-// leastSparse is the dimension from which a pattern is looked at.
-const leastSparse = 4
+const (
+	// leastSparse is the dimension from which a pattern is looked at.
+	leastSparse = 4
+	// mostKnown bounds the patterns remembered.
+	mostKnown = 64
+)
 
 // see takes note of the entries of J (row-major) that are not zero.
 func (m *matrices) see(jac []float64) {
-	if m.n >= leastSparse && m.pat.include(jac) {
-		m.replan()
+	if m.n < leastSparse || !m.pat.include(jac) {
+		return
+	}
+	m.planned = m.plan()
+	if m.planned == nil {
+		return
+	}
+	m.sreal.use(m.planned)
+	for i := range m.spair {
+		m.spair[i].use(m.planned)
 	}
 }
 
-// replan decides between sparse and dense for the pattern known.
-func (m *matrices) replan() {
-	n := m.n
-	m.planned = nil
+// plan decides between sparse and dense for the pattern seen.
+func (m *matrices) plan() *plan {
+	for _, k := range m.known {
+		if slices.Equal(k.bits, m.pat.bits) {
+			return k.q
+		}
+	}
 	q := newPlan(&m.pat)
-	if 2*q.work() > n*n*n/3 {
-		return
+	if 2*q.work() > m.n*m.n*m.n/3 {
+		q = nil
 	}
-	m.planned = q
-	m.sreal.use(q)
-	for i := range m.spair {
-		m.spair[i].use(q)
+	if len(m.known) == mostKnown {
+		m.known = m.known[:0]
 	}
+	m.known = append(m.known, knownPlan{slices.Clone(m.pat.bits), q})
+	return q
 }
 
 // factor prepares the matrices; false where one is singular.

@@ -27,7 +27,7 @@ func TestMatricesSolve(t *testing.T) {
 		n := 1 + trial%24
 		jac := randomJacobian(r, n, 0.1+0.9*r.Float64())
 		var m matrices
-		m.resize(n)
+		m.begin(n)
 		m.see(jac)
 		b, h := &radauTables[trial%3], math.Pow(10, -4*r.Float64())
 		if !m.factor(b, h, jac) {
@@ -122,7 +122,7 @@ func TestMatricesSingular(t *testing.T) {
 		jac := make([]float64, n*n)
 		jac[n*n-1] = b.gamma / h // a zero on the diagonal, nothing beside it
 		var m matrices
-		m.resize(n)
+		m.begin(n)
 		m.see(jac)
 		if m.factor(b, h, jac) {
 			t.Errorf("size %d: a singular matrix was factored", n)
@@ -145,7 +145,7 @@ func TestMatricesFallBack(t *testing.T) {
 	}
 	jac[0], jac[1], jac[n], jac[n+1] = b.gamma/h, 5, 7, b.gamma/h
 	var m matrices
-	m.resize(n)
+	m.begin(n)
 	m.see(jac)
 	if m.planned == nil {
 		t.Fatal("no plan for a pattern almost diagonal")
@@ -168,7 +168,7 @@ func TestPlanArrow(t *testing.T) {
 		jac[i], jac[i*n], jac[i*n+i] = 1, 1, 1
 	}
 	var m matrices
-	m.resize(n)
+	m.begin(n)
 	m.see(jac)
 	if m.planned == nil || m.planned.work() != 2*(n-1) {
 		t.Fatalf("plan %v", m.planned != nil)

@@ -60,7 +60,7 @@ func (m *radau) resize(fl *flow, o *Options, rtol float64) {
 	}
 	n, all := m.n, m.all
 	m.jac = grown(m.jac, n*n)
-	m.mat.resize(n)
+	m.mat.begin(n)
 	for i := range m.z {
 		m.z[i], m.w[i] = grown(m.z[i], all), grown(m.w[i], all)
 		m.f[i], m.prev[i] = grown(m.f[i], all), grown(m.prev[i], all)

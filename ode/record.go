@@ -37,24 +37,21 @@ func (r *record) add(p *point, h float64, b *tableau, coefs [][]float64) {
 }
 
 // locate finds the step that t is in.
-func (r *record) locate(t float64) (piece, error) {
-	if len(r.pieces) == 0 {
+func (s *Solution) locate(t float64) (piece, error) {
+	all := s.kept.pieces
+	if len(all) == 0 {
 		return piece{}, errors.New("ode: the steps were not kept")
 	}
-	forward := r.pieces[0].h > 0
-	i := sort.Search(len(r.pieces), func(i int) bool {
-		return r.pieces[i].end >= t == forward || r.pieces[i].end == t
-	})
-	first := r.pieces[0]
-	start := first.end - first.h
-	slack := 1e-12 * max(abs(start), abs(first.h))
-	if i == len(r.pieces) || forward && t < start-slack || !forward && t > start+slack || t != t {
+	start := s.Times[0]
+	if !(min(start, s.EndTime) <= t && t <= max(start, s.EndTime)) {
 		return piece{}, fmt.Errorf("ode: t = %g was not reached", t)
 	}
-	return r.pieces[i], nil
+	forward := all[0].h > 0
+	i := sort.Search(len(all), func(i int) bool {
+		return all[i].end == t || all[i].end > t == forward
+	})
+	return all[min(i, len(all)-1)], nil
 }
-
-func abs(x float64) float64 { return max(x, -x) }
 
 // read evaluates entries from … of the whole state.
 func (r *record) read(dst []float64, q piece, t float64, from int) {
@@ -79,7 +76,7 @@ func (r *record) read(dst []float64, q piece, t float64, from int) {
 
 // At is the state at any time reached, where Options.Keep was set. dst nil allocates.
 func (s *Solution) At(dst []float64, t float64) ([]float64, error) {
-	q, err := s.kept.locate(t)
+	q, err := s.locate(t)
 	if err != nil {
 		return nil, err
 	}
@@ -93,7 +90,7 @@ func (s *Solution) SensitivityAt(dst *mat.Dense, t float64) (*mat.Dense, error) 
 	if s.p == 0 {
 		return nil, errors.New("ode: no sensitivities were asked for")
 	}
-	q, err := s.kept.locate(t)
+	q, err := s.locate(t)
 	if err != nil {
 		return nil, err
 	}

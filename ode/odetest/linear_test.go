@@ -3,6 +3,7 @@ package odetest
 import (
 	"math"
 	"math/rand/v2"
+	"slices"
 	"testing"
 
 	"gonum.org/v1/gonum/mat"
@@ -49,6 +50,7 @@ func exchange(r *rand.Rand, n int, decades float64) linear {
 // Random networks against the matrix exponential of gonum.
 func TestLinearNetworks(t *testing.T) {
 	r := rand.New(rand.NewPCG(3, 5))
+	var shared ode.Solver
 	for trial := range 60 {
 		n := 2 + trial%13
 		o := ode.Options{Rtol: 1e-9, Atol: 1e-12}
@@ -68,6 +70,12 @@ func TestLinearNetworks(t *testing.T) {
 		sol, err := ode.Solve(t.Context(), l, y0, times, o)
 		if err != nil {
 			t.Fatal(err)
+		}
+		// What a solver did before changes no digit.
+		shared.Options = o
+		again, err := shared.Solve(t.Context(), nil, l, y0, times)
+		if err != nil || !slices.Equal(again.EndState, sol.EndState) {
+			t.Errorf("trial %d: a used solver gives %v, a new one %v", trial, again.EndState, sol.EndState)
 		}
 		if sol.Stats.Drift > 1e-13 {
 			t.Errorf("trial %d: drift %g", trial, sol.Stats.Drift)

@@ -6,7 +6,6 @@ import (
 	"fmt"
 	"io"
 	"math"
-	"runtime"
 	"slices"
 	"strconv"
 	"time"
@@ -56,8 +55,6 @@ func WorkPrecision(ctx context.Context, set Precision) ([]Row, error) {
 			problems = append(problems, p)
 		}
 	}
-	runtime.LockOSThread()
-	defer runtime.UnlockOSThread()
 	var rows []Row
 	for _, p := range problems {
 		methods := set.Methods
