@@ -14,8 +14,9 @@ import (
 )
 
 const (
-	resultFile = "result.json" // by which a results folder is known as ours
-	pageFile   = "report.html"
+	resultFile  = "result.json" // by which a results folder is known as ours
+	pageFile    = "report.html"
+	summaryFile = "report.md" // for pull requests
 )
 
 // figuresFolder is the folder of figures within a results folder.
@@ -27,8 +28,8 @@ type file struct {
 	content []byte
 }
 
-// resultFiles renders a document: result.json, one CSV a list, the report page
-// and its figures.
+// resultFiles renders a document: result.json, one CSV a list, the report page,
+// its summary in Markdown and its figures.
 func resultFiles(d *report.Document) ([]file, error) {
 	var b bytes.Buffer
 	if err := report.WriteJSON(&b, d); err != nil {
@@ -47,6 +48,11 @@ func resultFiles(d *report.Document) ([]file, error) {
 		return nil, err
 	}
 	files = append(files, file{pageFile, page.Bytes()})
+	var summary bytes.Buffer
+	if err := report.Markdown(&summary, d); err != nil {
+		return nil, err
+	}
+	files = append(files, file{summaryFile, summary.Bytes()})
 	figures, err := report.Figures(d)
 	if err != nil {
 		return nil, err
@@ -157,7 +163,7 @@ func known(name string) bool {
 	if base, ok := strings.CutSuffix(name, ".csv"); ok {
 		return slices.Contains(report.TableNames(), base)
 	}
-	return slices.Contains([]string{resultFile, pageFile, "report.md", figuresFolder, ".DS_Store", "Thumbs.db", "desktop.ini"}, name)
+	return slices.Contains([]string{resultFile, pageFile, summaryFile, figuresFolder, ".DS_Store", "Thumbs.db", "desktop.ini"}, name)
 }
 
 // writeResults puts files into a folder, whole or not at all: they are written

@@ -97,33 +97,33 @@ func (l *curvesLayout) keys() float64 {
 			ink = CurveInk(l.lead)
 		}
 		f, w := lineSample(ink, 2.4, nil)
-		entries = append(entries, keyEntry{f, w, l.Leader})
+		entries = append(entries, keyEntry{sample: f, width: w, label: l.Leader})
 	}
 	for _, r := range l.Rivals {
 		if r.Shown {
 			f, w := lineSample(Muted, 1.8, dashes[r.Dash%len(dashes)])
-			entries = append(entries, keyEntry{f, w, Prose(Sans, r.Name)})
+			entries = append(entries, keyEntry{sample: f, width: w, label: Prose(Sans, r.Name), rival: r.ID})
 		}
 	}
 	if !l.Dense && len(l.Preparations) > 1 && len(l.Preparations) <= Shapes {
 		for i, name := range l.Preparations {
 			f, w := markSample(i, l.radius())
-			entries = append(entries, keyEntry{f, w, Words(Sans, name)})
+			entries = append(entries, keyEntry{sample: f, width: w, label: Words(Sans, name)})
 		}
 	}
 	if slices.ContainsFunc(l.Points, func(p Point) bool { return p.LeftOut }) {
-		entries = append(entries, keyEntry{func(d *Drawing, x, y float64) {
+		entries = append(entries, keyEntry{sample: func(d *Drawing, x, y float64) {
 			var p Path
 			cross(&p, x+4, y, 3.5)
 			d.add(&stroke{path: p, ink: Muted, width: 1.2})
-		}, 8, Words(Sans, "left out")})
+		}, width: 8, label: Words(Sans, "left out")})
 	}
 	if slices.ContainsFunc(l.Points, func(p Point) bool { return p.Blocked }) {
-		entries = append(entries, keyEntry{func(d *Drawing, x, y float64) {
+		entries = append(entries, keyEntry{sample: func(d *Drawing, x, y float64) {
 			var p Path
 			circle(&p, x+4, y, 2.4)
 			d.add(&stroke{path: p, fill: Muted})
-		}, 8, Words(Sans, "blocked")})
+		}, width: 8, label: Words(Sans, "blocked")})
 	}
 	if len(entries) == 0 {
 		return 0.2 * l.s.Size

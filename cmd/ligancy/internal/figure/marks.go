@@ -87,6 +87,7 @@ type keyEntry struct {
 	sample func(d *Drawing, x, y float64) // draws within sampleWidth of x
 	width  float64
 	label  Label
+	rival  string // by which the page finds the rival that it is the key of
 }
 
 func (d *Drawing) key(entries []keyEntry, x0, y, x1 float64, s Style) float64 {
@@ -97,8 +98,15 @@ func (d *Drawing) key(entries []keyEntry, x0, y, x1 float64, s Style) float64 {
 		if x > x0 && x+w > x1 {
 			x, y = x0, y+s.lead()
 		}
-		e.sample(d, x, y-0.36*s.Size)
-		d.text(x+e.width+4, y, Start, s.Size, Muted, l)
+		write := func() {
+			e.sample(d, x, y-0.36*s.Size)
+			d.text(x+e.width+4, y, Start, s.Size, Muted, l)
+		}
+		if e.rival != "" {
+			d.within(group{class: "rival-key", data: [][2]string{{"m", e.rival}}}, write)
+		} else {
+			write()
+		}
 		x += w + 1.3*s.Size
 	}
 	return y

@@ -85,12 +85,12 @@ func (f *Slope) key(d *Drawing, s Style) float64 {
 			ink = CurveInk(f.lead)
 		}
 		draw, w := lineSample(ink, 2.4, nil)
-		entries = append(entries, keyEntry{draw, w, f.Leader})
+		entries = append(entries, keyEntry{sample: draw, width: w, label: f.Leader})
 	}
 	for _, r := range f.Rivals {
 		if r.Shown {
 			draw, w := lineSample(Muted, 1.8, dashes[r.Dash%len(dashes)])
-			entries = append(entries, keyEntry{draw, w, Prose(Sans, r.Name)})
+			entries = append(entries, keyEntry{sample: draw, width: w, label: Prose(Sans, r.Name), rival: r.ID})
 		}
 	}
 	dot := func(fill Ink) func(*Drawing, float64, float64) {
@@ -105,10 +105,10 @@ func (f *Slope) key(d *Drawing, s Style) float64 {
 		half, steepest = half || finite(l.Half.Y), steepest || finite(l.Max.Y)
 	}
 	if half {
-		entries = append(entries, keyEntry{dot(Text), 8, Words(Sans, "at half saturation")})
+		entries = append(entries, keyEntry{sample: dot(Text), width: 8, label: Words(Sans, "at half saturation")})
 	}
 	if steepest {
-		entries = append(entries, keyEntry{dot(Ground), 8, Words(Sans, "steepest")})
+		entries = append(entries, keyEntry{sample: dot(Ground), width: 8, label: Words(Sans, "steepest")})
 	}
 	return d.key(entries, 0, s.Size, s.Width, s)
 }

@@ -134,7 +134,11 @@ func (v *view) levelRow(g *responseGroup, line int, c *curveLine, x float64, riv
 		if g.has(r.Data) {
 			y := r.drawn(g)
 			sum += y
-			values, rows = append(values, significant(y, 3)), append(rows, strconv.Itoa(r.Row))
+			text := plain(y)
+			if g.scaled {
+				text = significant(y, 3)
+			}
+			values, rows = append(values, text), append(rows, strconv.Itoa(r.Row))
 		}
 	}
 	n := len(values)

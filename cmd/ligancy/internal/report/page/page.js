@@ -44,7 +44,7 @@
   function drawRivals(peek) {
     D.rivals.forEach(function (r) {
       var on = visible(r) || r.id === peek;
-      each('.rival[data-m="' + r.id + '"]', function (g) { g.setAttribute('visibility', on ? 'visible' : 'hidden'); });
+      each('.rival[data-m="' + r.id + '"],.rival-key[data-m="' + r.id + '"]', function (g) { g.setAttribute('visibility', on ? 'visible' : 'hidden'); });
       each('.rival-button[data-m="' + r.id + '"]', function (b) { b.setAttribute('aria-pressed', String(visible(r))); });
     });
     residualsOf(peek);
