@@ -9,17 +9,11 @@ import (
 // follow walks along the profile from the estimate until it meets the limit, a
 // bound, or nothing any more.
 func (f *Profiler) follow(ctx context.Context, t target, v, d float64) end {
-	first, stiffness := f.scale(t, v, d)
-	step := first
-	var g guide
-	if t.parameter >= 0 {
-		g = f.hold(t.parameter)
-	} else {
-		g = f.pull(t.value, stiffness)
-	}
-	low, high := g.bounds()
 	last := station{v, v, f.result.Objective, f.result.Theta}
-	before := last
+	first, before := f.scale(t, last, d)
+	step := first
+	g := f.guide(t, first)
+	low, high := g.bounds()
 	still := 0
 	for range 80 {
 		dial := min(max(last.dial+d*step, low), high)
@@ -63,8 +57,9 @@ func (f *Profiler) flat(last, next station, times float64) bool {
 	return times > 1e4 && rise < 1e-3*rest
 }
 
-// advance turns the guide to the next dial: from where the last two stations
-// point to, and, should that end above the limit, from the last one too.
+// advance turns the guide to the next dial, from where the last two stations
+// point to and from the last one, and keeps the lower of the two: with the
+// parameter held there may be several minima.
 func (f *Profiler) advance(ctx context.Context, g guide, before, last station, dial float64) (station, bool) {
 	f.ahead = append(f.ahead[:0], last.theta...)
 	if last.dial != before.dial {
@@ -73,15 +68,12 @@ func (f *Profiler) advance(ctx context.Context, g guide, before, last station, d
 			f.ahead[j] += share * (v - before.theta[j])
 		}
 	}
-	next, ok := g.turn(ctx, dial, f.ahead)
-	if ok && next.objective < f.limit {
-		return next, true
+	a, okA := g.turn(ctx, dial, f.ahead)
+	b, okB := g.turn(ctx, dial, last.theta)
+	if okA && (!okB || a.objective <= b.objective) {
+		return a, true
 	}
-	again, okAgain := g.turn(ctx, dial, last.theta)
-	if okAgain && (!ok || again.objective < next.objective) {
-		return again, true
-	}
-	return next, ok
+	return b, okB
 }
 
 // meet keeps a θ whose objective is below all before.
@@ -106,26 +98,34 @@ func (f *Profiler) stride(last, next station, step float64) float64 {
 	return 2 * step
 }
 
-// scale is the distance on the dial at which the limit is expected, and the
-// stiffness of a pull that suits it.
-func (f *Profiler) scale(t target, v, d float64) (step, stiffness float64) {
+// scale is the distance on the dial at which the limit is expected, and a
+// station behind the estimate, on the tangent of the profile.
+func (f *Profiler) scale(t target, at station, d float64) (step float64, behind station) {
 	f.s.restart(f.result)
 	t.value(f.s.cur.theta, f.grad)
 	f.e.solve(len(f.free), f.linearise(f.limit), d)
+	theta := append([]float64(nil), at.theta...)
+	var change float64
 	for i, j := range f.free {
-		step += f.grad[j] * f.e.s[i]
+		change += f.grad[j] * f.e.s[i]
+		theta[j] -= f.e.s[i]
 	}
-	step = math.Abs(step)
-	if j := t.parameter; j >= 0 && f.s.width[j] > 0 {
-		step = min(step, f.s.width[j])
+	behind = station{dial: at.dial - change, theta: theta}
+	step = math.Abs(change)
+	width := 0.0
+	if t.parameter >= 0 {
+		width = f.s.width[t.parameter]
 	}
 	if !(step > 0) || math.IsInf(step, 0) || f.e.loose {
-		step = 0.1 * max(math.Abs(v), 1e-3)
-		if j := t.parameter; j >= 0 && f.s.width[j] > 0 {
-			step = f.s.width[j] / 4
+		behind = at
+		if step = 0.1 * max(math.Abs(at.value), 1e-3); width > 0 {
+			step = width / 4
 		}
 	}
-	return step, 100 * (f.limit - f.result.Objective) / (step * step)
+	if width > 0 {
+		step = min(step, width)
+	}
+	return step, behind
 }
 
 // between finds the end between a station below and one above the limit: by
@@ -136,7 +136,7 @@ func (f *Profiler) between(ctx context.Context, t target, g guide, below, above 
 	a, b := f.root(below)-goal, f.root(above)-goal
 	for n, side := 0, 0.0; n < 100 && ctx.Err() == nil; n++ {
 		dial := (below.dial*b - above.dial*a) / (b - a)
-		at, ok := g.turn(ctx, dial, below.theta)
+		at, ok := f.advance(ctx, g, above, below, dial)
 		if !ok {
 			break
 		}

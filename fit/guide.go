@@ -25,6 +25,14 @@ type station struct {
 	theta     []float64
 }
 
+// guide makes the guide of a target whose end is expected at that distance.
+func (f *Profiler) guide(t target, distance float64) guide {
+	if t.parameter >= 0 {
+		return f.hold(t.parameter)
+	}
+	return f.pull(t.value, 100*(f.limit-f.result.Objective)/(distance*distance))
+}
+
 // hold is the guide of a parameter: it is held at the dial.
 type hold struct {
 	s         *solver
@@ -86,7 +94,7 @@ func (t *tether) Eval(res []float64, jac *mat.Dense, theta []float64) error {
 	return nil
 }
 
-// pull makes the guide; stiffness κ² is in units of the objective.
+// pull makes the guide of a quantity; stiffness is κ².
 func (f *Profiler) pull(g Quantity, stiffness float64) *pull {
 	b := &tether{g: g, kappa: math.Sqrt(stiffness), grad: make([]float64, len(f.grad))}
 	p := *f.problem

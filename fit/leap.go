@@ -5,17 +5,22 @@ import "math"
 // leap finds an end of an interval by solving the linearised problem of the end
 // over and over, each time at the θ that the last one gave: no profile is
 // computed on the way. It gives up where that does not settle.
-func (f *Profiler) leap(t target, v, d float64) (value float64, ok bool) {
+//
+// straight says whether the end lies about where the curvature at the estimate
+// would have it.
+func (f *Profiler) leap(t target, v, d float64) (value float64, straight, ok bool) {
 	f.s.restart(f.result)
 	full := f.limit - f.result.Objective
-	if _, ok := f.settleAt(t, d, f.result.Objective+full/4, 0.1, 6); !ok {
-		return 0, false
+	half, ok := f.settleAt(t, d, f.result.Objective+full/4, 0.1, 6)
+	if !ok {
+		return 0, false, false
 	}
 	value, ok = f.settleAt(t, d, f.limit, 1e-5, 40)
 	if !ok || d*(value-v) < 0 {
-		return 0, false
+		return 0, false, false
 	}
-	return value, true
+	ratio := (value - v) / (half - v)
+	return value, ratio > 1.6 && ratio < 2.5, true
 }
 
 // restart puts the current point back to a result.

@@ -3,6 +3,7 @@ package fit_test
 import (
 	"context"
 	"math"
+	"math/rand/v2"
 	"strings"
 	"testing"
 
@@ -419,6 +420,57 @@ func BenchmarkProfileHill4(b *testing.B) {
 		}
 		for j := range p.Parameters {
 			f.Parameter(context.Background(), j)
+		}
+	}
+}
+
+// Where the ratio of affinities is hardly held, the profile has several
+// branches: beyond a closed end no refit, from whatever start, comes below the
+// limit; at an end on a bound, one does.
+func TestProfileBranches(t *testing.T) {
+	rng := rand.New(rand.NewPCG(21, 1))
+	studies := 12
+	if testing.Short() {
+		studies = 3
+	}
+	for range studies {
+		c := &curve{model: concerted}
+		for i := range 24 {
+			c.x = append(c.x, math.Exp(math.Log(0.1)+math.Log(1e4)*float64(i)/23))
+			c.root = append(c.root, 1)
+		}
+		c.y = make([]float64, 24)
+		concerted(c.y, nil, c.x, []float64{0, math.Log(1e5), math.Log(1e-3)})
+		for i := range c.y {
+			c.y[i] += 0.02 * rng.NormFloat64()
+		}
+		p := &fit.Problem{Parameters: boxes(boxHill4), Blocks: []fit.Block{c}}
+		r := solve(t, p, fit.Settings{})
+		f := profiler(t, p, r, 0.95)
+		q := distuv.StudentsT{Sigma: 1, Nu: 21}.Quantile(0.975)
+		limit := r.Objective * (1 + q*q/21)
+		for j := range p.Parameters {
+			iv := f.Parameter(context.Background(), j)
+			for _, e := range []struct {
+				at   float64
+				edge bool
+			}{{iv.Low, iv.LowEdge}, {iv.High, iv.HighEdge}} {
+				at := e.at
+				if !e.edge {
+					at += 0.03 * (at - r.Theta[j])
+				}
+				h := *p
+				h.Parameters = append([]fit.Parameter(nil), p.Parameters...)
+				if at <= h.Parameters[j].Low || at >= h.Parameters[j].High {
+					at = e.at
+				}
+				h.Parameters[j].Low, h.Parameters[j].High = at, at
+				h.Starts = [][]float64{r.Theta}
+				ss := solve(t, &h, fit.Settings{Starts: 12}).Objective
+				if e.edge != (ss < limit*(1+1e-9)) {
+					t.Errorf("%s, end %v (bound: %v): %v at %v, limit %v", p.Parameters[j].Name, e.at, e.edge, ss, at, limit)
+				}
+			}
 		}
 	}
 }

@@ -185,13 +185,31 @@ func (f *Profiler) end(ctx context.Context, t target, v, d float64) end {
 			return end{value: v, edge: true}
 		}
 	}
-	if g, ok := f.leap(t, v, d); ok {
+	g, straight, ok := f.leap(t, v, d)
+	if ok {
 		f.probe(ctx)
-		return end{value: g}
+		if straight || f.ends(ctx, t, v, g) {
+			return end{value: g}
+		}
 	}
 	e := f.follow(ctx, t, v, d)
 	f.probe(ctx)
+	if ok && !e.open && !e.edge && d*(e.value-g) < 0 {
+		return end{value: g}
+	}
 	return e
+}
+
+// ends says whether the profile is above its limit just beyond an end that a
+// leap has found: seen from the estimate, another branch may lie lower there.
+func (f *Profiler) ends(ctx context.Context, t target, v, end float64) bool {
+	beyond := end + 0.02*(end-v)
+	g := f.guide(t, math.Abs(end-v))
+	if low, high := g.bounds(); beyond <= low || beyond >= high {
+		return true
+	}
+	at, ok := g.turn(ctx, beyond, f.result.Theta)
+	return !ok || at.objective >= f.limit || math.Abs(at.value-v) <= math.Abs(end-v)
 }
 
 // probe goes down from where an end was found, all parameters free: if that
