@@ -115,6 +115,9 @@ func (f *fitted) solve(ctx context.Context, s fit.Settings) (*fit.Result, error)
 		if r != nil {
 			r.Starts, r.Agreeing = starts, agreeing
 		}
+		if err == nil && r != nil && r.Status == fit.Stopped && ctx.Err() == nil {
+			r = f.ontoBounds(ctx, r)
+		}
 	}
 	return r, err
 }

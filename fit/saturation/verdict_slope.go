@@ -12,8 +12,8 @@ import (
 // called different from 1 (a 95 % interval rejects one in twenty one-site truths).
 const slopeLevel = 0.99
 
-// slopeWide is the factor beyond which an interval of n_H is too wide to say
-// that n_H is 1.
+// slopeWide is the factor beyond which an interval of n_H that holds 1 is too
+// wide to say that n_H is 1.
 const slopeWide = 1.5
 
 // What a verdict may say of n_H at half saturation: Verdict.Slope.
@@ -167,7 +167,7 @@ func (w *verdictWriter) slopeOn(curve string) string {
 		}
 		if !s.built {
 			free++
-			tight = tight || s.low > 1/slopeWide && s.high < slopeWide
+			tight = tight || s.low > 1/slopeWide && s.low <= 1 && s.high >= 1 && s.high < slopeWide
 		}
 	}
 	switch {

@@ -192,12 +192,16 @@ func (w *verdictWriter) openWords(curve, where string) string {
 	if w.unfilled() != nil {
 		return s + ": it hangs on the upper end, which is extrapolated."
 	}
-	for i := range list {
-		if !list[i].built {
-			row := w.find(fits[i].row.Name, "hill", "n_H_half_99", list[i].curve)
-			return fmt.Sprintf("%s: %s gives %s (%s).",
-				s, quoted(fits[i].row.Name), withInterval(row), decidingLevel())
+	var each []string
+	for _, holds := range []bool{true, false} {
+		for i, l := range list {
+			if holds != (l.low <= 1 && l.high >= 1) || l.built {
+				continue
+			}
+			row := w.find(fits[i].row.Name, "hill", "n_H_half_99", l.curve)
+			each = append(each, quoted(fits[i].row.Name)+" gives "+withInterval(row))
+			break
 		}
 	}
-	return s + "."
+	return fmt.Sprintf("%s: %s (%s).", s, strings.Join(each, ", "), decidingLevel())
 }
