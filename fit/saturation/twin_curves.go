@@ -59,8 +59,8 @@ type imitation struct {
 	m     *model
 	again *fit.Again
 	theta []float64 // the candidate's estimate; numbers of a scatter model left out
-	seen  [][]float64
-	rank  int // of the curves' change with the constants; 0: not asked
+	last  []float64 // where it last drew other curves
+	rank  int       // of the curves' change with the constants; 0: not asked
 }
 
 // imitation of candidate i; nil where it cannot be laid over the data.
@@ -117,7 +117,7 @@ func (t *imitation) draws(y [][]float64, starts ...[]float64) bool {
 			ss += v
 		}
 		if ss <= sameCurve*sameCurve {
-			t.seen = append(t.seen, slices.Clone(t.again.Theta()))
+			t.last = slices.Clone(t.again.Theta())
 			return true
 		}
 	}
@@ -152,7 +152,7 @@ func (c *curves) holds(j, i int) bool {
 	}
 	elsewhere := append(from.near(c.fits[i], 1, 2), from.boxed(4, 2)...)
 	for _, theta := range elsewhere {
-		if !to.draws(from.curve(theta), append([][]float64{to.seen[len(to.seen)-1]}, starts...)...) {
+		if !to.draws(from.curve(theta), append([][]float64{to.last}, starts...)...) {
 			return false
 		}
 	}
@@ -174,7 +174,7 @@ func (c *curves) follows(a, b *imitation, j int) bool {
 	if !a.draws(b.curve(b.theta), a.theta) {
 		return false
 	}
-	from := a.seen[len(a.seen)-1]
+	from := a.last
 	for _, size := range []float64{0.1, 0.02, 0.004} {
 		all := true
 		for _, theta := range b.near(c.fits[j], size, 3) {
