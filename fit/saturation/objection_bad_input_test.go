@@ -25,17 +25,17 @@ func TestPoorStudiesAreToldWhatCannotBeAsked(t *testing.T) {
 	a.Kelvin = math.NaN()
 	for name, list := range map[string][]Objection{"check": a.Objections(context.Background()), "fit": analysed(t, a).Objections} {
 		for id, why := range map[string]string{
-			"replicates":      "cannot be asked",
-			"preparations":    "technical",
-			"incubation":      "cannot be judged",
-			"conditions":      "still lacks: macromolecule",
-			"temperature":     "not stated",
-			"concentrations":  "Only six ligand values",
-			"few-points":      "AICc",
-			"dissociation":    "cannot be judged",
-			"ligand-scatter":  "cannot be asked",
-			"hidden-classes":  "",
-			"n_H-above-sites": "",
+			"replicates":         "cannot be asked",
+			"preparations":       "technical",
+			"incubation-unknown": "cannot be judged",
+			"conditions":         "still lacks: macromolecule",
+			"temperature":        "not stated",
+			"concentrations":     "Only six ligand values",
+			"few-points":         "AICc",
+			"dissociation":       "cannot be judged",
+			"ligand-scatter":     "cannot be asked",
+			"hidden-classes":     "",
+			"n_H-above-sites":    "",
 		} {
 			o := objected(list, id)
 			if why == "" {

@@ -90,7 +90,7 @@ func (r *review) baselineTested(c *reading, below []int, low float64) answer {
 		a.group = settleFirst
 		a.text = fmt.Sprintf("%s, but %d points near it lie off by %s standard deviations on average.", end, int(n), figures(sum/n, 2))
 		a.effect = "Set too low it makes the curve shallower, set too high steeper."
-		a.remedy = "low: free"
+		a.remedy = "response: {low: free}"
 	}
 	return a
 }
@@ -111,7 +111,7 @@ func (r *review) asksNonspecific(context.Context) {
 			}
 		}
 		a := answer{id: "nonspecific", group: sayInPaper, source: nonspecificSource,
-			remedy: "blocked tubes: columns: {blocked: tube}", effect: "Nonspecific binding taken too low makes the curve shallower."}
+			remedy: "columns: {blocked: tube}", effect: "Nonspecific binding taken too low makes the curve shallower."}
 		switch {
 		case d.Response.Nonspecific.Free && blocked > 0:
 			a = answer{id: "nonspecific", group: foundGood, source: nonspecificSource, text: fmt.Sprintf("%sNonspecific binding is fitted with %d blocked tubes.", r.where(di), blocked)}

@@ -104,7 +104,7 @@ func TestObjectionsToTheAssay(t *testing.T) {
 		}
 	}
 	check(t, []asks{
-		{"not stated", "ligand-depletion", with(hyperbola, nil), settleFirst, []string{"cannot be judged", "Above 0.1"}},
+		{"not stated", "ligand-depletion-unknown", with(hyperbola, nil), settleFirst, []string{"cannot be judged", "Above 0.1"}},
 		{"many sites", "ligand-depletion", with(hyperbola, sites(1)), settleFirst, []string{"ligand_axis: total", "n_H 1.20"}},
 		{"few sites", "ligand-depletion", with(hyperbola, sites(0.05)), foundGood, []string{"can be taken as free"}},
 		{"solved for", "ligand-depletion", with(depletedSite(1), func(a *Analysis) { sites(1)(a); a.Data[0].Total = true }), foundGood, []string{"solved for", "against total ligand"}},
@@ -113,7 +113,7 @@ func TestObjectionsToTheAssay(t *testing.T) {
 			a.Data[0].SitesPresent = SitesPresent{FromBmax: 0.5}
 			a.Data[0].Response = Response{Kind: "bound", High: Setting{Free: true}}
 		}), settleFirst, []string{"Sites (0.5"}},
-		{"of an enzyme", "ligand-depletion", with(hyperbola, velocity(math.NaN(), 1)), forCompleteness, []string{"enzyme"}},
+		{"of an enzyme", "ligand-depletion-unknown", with(hyperbola, velocity(math.NaN(), 1)), forCompleteness, []string{"enzyme"}},
 		{"a gas", "dissociation", with(hyperbola, func(a *Analysis) {
 			a.Ligand.Unit = "torr"
 			a.Candidates = []Candidate{{Name: "four", Family: "mwc", Mechanism: build(t, "mwc", four())}}
@@ -124,13 +124,13 @@ func TestObjectionsToTheAssay(t *testing.T) {
 			a.Candidates = []Candidate{{Name: "four", Family: "mwc", Mechanism: build(t, "mwc", four())}}
 		}), foundGood, nil},
 
-		{"not stated", "incubation", with(hyperbola, nil), settleFirst, []string{"EC50 1.530 K and n_H 1.235"}},
-		{"without a rate", "incubation", with(hyperbola, func(a *Analysis) { a.Data[0].Incubation = 5400 }), sayInPaper, []string{"90.0 min", "k_off is above 6.4e-04 1/s"}},
+		{"not stated", "incubation-unknown", with(hyperbola, nil), settleFirst, []string{"EC50 1.530 K and n_H 1.235"}},
+		{"without a rate", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Data[0].Incubation = 5400 }), sayInPaper, []string{"90 min", "k_off is above 6.4e-04 1/s"}},
 		{"too short", "incubation", with(func(x float64) float64 { return earlyShare(x, math.Ln2) }, kOn(math.Ln2/60, 60)), settleFirst, []string{"stand longer"}},
 		{"long enough", "incubation", with(hyperbola, kOn(0.01, 5400)), foundGood, []string{"n_H 1.000"}},
-		{"of a gas", "incubation", with(hyperbola, func(a *Analysis) { a.Ligand.Unit = "torr" }), forCompleteness, nil},
-		{"of a signal", "incubation", with(hyperbola, func(a *Analysis) { a.Data[0].Response.Kind = "signal" }), sayInPaper, nil},
-		{"at rest", "incubation-doubled", twice(hyperbola, hyperbola), foundGood, []string{"After 2.00 h in place of 60.0 min"}},
+		{"of a gas", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Ligand.Unit = "torr" }), forCompleteness, nil},
+		{"of a signal", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Data[0].Response.Kind = "signal" }), sayInPaper, nil},
+		{"at rest", "incubation-doubled", twice(hyperbola, hyperbola), foundGood, []string{"After 2 h in place of 60 min"}},
 		{"not at rest", "incubation-doubled", twice(func(x float64) float64 { return earlyShare(x, math.Ln2) }, hyperbola), settleFirst, []string{"not at rest"}},
 
 		{"time not stated", "initial-rates", with(hyperbola, velocity(math.NaN(), 1)), sayInPaper, []string{"n_H 1.129"}},
@@ -202,7 +202,7 @@ func TestObjectionsToTheCurve(t *testing.T) {
 			for range 3 {
 				a.Data[0].Points = append(a.Data[0].Points, Point{X: 0, Y: 0.08})
 			}
-		}), settleFirst, []string{"low: free"}},
+		}), settleFirst, []string{"response: {low: free}"}},
 
 		{"without blocked tubes", "nonspecific", bound(Setting{Free: true}, false), sayInPaper, []string{"tied to Bmax"}},
 		{"set", "nonspecific", bound(Setting{Value: 0.01}, false), sayInPaper, []string{"was set to 0.01"}},

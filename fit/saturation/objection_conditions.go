@@ -86,7 +86,7 @@ func (r *review) normalised(di int) {
 		a.group = sayInPaper
 		a.text = r.where(di) + "Every series touches an end exactly, as when it is scaled to its own extreme points: their scatter became the ends'."
 		a.effect = "Scaled to its own highest point, a curve that has not ended reads too steep, and its K too low."
-		a.remedy = "fit the values as measured: response: {kind: signal}"
+		a.remedy = "response: {kind: signal}, with the values as measured"
 	}
 	r.add(a)
 }

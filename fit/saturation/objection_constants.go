@@ -35,7 +35,7 @@ func (r *review) asksConstants(context.Context) {
 			}
 		}
 		if k > n*curves {
-			r.add(answer{id: "constants-counted", group: settleFirst, source: countSource, remedy: "fix one: constants: {c: {fixed: 0}}, or measure with an effector",
+			r.add(answer{id: "constants-counted", group: settleFirst, source: countSource, remedy: "constants: {c: {fixed: 0}}, or measure with an effector",
 				text: fmt.Sprintf("%s has %d constants for %d curve(s) of %s, which hold %d at most.", quoted(c.Name), k, curves, sitesWords(n), n*curves)})
 			return
 		}
@@ -163,14 +163,14 @@ func (r *review) asksIntervals(context.Context) {
 	if r.a.Settings.Method == "covariance" {
 		a.group = sayInPaper
 		a.text = "Intervals are from the covariance, symmetric on the fitted scale, and never without an end."
-		a.remedy = "interval: {method: profile}"
+		a.remedy = "fit: {interval: {method: profile}}"
 		r.add(a)
 		return
 	}
 	worst, skew, open := (*QuantityRow)(nil), 0.0, []string(nil)
 	for i := range r.out.Quantities {
 		q := &r.out.Quantities[i]
-		if q.Mechanism != r.lead.row.Name || q.Of != "constant" || q.Held == "fixed" {
+		if q.Mechanism != r.lead.row.Name || q.Of != "constant" || q.Held == "fixed" || math.IsNaN(float64(q.Value)) {
 			continue
 		}
 		name := q.Name

@@ -51,9 +51,9 @@ func (r *review) sitesOn(c *reading) float64 {
 }
 
 func (r *review) depletionUnknown(di int) {
-	a := answer{id: "ligand-depletion", group: settleFirst, source: depletionSource,
+	a := answer{id: "ligand-depletion-unknown", group: settleFirst, source: depletionSource,
 		text:   r.where(di) + "The concentration of sites is not stated: whether bound ligand was taken from the free ligand on the axis cannot be judged.",
-		remedy: "sites_present: 5 nM   (sites, in the assay)"}
+		remedy: "sites_present: 5 " + r.a.Ligand.Unit + "   (sites, in the assay)"}
 	if r.a.Data[di].Response.Kind == "velocity" {
 		a.group = forCompleteness
 		a.text = r.where(di) + "The concentration of enzyme sites is not stated: whether they hold a share of the substrate cannot be judged."
@@ -83,7 +83,7 @@ func (r *review) depletionJudged(di int) {
 	d := &r.a.Data[di]
 	list := r.readings(di)
 	if len(list) == 0 {
-		r.add(answer{id: "ligand-depletion", group: sayInPaper, source: depletionSource,
+		r.add(answer{id: "ligand-depletion-unknown", group: sayInPaper, source: depletionSource,
 			text:   r.where(di) + "Depletion cannot be judged, since K cannot be read: " + r.unread(di) + ".",
 			remedy: "measure on both sides of half saturation"})
 		return

@@ -21,7 +21,7 @@ func (r *review) asksEnds(ctx context.Context) {
 		}
 		return
 	}
-	a := answer{id: "ends-set", group: sayInPaper, source: endsSource, remedy: "say how the ends were measured, or free them: low: free, " + set[0] + ": free"}
+	a := answer{id: "ends-set", group: sayInPaper, source: endsSource, remedy: "response: {low: free, " + set[0] + ": free}, or say how the ends were measured"}
 	a.text = "The ends were set, not fitted (" + list(r.endsInWords()) + ")."
 	if r.lead != nil {
 		r.endsFreed(ctx, &a)
@@ -81,7 +81,11 @@ func (r *review) endsFreed(ctx context.Context, a *answer) {
 	}
 	m := moveBetween(r.lead, g, r.halfInterval)
 	factor, name := constantMove(r.lead, g)
-	a.effect = fmt.Sprintf("Fitted, %s, and %s by %s.", m.inWords(), name, factorWords(factor))
+	a.effect = "Fitted, " + m.inWords()
+	if name != "" {
+		a.effect += fmt.Sprintf(", and %s by %s", name, factorWords(factor))
+	}
+	a.effect += "."
 	switch {
 	case !m.compared:
 	case m.ratio <= 1:

@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"strconv"
 	"strings"
 )
 
@@ -31,7 +32,7 @@ func (r *review) asksIncubation(context.Context) {
 }
 
 func (r *review) incubationUnknown(di int) {
-	a := answer{id: "incubation", group: settleFirst, source: incubationSource, remedy: "incubation: 90 min",
+	a := answer{id: "incubation-unknown", group: settleFirst, source: incubationSource, remedy: "incubation: 90 min",
 		text: r.where(di) + "The incubation is not stated: whether the samples with least ligand had come to rest cannot be judged."}
 	if pressure(r.a.Ligand.Unit) {
 		a.group = forCompleteness
@@ -117,7 +118,7 @@ func (r *review) incubationJudged(di int, m float64, curve string) {
 // incubationBounded says for which rates the incubation was long enough.
 func (r *review) incubationBounded(di int) {
 	t := r.a.Data[di].Incubation
-	r.add(answer{id: "incubation", group: sayInPaper, source: incubationSource, remedy: "rates: {k_on: 1e6 1/(M s)}, or measure at twice the time",
+	r.add(answer{id: "incubation-unknown", group: sayInPaper, source: incubationSource, remedy: "rates: {k_on: 1e6 1/(M s)}, or measure at twice the time",
 		text: fmt.Sprintf("%sNo rate is given. %s are %s half-lives only if k_off is above %s 1/s.", r.where(di), duration(t),
 			figures(r.limits.HalfLives, 2), figures(r.limits.HalfLives*math.Ln2/t, 2))})
 }
@@ -126,12 +127,14 @@ func (r *review) incubationBounded(di int) {
 func duration(t float64) string {
 	switch {
 	case t >= 2*3600:
-		return figures(t/3600, 3) + " h"
+		return threeFigures(t/3600) + " h"
 	case t >= 120:
-		return figures(t/60, 3) + " min"
+		return threeFigures(t/60) + " min"
 	}
-	return figures(t, 3) + " s"
+	return threeFigures(t) + " s"
 }
+
+func threeFigures(v float64) string { return strconv.FormatFloat(v, 'g', 3, 64) }
 
 // incubationsCompared asks, where one curve was measured after two incubations,
 // whether the longer one changed it.

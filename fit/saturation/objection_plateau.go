@@ -103,22 +103,33 @@ func (r *review) plateauOf(c *reading, s float64) {
 
 // plateauInterval gives the interval of the upper end by the leader.
 func (r *review) plateauInterval(c *reading) string {
-	cell := r.leadCell(c)
-	if cell < 0 {
+	q := r.leadEnd(c)
+	switch {
+	case q == nil:
 		return ""
+	case q.Held != "both":
+		return " without an interval that ends on both sides"
 	}
-	name := endsOf(r.a.Data[c.data].Response.Kind).high
-	for i := range r.out.Quantities {
-		q := &r.out.Quantities[i]
-		if q.Mechanism != r.lead.row.Name || q.Of != "response" || q.Name != name {
-			continue
-		}
-		if q.Held != "both" {
-			return " without an interval that ends on both sides"
-		}
-		return fmt.Sprintf(" (%s to %s)", toInterval(float64(q.Low), float64(q.Low), float64(q.High)), toInterval(float64(q.High), float64(q.Low), float64(q.High)))
+	low, high := float64(q.Low), float64(q.High)
+	return fmt.Sprintf(" (%s to %s)", toInterval(low, low, high), toInterval(high, low, high))
+}
+
+// leadEnd is the leader's row of the upper end of a curve; nil where there is none.
+func (r *review) leadEnd(c *reading) *QuantityRow {
+	if r.lead == nil {
+		return nil
 	}
-	return ""
+	for _, b := range r.lead.m.blocks {
+		for i := range b.pts {
+			q := &b.pts[i]
+			if b.data != c.data || q.index != c.points[0] || q.high < 0 {
+				continue
+			}
+			p := &r.lead.m.params[q.high]
+			return r.leadRow(p.Name, p.curve)
+		}
+	}
+	return nil
 }
 
 // plateauEffect moves the upper end over its 95 % covariance interval: with V

@@ -123,7 +123,7 @@ func (r *review) poolingOf(c *reading, mean *PreparationRow) {
 	if h > c.h*(1+poolFlattens) && flattened(h, s) < h/(1+poolFlattens/2) {
 		a.group = settleFirst
 		a.text += " Pooling flattens the curve."
-		a.remedy = "differs: {K: preparation}, or shift: preparation; print means of n_H and ln K"
+		a.remedy = "preparation: shift, under the mechanism; print means of n_H and ln K"
 	}
 	r.add(a)
 }

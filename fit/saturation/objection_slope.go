@@ -165,7 +165,7 @@ func (r *review) asksOneClass(context.Context) {
 			}
 			rho := hiddenRatio(c.low)
 			_, rms := twoClassFit(rho)
-			a.text = fmt.Sprintf("%sLike one site%s; two equal classes whose K differ up to %s-fold would look the same (n_H down to %s; rms misfit %s).", r.where(di), r.onCurve(c), figures(rho, 2), figures(c.low, 3), figures(rms, 2))
+			a.text = fmt.Sprintf("%sNot told from one site%s; two equal classes whose K differ up to %s-fold would look the same (n_H down to %s; rms misfit %s).", r.where(di), r.onCurve(c), figures(rho, 2), figures(c.low, 3), figures(rms, 2))
 			a.effect = fmt.Sprintf("Such classes have n_H %s at half saturation.", figures(twoClassHalf(rho), 3))
 			if rho > hiddenTenfold {
 				a.group = sayInPaper

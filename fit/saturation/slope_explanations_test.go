@@ -296,3 +296,50 @@ func TestExplanationsKeepTheirDigits(t *testing.T) {
 
 // shallowSeed draws preparations whose pooled curve is shallow beyond doubt.
 const shallowSeed = 20
+
+// What makes n_H an artefact stands in the verdict: depletion with the sites
+// given, a short incubation, n_H above the number of sites, a linearised
+// response; and nothing of the kind where all is well.
+func TestVerdictNamesArtefacts(t *testing.T) {
+	depleted := plain(depletedSite(10)).study(t)
+	depleted.Data[0].SitesPresent = SitesPresent{Value: 10, Unit: "nM"}
+	short := plain(func(x float64) float64 { return earlyShare(x, math.Ln2) }).study(t)
+	short.Data[0].Incubation = 60
+	short.Candidates[0].Rates = map[string]Rate{"k_on": {Given: mechanisms.Given{Value: ptr(math.Ln2 / 60)}, Order: 2}}
+	steep := plain(hillOf(2.6)).study(t)
+	linear := plain(func(x float64) float64 { return 1 + 1/x }).study(t)
+	linear.Data[0].Response = Response{Kind: "velocity", High: Setting{Free: true}}
+	for words, a := range map[string]*Analysis{"unless free ligand was measured": depleted, "incubation was too short": short,
+		"exceeds the number of sites": steep, "a transform of what was measured": linear} {
+		if text := analysed(t, a).Verdict.Text; !strings.Contains(text, "To be settled before n_H is believed") || !strings.Contains(text, words) {
+			t.Errorf("the verdict does not say %q: %s", words, text)
+		}
+	}
+	if text := analysed(t, plain(hyperbola).study(t)).Verdict.Text; strings.Contains(text, "is believed") {
+		t.Errorf("one site is doubted: %s", text)
+	}
+}
+
+// Random studies without fault are hardly ever objected to where chance decides:
+// tests are made at 99 % at least.
+func TestObjectionsRarelyCryWolf(t *testing.T) {
+	cries := 0
+	const studies = 60
+	for seed := range uint64(studies) {
+		s := plain(hillOf(2))
+		s.seed = seed + 100
+		list := s.study(t).Objections(context.Background())
+		s.levels, s.replicates, s.names = 60, 1, []string{"A"}
+		list = append(list, s.study(t).Objections(context.Background())...)
+		for _, o := range list {
+			for _, id := range []string{"uneven-scatter", "ligand-scatter", "correlated-points", "pooling", "baseline", "plateau"} {
+				if o.ID == id && o.Group != foundGood && o.Group != forCompleteness {
+					cries++
+				}
+			}
+		}
+	}
+	if cries > 4 { // of 480 asked
+		t.Errorf("%d objections to %d faultless studies", cries, 2*studies)
+	}
+}

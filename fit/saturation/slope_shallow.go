@@ -13,10 +13,10 @@ import (
 
 // Measurements that part explanations of a shallow curve.
 const (
-	testDilution    = "dissociation after dilution, with and without unlabelled ligand: interacting sites change each other's off-rates"
+	testDilution    = "dissociation after dilution, with and without unlabelled ligand (interacting sites change each other's off-rates)"
 	testClass       = "a signal, an inhibitor or a mutation that sees one class of sites"
-	testSeparation  = "separate the molecules, or block one population, and measure again"
-	testSpread      = "purify further, or ask single molecules or clones: a spread of affinities narrows"
+	testSeparation  = "the molecules separated, or one population blocked"
+	testSpread      = "purer material or single clones, with which a spread of affinities narrows"
 	testBlocked     = "tubes in which an excess of unlabelled ligand blocks the sites"
 	testEnds        = "points without ligand, and far enough above half saturation that nothing rises any more"
 	testPreparation = "more preparations, each read alone"

@@ -11,11 +11,11 @@ import (
 
 // Measurements that part explanations of a steep curve.
 const (
-	testSites     = "fewer sites, or free ligand measured: depletion shifts half saturation with the sites"
-	testTime      = "twice the incubation: half saturation falls until binding is at rest"
+	testSites     = "fewer sites (depletion shifts half saturation with them), or free ligand measured"
+	testTime      = "twice the incubation, since half saturation falls until binding is at rest"
 	testState     = "a signal that sees one conformation, or an effector that binds one"
 	testHalfway   = "populations of the half-filled molecule, or points nearer the ends of the curve"
-	testAssembly  = "another protein concentration: assembly-linked curves change with it"
+	testAssembly  = "another protein concentration, with which assembly-linked curves change"
 	testBinding   = "binding at equilibrium, without turnover"
 	testOccupancy = "occupancy measured beside the response, and other concentrations of the cycle's enzymes"
 )

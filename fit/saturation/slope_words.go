@@ -3,11 +3,42 @@ package saturation
 import (
 	"fmt"
 	"math"
+	"strings"
 )
 
-// explained says what else may explain slopes other than 1, where anything can
-// be said of them at all.
-func (w *verdictWriter) explained() string { return explanationWords(w.out.Explanations) }
+// explained says what casts doubt on n_H, and what else may explain slopes other
+// than 1.
+func (w *verdictWriter) explained() string {
+	return join(doubtWords(w.out.Objections), explanationWords(w.out.Explanations))
+}
+
+// doubts are the objections that make n_H an artefact where they have to be
+// settled first; their numbers stand in the objections.
+var doubts = []struct{ id, words string }{
+	{"transformed-axes", "the response looks like a transform of what was measured, and K and n_H of a fit to it mean nothing"},
+	{"ligand-depletion", "there are so many sites that n_H is too high unless free ligand was measured"},
+	{"incubation", "the incubation was too short, which makes half saturation and n_H too high"},
+	{"incubation-doubled", "a longer incubation moves the curve"},
+	{"initial-rates", "the velocities are not initial ones everywhere, which makes n_H too high"},
+	{"n_H-above-sites", "n_H exceeds the number of sites: this is not an equilibrium mechanism with that many, or an artefact"},
+	{"pooling", "pooling the preparations flattens the curve"},
+}
+
+func doubtWords(list []Objection) string {
+	var words []string
+	for _, d := range doubts {
+		for i := range list {
+			if list[i].ID == d.id && list[i].Group == settleFirst {
+				words = append(words, d.words)
+				break
+			}
+		}
+	}
+	if len(words) == 0 {
+		return ""
+	}
+	return "To be settled before n_H is believed: " + strings.Join(words, "; ") + "."
+}
 
 // explanationWords says of explanations that are not among the study's mechanisms
 // which of them are better than all of these, which are not excluded and which
