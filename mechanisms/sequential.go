@@ -70,6 +70,7 @@ type sequential struct {
 	constants []Constant
 	groups    []arrangement
 	lnWays    []float64
+	contacts  graph
 }
 
 func buildSequential(d Definition) (Mechanism, error) {
@@ -101,7 +102,7 @@ func buildSequential(d Definition) (Mechanism, error) {
 
 func settleSequential(g graph, withAB bool) *sequential {
 	perSite := float64(len(g.edges)) / float64(g.n)
-	m := &sequential{sites: g.n, constants: []Constant{
+	m := &sequential{sites: g.n, contacts: g, constants: []Constant{
 		{Name: "K", Scale: Log, Dimension: 1, Low: 1e-3 * math.Pow(1e-6, perSite), High: 1e3 * math.Pow(1e8, perSite),
 			StartLow: 0.05, StartHigh: 5 * math.Pow(100, perSite),
 			Meaning: "dissociation constant of a site all of whose contacts are empty, effective"},
