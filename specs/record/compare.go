@@ -302,3 +302,28 @@ func (s scale) same(old, now *float64) bool {
 	}
 	return math.Abs(s.between(old, now)) <= MovedTolerance
 }
+
+// Moved is what of a comparison differs: every file and setting, and the
+// mechanisms and numbers beyond tolerance.
+type Moved struct {
+	Files      []FileChange      `json:"files"`
+	Settings   []Change          `json:"settings"`
+	Mechanisms []MechanismChange `json:"mechanisms"`
+	Numbers    []Move            `json:"moved"`
+}
+
+// Moved leaves out what stayed.
+func (c *Comparison) Moved() *Moved {
+	m := &Moved{Files: c.Files, Settings: c.Settings, Mechanisms: []MechanismChange{}, Numbers: []Move{}}
+	for i := range c.Mechanisms {
+		if len(c.Mechanisms[i].Differs) > 0 {
+			m.Mechanisms = append(m.Mechanisms, c.Mechanisms[i])
+		}
+	}
+	for i := range c.Numbers {
+		if !c.Numbers[i].Within {
+			m.Numbers = append(m.Numbers, c.Numbers[i])
+		}
+	}
+	return m
+}

@@ -42,6 +42,9 @@ func Read(name string, data []byte) (*Record, diag.List) {
 	if c := conflict(text); c != nil {
 		return nil, c
 	}
+	if !IsRecord(data) {
+		return nil, otherFormat(text, "")
+	}
 	r := &Record{}
 	d := yaml.NewDecoder(bytes.NewReader(bytes.TrimPrefix(data, []byte("\ufeff"))))
 	d.KnownFields(true)

@@ -116,6 +116,7 @@ func TestRecordsThatCannotBeUsedAreNamed(t *testing.T) {
 	for _, c := range []struct{ name, text, code string }{
 		{"a study", "format: ligancy/1\ntitle: x\n", "bad-format"},
 		{"a later format", strings.Replace(whole, "record/1", "record/9", 1), "bad-format"},
+		{"a table", "pO2_torr,sat\n1,0.1\n", "bad-format"},
 		{"nothing", "", "bad-format"},
 		{"no YAML", "format: ligancy-record/1\n]: {\n", "bad-record"},
 		{"a key of nobody", whole + "colour: red\n", "bad-record"},

@@ -43,7 +43,7 @@ func Main(env Env) int {
 	p := &program{Env: env, out: bufio.NewWriter(env.Stdout)}
 	err := p.root().ExecuteContext(env.Context)
 	if flushed := p.out.Flush(); flushed != nil && !isExit(err, Interrupted) {
-		p.complain("standard output: %v", flushed)
+		p.complain("standard output was not written: %v", bare(flushed))
 		return Unusable
 	}
 	return p.code(err)
@@ -92,7 +92,7 @@ func (p *program) root() *cobra.Command {
 		SilenceErrors: true, SilenceUsage: true,
 		SuggestionsMinimumDistance: 2,
 	}
-	root.AddCommand(p.newCommand(), p.checkCommand(), p.fitCommand(), p.curveCommand(), p.familiesCommand(), p.numericsCommand(),
+	root.AddCommand(p.newCommand(), p.checkCommand(), p.fitCommand(), p.curveCommand(), p.repeatCommand(), p.familiesCommand(), p.numericsCommand(),
 		p.versionCommand(), p.completionCommand())
 	root.SetArgs(p.Args)
 	root.SetOut(p.out)

@@ -10,6 +10,7 @@ import (
 
 	"ligancy/cmd/ligancy/internal/report"
 	"ligancy/specs/diag"
+	"ligancy/specs/record"
 )
 
 const fitHelp = `ligancy fit STUDY…
@@ -22,6 +23,8 @@ older result of this program is replaced, nothing else ever is.
 
   --json         prints the result as one JSON document instead (a list of them for several studies)
   --print-only   writes no folder
+  --record       also writes STUDY.record.yaml beside the study: one small file for version control,
+                 which   ligancy repeat STUDY   compares with; an older record is replaced
 
 Ctrl-C stops the work; what was found so far is printed, labelled, and written unless it would
 replace a whole result. Settings that change results are said in the study.
@@ -29,7 +32,7 @@ Exit codes: 0 fitted, 1 something to mend or a result that could not be written,
 130 interrupted.
 `
 
-type fitOptions struct{ json, printOnly bool }
+type fitOptions struct{ json, printOnly, record bool }
 
 func (p *program) fitCommand() *cobra.Command {
 	var opts fitOptions
@@ -41,6 +44,7 @@ func (p *program) fitCommand() *cobra.Command {
 	}
 	c.Flags().BoolVar(&opts.json, "json", false, "one JSON document")
 	c.Flags().BoolVar(&opts.printOnly, "print-only", false, "write no folder")
+	c.Flags().BoolVar(&opts.record, "record", false, "write STUDY.record.yaml")
 	return c
 }
 
@@ -106,20 +110,28 @@ func (p *program) fitOne(ctx context.Context, name string, opts fitOptions) (*re
 			return nil, Unusable
 		}
 	}
+	if opts.record {
+		if err := p.recordPlace(record.FileName(name)); err != nil {
+			p.complain("%v", err)
+			return nil, Unusable
+		}
+	}
 	d, err := p.analyse(ctx, o)
 	if err != nil {
 		p.complain("%s: %v", name, err)
 		return nil, max(Unusable, code(ctx))
 	}
 	if !opts.json {
-		if err := d.WriteText(p.out, p.colour()); err != nil {
-			p.complain("%v", err)
-			return nil, Unusable
-		}
+		// A page that cannot be printed is complained of at the end, once; the
+		// folder is written all the same.
+		_ = d.WriteText(p.out, p.colour())
 	}
 	kept := Success
 	if !opts.printOnly {
 		kept = p.keep(d, resultsFolder(name), folder, stands, opts)
+	}
+	if opts.record {
+		kept = max(kept, p.fitRecord(o, d, opts))
 	}
 	if !opts.json && len(d.Objections) > 0 {
 		fmt.Fprintf(p.out, "  next      ligancy check %s   what a reviewer will ask, with sources and remedies\n", name)
@@ -152,6 +164,23 @@ func (p *program) analyse(ctx context.Context, o *opened) (*report.Document, err
 		return nil, err
 	}
 	return report.New(o.analysis, outcome, o.source()), nil
+}
+
+// fitRecord writes the record of a whole result and says so.
+func (p *program) fitRecord(o *opened, d *report.Document, opts fitOptions) int {
+	name := record.FileName(o.name)
+	if d.Interrupted {
+		p.complain("%s was not written: the result is not whole", name)
+		return Success
+	}
+	if err := p.keepRecord(name, o.record(d)); err != nil {
+		p.complain("%v", err)
+		return Unusable
+	}
+	if !opts.json {
+		fmt.Fprintf(p.out, "  written   %s   for version control\n", name)
+	}
+	return Success
 }
 
 // keep writes the folder of a result and says so at the end of the page.

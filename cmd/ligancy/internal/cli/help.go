@@ -13,6 +13,7 @@ const overview = `ligancy tells which binding mechanisms saturation data support
   ligancy check STUDY          what is wrong with a study, else what a reviewer will ask
   ligancy fit STUDY            fits every mechanism and says what the data say
   ligancy curve STUDY          curves, Hill coefficients and populations from given constants
+  ligancy repeat STUDY         fits again and compares with the record that   fit --record   wrote
   ligancy families [NAME]      the families of mechanisms: formula, constants, limits, reference
   ligancy numerics TEST        exact and certified values, reached on this machine
   ligancy version              the program's version
