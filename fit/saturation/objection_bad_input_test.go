@@ -23,7 +23,8 @@ func TestPoorStudiesAreToldWhatCannotBeAsked(t *testing.T) {
 	}
 	a := s.study(t)
 	a.Kelvin = math.NaN()
-	for name, list := range map[string][]Objection{"check": a.Objections(context.Background()), "fit": analysed(t, a).Objections} {
+	for name, list := range map[string][]Objection{"check": a.Objections(context.Background()),
+		"fit": analysed(t, a).Objections} {
 		for id, why := range map[string]string{
 			"replicates":         "cannot be asked",
 			"preparations":       "technical",
@@ -59,7 +60,8 @@ func soundObjections(t interface{ Errorf(string, ...any) }, list []Objection) {
 		}
 		last = n
 		for _, s := range []string{o.Text, deref(o.Effect), deref(o.Remedy)} {
-			if strings.Contains(s, "NaN") || strings.Contains(s, "Inf") || strings.Contains(s, "%!") || strings.Contains(s, "\x00") {
+			if strings.Contains(s, "NaN") || strings.Contains(s, "Inf") || strings.Contains(s, "%!") ||
+				strings.Contains(s, "\x00") {
 				t.Errorf("%s says %q", o.ID, s)
 			}
 		}
@@ -74,8 +76,10 @@ func TestObjectionsToOddStudies(t *testing.T) {
 		{Name: "concerted", Family: "mwc", Mechanism: build(t, "mwc", four())},
 	}
 	rapid.Check(t, func(t *rapid.T) {
-		a := &Analysis{Ligand: Substance{Name: "ligand", Unit: rapid.SampledFrom([]string{"nM", "torr", ""}).Draw(t, "unit")}, Kelvin: math.NaN(),
-			Candidates: mechs[:rapid.IntRange(0, 3).Draw(t, "mechanisms")], Settings: Settings{Starts: 2, Seed: 1, Level: 0.95, Method: "profile"}}
+		a := &Analysis{Ligand: Substance{Name: "ligand",
+			Unit: rapid.SampledFrom([]string{"nM", "torr", ""}).Draw(t, "unit")}, Kelvin: math.NaN(),
+			Candidates: mechs[:rapid.IntRange(0, 3).Draw(t, "mechanisms")],
+			Settings:   Settings{Starts: 2, Seed: 1, Level: 0.95, Method: "profile"}}
 		for range rapid.IntRange(0, 2).Draw(t, "data") {
 			a.Data = append(a.Data, oddData(t))
 		}
@@ -99,11 +103,15 @@ func TestObjectionsToOddStudies(t *testing.T) {
 // oddData draws a data set that a table could hold.
 func oddData(t *rapid.T) Dataset {
 	setting := func(name string) Setting {
-		return Setting{Free: rapid.Bool().Draw(t, name+" free"), Value: rapid.SampledFrom([]float64{0, 1, 100}).Draw(t, name)}
+		return Setting{Free: rapid.Bool().Draw(t, name+" free"),
+			Value: rapid.SampledFrom([]float64{0, 1, 100}).Draw(t, name)}
 	}
-	d := Dataset{Name: "odd", Noise: rapid.SampledFrom([]Noise{Constant, Proportional, Replicates, GivenSigma}).Draw(t, "noise"),
-		Incubation: rapid.SampledFrom([]float64{math.NaN(), 60}).Draw(t, "incubation"), Total: rapid.Bool().Draw(t, "total")}
-	d.Response = Response{Kind: rapid.SampledFrom([]string{"saturation", "bound", "velocity", "signal"}).Draw(t, "kind"), Unit: "nM/s", Low: setting("low"), High: setting("high")}
+	d := Dataset{Name: "odd", Noise: rapid.SampledFrom([]Noise{Constant, Proportional, Replicates,
+		GivenSigma}).Draw(t, "noise"),
+		Incubation: rapid.SampledFrom([]float64{math.NaN(), 60}).Draw(t, "incubation"),
+		Total:      rapid.Bool().Draw(t, "total")}
+	d.Response = Response{Kind: rapid.SampledFrom([]string{"saturation", "bound", "velocity",
+		"signal"}).Draw(t, "kind"), Unit: "nM/s", Low: setting("low"), High: setting("high")}
 	if d.Response.Kind == "bound" {
 		d.Response.Nonspecific = setting("nonspecific")
 	}
@@ -115,8 +123,10 @@ func oddData(t *rapid.T) Dataset {
 	}
 	flat := rapid.Bool().Draw(t, "flat")
 	for i := range rapid.IntRange(0, 24).Draw(t, "points") {
-		p := Point{X: rapid.SampledFrom([]float64{0, 1e-9, 0.1, 0.3, 1, 2, 5, 10, 100}).Draw(t, "x"), Sigma: 0.1, Row: i + 2,
-			Preparation: rapid.SampledFrom([]string{"", "A", "B"}).Draw(t, "preparation"), Blocked: d.Response.Kind == "bound" && rapid.Bool().Draw(t, "blocked")}
+		p := Point{X: rapid.SampledFrom([]float64{0, 1e-9, 0.1, 0.3, 1, 2, 5, 10, 100}).Draw(t, "x"),
+			Sigma: 0.1, Row: i + 2,
+			Preparation: rapid.SampledFrom([]string{"", "A", "B"}).Draw(t, "preparation"),
+			Blocked:     d.Response.Kind == "bound" && rapid.Bool().Draw(t, "blocked")}
 		if p.Y = 0.5; !flat {
 			p.Y = rapid.Float64Range(-1, 2).Draw(t, "y")
 		}

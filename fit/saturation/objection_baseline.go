@@ -38,14 +38,17 @@ func (r *review) baselineOf(c *reading) answer {
 	switch {
 	case len(below) == 0 && at < 0:
 		a.group = sayInPaper
-		a.text = fmt.Sprintf("%s was set to %s, and no point below %s saturation tests it.", end, number(low), percent(r.limits.Empty))
+		a.text = fmt.Sprintf("%s was set to %s, and no point below %s saturation tests it.", end,
+			number(low), percent(r.limits.Empty))
 	case len(below) == 0:
 		a.group = settleFirst
-		a.text = fmt.Sprintf("%s is an extrapolation: no point lies below %s saturation.", end, percent(r.limits.Empty))
+		a.text = fmt.Sprintf("%s is an extrapolation: no point lies below %s saturation.", end,
+			percent(r.limits.Empty))
 	case at < 0:
 		return r.baselineTested(c, below, low)
 	default:
-		a.text = fmt.Sprintf("%s is fitted, with %d points below %s saturation.", end, len(below), percent(r.limits.Empty))
+		a.text = fmt.Sprintf("%s is fitted, with %d points below %s saturation.", end, len(below),
+			percent(r.limits.Empty))
 		return a
 	}
 	a.effect = "Set too low it makes the curve shallower, set too high steeper."
@@ -82,62 +85,18 @@ func (r *review) baselineTested(c *reading, below []int, low float64) answer {
 	}
 	end := fmt.Sprintf("%sThe lower end%s was set to %s", r.where(c.data), r.onCurve(c), number(low))
 	a := answer{id: "baseline", group: foundGood, source: baselineSource,
-		text: fmt.Sprintf("%s; %d points below %s saturation agree with it.", end, len(below), percent(r.limits.Empty))}
+		text: fmt.Sprintf("%s; %d points below %s saturation agree with it.", end, len(below),
+			percent(r.limits.Empty))}
 	switch z := sum / math.Sqrt(n); {
 	case n == 0:
-		a.text = fmt.Sprintf("%s; %d points lie below %s saturation, to be judged by the fits.", end, len(below), percent(r.limits.Empty))
+		a.text = fmt.Sprintf("%s; %d points lie below %s saturation, to be judged by the fits.", end,
+			len(below), percent(r.limits.Empty))
 	case math.Abs(z) > z999:
 		a.group = settleFirst
-		a.text = fmt.Sprintf("%s, but %d points near it lie off by %s standard deviations on average.", end, int(n), figures(sum/n, 2))
+		a.text = fmt.Sprintf("%s, but %d points near it lie off by %s standard deviations on average.", end,
+			int(n), figures(sum/n, 2))
 		a.effect = "Set too low it makes the curve shallower, set too high steeper."
 		a.remedy = "response: {low: free}"
 	}
 	return a
-}
-
-const nonspecificSource = fromPractice + ": measure nonspecific binding in blocked tubes"
-
-// asksNonspecific asks what nonspecific binding rests on.
-func (r *review) asksNonspecific(context.Context) {
-	for di := range r.a.Data {
-		d := &r.a.Data[di]
-		if d.Response.Kind != "bound" || d.Trace || d.Response.SitesPerMolecule && !d.Response.Nonspecific.Free {
-			continue
-		}
-		blocked := 0
-		for i := range d.Points {
-			if d.Points[i].Blocked && d.Points[i].LeftOut == "" {
-				blocked++
-			}
-		}
-		a := answer{id: "nonspecific", group: sayInPaper, source: nonspecificSource,
-			remedy: "columns: {blocked: tube}", effect: "Nonspecific binding taken too low makes the curve shallower."}
-		switch {
-		case d.Response.Nonspecific.Free && blocked > 0:
-			a = answer{id: "nonspecific", group: foundGood, source: nonspecificSource, text: fmt.Sprintf("%sNonspecific binding is fitted with %d blocked tubes.", r.where(di), blocked)}
-		case d.Response.Nonspecific.Free:
-			a.text = r.where(di) + "Nonspecific binding is fitted without blocked tubes" + r.nonspecificTie(di) + "."
-		default:
-			a.text = fmt.Sprintf("%sNonspecific binding was set to %s, not measured here.", r.where(di), figures(d.Response.Nonspecific.Value, 3))
-		}
-		r.add(a)
-	}
-}
-
-// nonspecificTie is how it is correlated with Bmax in the Hill fit.
-func (r *review) nonspecificTie(di int) string {
-	f := r.hills[di].f
-	if f == nil || f.result.Cov == nil {
-		return ""
-	}
-	q := f.m.blocks[0].pts[0]
-	if q.high < 0 || q.ns < 0 {
-		return ""
-	}
-	cov := f.result.Cov
-	c := cov.At(q.high, q.ns) / math.Sqrt(cov.At(q.high, q.high)*cov.At(q.ns, q.ns))
-	if math.IsNaN(c) {
-		return ""
-	}
-	return fmt.Sprintf(", and is tied to Bmax (r = %s)", figures(c, 2))
 }

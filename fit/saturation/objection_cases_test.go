@@ -104,16 +104,23 @@ func TestObjectionsToTheAssay(t *testing.T) {
 		}
 	}
 	check(t, []asks{
-		{"not stated", "ligand-depletion-unknown", with(hyperbola, nil), settleFirst, []string{"cannot be judged", "Above 0.1"}},
-		{"many sites", "ligand-depletion", with(hyperbola, sites(1)), settleFirst, []string{"ligand_axis: total", "n_H 1.20"}},
-		{"few sites", "ligand-depletion", with(hyperbola, sites(0.05)), foundGood, []string{"can be taken as free"}},
-		{"solved for", "ligand-depletion", with(depletedSite(1), func(a *Analysis) { sites(1)(a); a.Data[0].Total = true }), foundGood, []string{"solved for", "against total ligand"}},
-		{"a titration", "ligand-depletion", with(depletedSite(20), func(a *Analysis) { sites(20)(a); a.Data[0].Total = true }), sayInPaper, []string{"titration"}},
+		{"not stated", "ligand-depletion-unknown", with(hyperbola, nil), settleFirst,
+			[]string{"cannot be judged", "Above 0.1"}},
+		{"many sites", "ligand-depletion", with(hyperbola, sites(1)), settleFirst,
+			[]string{"ligand_axis: total", "n_H 1.20"}},
+		{"few sites", "ligand-depletion", with(hyperbola, sites(0.05)), foundGood,
+			[]string{"can be taken as free"}},
+		{"solved for", "ligand-depletion", with(depletedSite(1),
+			func(a *Analysis) { sites(1)(a); a.Data[0].Total = true }), foundGood,
+			[]string{"solved for", "against total ligand"}},
+		{"a titration", "ligand-depletion", with(depletedSite(20),
+			func(a *Analysis) { sites(20)(a); a.Data[0].Total = true }), sayInPaper, []string{"titration"}},
 		{"one preparation's Bmax", "ligand-depletion", with(hyperbola, func(a *Analysis) {
 			a.Data[0].SitesPresent = SitesPresent{FromBmax: 0.5}
 			a.Data[0].Response = Response{Kind: "bound", High: Setting{Free: true}}
 		}), settleFirst, []string{"Sites (0.5"}},
-		{"of an enzyme", "ligand-depletion-unknown", with(hyperbola, velocity(math.NaN(), 1)), forCompleteness, []string{"enzyme"}},
+		{"of an enzyme", "ligand-depletion-unknown", with(hyperbola, velocity(math.NaN(), 1)),
+			forCompleteness, []string{"enzyme"}},
 		{"a gas", "dissociation", with(hyperbola, func(a *Analysis) {
 			a.Ligand.Unit = "torr"
 			a.Candidates = []Candidate{{Name: "four", Family: "mwc", Mechanism: build(t, "mwc", four())}}
@@ -124,23 +131,37 @@ func TestObjectionsToTheAssay(t *testing.T) {
 			a.Candidates = []Candidate{{Name: "four", Family: "mwc", Mechanism: build(t, "mwc", four())}}
 		}), foundGood, nil},
 
-		{"not stated", "incubation-unknown", with(hyperbola, nil), settleFirst, []string{"EC50 1.530 K and n_H 1.235"}},
-		{"without a rate", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Data[0].Incubation = 5400 }), sayInPaper, []string{"90 min", "k_off is above 6.4e-04 1/s"}},
-		{"too short", "incubation", with(func(x float64) float64 { return earlyShare(x, math.Ln2) }, kOn(math.Ln2/60, 60)), settleFirst, []string{"stand longer"}},
+		{"not stated", "incubation-unknown", with(hyperbola, nil), settleFirst,
+			[]string{"EC50 1.530 K and n_H 1.235"}},
+		{"without a rate", "incubation-unknown", with(hyperbola,
+			func(a *Analysis) { a.Data[0].Incubation = 5400 }), sayInPaper,
+			[]string{"90 min", "k_off is above 6.4e-04 1/s"}},
+		{"too short", "incubation", with(func(x float64) float64 { return earlyShare(x, math.Ln2) },
+			kOn(math.Ln2/60, 60)), settleFirst, []string{"stand longer"}},
 		{"long enough", "incubation", with(hyperbola, kOn(0.01, 5400)), foundGood, []string{"n_H 1.000"}},
-		{"of a gas", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Ligand.Unit = "torr" }), forCompleteness, nil},
-		{"of a signal", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Data[0].Response.Kind = "signal" }), sayInPaper, nil},
-		{"at rest", "incubation-doubled", twice(hyperbola, hyperbola), foundGood, []string{"After 2 h in place of 60 min"}},
-		{"not at rest", "incubation-doubled", twice(func(x float64) float64 { return earlyShare(x, math.Ln2) }, hyperbola), settleFirst, []string{"not at rest"}},
+		{"of a gas", "incubation-unknown", with(hyperbola, func(a *Analysis) { a.Ligand.Unit = "torr" }),
+			forCompleteness, nil},
+		{"of a signal", "incubation-unknown", with(hyperbola,
+			func(a *Analysis) { a.Data[0].Response.Kind = "signal" }), sayInPaper, nil},
+		{"at rest", "incubation-doubled", twice(hyperbola, hyperbola), foundGood,
+			[]string{"After 2 h in place of 60 min"}},
+		{"not at rest", "incubation-doubled",
+			twice(func(x float64) float64 { return earlyShare(x, math.Ln2) }, hyperbola), settleFirst,
+			[]string{"not at rest"}},
 
-		{"time not stated", "initial-rates", with(hyperbola, velocity(math.NaN(), 1)), sayInPaper, []string{"n_H 1.129"}},
-		{"another unit", "initial-rates", with(hyperbola, func(a *Analysis) { velocity(60, 1)(a); a.Data[0].Response.Unit = "nkat/mg" }), sayInPaper, []string{"nkat/mg"}},
+		{"time not stated", "initial-rates", with(hyperbola, velocity(math.NaN(), 1)), sayInPaper,
+			[]string{"n_H 1.129"}},
+		{"another unit", "initial-rates", with(hyperbola,
+			func(a *Analysis) { velocity(60, 1)(a); a.Data[0].Response.Unit = "nkat/mg" }), sayInPaper,
+			[]string{"nkat/mg"}},
 		{"stated", "initial-rates", with(hyperbola, func(a *Analysis) {
 			velocity(math.NaN(), 1)(a)
 			a.Conditions = map[string]string{"initial rates": "under 5 %"}
 		}), foundGood, nil},
-		{"used up", "initial-rates", with(hyperbola, velocity(60, 0.01)), settleFirst, []string{"not initial rates"}},
-		{"hardly used", "initial-rates", with(hyperbola, velocity(6, 0.005)), foundGood, []string{"n_H 1.00"}},
+		{"used up", "initial-rates", with(hyperbola, velocity(60, 0.01)), settleFirst,
+			[]string{"not initial rates"}},
+		{"hardly used", "initial-rates", with(hyperbola, velocity(6, 0.005)), foundGood,
+			[]string{"n_H 1.00"}},
 	})
 }
 
@@ -186,15 +207,19 @@ func TestObjectionsToTheCurve(t *testing.T) {
 		}
 	}
 	adair := func(a *Analysis) {
-		a.Candidates = append(a.Candidates, Candidate{Name: "steps", Family: "adair", Mechanism: build(t, "adair", four())})
+		a.Candidates = append(a.Candidates, Candidate{Name: "steps", Family: "adair",
+			Mechanism: build(t, "adair", four())})
 	}
 	check(t, []asks{
-		{"not reached", "plateau", over(-2, 0.3, 10, free), settleFirst, []string{"not reached", "measure up to 1"}},
-		{"set, and not reached", "plateau", over(-2, 0.3, 10, nil), sayInPaper, []string{"was set, not measured"}},
+		{"not reached", "plateau", over(-2, 0.3, 10, free), settleFirst,
+			[]string{"not reached", "measure up to 1"}},
+		{"set, and not reached", "plateau", over(-2, 0.3, 10, nil), sayInPaper,
+			[]string{"was set, not measured"}},
 		{"reached", "plateau", over(-2, 2, 10, free), foundGood, []string{"99 %"}},
 		{"unreadable", "plateau", over(-2, -1.9, 10, free), sayInPaper, []string{"cannot be asked"}},
 
-		{"extrapolated", "baseline", over(-0.5, 2, 12, free), settleFirst, []string{"extrapolation", "measure without ligand"}},
+		{"extrapolated", "baseline", over(-0.5, 2, 12, free), settleFirst,
+			[]string{"extrapolation", "measure without ligand"}},
 		{"set untested", "baseline", over(-0.5, 2, 12, nil), sayInPaper, []string{"no point below"}},
 		{"fitted", "baseline", over(-2, 2, 12, free), foundGood, []string{"is fitted, with"}},
 		{"set", "baseline", over(-2, 2, 12, nil), foundGood, []string{"to be judged by the fits"}},
@@ -204,14 +229,17 @@ func TestObjectionsToTheCurve(t *testing.T) {
 			}
 		}), settleFirst, []string{"response: {low: free}"}},
 
-		{"without blocked tubes", "nonspecific", bound(Setting{Free: true}, false), sayInPaper, []string{"tied to Bmax"}},
+		{"without blocked tubes", "nonspecific", bound(Setting{Free: true}, false), sayInPaper,
+			[]string{"tied to Bmax"}},
 		{"set", "nonspecific", bound(Setting{Value: 0.01}, false), sayInPaper, []string{"was set to 0.01"}},
-		{"blocked tubes", "nonspecific", bound(Setting{Free: true}, true), foundGood, []string{"24 blocked tubes"}},
+		{"blocked tubes", "nonspecific", bound(Setting{Free: true}, true), foundGood,
+			[]string{"24 blocked tubes"}},
 
 		{"set", "ends-set", over(-2, 2, 12, nil), sayInPaper, []string{"high 1 and low 0"}},
 		{"fitted", "ends-set", over(-2, 2, 12, free), foundGood, nil},
 
-		{"few", "concentrations", over(-2, 2, 6, nil), sayInPaper, []string{"Only six ligand values", "8 is the usual least"}},
+		{"few", "concentrations", over(-2, 2, 6, nil), sayInPaper,
+			[]string{"Only six ligand values", "8 is the usual least"}},
 		{"a gap", "concentrations", over(-2, 2, 24, func(a *Analysis) {
 			for i := range a.Data[0].Points {
 				if p := &a.Data[0].Points[i]; p.X > 0.3 && p.X < 3 {
@@ -220,21 +248,29 @@ func TestObjectionsToTheCurve(t *testing.T) {
 			}
 		}), sayInPaper, []string{"nothing was measured over 1.", "measure at"}},
 		{"enough", "concentrations", over(-2, 2, 12, nil), foundGood, []string{"Twelve ligand values"}},
-		{"ends untested", "adair-ends", over(-0.5, 0.5, 12, adair), forCompleteness, []string{"1–5 % and at 95–99 %"}},
+		{"ends untested", "adair-ends", over(-0.5, 0.5, 12, adair), forCompleteness,
+			[]string{"1–5 % and at 95–99 %"}},
 		{"ends tested", "adair-ends", over(-2, 2, 24, adair), foundGood, nil},
 
-		{"Hill plot", "transformed-axes", with(func(x float64) float64 { return math.Log(x) }, nil), settleFirst, []string{"ordinate of a Hill plot"}},
-		{"double reciprocal", "transformed-axes", with(func(x float64) float64 { return 1 + 1/x }, func(a *Analysis) {
-			a.Data[0].Response = Response{Kind: "velocity", High: Setting{Free: true}}
-		}), settleFirst, []string{"a reciprocal", "weighted wrongly"}},
-		{"bound over free", "transformed-axes", with(func(x float64) float64 { return 1 / (1 + x) }, func(a *Analysis) {
-			a.Data[0].Response = Response{Kind: "bound", High: Setting{Free: true}}
-		}), settleFirst, []string{"divided by the ligand"}},
-		{"by its unit", "transformed-axes", with(hyperbola, func(a *Analysis) { a.Data[0].Response.Unit = "log10 nM" }), settleFirst, []string{"by its unit"}},
+		{"Hill plot", "transformed-axes", with(func(x float64) float64 { return math.Log(x) }, nil),
+			settleFirst, []string{"ordinate of a Hill plot"}},
+		{"double reciprocal", "transformed-axes", with(func(x float64) float64 { return 1 + 1/x },
+			func(a *Analysis) {
+				a.Data[0].Response = Response{Kind: "velocity", High: Setting{Free: true}}
+			}), settleFirst, []string{"a reciprocal", "weighted wrongly"}},
+		{"bound over free", "transformed-axes", with(func(x float64) float64 { return 1 / (1 + x) },
+			func(a *Analysis) {
+				a.Data[0].Response = Response{Kind: "bound", High: Setting{Free: true}}
+			}), settleFirst, []string{"divided by the ligand"}},
+		{"by its unit", "transformed-axes", with(hyperbola,
+			func(a *Analysis) { a.Data[0].Response.Unit = "log10 nM" }), settleFirst,
+			[]string{"by its unit"}},
 		{"as measured", "transformed-axes", with(hyperbola, nil), foundGood, nil},
-		{"a falling signal", "transformed-axes", with(func(x float64) float64 { return 1 / (1 + x) }, free), foundGood, nil},
+		{"a falling signal", "transformed-axes", with(func(x float64) float64 { return 1 / (1 + x) }, free),
+			foundGood, nil},
 
-		{"some", "left-out", with(hyperbola, func(a *Analysis) { a.Data[0].Points[70].LeftOut = "bubble" }), sayInPaper, []string{"One of 72 points", "bubble", "by a Hill fit, n_H moves by"}},
+		{"some", "left-out", with(hyperbola, func(a *Analysis) { a.Data[0].Points[70].LeftOut = "bubble" }),
+			sayInPaper, []string{"One of 72 points", "bubble", "by a Hill fit, n_H moves by"}},
 		{"none", "left-out", with(hyperbola, nil), foundGood, nil},
 		{"to the top", "normalised", with(hyperbola, func(a *Analysis) {
 			for i := range a.Data[0].Points {
@@ -248,7 +284,8 @@ func TestObjectionsToTheCurve(t *testing.T) {
 // scatter
 
 func TestObjectionsToTheScatter(t *testing.T) {
-	noisy := func(y func(float64) float64, sd func(x, y float64) float64, sx float64) func(testing.TB) *Analysis {
+	noisy := func(y func(float64) float64, sd func(x, y float64) float64,
+		sx float64) func(testing.TB) *Analysis {
 		return func(t testing.TB) *Analysis {
 			s := plain(y)
 			s.scatter = 0
@@ -282,7 +319,9 @@ func TestObjectionsToTheScatter(t *testing.T) {
 		}
 	}
 	check(t, []asks{
-		{"none", "replicates", func(t testing.TB) *Analysis { s := plain(hyperbola); s.replicates = 1; return s.study(t) }, sayInPaper, []string{"cannot be asked"}},
+		{"none", "replicates",
+			func(t testing.TB) *Analysis { s := plain(hyperbola); s.replicates = 1; return s.study(t) },
+			sayInPaper, []string{"cannot be asked"}},
 		{"hardly any", "replicates", func(t testing.TB) *Analysis {
 			s := plain(hyperbola)
 			s.replicates, s.levels = 2, 6
@@ -290,22 +329,32 @@ func TestObjectionsToTheScatter(t *testing.T) {
 		}, forCompleteness, []string{"6 degrees of freedom"}},
 		{"enough", "replicates", with(hyperbola, nil), foundGood, []string{"48 degrees of freedom"}},
 
-		{"rises", "uneven-scatter", noisy(hyperbola, rising, 0), settleFirst, []string{"noise: replicates", "by a Hill fit, n_H moves by"}},
+		{"rises", "uneven-scatter", noisy(hyperbola, rising, 0), settleFirst,
+			[]string{"noise: replicates", "by a Hill fit, n_H moves by"}},
 		{"even", "uneven-scatter", noisy(hyperbola, even, 0), foundGood, nil},
-		{"not in proportion", "uneven-scatter", and(noisy(hyperbola, even, 0), func(a *Analysis) { a.Data[0].Noise = Proportional }), settleFirst, []string{"do not scatter in proportion"}},
-		{"in proportion", "uneven-scatter", and(noisy(hyperbola, rising, 0), func(a *Analysis) { a.Data[0].Noise = Proportional }), foundGood, nil},
-		{"modelled", "uneven-scatter", and(noisy(hyperbola, rising, 0), func(a *Analysis) { a.Data[0].Noise = Mixed }), foundGood, []string{"modelled"}},
+		{"not in proportion", "uneven-scatter", and(noisy(hyperbola, even, 0),
+			func(a *Analysis) { a.Data[0].Noise = Proportional }), settleFirst,
+			[]string{"do not scatter in proportion"}},
+		{"in proportion", "uneven-scatter", and(noisy(hyperbola, rising, 0),
+			func(a *Analysis) { a.Data[0].Noise = Proportional }), foundGood, nil},
+		{"modelled", "uneven-scatter", and(noisy(hyperbola, rising, 0),
+			func(a *Analysis) { a.Data[0].Noise = Mixed }), foundGood, []string{"modelled"}},
 		{"SDs of three", "uneven-scatter", given(func(rng *rand.Rand, _ float64) float64 {
 			return 0.02 * math.Sqrt(chiSquare(rng, 2)/2)
 		}), sayInPaper, []string{"few replicates"}},
-		{"a smooth law", "uneven-scatter", given(func(_ *rand.Rand, y float64) float64 { return 0.01 + 0.05*y }), foundGood, []string{"smoothly"}},
+		{"a smooth law", "uneven-scatter",
+			given(func(_ *rand.Rand, y float64) float64 { return 0.01 + 0.05*y }), foundGood,
+			[]string{"smoothly"}},
 
-		{"of the ligand", "ligand-scatter", noisy(hillOf(3), even, 0.08), sayInPaper, []string{"the ligand values themselves scatter, by about"}},
+		{"of the ligand", "ligand-scatter", noisy(hillOf(3), even, 0.08), sayInPaper,
+			[]string{"the ligand values themselves scatter, by about"}},
 		{"of the response", "ligand-scatter", noisy(hillOf(3), even, 0), foundGood, nil},
 
-		{"a recording", "correlated-points", recording(0.8), settleFirst, []string{"too narrow by a factor", "thin the recording"}},
+		{"a recording", "correlated-points", recording(0.8), settleFirst,
+			[]string{"too narrow by a factor", "thin the recording"}},
 		{"independent", "correlated-points", recording(0), foundGood, []string{"not correlated"}},
-		{"single points", "correlated-points", with(hyperbola, nil), foundGood, []string{"single measurements"}},
+		{"single points", "correlated-points", with(hyperbola, nil), foundGood,
+			[]string{"single measurements"}},
 	})
 }
 
@@ -335,14 +384,19 @@ func TestObjectionsToTheReport(t *testing.T) {
 			return s.study(t)
 		}
 	}
-	full := map[string]string{"macromolecule": "receptor", "organism": "crab", "tissue": "nerve", "preparation": "membranes", "purity": "crude", "temperature": "25 degC",
-		"pressure": "1 atm", "pH": "7.4", "buffer": "saline", "method": "filtration", "receptor concentration": "1 nM"}
+	full := map[string]string{"macromolecule": "receptor", "organism": "crab", "tissue": "nerve",
+		"preparation": "membranes", "purity": "crude", "temperature": "25 degC",
+		"pressure": "1 atm", "pH": "7.4", "buffer": "saline", "method": "filtration",
+		"receptor concentration": "1 nM"}
 	check(t, []asks{
 		{"none named", "preparations", named(), sayInPaper, []string{"No preparation is named"}},
 		{"one", "preparations", named("A"), sayInPaper, []string{"technical"}},
-		{"three", "preparations", named("A", "B", "C"), sayInPaper, []string{"Three preparations; 5 is the usual least", "times that between points"}},
+		{"three", "preparations", named("A", "B", "C"), sayInPaper,
+			[]string{"Three preparations; 5 is the usual least", "times that between points"}},
 		{"five", "preparations", named("A", "B", "C", "D", "E"), foundGood, []string{"Five preparations"}},
-		{"some unnamed", "preparations", with(hyperbola, func(a *Analysis) { a.Data[0].Points[3].Preparation = "" }), sayInPaper, []string{"1 points name no preparation"}},
+		{"some unnamed", "preparations", with(hyperbola,
+			func(a *Analysis) { a.Data[0].Points[3].Preparation = "" }), sayInPaper,
+			[]string{"1 points name no preparation"}},
 		{"alike", "pooling", named("A", "B", "C", "D", "E"), foundGood, nil},
 		{"one curve unreadable", "pooling", func(t testing.TB) *Analysis {
 			s := plain(hyperbola)
@@ -358,16 +412,21 @@ func TestObjectionsToTheReport(t *testing.T) {
 		{"enough", "few-points", with(hyperbola, nil), foundGood, nil},
 
 		{"nothing", "conditions", with(hyperbola, nil), forCompleteness, []string{"organism", "purity"}},
-		{"everything", "conditions-stated", with(hyperbola, func(a *Analysis) { a.Conditions = full }), foundGood, []string{"organism", "concentration of the macromolecule"}},
-		{"not stated", "temperature", with(hyperbola, func(a *Analysis) { a.Kelvin = math.NaN() }), sayInPaper, []string{"units of RT"}},
-		{"of an enzyme", "conditions", with(hyperbola, func(a *Analysis) { a.Data[0].Response.Kind = "velocity" }), forCompleteness, []string{"EC number", "reaction"}},
+		{"everything", "conditions-stated", with(hyperbola, func(a *Analysis) { a.Conditions = full }),
+			foundGood, []string{"organism", "concentration of the macromolecule"}},
+		{"not stated", "temperature", with(hyperbola, func(a *Analysis) { a.Kelvin = math.NaN() }),
+			sayInPaper, []string{"units of RT"}},
+		{"of an enzyme", "conditions", with(hyperbola,
+			func(a *Analysis) { a.Data[0].Response.Kind = "velocity" }), forCompleteness,
+			[]string{"EC number", "reaction"}},
 	})
 	a := plain(hyperbola).study(t)
 	a.Conditions = full
 	if o := objected(a.Objections(context.Background()), "conditions"); o.ID != "" {
 		t.Errorf("all is stated, yet: %s", o.Text)
 	}
-	if s := deref(objected(a.Objections(context.Background()), "conditions-stated").Source); !strings.Contains(s, "STRENDA-style, adapted") {
+	if s := deref(objected(a.Objections(context.Background()),
+		"conditions-stated").Source); !strings.Contains(s, "STRENDA-style, adapted") {
 		t.Errorf("source %q", s)
 	}
 }
@@ -377,35 +436,47 @@ func TestObjectionsToTheReport(t *testing.T) {
 func TestObjectionsToTheSlope(t *testing.T) {
 	kind := func(y func(float64) float64, kind string) func(testing.TB) *Analysis {
 		return with(y, func(a *Analysis) {
-			a.Data[0].Response = Response{Kind: kind, High: Setting{Free: true}, Low: Setting{Free: kind == "signal"}}
+			a.Data[0].Response = Response{Kind: kind, High: Setting{Free: true},
+				Low: Setting{Free: kind == "signal"}}
 		})
 	}
 	two := func(sites int) func(*Analysis) {
 		return func(a *Analysis) {
-			a.Candidates = append(a.Candidates, Candidate{Name: "two", Family: "adair", Mechanism: build(t, "adair", mechanisms.Definition{Sites: sites})})
+			a.Candidates = append(a.Candidates, Candidate{Name: "two", Family: "adair",
+				Mechanism: build(t, "adair", mechanisms.Definition{Sites: sites})})
 		}
 	}
 	check(t, []asks{
-		{"too steep", "n_H-above-sites", with(hillOf(2.6), two(2)), settleFirst, []string{"not an equilibrium mechanism with two sites, or an artefact"}},
-		{"within", "n_H-above-sites", with(hillOf(1.6), two(2)), foundGood, []string{"does not exceed the number of sites (2)"}},
-		{"no sites tried", "n_H-above-sites", with(hillOf(1.6), func(a *Analysis) { a.Candidates = a.Candidates[1:] }), forCompleteness, []string{"not a count of sites"}},
-		{"shallow", "shallow", with(hillOf(0.7), nil), sayInPaper, []string{"neither two sites nor negative cooperativity", "MWC with one ligand is ruled out"}},
-		{"shallow", "shallow-causes", with(hillOf(0.7), nil), sayInPaper, []string{"degraded protein", "solubility"}},
+		{"too steep", "n_H-above-sites", with(hillOf(2.6), two(2)), settleFirst,
+			[]string{"not an equilibrium mechanism with two sites, or an artefact"}},
+		{"within", "n_H-above-sites", with(hillOf(1.6), two(2)), foundGood,
+			[]string{"does not exceed the number of sites (2)"}},
+		{"no sites tried", "n_H-above-sites", with(hillOf(1.6),
+			func(a *Analysis) { a.Candidates = a.Candidates[1:] }), forCompleteness,
+			[]string{"not a count of sites"}},
+		{"shallow", "shallow", with(hillOf(0.7), nil), sayInPaper,
+			[]string{"neither two sites nor negative cooperativity", "MWC with one ligand is ruled out"}},
+		{"shallow", "shallow-causes", with(hillOf(0.7), nil), sayInPaper,
+			[]string{"degraded protein", "solubility"}},
 		{"one site", "shallow", with(hyperbola, nil), foundGood, nil},
-		{"little hidden", "hidden-classes", with(hyperbola, nil), foundGood, []string{"-fold would look the same"}},
+		{"little hidden", "hidden-classes", with(hyperbola, nil), foundGood,
+			[]string{"-fold would look the same"}},
 		{"much hidden", "hidden-classes", func(t testing.TB) *Analysis {
 			s := plain(hyperbola)
 			s.scatter, s.levels, s.seed = 0.1, 8, 6
 			return s.study(t)
 		}, sayInPaper, nil},
-		{"steep velocities", "catalysis", kind(hillOf(1.4), "velocity"), sayInPaper, []string{"h of 2 at most"}},
+		{"steep velocities", "catalysis", kind(hillOf(1.4), "velocity"), sayInPaper,
+			[]string{"h of 2 at most"}},
 		{"plain velocities", "catalysis", kind(hyperbola, "velocity"), foundGood, nil},
-		{"a signal", "response-as-occupancy", kind(hillOf(2), "signal"), sayInPaper, []string{"empirical slope"}},
+		{"a signal", "response-as-occupancy", kind(hillOf(2), "signal"), sayInPaper,
+			[]string{"empirical slope"}},
 		{"binding", "response-as-occupancy", kind(hyperbola, "bound"), foundGood, nil},
 		{"counted", "constants-counted", with(hyperbola, two(2)), foundGood, nil},
 		{"more than the curve holds", "constants-counted", with(hyperbola, func(a *Analysis) {
 			m := build(t, "mwc", mechanisms.Definition{Sites: 2, Differs: true})
-			a.Candidates = append(a.Candidates, Candidate{Name: "concerted pair", Family: "mwc", Mechanism: m})
+			a.Candidates = append(a.Candidates, Candidate{Name: "concerted pair", Family: "mwc",
+				Mechanism: m})
 		}), settleFirst, []string{"has 3 constants for 1 curve(s) of two sites, which hold 2 at most"}},
 	})
 }
@@ -416,7 +487,8 @@ func TestObjectionsToTheFits(t *testing.T) {
 		return func(t testing.TB) *Analysis {
 			s := plain(bindingOf(t, "mwc", four(), math.Log(l), math.Log(c), 0))
 			s.scatter = scatter
-			s.candidates = []Candidate{{Name: "concerted", Family: "mwc", Mechanism: build(t, "mwc", four())}}
+			s.candidates = []Candidate{{Name: "concerted", Family: "mwc",
+				Mechanism: build(t, "mwc", four())}}
 			a := s.study(t)
 			if change != nil {
 				change(a)
@@ -435,7 +507,8 @@ func TestObjectionsToTheFits(t *testing.T) {
 	}
 	precipitated := func(t testing.TB) *Analysis {
 		s := plain(hyperbola)
-		s.high, s.levels, s.response = 0.9, 8, Response{Kind: "signal", Low: Setting{Free: true}, High: Setting{Free: true}}
+		s.high, s.levels, s.response = 0.9, 8, Response{Kind: "signal", Low: Setting{Free: true},
+			High: Setting{Free: true}}
 		a := s.study(t)
 		for i := range a.Data[0].Points {
 			if p := &a.Data[0].Points[i]; p.X > 7 {
@@ -450,27 +523,37 @@ func TestObjectionsToTheFits(t *testing.T) {
 		{"right", "ends-set", with(hyperbola, nil), sayInPaper, []string{"less than the intervals"}},
 		{"raised", "baseline", raised, settleFirst, []string{"lie off by"}},
 		{"level", "baseline", with(hyperbola, nil), foundGood, []string{"agree with it"}},
-		{"differ", "n_H-definition", concerted(1e5, 0.001, 0.01, nil), sayInPaper, []string{"by a Hill fit of these points", "differ by up to"}},
+		{"differ", "n_H-definition", concerted(1e5, 0.001, 0.01, nil), sayInPaper,
+			[]string{"by a Hill fit of these points", "differ by up to"}},
 		{"agree", "n_H-definition", with(hillOf(1.5), nil), foundGood, nil},
-		{"none hangs", "without-a-preparation", concerted(1e3, 0.01, 0.01, nil), foundGood, []string{"Most without preparation"}},
-		{"one pulls", "without-a-preparation", concerted(1e3, 0.01, 0.01, shift("B", 3)), settleFirst, []string{"Without preparation B"}},
+		{"none hangs", "without-a-preparation", concerted(1e3, 0.01, 0.01, nil), foundGood,
+			[]string{"Most without preparation"}},
+		{"one pulls", "without-a-preparation", concerted(1e3, 0.01, 0.01, shift("B", 3)), settleFirst,
+			[]string{"Without preparation B"}},
 		{"none named", "without-a-preparation", concerted(1e3, 0.01, 0.01, func(a *Analysis) {
 			for i := range a.Data[0].Points {
 				a.Data[0].Points[i].Preparation = ""
 			}
 		}), forCompleteness, []string{"cannot be asked"}},
 		{"none hangs", "without-the-outermost", concerted(1e3, 0.01, 0.01, nil), foundGood, nil},
-		{"the top falls", "without-the-outermost", precipitated, settleFirst, []string{"Without the highest ligand value"}},
-		{"tied", "tied-constants", concerted(1e3, 0.01, 0.01, nil), sayInPaper, []string{"r = -0.99", "K_R·L^(1/4)"}},
+		{"the top falls", "without-the-outermost", precipitated, settleFirst,
+			[]string{"Without the highest ligand value"}},
+		{"tied", "tied-constants", concerted(1e3, 0.01, 0.01, nil), sayInPaper,
+			[]string{"r = -0.99", "K_R·L^(1/4)"}},
 		{"untied", "tied-constants", concerted(1e3, 0.01, 0.01, func(a *Analysis) {
 			one := 1e3
 			a.Candidates[0].Given = map[string]mechanisms.Given{"K_R": {Fixed: ptr(1)}, "L": {Start: &one}}
 		}), foundGood, nil},
-		{"not counted by the curve", "site-number", concerted(1e3, 0.01, 0.05, nil), sayInPaper, []string{"take n from the structure", "does not count sites"}},
+		{"not counted by the curve", "site-number", concerted(1e3, 0.01, 0.05, nil), sayInPaper,
+			[]string{"take n from the structure", "does not count sites"}},
 		{"counted", "site-number", concerted(1e3, 0.01, 0.0005, nil), foundGood, nil},
-		{"profiles", "symmetric-intervals", concerted(1e3, 0.01, 0.01, nil), foundGood, []string{"the most lopsided, of"}},
-		{"symmetric", "symmetric-intervals", concerted(1e3, 0.01, 0.01, func(a *Analysis) { a.Settings.Method = "covariance" }), sayInPaper, []string{"method: profile"}},
-		{"open", "symmetric-intervals", concerted(1e6, 1e-6, 0.02, nil), sayInPaper, []string{"not ended on both sides"}},
+		{"profiles", "symmetric-intervals", concerted(1e3, 0.01, 0.01, nil), foundGood,
+			[]string{"the most lopsided, of"}},
+		{"symmetric", "symmetric-intervals", concerted(1e3, 0.01, 0.01,
+			func(a *Analysis) { a.Settings.Method = "covariance" }), sayInPaper,
+			[]string{"method: profile"}},
+		{"open", "symmetric-intervals", concerted(1e6, 1e-6, 0.02, nil), sayInPaper,
+			[]string{"not ended on both sides"}},
 		{"interval of the end", "plateau", func(t testing.TB) *Analysis {
 			s := plain(hyperbola)
 			s.low, s.high, s.levels, s.scatter = -2, 0.3, 10, 0.02

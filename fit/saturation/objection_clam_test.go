@@ -19,7 +19,8 @@ func TestObjectionsPrintClam(t *testing.T) {
 		t.Log(o.Group, "|", o.ID, "|", o.Text, "|", deref(o.Effect), "|", deref(o.Remedy))
 	}
 	for _, o := range out.Explanations {
-		t.Log(o.Slope, o.Curve, "|", o.Explanation, "|", o.Standing, deref(o.TwinOf), deref(o.Mechanism), float64(o.AICcBehind), "|", deref(o.Why), "|", float64(o.Value), deref(o.Test))
+		t.Log(o.Slope, o.Curve, "|", o.Explanation, "|", o.Standing, deref(o.TwinOf), deref(o.Mechanism),
+			float64(o.AICcBehind), "|", deref(o.Why), "|", float64(o.Value), deref(o.Test))
 	}
 	t.Log(out.Verdict.Text)
 }

@@ -6,7 +6,9 @@ import (
 	"math"
 )
 
-const concentrationsSource = fromPractice + ": 0.1 to 10 K at least, 8 to 12 levels, evenly in the logarithm; for Adair constants also 1–5 % and 95–99 % saturation"
+const concentrationsSource = fromPractice +
+	": 0.1 to 10 K at least, 8 to 12 levels, evenly in the logarithm; for Adair constants also 1–5 % " +
+	"and 95–99 % saturation"
 
 // asksConcentrations asks whether the ligand values can hold what is asked of them.
 func (r *review) asksConcentrations(context.Context) {
@@ -38,19 +40,24 @@ func (r *review) concentrationsOf(c *reading) answer {
 	switch {
 	case len(levels) < r.limits.Levels:
 		a.group = sayInPaper
-		a.text = fmt.Sprintf("%sOnly %s ligand values%s; %d is the usual least.", r.where(c.data), countWord(len(levels)), r.onCurve(c), r.limits.Levels)
+		a.text = fmt.Sprintf("%sOnly %s ligand values%s; %d is the usual least.", r.where(c.data),
+			countWord(len(levels)), r.onCurve(c), r.limits.Levels)
 		a.remedy = "add ligand values; ligancy plan says which"
 	case gap > limit:
 		a.group = sayInPaper
-		a.text = fmt.Sprintf("%sBetween %s and %s%s, within the transition, nothing was measured over %s decades.", r.where(c.data), figures(math.Exp(from), 3),
+		a.text = fmt.Sprintf("%sBetween %s and %s%s, within the transition, nothing was measured over "+
+			"%s decades.",
+			r.where(c.data), figures(math.Exp(from), 3),
 			withUnit(math.Exp(to), r.a.Ligand.Unit, 3), r.onCurve(c), figures(gap, 2))
 		a.remedy = "measure at " + withUnit(math.Exp((from+to)/2), r.a.Ligand.Unit, 2)
 	default:
-		a.text = fmt.Sprintf("%s%s ligand values%s, none further apart than %s decades in the transition.", r.where(c.data), capital(countWord(len(levels))), r.onCurve(c), figures(gap, 2))
+		a.text = fmt.Sprintf("%s%s ligand values%s, none further apart than %s decades in the transition.",
+			r.where(c.data), capital(countWord(len(levels))), r.onCurve(c), figures(gap, 2))
 		return a
 	}
 	if s := (math.Log(c.high) - math.Log(c.low)) / 2; !math.IsInf(s, 0) && !math.IsNaN(s) {
-		a.effect = fmt.Sprintf("n_H of a Hill fit is held to %s to %s (99 %%).", figures(c.low, 3), figures(c.high, 3))
+		a.effect = fmt.Sprintf("n_H of a Hill fit is held to %s to %s (99 %%).", figures(c.low, 3),
+			figures(c.high, 3))
 	} else {
 		a.effect = "n_H of a Hill fit is not held on both sides."
 	}
@@ -89,7 +96,9 @@ func (r *review) adairEnds(di int) {
 			}
 		}
 		a := answer{id: "adair-ends", group: foundGood, source: concentrationsSource,
-			text: fmt.Sprintf("%sThe first and last stepwise constants are tested: levels at 1–5 %% and 95–99 %% saturation%s.", r.where(di), r.onCurve(c))}
+			text: fmt.Sprintf("%sThe first and last stepwise constants are tested: levels at 1–5 %% and "+
+				"95–99 %% saturation%s.",
+				r.where(di), r.onCurve(c))}
 		if lower == 0 || upper == 0 {
 			a.group = forCompleteness
 			missing := "1–5 %"
@@ -98,7 +107,9 @@ func (r *review) adairEnds(di int) {
 			} else if upper == 0 {
 				missing += " and at 95–99 %"
 			}
-			a.text = fmt.Sprintf("%sThe outer stepwise constants rest on no ligand value at %s saturation%s.", r.where(di), missing, r.onCurve(c))
+			a.text = fmt.Sprintf("%sThe outer stepwise constants rest on no ligand value at %s "+
+				"saturation%s.",
+				r.where(di), missing, r.onCurve(c))
 			a.remedy = "add ligand values there"
 			r.add(a)
 			return

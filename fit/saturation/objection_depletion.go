@@ -8,8 +8,9 @@ import (
 )
 
 const (
-	depletionSource = "sites at most K/10, under 10 % of the ligand bound: Hulme & Trevethick 2010 Br J Pharmacol 161:1219; Jarmoskaite et al. 2020 eLife 9:e57264; rules from memory"
-	titrationRatio  = 10 // sites per K above which a curve measures sites rather than K
+	depletionSource = "sites at most K/10, under 10 % of the ligand bound: Hulme & Trevethick 2010 Br J " +
+		"Pharmacol 161:1219; Jarmoskaite et al. 2020 eLife 9:e57264; rules from memory"
+	titrationRatio = 10 // sites per K above which a curve measures sites rather than K
 )
 
 // asksDepletion asks whether bound ligand was taken from the free ligand that
@@ -31,7 +32,8 @@ func (r *review) asksDepletion(context.Context) {
 
 // pressure says whether a ligand is measured as a gas.
 func pressure(unit string) bool {
-	return slices.Contains([]string{"torr", "mmHg", "mm[Hg]", "kPa", "Pa", "hPa", "atm", "bar", "mbar", "ppm"}, unit)
+	return slices.Contains([]string{"torr", "mmHg", "mm[Hg]", "kPa", "Pa", "hPa", "atm", "bar", "mbar",
+		"ppm"}, unit)
 }
 
 // sitesComparable says whether the sites are given in the ligand's unit.
@@ -52,18 +54,25 @@ func (r *review) sitesOn(c *reading) float64 {
 
 func (r *review) depletionUnknown(di int) {
 	a := answer{id: "ligand-depletion-unknown", group: settleFirst, source: depletionSource,
-		text:   r.where(di) + "The concentration of sites is not stated: whether bound ligand was taken from the free ligand on the axis cannot be judged.",
+		text: r.where(di) +
+			"The concentration of sites is not stated: whether bound ligand was taken from the free " +
+			"ligand on the axis cannot be judged.",
 		remedy: "sites_present: 5 " + r.a.Ligand.Unit + "   (sites, in the assay)"}
 	if r.a.Data[di].Response.Kind == "velocity" {
 		a.group = forCompleteness
-		a.text = r.where(di) + "The concentration of enzyme sites is not stated: whether they hold a share of the substrate cannot be judged."
+		a.text = r.where(di) +
+			"The concentration of enzyme sites is not stated: whether they hold a share of the " +
+			"substrate cannot be judged."
 	}
 	if list := r.readings(di); len(list) > 0 {
 		c := steepest(list)
 		k := math.Exp(c.lnK)
-		a.text += fmt.Sprintf(" Above %s of sites it matters.", withUnit(r.limits.SitesPerK*k, r.a.Ligand.Unit, 2))
+		a.text += fmt.Sprintf(" Above %s of sites it matters.",
+			withUnit(r.limits.SitesPerK*k, r.a.Ligand.Unit, 2))
 		_, one := depleted(1, 1)
-		a.effect = fmt.Sprintf("With as many sites as K_half (%s), one site reads n_H %.3f against added ligand.", withUnit(k, r.a.Ligand.Unit, 2), one)
+		a.effect = fmt.Sprintf("With as many sites as K_half (%s), one site reads n_H %.3f against "+
+			"added ligand.",
+			withUnit(k, r.a.Ligand.Unit, 2), one)
 	}
 	r.add(a)
 }
@@ -84,7 +93,8 @@ func (r *review) depletionJudged(di int) {
 	list := r.readings(di)
 	if len(list) == 0 {
 		r.add(answer{id: "ligand-depletion-unknown", group: sayInPaper, source: depletionSource,
-			text:   r.where(di) + "Depletion cannot be judged, since K cannot be read: " + r.unread(di) + ".",
+			text: r.where(di) + "Depletion cannot be judged, since K cannot be read: " + r.unread(di) +
+				".",
 			remedy: "measure on both sides of half saturation"})
 		return
 	}
@@ -103,10 +113,13 @@ func (r *review) depletionJudged(di int) {
 	}
 	sites, k := r.sitesOn(worst), math.Exp(worst.lnK)
 	a := answer{id: "ligand-depletion", group: foundGood, source: depletionSource,
-		text: fmt.Sprintf("%sSites (%s) are %s of K_half%s (%s), and at most %s of the ligand would be bound", r.where(di), withUnit(sites, r.a.Ligand.Unit, 2),
+		text: fmt.Sprintf("%sSites (%s) are %s of K_half%s (%s), and at most %s of the ligand would "+
+			"be bound",
+			r.where(di), withUnit(sites, r.a.Ligand.Unit, 2),
 			figures(ratio, 2), r.onCurve(worst), withUnit(k, r.a.Ligand.Unit, 2), percent(share))}
 	shift, one := depleted(ratio, 1)
-	a.effect = fmt.Sprintf("Read against added ligand one site gives K %.3f times too high and n_H %.3f.", shift, one)
+	a.effect = fmt.Sprintf("Read against added ligand one site gives K %.3f times too high and n_H %.3f.",
+		shift, one)
 	if ratio <= r.limits.SitesPerK && share < r.limits.BoundShare {
 		a.text += ": added ligand can be taken as free."
 		r.add(a)
@@ -136,53 +149,16 @@ func (r *review) depletionSolved(di int) {
 	}
 	_, own := depleted(ratio, worst.h)
 	a := answer{id: "ligand-depletion", group: foundGood, source: depletionSource,
-		text:   fmt.Sprintf("%sDepletion is solved for: sites are %s of K_half%s.", r.where(di), figures(ratio, 2), r.onCurve(worst)),
-		effect: fmt.Sprintf("n_H at half saturation is %.3f against free and %.3f against total ligand: say which is printed.", worst.h, own)}
+		text: fmt.Sprintf("%sDepletion is solved for: sites are %s of K_half%s.", r.where(di),
+			figures(ratio, 2), r.onCurve(worst)),
+		effect: fmt.Sprintf("n_H at half saturation is %.3f against free and %.3f against total ligand: "+
+			"say which is printed.",
+			worst.h, own)}
 	if ratio >= titrationRatio {
 		a.group = sayInPaper
 		a.text += " With so many the curve is a titration, which holds the number of sites better than K."
-		a.remedy = fmt.Sprintf("repeat with sites below %s", withUnit(math.Exp(worst.lnK), r.a.Ligand.Unit, 2))
+		a.remedy = fmt.Sprintf("repeat with sites below %s",
+			withUnit(math.Exp(worst.lnK), r.a.Ligand.Unit, 2))
 	}
 	r.add(a)
-}
-
-const dissociationSource = "Ackers & Halvorson 1974 Proc Natl Acad Sci 71:4312, from memory"
-
-// asksDissociation asks whether a molecule of several sites may fall apart at
-// the concentration of the assay.
-func (r *review) asksDissociation(context.Context) {
-	sites, assembly := r.mostSites(), false
-	for i := range r.a.Candidates {
-		assembly = assembly || r.a.Candidates[i].Family == "assembly"
-	}
-	if sites < 3 || assembly {
-		return
-	}
-	for di := range r.a.Data {
-		d := &r.a.Data[di]
-		if d.Trace {
-			continue
-		}
-		a := answer{id: "dissociation", source: dissociationSource, group: foundGood}
-		if d.SitesPresent.Value <= 0 && d.SitesPresent.FromBmax <= 0 {
-			a.group, a.remedy = settleFirst, "sites_present: 80 uM"
-			if !pressure(r.a.Ligand.Unit) {
-				a.group = forCompleteness // asked by depletion already
-			}
-			a.text = r.where(di) + "The concentration of sites is not stated: whether molecules fall apart into smaller ones cannot be judged."
-			a.effect = "Where they do, n_H falls towards that of the parts."
-		} else {
-			a.text = r.where(di) + "The concentration of sites is stated; set it against the constant of dissociation into smaller molecules."
-		}
-		r.add(a)
-	}
-}
-
-// mostSites is the largest number of sites on one molecule among the mechanisms.
-func (r *review) mostSites() int {
-	n := 0
-	for i := range r.a.Candidates {
-		n = max(n, r.a.Candidates[i].Mechanism.Sites())
-	}
-	return n
 }

@@ -15,13 +15,15 @@ func (r *review) asksEnds(ctx context.Context) {
 	if len(set) == 0 {
 		for di := range r.a.Data {
 			if r.binds(di) {
-				r.add(answer{id: "ends-set", group: foundGood, source: endsSource, text: "The ends of the response are fitted, not set."})
+				r.add(answer{id: "ends-set", group: foundGood, source: endsSource,
+					text: "The ends of the response are fitted, not set."})
 				return
 			}
 		}
 		return
 	}
-	a := answer{id: "ends-set", group: sayInPaper, source: endsSource, remedy: "response: {low: free, " + set[0] + ": free}, or say how the ends were measured"}
+	a := answer{id: "ends-set", group: sayInPaper, source: endsSource, remedy: "response: {low: free, " +
+		set[0] + ": free}, or say how the ends were measured"}
 	a.text = "The ends were set, not fitted (" + list(r.endsInWords()) + ")."
 	if r.lead != nil {
 		r.endsFreed(ctx, &a)
@@ -136,13 +138,6 @@ func signed(v float64) string {
 		return "−" + figures(-v, 2)
 	}
 	return "+" + figures(v, 2)
-}
-
-func atLabel(curve string) string {
-	if curve == "all" || curve == "" {
-		return ""
-	}
-	return " at " + curve
 }
 
 // halfInterval is half of the width of the leader's interval of a number, of its

@@ -8,7 +8,9 @@ import (
 	"strings"
 )
 
-const incubationSource = "at least 5 half-lives of dissociation at the lowest ligand, and twice the time changes nothing: Hulme & Trevethick 2010 Br J Pharmacol 161:1219; Jarmoskaite et al. 2020 eLife 9:e57264; rules from memory"
+const incubationSource = "at least 5 half-lives of dissociation at the lowest ligand, and twice the " +
+	"time changes nothing: Hulme & Trevethick 2010 Br J Pharmacol 161:1219; Jarmoskaite et al. 2020 " +
+	"eLife 9:e57264; rules from memory"
 
 // asksIncubation asks whether the slowest samples, those with least ligand, had
 // come to rest.
@@ -32,15 +34,20 @@ func (r *review) asksIncubation(context.Context) {
 }
 
 func (r *review) incubationUnknown(di int) {
-	a := answer{id: "incubation-unknown", group: settleFirst, source: incubationSource, remedy: "incubation: 90 min",
-		text: r.where(di) + "The incubation is not stated: whether the samples with least ligand had come to rest cannot be judged."}
+	a := answer{id: "incubation-unknown", group: settleFirst, source: incubationSource,
+		remedy: "incubation: 90 min",
+		text: r.where(di) +
+			"The incubation is not stated: whether the samples with least ligand had come to rest " +
+			"cannot be judged."}
 	if pressure(r.a.Ligand.Unit) {
 		a.group = forCompleteness
 	} else if r.a.Data[di].Response.Kind == "signal" {
 		a.group = sayInPaper
 	}
 	shift, n := early(1)
-	a.effect = fmt.Sprintf("Stopped after one half-life one site reads EC50 %.3f K and n_H %.3f; very early, n_H %.3f.", shift, n, 2*math.Ln2)
+	a.effect = fmt.Sprintf("Stopped after one half-life one site reads EC50 %.3f K and n_H %.3f; very "+
+		"early, n_H %.3f.",
+		shift, n, 2*math.Ln2)
 	r.add(a)
 }
 
@@ -97,7 +104,8 @@ func (r *review) halfLives(di int) (m float64, curve string) {
 
 func (r *review) incubationJudged(di int, m float64, curve string) {
 	a := answer{id: "incubation", group: foundGood, source: incubationSource,
-		text: fmt.Sprintf("%sThe incubation of %s is %s half-lives of dissociation%s", r.where(di), duration(r.a.Data[di].Incubation), figures(m, 2), curve)}
+		text: fmt.Sprintf("%sThe incubation of %s is %s half-lives of dissociation%s", r.where(di),
+			duration(r.a.Data[di].Incubation), figures(m, 2), curve)}
 	if m > 0 {
 		shift, n := early(m)
 		a.effect = fmt.Sprintf("One site then reads EC50 %.3f K and n_H %.3f.", shift, n)
@@ -110,7 +118,8 @@ func (r *review) incubationJudged(di int, m float64, curve string) {
 		return
 	}
 	a.group = settleFirst
-	a.text += fmt.Sprintf(", fewer than %s: the samples with least ligand had not come to rest.", figures(r.limits.HalfLives, 2))
+	a.text += fmt.Sprintf(", fewer than %s: the samples with least ligand had not come to rest.",
+		figures(r.limits.HalfLives, 2))
 	a.remedy = "stand longer, and show that twice the time changes nothing"
 	r.add(a)
 }
@@ -118,8 +127,10 @@ func (r *review) incubationJudged(di int, m float64, curve string) {
 // incubationBounded says for which rates the incubation was long enough.
 func (r *review) incubationBounded(di int) {
 	t := r.a.Data[di].Incubation
-	r.add(answer{id: "incubation-unknown", group: sayInPaper, source: incubationSource, remedy: "rates: {k_on: 1e6 1/(M s)}, or measure at twice the time",
-		text: fmt.Sprintf("%sNo rate is given. %s are %s half-lives only if k_off is above %s 1/s.", r.where(di), duration(t),
+	r.add(answer{id: "incubation-unknown", group: sayInPaper, source: incubationSource,
+		remedy: "rates: {k_on: 1e6 1/(M s)}, or measure at twice the time",
+		text: fmt.Sprintf("%sNo rate is given. %s are %s half-lives only if k_off is above %s 1/s.",
+			r.where(di), duration(t),
 			figures(r.limits.HalfLives, 2), figures(r.limits.HalfLives*math.Ln2/t, 2))})
 }
 
@@ -160,7 +171,9 @@ func (r *review) compareIncubations(c, e *reading) {
 	s, l := r.a.Data[c.data].Incubation, r.a.Data[e.data].Incubation
 	shift := e.lnK - c.lnK
 	a := answer{id: "incubation-doubled", group: foundGood, source: incubationSource,
-		text: fmt.Sprintf("After %s in place of %s, K_half%s changes by a factor of %s and n_H from %s to %s", duration(l), duration(s), r.onCurve(c),
+		text: fmt.Sprintf("After %s in place of %s, K_half%s changes by a factor of %s and n_H from "+
+			"%s to %s",
+			duration(l), duration(s), r.onCurve(c),
 			figures(math.Exp(shift), 3), figures(c.h, 3), figures(e.h, 3))}
 	if math.Abs(shift) > 2.58*math.Hypot(c.seLnK, e.seLnK) { // 99 %
 		a.group = settleFirst

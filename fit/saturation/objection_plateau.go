@@ -19,8 +19,9 @@ func (r *review) asksPlateau(context.Context) {
 		}
 		list := r.readings(di)
 		if why := r.unread(di); why != "" {
-			r.add(answer{id: "plateau", group: sayInPaper, source: plateauSource, remedy: "measure on both sides of half saturation",
-				text: r.where(di) + "Whether the upper end was reached cannot be asked:" + " " + why + "."})
+			r.add(answer{id: "plateau", group: sayInPaper, source: plateauSource,
+				remedy: "measure on both sides of half saturation",
+				text:   r.where(di) + "Whether the upper end was reached cannot be asked:" + " " + why + "."})
 		}
 		if len(list) == 0 {
 			continue
@@ -80,22 +81,28 @@ func (r *review) plateauOf(c *reading, s float64) {
 	d := &r.a.Data[c.data]
 	name := endsOf(d.Response.Kind).high
 	a := answer{id: "plateau", group: foundGood, source: plateauSource,
-		text: fmt.Sprintf("%sThe highest ligand%s reaches %s saturation.", r.where(c.data), r.onCurve(c), percent(s))}
+		text: fmt.Sprintf("%sThe highest ligand%s reaches %s saturation.", r.where(c.data), r.onCurve(c),
+			percent(s))}
 	if s >= r.limits.Saturated {
 		r.add(a)
 		return
 	}
 	k := math.Exp(c.lnK)
-	a.remedy = fmt.Sprintf("measure up to %s", withUnit(k*math.Pow(r.limits.Saturated/(1-r.limits.Saturated), 1/c.h), r.a.Ligand.Unit, 2))
+	a.remedy = fmt.Sprintf("measure up to %s",
+		withUnit(k*math.Pow(r.limits.Saturated/(1-r.limits.Saturated), 1/c.h), r.a.Ligand.Unit, 2))
 	_, _, at := r.hills[c.data].end(c, highEnd, highSetting)
 	if at < 0 {
 		a.group = sayInPaper
-		a.text = fmt.Sprintf("%sThe curve%s stops at %s saturation, and its upper end (%s) was set, not measured.", r.where(c.data), r.onCurve(c), percent(s), name)
+		a.text = fmt.Sprintf("%sThe curve%s stops at %s saturation, and its upper end (%s) was set, not "+
+			"measured.",
+			r.where(c.data), r.onCurve(c), percent(s), name)
 		r.add(a)
 		return
 	}
 	a.group = settleFirst
-	a.text = fmt.Sprintf("%sThe upper end was not reached: the highest ligand%s is at %s saturation, and %s is an extrapolation", r.where(c.data), r.onCurve(c), percent(s), name)
+	a.text = fmt.Sprintf("%sThe upper end was not reached: the highest ligand%s is at %s saturation, "+
+		"and %s is an extrapolation",
+		r.where(c.data), r.onCurve(c), percent(s), name)
 	a.text += r.plateauInterval(c) + "."
 	a.effect = r.plateauEffect(c)
 	r.add(a)
@@ -147,5 +154,6 @@ func (r *review) plateauEffect(c *reading) string {
 	if math.Abs(move) > 2 {
 		return "n_H is open."
 	}
-	return fmt.Sprintf("Over the interval of that end, n_H of a Hill fit runs from %s to %s.", figures(low, 2), figures(high, 2))
+	return fmt.Sprintf("Over the interval of that end, n_H of a Hill fit runs from %s to %s.",
+		figures(low, 2), figures(high, 2))
 }

@@ -5,7 +5,8 @@ import (
 	"fmt"
 )
 
-const pointsSource = "AICc is undefined at N ≤ K + 1, K counting σ: Hurvich & Tsai 1989 Biometrika 76:297, from memory"
+const pointsSource = "AICc is undefined at N ≤ K + 1, K counting σ: Hurvich & Tsai 1989 Biometrika " +
+	"76:297, from memory"
 
 // smallSample is the correction of AICc, 2K(K+1)/(N−K−1).
 func smallSample(n, k int) float64 { return 2 * float64(k) * float64(k+1) / float64(n-k-1) }
@@ -22,13 +23,15 @@ func (r *review) asksPoints(context.Context) {
 		}
 		if n <= k+1 {
 			a.group, a.remedy = settleFirst, "measure more points, or leave this mechanism out"
-			a.text = fmt.Sprintf("%d points for %d numbers of %s, σ counted: AICc does not exist.", n, k, quoted(c.Name))
+			a.text = fmt.Sprintf("%d points for %d numbers of %s, σ counted: AICc does not exist.", n, k,
+				quoted(c.Name))
 			r.add(a)
 			return
 		}
 		if s := smallSample(n, k); s > worst {
 			worst = s
-			a.text = fmt.Sprintf("%d points for %d numbers of %s, σ counted: AICc adds %s for it.", n, k, quoted(c.Name), figures(s, 3))
+			a.text = fmt.Sprintf("%d points for %d numbers of %s, σ counted: AICc adds %s for it.", n, k,
+				quoted(c.Name), figures(s, 3))
 		}
 	}
 	if worst > r.limits.Correction {

@@ -49,12 +49,14 @@ func (r *review) velocityUnit(unit string) (perSecond float64, ok bool) {
 func (r *review) ratesUnknown(di int, inLigandUnit bool) {
 	d := &r.a.Data[di]
 	if r.stated(d, "initial rates", "initial rate", "linearity", "conversion", "substrate used") {
-		r.add(answer{id: "initial-rates", group: foundGood, source: ratesSource, text: r.where(di) + "Initial rates are stated among the conditions."})
+		r.add(answer{id: "initial-rates", group: foundGood, source: ratesSource, text: r.where(di) +
+			"Initial rates are stated among the conditions."})
 		return
 	}
 	why := "how long the reaction ran is not stated"
 	if !inLigandUnit {
-		why = fmt.Sprintf("a velocity in %s does not say how much of the substrate, in %s, was used", d.Response.Unit, r.a.Ligand.Unit)
+		why = fmt.Sprintf("a velocity in %s does not say how much of the substrate, in %s, was used",
+			d.Response.Unit, r.a.Ligand.Unit)
 	}
 	_, n := consumed(1)
 	r.add(answer{id: "initial-rates", group: sayInPaper, source: ratesSource,
@@ -75,7 +77,8 @@ func (r *review) ratesJudged(di int, perSecond float64) {
 		}
 	}
 	a := answer{id: "initial-rates", group: foundGood, source: ratesSource,
-		text: fmt.Sprintf("%sAt most %s of the substrate was used up, at %s", r.where(di), percent(used), withUnit(at, r.a.Ligand.Unit, 3))}
+		text: fmt.Sprintf("%sAt most %s of the substrate was used up, at %s", r.where(di), percent(used),
+			withUnit(at, r.a.Ligand.Unit, 3))}
 	if list := r.readings(di); len(list) > 0 {
 		c := steepest(list)
 		v, _, _ := r.hills[di].end(c, highEnd, highSetting)

@@ -86,7 +86,8 @@ func (a *Analysis) hillStudyOf(ctx context.Context, di int) *hillStudy {
 		if err != nil {
 			why = err.Error()
 		} else {
-			s.f = a.curveByCurve(di).fitCandidate(ctx, &c, fit.Settings{Starts: readingStarts, Seed: a.Settings.Seed, Workers: a.Settings.Workers})
+			s.f = a.curveByCurve(di).fitCandidate(ctx, &c, fit.Settings{Starts: readingStarts,
+				Seed: a.Settings.Seed, Workers: a.Settings.Workers})
 			why = s.failed()
 		}
 	}
@@ -134,7 +135,8 @@ func simpleCandidate(family string, def mechanisms.Definition) (Candidate, error
 	if err != nil {
 		return Candidate{}, err
 	}
-	return Candidate{Name: family, Family: family, Mechanism: m, Differs: map[string]string{"all": eachCurve}}, nil
+	return Candidate{Name: family, Family: family, Mechanism: m,
+		Differs: map[string]string{"all": eachCurve}}, nil
 }
 
 // failed says why a Hill fit says nothing.
@@ -240,7 +242,8 @@ func (c *reading) levels(d *Dataset) []float64 {
 
 // end is a number of the response for a curve: as fitted, or as set. Where it
 // differs among the points of the curve it is that of the first.
-func (s *hillStudy) end(c *reading, pick func(*datum) int, set func(*Response) Setting) (v, se float64, at int) {
+func (s *hillStudy) end(c *reading, pick func(*datum) int, set func(*Response) Setting) (v, se float64,
+	at int) {
 	b := s.f.m.blocks[0]
 	for i := range b.pts {
 		if q := &b.pts[i]; q.cell == c.cell && !q.blocked {

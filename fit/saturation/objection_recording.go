@@ -11,7 +11,8 @@ import (
 )
 
 const (
-	recordingSource = "effective number N(1 − ρ)/(1 + ρ) with ρ the lag-1 autocorrelation: standard for an autoregressive series, from memory"
+	recordingSource = "effective number N(1 − ρ)/(1 + ρ) with ρ the lag-1 autocorrelation: standard for " +
+		"an autoregressive series, from memory"
 	// recordingPoints is the least number of ligand values in one series of one
 	// preparation that makes it a recording.
 	recordingPoints = 30
@@ -28,20 +29,26 @@ func (r *review) asksRecording(context.Context) {
 		rho, n, longest := r.neighbours(di)
 		a := answer{id: "correlated-points", group: foundGood, source: recordingSource}
 		if n == 0 {
-			a.text = fmt.Sprintf("%sPoints are single measurements, not a continuous recording (at most %d ligand values in a series).", r.where(di), longest)
+			a.text = fmt.Sprintf("%sPoints are single measurements, not a continuous recording (at most "+
+				"%d ligand values in a series).",
+				r.where(di), longest)
 			r.add(a)
 			continue
 		}
 		points := float64(r.kept(di))
-		a.text = fmt.Sprintf("%sNeighbouring residuals of the recording are not correlated (ρ = %s).", r.where(di), figures(rho, 2))
+		a.text = fmt.Sprintf("%sNeighbouring residuals of the recording are not correlated (ρ = %s).",
+			r.where(di), figures(rho, 2))
 		if rho > z99/math.Sqrt(n) {
 			effective := points * (1 - rho) / (1 + rho)
 			a.group = sayInPaper
 			if effective < points/2 {
 				a.group = settleFirst
 			}
-			a.text = fmt.Sprintf("%sNeighbouring residuals are correlated (ρ = %s): %.0f points are worth about %.0f.", r.where(di), figures(rho, 2), points, effective)
-			a.effect = fmt.Sprintf("Intervals, that of n_H among them, are too narrow by a factor of %s.", figures(math.Sqrt(points/effective), 3))
+			a.text = fmt.Sprintf("%sNeighbouring residuals are correlated (ρ = %s): %.0f points are "+
+				"worth about %.0f.",
+				r.where(di), figures(rho, 2), points, effective)
+			a.effect = fmt.Sprintf("Intervals, that of n_H among them, are too narrow by a factor of %s.",
+				figures(math.Sqrt(points/effective), 3))
 			a.remedy = "thin the recording, or count recordings, not points"
 		}
 		r.add(a)
@@ -111,7 +118,8 @@ func (r *review) series(di int, res []float64) [][]int {
 	}
 	for _, s := range list {
 		slices.SortStableFunc(s, func(a, b int) int {
-			return cmp.Or(cmp.Compare(d.Points[a].X, d.Points[b].X), cmp.Compare(d.Points[a].Row, d.Points[b].Row))
+			return cmp.Or(cmp.Compare(d.Points[a].X, d.Points[b].X),
+				cmp.Compare(d.Points[a].Row, d.Points[b].Row))
 		})
 	}
 	return list

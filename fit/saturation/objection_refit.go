@@ -20,7 +20,8 @@ func (f *fitted) refit(ctx context.Context, change func(*Analysis, *Candidate)) 
 	}
 	c := *f.m.c
 	change(&a, &c)
-	g := &fitted{twinOf: -1, row: MechanismRow{Name: c.Name, Family: c.Family, Sites: f.row.Sites, Status: "no answer"}}
+	g := &fitted{twinOf: -1, row: MechanismRow{Name: c.Name, Family: c.Family, Sites: f.row.Sites,
+		Status: "no answer"}}
 	if g.m, g.err = newModel(&a, &c); g.err != nil {
 		return g
 	}
@@ -49,7 +50,8 @@ func (m *model) startsFrom(f *fitted) []float64 {
 	for i := range m.params {
 		p := &m.params[i]
 		j := slices.IndexFunc(f.m.params, func(q parameter) bool {
-			return q.kind == p.kind && q.constant == p.constant && q.quantity == p.quantity && q.data == p.data && q.curve == p.curve
+			return q.kind == p.kind && q.constant == p.constant && q.quantity == p.quantity &&
+				q.data == p.data && q.curve == p.curve
 		})
 		switch {
 		case j >= 0:
@@ -164,14 +166,16 @@ func moveBetween(f, g *fitted, half func(name, curve string) float64) move {
 
 // inWords is "n_H moves by +0.03 at pH 7.0, half saturation by 2.1 %".
 func (m move) inWords() string {
-	where := atLabel(trimEach(m.curve))
+	where := onCurve(trimEach(m.curve))
 	switch n, x := math.IsNaN(m.nH), math.IsNaN(m.lnX); {
 	case n && x:
 		return "half saturation is lost" + where
 	case n:
-		return fmt.Sprintf("half saturation moves by %s%s, and n_H there is lost", factorWords(math.Exp(m.lnX)), where)
+		return fmt.Sprintf("half saturation moves by %s%s, and n_H there is lost",
+			factorWords(math.Exp(m.lnX)), where)
 	case x:
 		return fmt.Sprintf("n_H moves by %s%s", signed(m.nH), where)
 	}
-	return fmt.Sprintf("n_H moves by %s%s, half saturation by %s", signed(m.nH), where, factorWords(math.Exp(m.lnX)))
+	return fmt.Sprintf("n_H moves by %s%s, half saturation by %s", signed(m.nH), where,
+		factorWords(math.Exp(m.lnX)))
 }

@@ -7,7 +7,8 @@ import (
 	"slices"
 )
 
-const sensitivitySource = fromPractice + ": results should not hang on one preparation, nor on the outermost points"
+const sensitivitySource = fromPractice +
+	": results should not hang on one preparation, nor on the outermost points"
 
 // farOut is the move, in halves of the interval, from which it is to be settled
 // first what hangs on what was left out.
@@ -23,7 +24,8 @@ func (r *review) asksSensitivity(ctx context.Context) {
 	r.withoutOuterPoints(ctx)
 }
 
-var omittedWords = map[string]string{"without-a-preparation": "one preparation", "without-the-outermost": "the outermost points"}
+var omittedWords = map[string]string{"without-a-preparation": "one preparation",
+	"without-the-outermost": "the outermost points"}
 
 // omission is one refit with something left out.
 type omission struct {
@@ -35,7 +37,8 @@ func (r *review) withoutPreparations(ctx context.Context) {
 	var list []omission
 	for _, name := range r.a.levels(byPreparation) {
 		if name != "" {
-			list = append(list, omission{"preparation " + name, func(_ int, p *Point) bool { return p.Preparation == name }})
+			list = append(list, omission{"preparation " + name,
+				func(_ int, p *Point) bool { return p.Preparation == name }})
 		}
 	}
 	a := answer{id: "without-a-preparation", source: sensitivitySource}
@@ -67,7 +70,10 @@ func (r *review) withoutOuterPoints(ctx context.Context) {
 		}
 	}
 	r.sensitive(ctx, answer{id: "without-the-outermost", source: sensitivitySource}, []omission{
-		{"the lowest ligand value", func(di int, p *Point) bool { return p.X > 0 && p.X == lowest[key(di, p)] }},
+		{"the lowest ligand value", func(di int, p *Point) bool {
+			return p.X > 0 &&
+				p.X == lowest[key(di, p)]
+		}},
 		{"the highest ligand value", func(di int, p *Point) bool { return p.X == highest[key(di, p)] }},
 	})
 }
@@ -79,7 +85,8 @@ func (r *review) sensitive(ctx context.Context, a answer, omissions []omission) 
 	for _, o := range omissions {
 		g := r.lead.refit(ctx, func(b *Analysis, _ *Candidate) {
 			for di := range b.Data {
-				b.Data[di].Points = slices.DeleteFunc(b.Data[di].Points, func(p Point) bool { return o.drop(di, &p) })
+				b.Data[di].Points = slices.DeleteFunc(b.Data[di].Points,
+					func(p Point) bool { return o.drop(di, &p) })
 			}
 		})
 		if g.result == nil {
@@ -99,16 +106,20 @@ func (r *review) sensitive(ctx context.Context, a answer, omissions []omission) 
 		return
 	case !worst.compared:
 		a.group = forCompleteness
-		a.text = "What hangs on " + omittedWords[a.id] + " cannot be judged: neither half saturation nor n_H has an interval that ends on both sides."
+		a.text = "What hangs on " + omittedWords[a.id] +
+			" cannot be judged: neither half saturation nor n_H has an interval that ends on both sides."
 	case worst.ratio > 1:
 		a.group = sayInPaper
-		a.text = fmt.Sprintf("Without %s a result%s moves by more than its interval.", what, atLabel(worst.curve))
+		a.text = fmt.Sprintf("Without %s a result%s moves by more than its interval.", what,
+			onCurve(worst.curve))
 		a.remedy = "print the fit without it beside the fit with it"
 		if worst.ratio > farOut {
 			a.group = settleFirst
 		}
 	default:
-		a.text = fmt.Sprintf("No result hangs on %s: half saturation and n_H stay within their intervals without it.", omittedWords[a.id])
+		a.text = fmt.Sprintf("No result hangs on %s: half saturation and n_H stay within their "+
+			"intervals without it.",
+			omittedWords[a.id])
 	}
 	a.effect = fmt.Sprintf("Most without %s: %s.", what, worst.inWords())
 	if len(failed) > 0 {

@@ -7,7 +7,8 @@ import (
 	"strings"
 )
 
-const transformSource = "fit what was measured, transforms are for display: Cornish-Bowden, Fundamentals of Enzyme Kinetics, from memory"
+const transformSource = "fit what was measured, transforms are for display: Cornish-Bowden, " +
+	"Fundamentals of Enzyme Kinetics, from memory"
 
 // straight is the correlation from which points are taken to lie on a line.
 const straight = 0.995
@@ -19,10 +20,12 @@ func (r *review) asksTransformation(context.Context) {
 		if d.Trace || d.Response.Of != "" {
 			continue
 		}
-		a := answer{id: "transformed-axes", group: foundGood, source: transformSource, text: r.where(di) + "The response is fitted as it was measured, on an untransformed axis."}
+		a := answer{id: "transformed-axes", group: foundGood, source: transformSource, text: r.where(di) +
+			"The response is fitted as it was measured, on an untransformed axis."}
 		if what := r.transformed(d); what != "" {
 			a.group = settleFirst
-			a.text = r.where(di) + "The response looks like " + what + ": it cannot be a target of a fit, since its scatter is weighted wrongly."
+			a.text = r.where(di) + "The response looks like " + what +
+				": it cannot be a target of a fit, since its scatter is weighted wrongly."
 			a.effect = "K and n_H of a fit to it mean nothing."
 			a.remedy = "give the column that was measured"
 		}
@@ -66,7 +69,8 @@ func shapeOfTransform(pts []Point, resp Response) string {
 	}
 	switch {
 	case resp.Kind == "saturation" && (low < -0.3*top || high > 1.3*top) && correlation(lnx, y) > straight:
-		return fmt.Sprintf("the ordinate of a Hill plot: it runs straight with ln x from %s to %s", figures(low, 2), figures(high, 2))
+		return fmt.Sprintf("the ordinate of a Hill plot: it runs straight with ln x from %s to %s",
+			figures(low, 2), figures(high, 2))
 	case resp.Kind != "signal" && correlation(inv, y) > straight && correlation(lnx, y) < 0:
 		return "a reciprocal: it falls as the ligand rises, straight with 1/x"
 	case resp.Kind != "signal" && correlation(lnx, y) < -0.8:

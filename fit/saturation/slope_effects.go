@@ -95,7 +95,7 @@ func sipsSpread(h float64) float64 {
 	if h >= 1 {
 		return 0
 	}
-	return math.Pi / math.Sqrt(3) * math.Sqrt(1/(h*h)-1)
+	return float64(spread(Real(h)))
 }
 
 // twoClassHalf is n_H at half saturation of two equal classes of sites whose

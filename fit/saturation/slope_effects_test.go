@@ -17,7 +17,8 @@ func TestDepletedMidpoint(t *testing.T) {
 }
 
 func TestEarlyReading(t *testing.T) {
-	for _, w := range [][3]float64{{0.25, 4.464, 1.347}, {0.5, 2.485, 1.308}, {1, 1.530, 1.235}, {2, 1.119, 1.118}, {3, 1.030, 1.049}, {5, 1.002, 1.006}} {
+	for _, w := range [][3]float64{{0.25, 4.464, 1.347}, {0.5, 2.485, 1.308}, {1, 1.530, 1.235},
+		{2, 1.119, 1.118}, {3, 1.030, 1.049}, {5, 1.002, 1.006}} {
 		shift, n := early(w[0])
 		if math.Abs(shift-w[1]) > 6e-4 || math.Abs(n-w[2]) > 6e-4 {
 			t.Errorf("%g half-lives: %.4f, %.4f, want %.3f, %.3f", w[0], shift, n, w[1], w[2])
@@ -35,7 +36,8 @@ func TestEarlyReading(t *testing.T) {
 }
 
 func TestTwoClasses(t *testing.T) {
-	for _, w := range [][3]float64{{2, 0.971, 0.977}, {4, 0.889, 0.916}, {10, 0.730, 0.803}, {30, 0.522, 0.664}, {100, 0.331, 0.534}} {
+	for _, w := range [][3]float64{{2, 0.971, 0.977}, {4, 0.889, 0.916}, {10, 0.730, 0.803},
+		{30, 0.522, 0.664}, {100, 0.331, 0.534}} {
 		h, rms := twoClassFit(w[0])
 		t.Logf("%g %.4f %.4f %.5f", w[0], twoClassHalf(w[0]), h, rms)
 		if math.Abs(twoClassHalf(w[0])-w[1]) > 6e-4 || math.Abs(h-w[2]) > 6e-4 {

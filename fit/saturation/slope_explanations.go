@@ -160,7 +160,8 @@ func (e *explainer) fit(ctx context.Context, x *explanation) {
 		if t.change != nil {
 			t.change(&b)
 		}
-		f := b.fitCandidate(ctx, &t.candidate, fit.Settings{Starts: explanationStarts, Seed: b.Settings.Seed, Workers: b.Settings.Workers})
+		f := b.fitCandidate(ctx, &t.candidate, fit.Settings{Starts: explanationStarts,
+			Seed: b.Settings.Seed, Workers: b.Settings.Workers})
 		if f.answered() && (x.best == nil || f.row.AICc < x.best.row.AICc) {
 			x.best = f
 		}
@@ -259,12 +260,14 @@ func (e *explainer) judge(ctx context.Context, x *explanation, lead *fitted) {
 		return
 	}
 	x.standing = "open"
-	d := &decider{a: e.a, fits: []*fitted{lead, f}, order: []int{0, 1}, rivals: []int{0}, draws: min(e.r.a.Settings.Draws, explanationDraws)}
+	d := &decider{a: e.a, fits: []*fitted{lead, f}, order: []int{0, 1}, rivals: []int{0},
+		draws: min(e.r.a.Settings.Draws, explanationDraws)}
 	if !d.out(ctx, 1) {
 		return
 	}
 	x.standing = "out"
-	why := fmt.Sprintf("it does not describe these curves (AICc %s behind)", figures(float64(f.row.AICc-lead.row.AICc), 2))
+	why := fmt.Sprintf("it does not describe these curves (AICc %s behind)",
+		figures(float64(f.row.AICc-lead.row.AICc), 2))
 	switch {
 	case x.why == "":
 		x.why = why
@@ -298,7 +301,8 @@ func (e *explainer) twin(x *explanation, i int) *string {
 		return nil
 	}
 	for _, g := range e.rivals {
-		if g != own && g != f && !(x.mine != nil && x.mine(g)) && g.row.Standing != "out" && g.k == f.k && sameFit(f, g) {
+		if g != own && g != f && !(x.mine != nil && x.mine(g)) && g.row.Standing != "out" && g.k == f.k &&
+			sameFit(f, g) {
 			return text(quoted(g.row.Name))
 		}
 	}

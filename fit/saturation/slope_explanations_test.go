@@ -52,8 +52,12 @@ func sixDecades(y func(float64) float64) sketch {
 // Two unlike sites on a molecule (truth 5) are the twin of a negative pair,
 // stepwise or in contact, and MWC is ruled out.
 func TestShallowTwinsOfUnlikeSites(t *testing.T) {
-	out := analysed(t, sixDecades(func(x float64) float64 { return hyperbola(x)/2 + hyperbola(x/10)/2 }).study(t))
-	explainedAs(t, out, map[string]string{xUnlike: "open", xTwo: "open", xSteps: "twin", xContact: "twin", xSpread: "out", xLine: "out", xEnds: "out", xShift: "out", xConcerted: "out"})
+	out := analysed(t, sixDecades(func(x float64) float64 {
+		return hyperbola(x)/2 +
+			hyperbola(x/10)/2
+	}).study(t))
+	explainedAs(t, out, map[string]string{xUnlike: "open", xTwo: "open", xSteps: "twin", xContact: "twin",
+		xSpread: "out", xLine: "out", xEnds: "out", xShift: "out", xConcerted: "out"})
 	if r := explained(t, out, xSteps); deref(r.TwinOf) != xUnlike {
 		t.Errorf("twin of %q", deref(r.TwinOf))
 	}
@@ -66,12 +70,14 @@ func TestShallowTwinsOfUnlikeSites(t *testing.T) {
 func TestShallowTwinInTheStudy(t *testing.T) {
 	s := sixDecades(func(x float64) float64 { return hyperbola(x)/2 + hyperbola(x/10)/2 })
 	s.candidates = []Candidate{
-		{Name: "interacting pair", Family: "adair", Mechanism: build(t, "adair", mechanisms.Definition{Sites: 2})},
+		{Name: "interacting pair", Family: "adair", Mechanism: build(t, "adair",
+			mechanisms.Definition{Sites: 2})},
 		{Name: "Hill equation", Family: "hill", Mechanism: build(t, "hill", mechanisms.Definition{})},
 	}
 	out := analysed(t, s.study(t))
 	explainedAs(t, out, map[string]string{xUnlike: "twin", xSteps: "twin", xContact: "twin"})
-	if r := explained(t, out, xUnlike); deref(r.TwinOf) != quoted("interacting pair") || r.Mechanism != nil {
+	if r := explained(t, out, xUnlike); deref(r.TwinOf) != quoted("interacting pair") ||
+		r.Mechanism != nil {
 		t.Errorf("twin of %s, mechanism %s", deref(r.TwinOf), deref(r.Mechanism))
 	}
 	if r := explained(t, out, xSteps); deref(r.Mechanism) != "interacting pair" {
@@ -81,9 +87,13 @@ func TestShallowTwinInTheStudy(t *testing.T) {
 
 // Populations with shares 0.35 and 0.65 (truth 7) cannot be equal classes.
 func TestShallowPopulations(t *testing.T) {
-	out := analysed(t, sixDecades(func(x float64) float64 { return 0.35*hyperbola(x) + 0.65*hyperbola(x/30) }).study(t))
+	out := analysed(t, sixDecades(func(x float64) float64 {
+		return 0.35*hyperbola(x) +
+			0.65*hyperbola(x/30)
+	}).study(t))
 	explainedAs(t, out, map[string]string{xTwo: "open", xUnlike: "out", xSteps: "out", xSpread: "out"})
-	if r := explained(t, out, xTwo); !(r.AICcAhead > 10) || !strings.Contains(out.Verdict.Text, "better than any mechanism tried") {
+	if r := explained(t, out, xTwo); !(r.AICcAhead > 10) || !strings.Contains(out.Verdict.Text,
+		"better than any mechanism tried") {
 		t.Errorf("%v ahead of the mechanisms, and the verdict does not say so", r.AICcAhead)
 	}
 }
@@ -94,12 +104,14 @@ func TestShallowSpread(t *testing.T) {
 	s := sixDecades(hillOf(0.7))
 	s.scatter = 1e-6
 	out := analysed(t, s.study(t))
-	if r := explained(t, out, xSpread); math.Abs(float64(r.Value)-1.850) > 5e-4 || !(r.Low < r.Value && r.Value < r.High) || deref(r.Name) != spreadOfK {
+	if r := explained(t, out, xSpread); math.Abs(float64(r.Value)-1.850) > 5e-4 ||
+		!(r.Low < r.Value && r.Value < r.High) || deref(r.Name) != spreadOfK {
 		t.Errorf("SD of ln K %.4f (%.4f to %.4f)", r.Value, r.Low, r.High)
 	}
 	s.scatter = 0.01
 	out = analysed(t, s.study(t))
-	explainedAs(t, out, map[string]string{xSpread: "open", xUnlike: "out", xTwo: "out", xSteps: "out", xContact: "out"})
+	explainedAs(t, out, map[string]string{xSpread: "open", xUnlike: "out", xTwo: "out", xSteps: "out",
+		xContact: "out"})
 	if r := explained(t, out, xSpread); !(r.Low < 1.850 && 1.850 < r.High) {
 		t.Errorf("the interval %.3f to %.3f misses 1.850", r.Low, r.High)
 	}
@@ -110,10 +122,12 @@ func TestShallowArtefacts(t *testing.T) {
 	free := Response{Kind: "signal", Low: Setting{Free: true}, High: Setting{Free: true}}
 	line := plain(func(x float64) float64 { return hyperbola(x) + 0.004*x })
 	line.response = free
-	explainedAs(t, analysed(t, line.study(t)), map[string]string{xLine: "open", "one site with both ends fitted": "out", xSpread: "out", xUnlike: "out"})
+	explainedAs(t, analysed(t, line.study(t)), map[string]string{xLine: "open",
+		"one site with both ends fitted": "out", xSpread: "out", xUnlike: "out"})
 
 	low := plain(func(x float64) float64 { return 0.1 + 0.9*hyperbola(x) })
-	explainedAs(t, analysed(t, low.study(t)), map[string]string{xEnds: "open", xLine: "out", xUnlike: "out", xSpread: "out"})
+	explainedAs(t, analysed(t, low.study(t)), map[string]string{xEnds: "open", xLine: "out", xUnlike: "out",
+		xSpread: "out"})
 }
 
 // Preparations of one site whose ln K scatter with SD 1 (truth 11): the shift
@@ -124,7 +138,8 @@ func TestShallowPreparations(t *testing.T) {
 	a.Settings.Draws = 99
 	out := analysed(t, a)
 	explainedAs(t, out, map[string]string{xShift: "open"})
-	if r := explained(t, out, xShift); !(r.Value > 0.8 && r.Value <= 1) || !strings.Contains(deref(r.Why), "shifted by preparation") {
+	if r := explained(t, out, xShift); !(r.Value > 0.8 && r.Value <= 1) ||
+		!strings.Contains(deref(r.Why), "shifted by preparation") {
 		t.Errorf("explains %.2f: %s", r.Value, deref(r.Why))
 	}
 	for i := range a.Data[0].Points {
@@ -144,13 +159,15 @@ func TestShallowPreparationsAlone(t *testing.T) {
 		a.Data[0].Points[i].Sigma = 0.02
 	}
 	out := analysed(t, a)
-	if r := explained(t, out, xShift); r.Standing != "open" || !strings.Contains(deref(r.Why), "read alone, in six preparations") {
+	if r := explained(t, out, xShift); r.Standing != "open" ||
+		!strings.Contains(deref(r.Why), "read alone, in six preparations") {
 		t.Errorf("%s: %s", r.Standing, deref(r.Why))
 	}
 }
 
 // bindingOf is a curve of a mechanism.
-func bindingOf(t testing.TB, family string, d mechanisms.Definition, theta ...float64) func(float64) float64 {
+func bindingOf(t testing.TB, family string, d mechanisms.Definition,
+	theta ...float64) func(float64) float64 {
 	c := build(t, family, d).Curve()
 	c.Bind(theta, env())
 	return func(x float64) float64 {
@@ -163,8 +180,11 @@ func bindingOf(t testing.TB, family string, d mechanisms.Definition, theta ...fl
 // Four concerted sites: no artefact of one site gives their curve.
 func TestSteepConcerted(t *testing.T) {
 	out := analysed(t, plain(bindingOf(t, "mwc", four(), math.Log(1e3), math.Log(0.01), 0)).study(t))
-	explainedAs(t, out, map[string]string{xDepletion: "out", xIncubation: "out", xEnds: "out", "concerted binding (MWC) of four sites": "open",
-		"interaction of four sites in contact (sequential)": "out", "stepwise binding to four sites": "open", xAssembly: "open", "any equilibrium mechanism with one site": "out"})
+	explainedAs(t, out, map[string]string{xDepletion: "out", xIncubation: "out", xEnds: "out",
+		"concerted binding (MWC) of four sites":             "open",
+		"interaction of four sites in contact (sequential)": "out",
+		"stepwise binding to four sites":                    "open", xAssembly: "open",
+		"any equilibrium mechanism with one site": "out"})
 }
 
 // depletedSite is one site with K 1 against total ligand, S being the sites:
@@ -181,7 +201,8 @@ func depletedSite(s float64) func(float64) float64 {
 func TestSteepDepletion(t *testing.T) {
 	a := plain(depletedSite(10)).study(t)
 	out := analysed(t, a)
-	explainedAs(t, out, map[string]string{xDepletion: "open", xIncubation: "out", "stepwise binding to four sites": "out"})
+	explainedAs(t, out, map[string]string{xDepletion: "open", xIncubation: "out",
+		"stepwise binding to four sites": "out"})
 	if r := explained(t, out, xDepletion); math.Abs(float64(r.Value)/10-1) > 0.1 || r.Unit != "nM" {
 		t.Errorf("sites needed %.3g %s, want 10 nM", r.Value, r.Unit)
 	}
@@ -221,7 +242,8 @@ func TestUnrestedCurve(t *testing.T) {
 		c.Bind(theta, env())
 		c.Saturation(y, lnx, g)
 		c.At(lnx[0], p)
-		if math.Abs(p.Y+p.Empty-1) > 1e-14 || p.Y != y[0] || p.GradY[0] != g.At(0, 0) || p.DY != -p.GradY[0] {
+		if math.Abs(p.Y+p.Empty-1) > 1e-14 || p.Y != y[0] || p.GradY[0] != g.At(0, 0) ||
+			p.DY != -p.GradY[0] {
 			t.Fatalf("At and Saturation differ at %v, %v", theta, lnx)
 		}
 		for k := range theta {
@@ -268,7 +290,8 @@ func TestNothingToExplain(t *testing.T) {
 	}
 	a := plain(hillOf(0.5)).study(t)
 	a.Data[0].Trace = true
-	if rows := (&review{a: a.withDefaults(), hills: a.hillStudies(context.Background())}).explanations(context.Background()); len(rows) != 0 {
+	if rows := (&review{a: a.withDefaults(),
+		hills: a.hillStudies(context.Background())}).explanations(context.Background()); len(rows) != 0 {
 		t.Error("a trace has no saturation curve to explain")
 	}
 }
@@ -282,7 +305,8 @@ func TestExplanationsKeepTheirDigits(t *testing.T) {
 	three := analysed(t, a)
 	for i, r := range one.Explanations {
 		s := three.Explanations[i]
-		if r.Standing != s.Standing || r.AICcBehind != s.AICcBehind && r.AICcBehind == r.AICcBehind || deref(r.Why) != deref(s.Why) {
+		if r.Standing != s.Standing || r.AICcBehind != s.AICcBehind && r.AICcBehind == r.AICcBehind ||
+			deref(r.Why) != deref(s.Why) {
 			t.Errorf("%s: %+v and %+v", r.Explanation, r, s)
 		}
 	}
@@ -305,13 +329,16 @@ func TestVerdictNamesArtefacts(t *testing.T) {
 	depleted.Data[0].SitesPresent = SitesPresent{Value: 10, Unit: "nM"}
 	short := plain(func(x float64) float64 { return earlyShare(x, math.Ln2) }).study(t)
 	short.Data[0].Incubation = 60
-	short.Candidates[0].Rates = map[string]Rate{"k_on": {Given: mechanisms.Given{Value: ptr(math.Ln2 / 60)}, Order: 2}}
+	short.Candidates[0].Rates = map[string]Rate{"k_on": {Given: mechanisms.Given{Value: ptr(math.Ln2 / 60)},
+		Order: 2}}
 	steep := plain(hillOf(2.6)).study(t)
 	linear := plain(func(x float64) float64 { return 1 + 1/x }).study(t)
 	linear.Data[0].Response = Response{Kind: "velocity", High: Setting{Free: true}}
-	for words, a := range map[string]*Analysis{"unless free ligand was measured": depleted, "incubation was too short": short,
+	for words, a := range map[string]*Analysis{"unless free ligand was measured": depleted,
+		"incubation was too short":    short,
 		"exceeds the number of sites": steep, "a transform of what was measured": linear} {
-		if text := analysed(t, a).Verdict.Text; !strings.Contains(text, "To be settled before n_H is believed") || !strings.Contains(text, words) {
+		if text := analysed(t, a).Verdict.Text; !strings.Contains(text,
+			"To be settled before n_H is believed") || !strings.Contains(text, words) {
 			t.Errorf("the verdict does not say %q: %s", words, text)
 		}
 	}
@@ -332,7 +359,8 @@ func TestObjectionsRarelyCryWolf(t *testing.T) {
 		s.levels, s.replicates, s.names = 60, 1, []string{"A"}
 		list = append(list, s.study(t).Objections(context.Background())...)
 		for _, o := range list {
-			for _, id := range []string{"uneven-scatter", "ligand-scatter", "correlated-points", "pooling", "baseline", "plateau"} {
+			for _, id := range []string{"uneven-scatter", "ligand-scatter", "correlated-points", "pooling",
+				"baseline", "plateau"} {
 				if o.ID == id && o.Group != foundGood && o.Group != forCompleteness {
 					cries++
 				}

@@ -22,8 +22,11 @@ func (unrested) Effectors() []string { return nil }
 
 func (unrested) Constants() []mechanisms.Constant {
 	return []mechanisms.Constant{
-		{Name: "K", Scale: mechanisms.Log, Dimension: 1, Low: 1e-6, High: 1e3, StartLow: 0.1, StartHigh: 1, Meaning: "dissociation constant of the site"},
-		{Name: "half_lives", Scale: mechanisms.Log, Low: 1e-3, High: 30, StartLow: 0.2, StartHigh: 3, EdgeHigh: "at rest", EdgeLow: "stopped at once", Meaning: "incubation in half-lives of dissociation"},
+		{Name: "K", Scale: mechanisms.Log, Dimension: 1, Low: 1e-6, High: 1e3, StartLow: 0.1, StartHigh: 1,
+			Meaning: "dissociation constant of the site"},
+		{Name: "half_lives", Scale: mechanisms.Log, Low: 1e-3, High: 30, StartLow: 0.2, StartHigh: 3,
+			EdgeHigh: "at rest", EdgeLow: "stopped at once",
+			Meaning: "incubation in half-lives of dissociation"},
 	}
 }
 

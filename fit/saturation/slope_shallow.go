@@ -13,12 +13,14 @@ import (
 
 // Measurements that part explanations of a shallow curve.
 const (
-	testDilution    = "dissociation after dilution, with and without unlabelled ligand (interacting sites change each other's off-rates)"
-	testClass       = "a signal, an inhibitor or a mutation that sees one class of sites"
-	testSeparation  = "the molecules separated, or one population blocked"
-	testSpread      = "purer material or single clones, with which a spread of affinities narrows"
-	testBlocked     = "tubes in which an excess of unlabelled ligand blocks the sites"
-	testEnds        = "points without ligand, and far enough above half saturation that nothing rises any more"
+	testDilution = "dissociation after dilution, with and without unlabelled ligand (interacting " +
+		"sites change each other's off-rates)"
+	testClass      = "a signal, an inhibitor or a mutation that sees one class of sites"
+	testSeparation = "the molecules separated, or one population blocked"
+	testSpread     = "purer material or single clones, with which a spread of affinities narrows"
+	testBlocked    = "tubes in which an excess of unlabelled ligand blocks the sites"
+	testEnds       = "points without ligand, and far enough above half saturation that nothing rises " +
+		"any more"
 	testPreparation = "more preparations, each read alone"
 )
 
@@ -26,11 +28,18 @@ const (
 func (e *explainer) shallow(ctx context.Context) []*explanation {
 	n := max(e.r.mostSites(), 2)
 	list := []*explanation{
-		{text: "unlike classes of sites on each molecule", test: testClass, tries: unlikeClasses(n), mine: severalClasses},
-		{text: "two populations of molecules", test: testSeparation, tries: attempts("mixture", twoParts()), mine: ofFamily("mixture")},
-		{text: "negative cooperativity between steps", test: testDilution, tries: attempts("adair", mechanisms.Definition{Sites: min(n, maxStepwise)}), mine: ofFamily("adair")},
-		{text: "negative cooperativity between sites in contact", test: testDilution, tries: inContact(n), mine: ofFamily("sequential")},
-		{text: "a spread of affinities (Sips)", test: testSpread, tries: attempts("hill", mechanisms.Definition{}), mine: ofFamily("hill"), number: e.spread(ctx)},
+		{text: "unlike classes of sites on each molecule", test: testClass, tries: unlikeClasses(n),
+			mine: severalClasses},
+		{text: "two populations of molecules", test: testSeparation, tries: attempts("mixture", twoParts()),
+			mine: ofFamily("mixture")},
+		{text: "negative cooperativity between steps", test: testDilution,
+			tries: attempts("adair", mechanisms.Definition{Sites: min(n, maxStepwise)}),
+			mine:  ofFamily("adair")},
+		{text: "negative cooperativity between sites in contact", test: testDilution, tries: inContact(n),
+			mine: ofFamily("sequential")},
+		{text: "a spread of affinities (Sips)", test: testSpread,
+			tries: attempts("hill", mechanisms.Definition{}), mine: ofFamily("hill"),
+			number: e.spread(ctx)},
 	}
 	list = append(list, e.nonspecific()...)
 	list = append(list, e.freeEnds())
@@ -53,7 +62,8 @@ func oneSite() mechanisms.Definition {
 }
 
 func twoParts() mechanisms.Definition {
-	return mechanisms.Definition{Parts: []mechanisms.Part{{Name: "tight", Sites: 1}, {Name: "loose", Sites: 1}}}
+	return mechanisms.Definition{Parts: []mechanisms.Part{{Name: "tight", Sites: 1},
+		{Name: "loose", Sites: 1}}}
 }
 
 // unlikeClasses are two classes on n sites, split as evenly as may be and with
@@ -66,7 +76,9 @@ func unlikeClasses(n int) []attempt {
 			continue
 		}
 		done[tight] = true
-		list = append(list, attempts("independent", mechanisms.Definition{Classes: []mechanisms.Count{{Name: "tight", Sites: tight}, {Name: "loose", Sites: n - tight}}})...)
+		list = append(list, attempts("independent",
+			mechanisms.Definition{Classes: []mechanisms.Count{{Name: "tight", Sites: tight},
+				{Name: "loose", Sites: n - tight}}})...)
 	}
 	return list
 }
@@ -110,7 +122,8 @@ func (e *explainer) spread(ctx context.Context) func(*explanation) {
 		if x.why != "" {
 			x.why += "; "
 		}
-		x.why += fmt.Sprintf("affinities whose ln K has an SD of %s (%s) give a Hill curve with n_H %s%s", toInterval(x.value, x.low, x.high), endWords(x.low, x.high), figures(c.h, 3), e.r.onCurve(c))
+		x.why += fmt.Sprintf("affinities whose ln K has an SD of %s (%s) give a Hill curve with n_H %s%s",
+			toInterval(x.value, x.low, x.high), endWords(x.low, x.high), figures(c.h, 3), e.r.onCurve(c))
 	}
 }
 
@@ -211,7 +224,10 @@ func (e *explainer) preparations(ctx context.Context) *explanation {
 	x.name = shareExplained
 	x.value = math.Min((h-pooled)/(1-pooled), 1)
 	x.low, x.high = math.Min((low-pooled)/(1-pooled), 1), math.Min((high-pooled)/(1-pooled), 1)
-	x.why = fmt.Sprintf("%s n_H is %s (99 %%: %s) where pooled%s it is %s, so this explains %s of the shallowness", how, figures(h, 3), endWords(low, high), e.r.onCurve(curve), figures(pooled, 3), percent(math.Max(x.value, 0)))
+	x.why = fmt.Sprintf("%s n_H is %s (99 %%: %s) where pooled%s it is %s, so this explains %s of the "+
+		"shallowness",
+		how, figures(h, 3), endWords(low, high), e.r.onCurve(curve), figures(pooled, 3),
+		percent(math.Max(x.value, 0)))
 	x.standing = "out"
 	if high >= 1 && x.value > 0.5 {
 		x.standing = "open"
@@ -220,14 +236,16 @@ func (e *explainer) preparations(ctx context.Context) *explanation {
 }
 
 // shifted is the exponent of a Hill equation whose ln K is shifted by preparation.
-func (e *explainer) shifted(ctx context.Context, curve *reading) (h, low, high float64, how, failed string) {
+func (e *explainer) shifted(ctx context.Context, curve *reading) (h, low, high float64, how,
+	failed string) {
 	h, low, high = math.NaN(), math.NaN(), math.NaN()
 	c, err := simpleCandidate("hill", mechanisms.Definition{})
 	if err != nil {
 		return h, low, high, "", err.Error()
 	}
 	c.ShiftByPreparation = true
-	f := e.a.fitCandidate(ctx, &c, fit.Settings{Starts: readingStarts, Seed: e.a.Settings.Seed, Workers: e.a.Settings.Workers})
+	f := e.a.fitCandidate(ctx, &c, fit.Settings{Starts: readingStarts, Seed: e.a.Settings.Seed,
+		Workers: e.a.Settings.Workers})
 	if !f.answered() {
 		if f.err != nil {
 			return h, low, high, "", f.err.Error()
@@ -240,7 +258,8 @@ func (e *explainer) shifted(ctx context.Context, curve *reading) (h, low, high f
 		l, u := openEnds(pr.Parameter(ctx, at))
 		low, high = math.Exp(l), math.Exp(u)
 	}
-	return h, low, high, fmt.Sprintf("with ln K shifted by preparation (SD %s)", figures(f.m.shift.tau, 2)), ""
+	return h, low, high, fmt.Sprintf("with ln K shifted by preparation (SD %s)", figures(f.m.shift.tau, 2)),
+		""
 }
 
 // cellAtPoint is the cell of the first point of a curve.
@@ -263,5 +282,6 @@ func (e *explainer) eachAlone(curve *reading) (h, low, high float64, how string)
 	t := distuv.StudentsT{Mu: 0, Sigma: 1, Nu: float64(row.N - 1)}.Quantile(0.5 + slopeLevel/2)
 	half := t * float64(row.SDNH) / math.Sqrt(float64(row.N))
 	h = float64(row.NH)
-	return h, math.Max(h-half, 0), h + half, fmt.Sprintf("read alone, in %s preparations,", countWord(row.N))
+	return h, math.Max(h-half, 0), h + half, fmt.Sprintf("read alone, in %s preparations,",
+		countWord(row.N))
 }

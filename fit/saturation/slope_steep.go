@@ -17,7 +17,8 @@ const (
 	testHalfway   = "populations of the half-filled molecule, or points nearer the ends of the curve"
 	testAssembly  = "another protein concentration, with which assembly-linked curves change"
 	testBinding   = "binding at equilibrium, without turnover"
-	testOccupancy = "occupancy measured beside the response, and other concentrations of the cycle's enzymes"
+	testOccupancy = "occupancy measured beside the response, and other concentrations of the cycle's " +
+		"enzymes"
 )
 
 // usualSites are taken where no mechanism of the study has more sites than one.
@@ -44,18 +45,24 @@ func (e *explainer) steep(ctx context.Context) []*explanation {
 		list = append(list, x)
 	}
 	list = append(list,
-		&explanation{text: "concerted binding (MWC) of " + sitesWords(n), test: testState, tries: concertedSites(n), mine: ofFamily("mwc")},
-		&explanation{text: "interaction of " + sitesWords(n) + " in contact (sequential)", test: testHalfway, tries: inContact(n), mine: ofFamily("sequential")})
+		&explanation{text: "concerted binding (MWC) of " + sitesWords(n), test: testState,
+			tries: concertedSites(n), mine: ofFamily("mwc")},
+		&explanation{text: "interaction of " + sitesWords(n) + " in contact (sequential)",
+			test: testHalfway, tries: inContact(n), mine: ofFamily("sequential")})
 	if n <= maxStepwise {
-		list = append(list, &explanation{text: "stepwise binding to " + sitesWords(n), test: testHalfway, tries: attempts("adair", mechanisms.Definition{Sites: n}), mine: ofFamily("adair")})
+		list = append(list, &explanation{text: "stepwise binding to " + sitesWords(n), test: testHalfway,
+			tries: attempts("adair", mechanisms.Definition{Sites: n}), mine: ofFamily("adair")})
 	}
 	list = append(list, e.assembly())
 	if x := e.unbound(least); x != nil {
 		list = append(list, x)
 	}
 	if sites := e.r.mostSites(); sites > 0 && least > float64(sites) {
-		list = append(list, &explanation{text: "any equilibrium mechanism with " + sitesWords(sites), standing: "out", test: testBinding,
-			why: fmt.Sprintf("n_H is above %s (99 %%): not an equilibrium mechanism with that many sites, or an artefact", figures(least, 3))})
+		list = append(list, &explanation{text: "any equilibrium mechanism with " + sitesWords(sites),
+			standing: "out", test: testBinding,
+			why: fmt.Sprintf("n_H is above %s (99 %%): not an equilibrium mechanism with that many "+
+				"sites, or an artefact",
+				figures(least, 3))})
 	}
 	return list
 }
@@ -98,10 +105,12 @@ func (e *explainer) depletion(ctx context.Context) *explanation {
 	}
 	x.best = f
 	x.name, x.value, x.low, x.high = sitesNeededName, sites, math.NaN(), math.NaN()
-	x.why = fmt.Sprintf("no concentration of sites makes one site give these curves (best %s)", withUnit(sites, e.a.Ligand.Unit, 2))
+	x.why = fmt.Sprintf("no concentration of sites makes one site give these curves (best %s)",
+		withUnit(sites, e.a.Ligand.Unit, 2))
 	x.number = func(x *explanation) {
 		if x.standing != "out" {
-			x.why = fmt.Sprintf("the sites are not stated; %s of them would do", withUnit(sites, e.a.Ligand.Unit, 2))
+			x.why = fmt.Sprintf("the sites are not stated; %s of them would do",
+				withUnit(sites, e.a.Ligand.Unit, 2))
 		}
 	}
 	return x
@@ -120,12 +129,14 @@ func (e *explainer) sitesNeeded(ctx context.Context, c Candidate) (float64, *fit
 	try := func(u float64) float64 {
 		b := *e.a
 		b.Data = append([]Dataset(nil), b.Data...)
-		b.Data[0].Total, b.Data[0].SitesPresent = true, SitesPresent{Value: most * expit(u), Unit: e.a.Ligand.Unit}
+		b.Data[0].Total, b.Data[0].SitesPresent = true, SitesPresent{Value: most * expit(u),
+			Unit: e.a.Ligand.Unit}
 		starts := explanationStarts
 		if best != nil {
 			starts = 2
 		}
-		f := b.fitCandidate(ctx, &c, fit.Settings{Starts: starts, Seed: b.Settings.Seed, Workers: b.Settings.Workers})
+		f := b.fitCandidate(ctx, &c, fit.Settings{Starts: starts, Seed: b.Settings.Seed,
+			Workers: b.Settings.Workers})
 		if !f.answered() {
 			return math.Inf(1)
 		}
@@ -159,11 +170,13 @@ func (e *explainer) incubation() *explanation {
 		x.standing, x.why = "out", fmt.Sprintf("it stood %s half-lives", figures(m, 2))
 		return x
 	}
-	c := Candidate{Name: "incubation", Family: "incubation", Mechanism: unrested{}, Differs: map[string]string{"all": eachCurve}}
+	c := Candidate{Name: "incubation", Family: "incubation", Mechanism: unrested{},
+		Differs: map[string]string{"all": eachCurve}}
 	x.tries = []attempt{{candidate: c}}
 	x.number = func(x *explanation) {
 		if x.standing == "out" {
-			x.why = fmt.Sprintf("n_H of one site never exceeds %.3f that way, and its curve does not fit", 2*math.Ln2)
+			x.why = fmt.Sprintf("n_H of one site never exceeds %.3f that way, and its curve does not fit",
+				2*math.Ln2)
 			return
 		}
 		x.name, x.low, x.high = halfLivesStoodName, math.NaN(), math.NaN()
@@ -176,7 +189,8 @@ func (e *explainer) incubation() *explanation {
 // assembly is never fitted here: one curve at one protein concentration cannot
 // hold it.
 func (e *explainer) assembly() *explanation {
-	x := &explanation{text: "assembly of molecules linked to binding", test: testAssembly, mine: ofFamily("assembly")}
+	x := &explanation{text: "assembly of molecules linked to binding", test: testAssembly,
+		mine: ofFamily("assembly")}
 	if e.own(x) == nil {
 		x.standing, x.why = "open", "one protein concentration cannot hold it; not fitted here"
 	} else {
@@ -189,10 +203,13 @@ func (e *explainer) assembly() *explanation {
 func (e *explainer) unbound(least float64) *explanation {
 	switch e.a.Data[0].Response.Kind {
 	case "velocity":
-		x := &explanation{text: "kinetic cooperativity of a one-site enzyme", standing: "open", test: testBinding,
-			why: "velocities alone cannot exclude it: a ratio of quadratics has h up to 2"}
+		x := &explanation{text: "kinetic cooperativity of a one-site enzyme", standing: "open",
+			test: testBinding,
+			why:  "velocities alone cannot exclude it: a ratio of quadratics has h up to 2"}
 		if least > 2 {
-			x.standing, x.why = "out", fmt.Sprintf("two slow forms reach h of 2, and it is above %s (99 %%)", figures(least, 3))
+			x.standing,
+				x.why = "out", fmt.Sprintf("two slow forms reach h of 2, and it is above %s (99 %%)",
+				figures(least, 3))
 		}
 		return x
 	case "signal":

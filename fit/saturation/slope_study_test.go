@@ -47,8 +47,10 @@ func (s sketch) study(t testing.TB) *Analysis {
 			{Name: "Hill equation", Family: "hill", Mechanism: build(t, "hill", mechanisms.Definition{})},
 		}
 	}
-	return &Analysis{Title: "sketch", Ligand: Substance{Name: "ligand", Unit: "nM"}, Kelvin: 298.15, Data: []Dataset{d},
-		Candidates: s.candidates, Settings: Settings{Starts: 10, Seed: 1, Level: 0.95, Method: "profile", Draws: 99}}
+	return &Analysis{Title: "sketch", Ligand: Substance{Name: "ligand", Unit: "nM"}, Kelvin: 298.15,
+		Data:       []Dataset{d},
+		Candidates: s.candidates, Settings: Settings{Starts: 10, Seed: 1, Level: 0.95, Method: "profile",
+			Draws: 99}}
 }
 
 // hyperbola is one site with K 1; hillCurve a Hill curve with K 1.
@@ -60,7 +62,8 @@ func hillOf(h float64) func(float64) float64 {
 
 // plain is the design of most studies: 24 levels in triplicate over four decades.
 func plain(y func(float64) float64) sketch {
-	return sketch{y: y, low: -2, high: 2, levels: 24, replicates: 3, names: []string{"A", "B", "C"}, scatter: 0.01, seed: 4}
+	return sketch{y: y, low: -2, high: 2, levels: 24, replicates: 3, names: []string{"A", "B", "C"},
+		scatter: 0.01, seed: 4}
 }
 
 // analysed is the outcome of a study.
@@ -93,8 +96,10 @@ func explained(t testing.TB, out *Outcome, what string) ExplanationRow {
 func reportExplanations(t testing.TB, out *Outcome) {
 	t.Helper()
 	for _, r := range out.Explanations {
-		t.Log(fmt.Sprintf("%-8s %-55s %-9s", r.Slope, r.Explanation, r.Standing), "twin:", deref(r.TwinOf), "own:", deref(r.Mechanism), "behind:", figures(float64(r.AICcBehind), 3),
-			"value:", figures(float64(r.Value), 4), figures(float64(r.Low), 4), figures(float64(r.High), 4), "|", deref(r.Why))
+		t.Log(fmt.Sprintf("%-8s %-55s %-9s", r.Slope, r.Explanation, r.Standing), "twin:", deref(r.TwinOf),
+			"own:", deref(r.Mechanism), "behind:", figures(float64(r.AICcBehind), 3),
+			"value:", figures(float64(r.Value), 4), figures(float64(r.Low), 4), figures(float64(r.High), 4),
+			"|", deref(r.Why))
 	}
 	t.Log(out.Verdict.Text)
 }

@@ -15,12 +15,16 @@ func (w *verdictWriter) explained() string {
 // doubts are the objections that make n_H an artefact where they have to be
 // settled first; their numbers stand in the objections.
 var doubts = []struct{ id, words string }{
-	{"transformed-axes", "the response looks like a transform of what was measured, and K and n_H of a fit to it mean nothing"},
+	{"transformed-axes",
+		"the response looks like a transform of what was measured, and K and n_H of a fit to it mean " +
+			"nothing"},
 	{"ligand-depletion", "there are so many sites that n_H is too high unless free ligand was measured"},
 	{"incubation", "the incubation was too short, which makes half saturation and n_H too high"},
 	{"incubation-doubled", "a longer incubation moves the curve"},
 	{"initial-rates", "the velocities are not initial ones everywhere, which makes n_H too high"},
-	{"n_H-above-sites", "n_H exceeds the number of sites: this is not an equilibrium mechanism with that many, or an artefact"},
+	{"n_H-above-sites",
+		"n_H exceeds the number of sites: this is not an equilibrium mechanism with that many, or an " +
+			"artefact"},
 	{"pooling", "pooling the preparations flattens the curve"},
 }
 
@@ -72,10 +76,14 @@ func slopeExplained(slope string, rows []ExplanationRow) string {
 	}
 	var s []string
 	if ahead > 0 {
-		s = append(s, fmt.Sprintf("Something else describes the %s curve better than any mechanism tried (AICc %s lower).", slope, figures(ahead, 2)))
+		s = append(s,
+			fmt.Sprintf("Something else describes the %s curve better than any mechanism tried (AICc %s "+
+				"lower).",
+				slope, figures(ahead, 2)))
 	}
 	if len(open) > 0 {
-		s = append(s, fmt.Sprintf("Not among the mechanisms, but not excluded by the %s curve either: %s.", slope, list(open)))
+		s = append(s, fmt.Sprintf("Not among the mechanisms, but not excluded by the %s curve either: %s.",
+			slope, list(open)))
 	}
 	if test != "" {
 		s = append(s, "To settle it: "+test+".")
@@ -94,7 +102,8 @@ func (r *ExplanationRow) inWords() string {
 	v, low, high := float64(r.Value), float64(r.Low), float64(r.High)
 	switch *r.Name {
 	case spreadOfK:
-		return fmt.Sprintf("%s with an SD of ln K of %s (%s)", r.Explanation, toInterval(v, low, high), endWords(low, high))
+		return fmt.Sprintf("%s with an SD of ln K of %s (%s)", r.Explanation, toInterval(v, low, high),
+			endWords(low, high))
 	case shareExplained:
 		return fmt.Sprintf("%s, which explain %s of the shallowness", r.Explanation, percent(v))
 	case halfLivesStoodName:
