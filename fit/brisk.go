@@ -11,10 +11,10 @@ package fit
 // Technical University of Denmark, IMM-REP-1999-05.
 type brisk struct {
 	m     int
-	a     [briskMost * briskMost]float64 // upper triangle of A, row after row
-	l     [briskMost * briskMost]float64 // its damped factors L·D·Lᵀ
-	g     [briskMost]float64
-	delta [briskMost]float64
+	a     [8][8]float64 // upper triangle of A
+	l     [8][8]float64 // its damped factors L·D·Lᵀ: L_ki at [i][k], 1/D_i at [i][i]
+	g     [8]float64
+	delta [8]float64
 }
 
 const (
@@ -57,7 +57,7 @@ func (s *solver) descendBriskly(tol float64) bool {
 			}
 			s.try.theta[j] = v
 		}
-		if !s.evaluate(s.try) || s.try.obj >= s.cur.obj {
+		if !s.glance(s.try) || s.try.obj >= s.cur.obj {
 			lambda = max(lambda*up, briskLeast)
 			up *= 2
 			if lambda > 1e6 {
@@ -81,15 +81,17 @@ func (b *brisk) gather(pt *point) {
 		b.gatherFour(pt)
 		return
 	}
-	m := b.m
-	clear(b.a[:m*m])
-	clear(b.g[:m])
+	m := b.m & 7 // at most briskMost: no index leaves the arrays
+	for i := range m {
+		b.g[i], b.a[i] = 0, [8]float64{}
+	}
 	raw := pt.jraw
 	for _, r := range pt.res {
 		row := raw[:m]
 		for i, v := range row {
+			i &= 7
 			b.g[i] += v * r
-			a := b.a[i*m : (i+1)*m]
+			a := &b.a[i]
 			for k := i; k < m; k++ {
 				a[k] += v * row[k]
 			}
@@ -103,8 +105,9 @@ func (b *brisk) gatherFour(pt *point) {
 	var a00, a01, a02, a03, a11, a12, a13, a22, a23, a33, g0, g1, g2, g3 float64
 	raw := pt.jraw
 	for _, r := range pt.res {
-		v0, v1, v2, v3 := raw[0], raw[1], raw[2], raw[3]
+		v := (*[4]float64)(raw)
 		raw = raw[4:]
+		v0, v1, v2, v3 := v[0], v[1], v[2], v[3]
 		g0 += v0 * r
 		g1 += v1 * r
 		g2 += v2 * r
@@ -120,38 +123,35 @@ func (b *brisk) gatherFour(pt *point) {
 		a23 += v2 * v3
 		a33 += v3 * v3
 	}
-	b.g[0], b.g[1], b.g[2], b.g[3] = g0, g1, g2, g3
-	b.a[0], b.a[1], b.a[2], b.a[3] = a00, a01, a02, a03
-	b.a[5], b.a[6], b.a[7] = a11, a12, a13
-	b.a[10], b.a[11], b.a[15] = a22, a23, a33
+	b.g = [8]float64{g0, g1, g2, g3}
+	b.a[0] = [8]float64{a00, a01, a02, a03}
+	b.a[1] = [8]float64{0, a11, a12, a13}
+	b.a[2] = [8]float64{0, 0, a22, a23}
+	b.a[3] = [8]float64{0, 0, 0, a33}
 }
 
 // factor takes A + λ·diag A apart, and says whether it is well enough
-// conditioned. Row i of l holds 1/D_i at i and L_ki at k > i.
+// conditioned.
 func (b *brisk) factor(lambda float64) bool {
-	m := b.m
+	m := b.m & 7
 	for i := range m {
-		for k := i; k < m; k++ {
-			b.l[i*m+k] = b.a[i*m+k]
-		}
-		b.l[i*m+i] *= 1 + lambda
+		b.l[i] = b.a[i]
+		b.l[i][i] *= 1 + lambda
 	}
 	for i := range m {
-		d := b.l[i*m+i]
-		if !(d > briskPivots*b.a[i*m+i]) {
+		row := &b.l[i]
+		d := row[i]
+		if !(d > briskPivots*b.a[i][i]) {
 			return false
 		}
 		inv := 1 / d
-		row := b.l[i*m : (i+1)*m]
 		for k := i + 1; k < m; k++ {
 			f := row[k] * inv
-			to := b.l[k*m : (k+1)*m]
+			to := &b.l[k]
 			for j := k; j < m; j++ {
 				to[j] -= f * row[j]
 			}
-		}
-		for k := i + 1; k < m; k++ {
-			row[k] *= inv
+			row[k] = f
 		}
 		row[i] = inv
 	}
@@ -160,33 +160,30 @@ func (b *brisk) factor(lambda float64) bool {
 
 // solve writes δ and returns −gᵀδ.
 func (b *brisk) solve() (gain float64) {
-	m := b.m
+	m := b.m & 7
+	x := b.g
 	for i := range m {
-		b.delta[i] = -b.g[i]
-	}
-	for i := range m {
-		v := b.delta[i]
+		v, row := x[i], &b.l[i]
 		for k := i + 1; k < m; k++ {
-			b.delta[k] -= b.l[i*m+k] * v
+			x[k] -= row[k] * v
 		}
+		gain += v * v * row[i]
+		b.delta[i] = -v * row[i]
 	}
 	for i := m - 1; i >= 0; i-- {
-		v := b.delta[i] * b.l[i*m+i]
+		v, row := b.delta[i&7], &b.l[i&7]
 		for k := i + 1; k < m; k++ {
-			v -= b.l[i*m+k] * b.delta[k]
+			v -= row[k] * b.delta[k]
 		}
-		b.delta[i] = v
-	}
-	for i := range m {
-		gain -= b.g[i] * b.delta[i]
+		b.delta[i&7] = v
 	}
 	return gain
 }
 
 // damped is δᵀ·diag A·δ.
 func (b *brisk) damped() (t float64) {
-	for i := range b.m {
-		t += b.a[i*b.m+i] * b.delta[i] * b.delta[i]
+	for i := range b.m & 7 {
+		t += b.a[i][i] * b.delta[i] * b.delta[i]
 	}
 	return t
 }

@@ -40,6 +40,11 @@ func newPoint(rows []int, p, free int) *point {
 // evaluate fills pt at its θ and says whether everything is finite. An error of
 // a block is kept in s.fault and counts as not finite.
 func (s *solver) evaluate(pt *point) bool {
+	return s.glance(pt) && allFinite(pt.jraw)
+}
+
+// glance is evaluate for those who look at the Jacobian themselves.
+func (s *solver) glance(pt *point) bool {
 	s.evals++
 	pt.solved = false
 	clear(pt.jraw)
@@ -54,9 +59,6 @@ func (s *solver) evaluate(pt *point) bool {
 		}
 	}
 	s.replace(pt)
-	if !allFinite(pt.jraw) {
-		return false
-	}
 	s.measure(pt)
 	return !math.IsNaN(pt.obj) && !math.IsInf(pt.obj, 1)
 }

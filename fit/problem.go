@@ -1,5 +1,17 @@
 // Package fit is weighted nonlinear least squares with bounds, for problems
 // with few parameters, tied constants and several minima. It knows no chemistry.
+//
+// A Problem is residual Blocks over shared Parameters. Solve finds its best
+// minimum from many starts; a Profiler (or Profiles, for many at once) the
+// profile-likelihood intervals of parameters and of any Quantity; Refit fits
+// replicate data (Parametric, Residual, ByGroup) or a screen of many curves;
+// Combinations and Ties say what the data hold together and what apart;
+// Likelihood, Contest, TestLackOfFit, Runs and LeaveOut compare models.
+//
+// Every number depends on the problem, the data and the stated settings alone:
+// never on the number of workers or the order in which they finish. What cannot
+// be had (an end of an interval, a covariance, a criterion) is said in words and
+// flags; no result holds NaN.
 package fit
 
 import (

@@ -185,6 +185,9 @@ func (f *Profiler) end(ctx context.Context, t target, v, d float64) end {
 			return end{value: v, edge: true}
 		}
 	}
+	if ctx.Err() != nil {
+		return end{value: v, open: true, why: "interrupted"}
+	}
 	g, straight, ok := f.leap(t, v, d)
 	if ok {
 		f.probe(ctx)

@@ -30,6 +30,7 @@ type Refitted struct {
 	Theta     *mat.Dense // draws × parameters
 	Objective []float64
 	Status    []Status // NoAnswer where a draw was not reached, or cannot be evaluated
+	Evals     int      // evaluations of residuals and derivatives, over all draws
 }
 
 // Started are replicates with starts of their own, at least one for each set:
@@ -66,9 +67,10 @@ func Refit(ctx context.Context, p *Problem, starts [][]float64, data Replicates,
 		Objective: make([]float64, set.Draws),
 		Status:    make([]Status, set.Draws),
 	}
-	var next, ended atomic.Int64
+	var next, ended, evals atomic.Int64
 	var telling sync.Mutex
 	work := func(s *solver) {
+		defer func() { evals.Add(int64(s.evals)) }()
 		rep := &Replicate{Shift: make([]float64, s.rows[len(s.blocks)]), Within: make([]float64, len(s.blocks))}
 		for i := int(next.Add(1)) - 1; i < set.Draws && ctx.Err() == nil; i = int(next.Add(1)) - 1 {
 			data.Draw(i, rep)
@@ -86,6 +88,7 @@ func Refit(ctx context.Context, p *Problem, starts [][]float64, data Replicates,
 		wg.Go(func() { work(newSolver(p, p.clonable())) })
 	}
 	wg.Wait()
+	out.Evals = int(evals.Load())
 	return out, nil
 }
 

@@ -24,7 +24,7 @@ type plateaus struct{ lnx []float64 }
 func (s *plateaus) Len() int         { return len(s.lnx) }
 func (s *plateaus) Clone() fit.Block { return s }
 func (s *plateaus) Eval(res []float64, jac *mat.Dense, p []float64) error {
-	h, span := math.Exp(p[3]), p[1]-p[0]
+	h, span := exponential(p[3]), p[1]-p[0]
 	raw := jac.RawMatrix().Data
 	for i, lnx := range s.lnx {
 		t := lnx - p[2]
@@ -186,6 +186,7 @@ func benchScreen(b *testing.B, thorough bool) {
 			stopped++
 		}
 	}
+	b.ReportMetric(float64(d.Evals)/float64(s.count), "evals/curve")
 	b.ReportMetric(float64(missed), "missed")
 	b.ReportMetric(float64(stopped), "stopped")
 }
