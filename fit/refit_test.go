@@ -323,13 +323,7 @@ func benchRefit(b *testing.B, p *fit.Problem) {
 	b.ResetTimer()
 	for range b.N {
 		d := refit(b, p, r.Theta, data, fit.RefitSettings{Draws: 1000, Workers: 1})
-		n := 0
-		for _, s := range d.Status {
-			if s == fit.Stopped || s == fit.NoAnswer {
-				n++
-			}
-		}
-		b.ReportMetric(float64(n), "failed")
+		b.ReportMetric(float64(unreached(d)), "failed")
 	}
 }
 
