@@ -178,3 +178,33 @@ func (n *Network) sightOf(v *view, of []int) {
 		}
 	}
 }
+
+// Unreached lists the states that steps which carry do not join to the first live
+// state of their block. live may be nil: all are.
+func (n *Network) Unreached(live []bool, carries func(step int) bool) []int {
+	reached := make([]bool, len(n.States))
+	begun := make([]bool, len(n.Blocks))
+	for s, state := range n.States {
+		if (live == nil || live[s]) && !begun[state.Block] {
+			begun[state.Block], reached[s] = true, true
+		}
+	}
+	for more := true; more; {
+		more = false
+		for e, step := range n.Steps {
+			if reached[step.From] != reached[step.To] && carries(e) {
+				reached[step.From], reached[step.To], more = true, true, true
+			}
+		}
+	}
+	var rest []int
+	for s := range n.States {
+		if !reached[s] && (live == nil || live[s]) {
+			rest = append(rest, s)
+		}
+	}
+	return rest
+}
+
+// SeesBinding says whether the response sees what is bound, not the states.
+func (n *Network) SeesBinding() bool { return n.see == nil }

@@ -1,0 +1,369 @@
+package kinetics
+
+import (
+	"context"
+	"errors"
+	"fmt"
+	"math"
+
+	"gonum.org/v1/gonum/mat"
+
+	"ligancy/ode"
+)
+
+const defaultTolerance = 1e-9
+
+// integrate follows a sample by the equations of mass action, phase by phase.
+func (b *Bound) integrate(ctx context.Context, p *Program, times []float64, gradient bool) (*Course, error) {
+	tagged := p.blocks()
+	m := newMassAction(b, p.Sites, tagged)
+	y, sens, err := m.start(p.Loaded, gradient)
+	if err != nil {
+		return nil, err
+	}
+	r := &run{b: b, m: m, c: newCourse(times, m.s, b.m.Size(), gradient), y: y, sens: sens}
+	r.solver.Options = m.options(p, gradient)
+	phases := r.phases(p, times)
+	var parts []*ode.Solution
+	parts, err = r.solver.SolvePhases(ctx, nil, phases, 0, y)
+	if err != nil {
+		return nil, r.blame(err)
+	}
+	for i, sol := range parts {
+		if err := r.take(i, sol, gradient); err != nil {
+			return nil, err
+		}
+	}
+	return r.c, nil
+}
+
+// run is one integration on its way.
+type run struct {
+	b      *Bound
+	m      *massAction
+	c      *Course
+	y      []float64
+	sens   *mat.Dense
+	solver ode.Solver
+	wanted [][]int // per phase: place of each time wanted among the integrator's
+}
+
+// options of the integration: a tolerance of its own for shares and for ligand.
+func (m *massAction) options(p *Program, gradient bool) ode.Options {
+	rtol := p.Tolerance
+	if rtol == 0 {
+		rtol = defaultTolerance
+	}
+	most := math.Max(p.Loaded, p.Sites)
+	for _, ph := range p.Phases {
+		if ph.Action == Add || ph.Action == Block {
+			most = math.Max(most, ph.Amount)
+		}
+	}
+	o := ode.Options{Rtol: rtol, AtolEach: make([]float64, m.Dim()), Names: make([]string, m.Dim())}
+	for i := range o.AtolEach {
+		o.AtolEach[i] = rtol * 1e-3
+		switch {
+		case i < m.s:
+			o.Names[i] = fmt.Sprintf("%q", m.b.m.net.States[i].Name)
+			o.NonNegative = append(o.NonNegative, i)
+		case i >= m.free():
+			o.Names[i] = "free ligand"
+			o.AtolEach[i] = math.Max(most, 1e-300) * rtol * 1e-6
+			if i > m.free() {
+				o.Names[i] = "free unlabelled ligand"
+			}
+		default:
+			o.Names[i] = fmt.Sprintf("labelled ligand in %q", m.b.m.net.States[m.b.m.net.Tags[i-m.s].State].Name)
+		}
+	}
+	if gradient {
+		o.Sensitivity = &ode.Sensitivity{}
+	}
+	return o
+}
+
+// start is the state at rest with a total of ligand, and its sensitivities.
+func (m *massAction) start(total float64, gradient bool) ([]float64, *mat.Dense, error) {
+	b, net := m.b, m.b.m.net
+	y, all := make([]float64, m.Dim()), b.m.Size()
+	x, err := m.freeOf(total)
+	if err != nil {
+		return nil, nil, err
+	}
+	grad := mat.NewDense(m.s, all+1, nil)
+	p := b.AtRest(nil, grad, x)
+	copy(y, p)
+	y[m.free()] = x
+	var sens *mat.Dense
+	if gradient {
+		sens = mat.NewDense(m.Dim(), all, nil)
+		dBound, dLn := m.boundGradient(grad)
+		for k := range all {
+			dlnx := 0.0
+			if x > 0 {
+				dlnx = -m.sites * dBound[k] / (x + m.sites*dLn)
+			}
+			for s := range m.s {
+				sens.Set(s, k, grad.At(s, k)+grad.At(s, all)*dlnx)
+			}
+			sens.Set(m.free(), k, x*dlnx)
+		}
+	}
+	if m.tagged {
+		for t, tag := range net.Tags {
+			y[m.s+t] = tag.Number * p[tag.State]
+			for k := range all {
+				if gradient {
+					sens.Set(m.s+t, k, tag.Number*sens.At(tag.State, k))
+				}
+			}
+		}
+	}
+	return y, sens, nil
+}
+
+// boundGradient is ∂Ȳ/∂Θ and ∂Ȳ/∂ln x of shares at rest.
+func (m *massAction) boundGradient(grad *mat.Dense) (by []float64, byLn float64) {
+	all := m.b.m.Size()
+	by = make([]float64, all)
+	for s, state := range m.b.m.net.States {
+		w := float64(state.Ligands) / float64(state.Sites)
+		for k := range all {
+			by[k] += w * grad.At(s, k)
+		}
+		byLn += w * grad.At(s, all)
+	}
+	return by, byLn
+}
+
+// freeOf solves x + [sites] Ȳ(x) = total by halving, then by Newton's method.
+func (m *massAction) freeOf(total float64) (float64, error) {
+	if m.sites == 0 || total == 0 {
+		return total, nil
+	}
+	b := m.b
+	grad := mat.NewDense(m.s, b.m.Size()+1, nil)
+	low, high := 0.0, total
+	x := total / 2
+	for range 200 {
+		p := b.AtRest(nil, grad, x)
+		g := x + m.sites*b.Saturation(p) - total
+		if g > 0 {
+			high = x
+		} else {
+			low = x
+		}
+		_, dLn := m.boundGradient(grad)
+		next := x - g/(1+m.sites*dLn/x)
+		if !(next > low && next < high) {
+			next = (low + high) / 2
+		}
+		if math.Abs(next-x) <= 1e-15*x || next == low || next == high {
+			return next, nil
+		}
+		x = next
+	}
+	return 0, fmt.Errorf("the free ligand at a total of %g cannot be found", total)
+}
+
+// phases lays the program out for the integrator.
+func (r *run) phases(p *Program, times []float64) []ode.Phase {
+	begin, next, sites := 0.0, 0, p.Sites
+	if r.sens != nil {
+		r.solver.Options.Sensitivity.Start = r.sens
+	}
+	var list []ode.Phase
+	for i := range p.Phases {
+		ph := p.Phases[i]
+		end := begin + ph.Seconds
+		if ph.Action == Dilute {
+			sites /= ph.Amount
+		}
+		m := newMassAction(r.b, sites, r.m.tagged)
+		q := ode.Phase{System: m}
+		if ph.Action != Wait {
+			q.Enter = func(y []float64, sens *mat.Dense) error { return m.enter(&ph, y, sens) }
+		}
+		var wanted []int
+		for next < len(times) && (times[next] <= end || i == len(p.Phases)-1) {
+			r.c.Phase[next] = i
+			if t := times[next]; t <= begin+rounding(begin) || len(q.Times) > 0 && t <= q.Times[len(q.Times)-1] {
+				wanted = append(wanted, len(q.Times)) // a place already there
+			} else {
+				q.Times = append(q.Times, math.Min(t, end))
+				wanted = append(wanted, len(q.Times))
+			}
+			next++
+		}
+		if len(q.Times) == 0 || q.Times[len(q.Times)-1] < end {
+			q.Times = append(q.Times, end)
+		}
+		r.wanted = append(r.wanted, wanted)
+		list = append(list, q)
+		begin = end
+	}
+	return list
+}
+
+// enter changes the free ligand at the beginning of a phase. What is bound stays.
+func (m *massAction) enter(ph *Phase, y []float64, sens *mat.Dense) error {
+	at := m.free()
+	scale := func(place int, f float64) {
+		y[place] *= f
+		if sens != nil {
+			row := sens.RawRowView(place)
+			for k := range row {
+				row[k] *= f
+			}
+		}
+	}
+	switch ph.Action {
+	case Dilute:
+		scale(at, 1/ph.Amount)
+		if m.tagged {
+			scale(at+1, 1/ph.Amount)
+		}
+	case Wash:
+		scale(at, 0)
+		if m.tagged {
+			scale(at+1, 0)
+		}
+	case Block:
+		y[at+1] += ph.Amount
+	case Add:
+		return m.add(ph.Amount, y, sens)
+	}
+	return nil
+}
+
+// add brings the total of labelled ligand to an amount.
+func (m *massAction) add(amount float64, y []float64, sens *mat.Dense) error {
+	at := m.free()
+	if m.sites == 0 {
+		y[at] = amount
+		if sens != nil {
+			clear(sens.RawRowView(at))
+		}
+		return nil
+	}
+	bound := m.labelled(y)
+	y[at] = amount - bound*m.sites
+	if y[at] < 0 {
+		return fmt.Errorf("a total of %g is less than the %g that is bound already", amount, bound*m.sites)
+	}
+	if sens == nil {
+		return nil
+	}
+	row := sens.RawRowView(at)
+	clear(row)
+	m.each(func(place int, w float64) {
+		for k, d := range sens.RawRowView(place) {
+			row[k] -= m.sites * w * d
+		}
+	})
+	return nil
+}
+
+// labelled is the share of all sites with labelled ligand.
+func (m *massAction) labelled(y []float64) (sum float64) {
+	m.each(func(place int, w float64) { sum += w * y[place] })
+	return sum
+}
+
+// each calls f with every place that holds labelled ligand, and its weight.
+func (m *massAction) each(f func(place int, w float64)) {
+	net := m.b.m.net
+	if m.tagged {
+		for t, tag := range net.Tags {
+			f(m.s+t, 1/float64(net.States[tag.State].Sites))
+		}
+		return
+	}
+	for s, state := range net.States {
+		if state.Ligands > 0 {
+			f(s, float64(state.Ligands)/float64(state.Sites))
+		}
+	}
+}
+
+// take writes what one phase has shown.
+func (r *run) take(i int, sol *ode.Solution, gradient bool) error {
+	first := 0
+	for k := range r.c.Phase {
+		if r.c.Phase[k] == i {
+			first = k
+			break
+		}
+	}
+	for j, at := range r.wanted[i] {
+		y := sol.States[at]
+		var sens *mat.Dense
+		if gradient {
+			sens = sol.Sensitivities[at]
+		}
+		if err := r.show(first+j, sol.Times[at], y, sens); err != nil {
+			return err
+		}
+	}
+	return nil
+}
+
+// show writes one time.
+func (r *run) show(k int, t float64, y []float64, sens *mat.Dense) error {
+	m, c := r.m, r.c
+	if i := finite(y); i >= 0 {
+		return fmt.Errorf("the integration met a value that is no number at %g s", t)
+	}
+	r.b.record(c, k, y[:m.s])
+	c.Free[k] = y[m.free()]
+	seesLabel := m.tagged && r.b.m.net.SeesBinding()
+	if m.tagged {
+		c.Unlabelled[k] = y[m.free()+1]
+		c.Labelled[k] = m.labelled(y)
+		if seesLabel {
+			c.Seen[k] = c.Labelled[k]
+		}
+	}
+	if sens == nil {
+		return nil
+	}
+	row := c.Grad.RawRowView(k)
+	if seesLabel {
+		m.each(func(place int, w float64) {
+			for q, d := range sens.RawRowView(place) {
+				row[q] += w * d
+			}
+		})
+		return nil
+	}
+	for s := range m.s {
+		for q, d := range sens.RawRowView(s) {
+			row[q] += r.b.o[s] * d
+		}
+		for q := range r.b.m.k {
+			row[q] += y[s] * r.b.do.At(s, q)
+		}
+	}
+	return nil
+}
+
+// blame says in the words of the bench what stopped an integration.
+func (r *run) blame(err error) error {
+	var f *ode.Failure
+	if errors.As(err, &f) && f.Reason == ode.Cancelled {
+		return err
+	}
+	return fmt.Errorf("the course cannot be followed: %w", err)
+}
+
+// Integrated is Run by the equations of mass action, also where an exact solution
+// would do, at a relative tolerance: the two hold each other to account.
+func (b *Bound) Integrated(ctx context.Context, p *Program, times []float64, tolerance float64) (*Course, error) {
+	if err := p.Check(times); err != nil {
+		return nil, err
+	}
+	q := *p
+	q.Tolerance = tolerance
+	return b.integrate(ctx, &q, times, false)
+}
