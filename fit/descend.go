@@ -4,6 +4,7 @@ import "math"
 
 const (
 	enough  = 1e-6  // relative offset at which a fit has converged
+	rough   = 1e-4  // the same, for a start among many: 1e-8 of the sum of squares
 	loose   = 1e-5  // the same, for refits of replicate data
 	hardly  = 1e-4  // least share of the predicted gain that is a gain
 	tiniest = 1e-15 // least radius relative to ‖D θ‖

@@ -46,7 +46,7 @@ func Solve(ctx context.Context, p *Problem, set Settings) (*Result, error) {
 	if best < 0 {
 		return nothing(ctx, runs)
 	}
-	end := s.finish(runs[best])
+	end := s.finish(ctx, runs[best], set.MaxIter)
 	if s.idle() {
 		return nil, errors.New("fit: no residual depends on any parameter (are all weights zero?)")
 	}
@@ -141,7 +141,7 @@ func (s *solver) one(ctx context.Context, theta []float64, most int) run {
 	if !s.begun(theta) {
 		return run{evals: s.evals, fault: s.fault}
 	}
-	end := s.descend(ctx.Done(), enough, most)
+	end := s.descend(ctx.Done(), rough, most)
 	return run{end: end, theta: append([]float64(nil), s.cur.theta...), obj: s.cur.obj, evals: s.evals}
 }
 
@@ -160,8 +160,12 @@ func nothing(ctx context.Context, runs []run) (*Result, error) {
 }
 
 // finish takes the best run on to where rounding ends it.
-func (s *solver) finish(r run) ending {
+func (s *solver) finish(ctx context.Context, r run, most int) ending {
 	s.begun(r.theta)
+	end := r.end
+	if end == stationary {
+		end = s.descend(ctx.Done(), enough, most)
+	}
 	s.polish()
 	switch {
 	case s.offset <= enough:
@@ -169,7 +173,7 @@ func (s *solver) finish(r run) ending {
 	case s.atRounding():
 		return rounding
 	}
-	return r.end
+	return end
 }
 
 // polish takes full Gauss–Newton steps while each brings the relative offset
