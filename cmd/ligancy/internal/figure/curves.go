@@ -226,7 +226,7 @@ func (l *curvesLayout) field(y float64) float64 {
 		p.curve(line.At, line.From, line.To, CurveInk(l.lead+i))
 	}
 	if l.Dense {
-		l.cloud()
+		l.cloud(p, func(q Point) float64 { return q.Y })
 	} else {
 		l.marks()
 	}
@@ -333,30 +333,31 @@ func meanSD(y []float64) (mean, sd float64) {
 }
 
 // cloud draws very many points: one small dot for all that fall on one place.
-func (l *curvesLayout) cloud() {
+func (l *curvesLayout) cloud(p *panel, value func(Point) float64) {
 	type place struct{ line, x, y int }
 	seen := map[place]bool{}
 	dots := make([]Path, max(len(l.Lines), 1)+1)
 	for _, q := range l.Points {
-		if !finite(q.Y) || q.LeftOut || !l.x.inside(q.X) {
+		v := value(q)
+		if !finite(v) || q.LeftOut || !l.x.inside(q.X) {
 			continue
 		}
-		k := place{q.Line, int(l.x.at(q.X)), int(l.main.y.held(q.Y))}
-		if seen[k] || len(seen) >= mostDots {
+		k := place{q.Line, int(math.Round(l.x.at(q.X))), int(math.Round(p.y.held(v)))}
+		if seen[k] || len(seen) == mostDots {
 			continue
 		}
 		seen[k] = true
 		i := min(max(q.Line, -1), len(dots)-2) + 1
-		dots[i].MoveTo(float64(k.x)+0.5, float64(k.y)+0.5)
-		dots[i].LineTo(float64(k.x)+0.5, float64(k.y)+0.51)
+		dots[i].MoveTo(float64(k.x), float64(k.y))
+		dots[i].LineTo(float64(k.x), float64(k.y))
 	}
-	for i, p := range dots {
-		l.d.add(&stroke{path: p, ink: l.lineInk(i - 1), width: 1.6, round: true, opacity: 0.6})
+	for i, path := range dots {
+		l.d.add(&stroke{path: path, ink: l.lineInk(i - 1), width: 1.6, round: true, opacity: 0.6})
 	}
 }
 
-// mostDots bounds a figure of very many points.
-const mostDots = 4000
+// mostDots bounds a field of very many points.
+const mostDots = 3000
 
 // names writes the name of each curve beside it, where it is clear of the rest.
 func (l *curvesLayout) names() {
@@ -390,7 +391,7 @@ func (l *curvesLayout) rulers(y float64) float64 {
 			continue
 		}
 		decades := ""
-		if r.X10 > 0 && finite(r.X90) {
+		if r.X10 > 0 && finite(r.X90) && r.X90 >= r.X10 {
 			decades = strconv.FormatFloat(math.Log10(r.X90/r.X10), 'f', 2, 64) + " decades"
 		}
 		middle := y + 0.8*l.s.Size
@@ -464,7 +465,13 @@ func (l *curvesLayout) residuals(y float64) float64 {
 		at = []float64{-4, 0, 4}
 	}
 	p.yAxis(at, Words(SerifItalic, "residual / scatter"))
-	l.d.within(group{class: "residuals"}, func() { l.residualMarks(p) })
+	l.d.within(group{class: "residuals"}, func() {
+		if l.Dense {
+			l.cloud(p, func(q Point) float64 { return q.Residual })
+		} else {
+			l.residualMarks(p)
+		}
+	})
 	l.d.add(&group{class: "residuals-of"})
 	l.d.add(endGroup{})
 	p.reading(showsResidual, l.Places...)
@@ -476,13 +483,9 @@ func (l *curvesLayout) residualMarks(p *panel) {
 	for line := range max(len(l.Lines), 1) {
 		for prep := -1; prep < max(len(l.Preparations), 1); prep++ {
 			var open Path
-			n := 0
 			for _, q := range l.Points {
 				if q.Line != line || q.Preparation != prep || q.LeftOut || !finite(q.Residual) || !l.x.inside(q.X) {
 					continue
-				}
-				if n++; n > mostDots/8 {
-					break
 				}
 				shape(&open, max(prep, 0), l.x.at(q.X), p.y.held(q.Residual), r)
 			}

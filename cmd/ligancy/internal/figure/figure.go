@@ -82,3 +82,50 @@ func moved(i item, x, y float64) item {
 	}
 	return i
 }
+
+// Spare takes out what a small field has no room for: bands, rivals that are
+// not shown, every second point of a curve.
+func (c *Curves) Spare() {
+	c.Rivals = shownOf(c.Rivals)
+	for i := range c.Lines {
+		l := &c.Lines[i]
+		l.At, l.Low, l.High = sparse(l.At), nil, nil
+	}
+}
+
+// Spare takes out what a small field has no room for.
+func (f *Slope) Spare() {
+	f.Rivals = shownOf(f.Rivals)
+	for i := range f.Lines {
+		l := &f.Lines[i]
+		l.At, l.Low, l.High = sparse(l.At), nil, nil
+	}
+}
+
+func shownOf(rivals []Rival) []Rival {
+	var out []Rival
+	for _, r := range rivals {
+		if r.Shown {
+			for i := range r.Lines {
+				r.Lines[i] = sparse(r.Lines[i])
+			}
+			out = append(out, r)
+		}
+	}
+	return out
+}
+
+// sparse keeps every second point, and the last.
+func sparse(pts []XY) []XY {
+	if len(pts) < 50 {
+		return pts
+	}
+	var out []XY
+	for i := 0; i < len(pts); i += 2 {
+		out = append(out, pts[i])
+	}
+	if len(pts)%2 == 0 {
+		out = append(out, pts[len(pts)-1])
+	}
+	return out
+}

@@ -62,6 +62,8 @@ func Symbol(name string) Label {
 	switch {
 	case found:
 		index = strings.ReplaceAll(index, "_", " ")
+	case head == "Bmax":
+		base, index = "B", "max"
 	case isKd(head):
 		base, index = "K", head[1:]
 	case isNumbered(head):

@@ -44,7 +44,6 @@ func Page(w io.Writer, d *Document) error {
 
 var pageTemplate = sync.OnceValue(func() *template.Template {
 	return template.Must(template.New("page").Funcs(template.FuncMap{
-		"next":     func(i int) int { return i + 1 },
 		"prose":    func(s string) template.HTML { return typed(s, nil) },
 		"quantity": quantityHTML,
 	}).Parse(pageHTML))
@@ -81,18 +80,18 @@ type block struct {
 	Figure    *drawn
 	Table     *table
 	List      []template.HTML
-	Numbered  []template.HTML
 	Terms     []term
 	Equations []template.HTML
 	Code      string
 	Remark    template.HTML
 }
 
-// term is a word and what is said of it.
+// term is one thing that is asked, with the number by which values refer to it
+// (0 for none) and what to write to answer it.
 type term struct {
-	Word string
-	Text template.HTML
-	Code string
+	Number int
+	Text   template.HTML
+	Code   string
 }
 
 // drawn is a figure in both formats of the page.

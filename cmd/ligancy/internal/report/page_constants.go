@@ -184,9 +184,8 @@ func (v *view) hillPlot() figure.Figure {
 	}
 	beyond := 0
 	for _, g := range v.groups() {
-		scaled := *g
-		scaled.scaled = true
-		for _, p := range v.points(&scaled, all(len(f.Lines))) {
+		scaled := &responseGroup{sets: g.sets, scaled: true}
+		for _, p := range v.points(scaled, all(len(f.Lines))) {
 			if !p.LeftOut && !(p.Y > 0 && p.Y < 1) {
 				beyond++
 			}

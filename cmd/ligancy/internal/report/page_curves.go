@@ -18,7 +18,14 @@ type responseGroup struct {
 
 // groups parts the data sets by what they measured.
 func (v *view) groups() []*responseGroup {
-	var all []*responseGroup
+	if v.parted == nil {
+		v.parted = v.part()
+	}
+	return v.parted
+}
+
+func (v *view) part() []*responseGroup {
+	all := []*responseGroup{}
 	for i := range v.d.analysis.Data {
 		set := &v.d.analysis.Data[i]
 		at := slices.IndexFunc(all, func(g *responseGroup) bool {
@@ -101,10 +108,12 @@ func (v *view) curvesFigures() []figure.Figure {
 			continue
 		}
 		m := &figure.Multiples{Name: "Points and curves, one field a curve"}
-		for _, i := range lines[:min(len(lines), mostPanels)] {
-			m.Fields = append(m.Fields, v.curves(g, []int{i}))
+		for _, i := range lines[:min(len(lines), mostFields)] {
+			c := v.curves(g, []int{i})
+			c.Spare()
+			m.Fields = append(m.Fields, c)
 		}
-		if n := len(lines) - mostPanels; n > 0 {
+		if n := len(lines) - mostFields; n > 0 {
 			m.Remark = fmt.Sprintf("and %d more curves: points.csv, curves.csv", n)
 		}
 		out = append(out, m)
@@ -211,23 +220,35 @@ func (v *view) overlaid(g *responseGroup, mechanism string, line int) []float64 
 	if !g.scaled || mechanism == v.leader {
 		return g.values(c)
 	}
-	type place struct {
-		data string
-		row  int
+	k := overlay{g, mechanism, line}
+	if v.overlays[k] == nil {
+		v.overlays[k] = v.overlay(g, mechanism, line)
 	}
-	own := map[place]ends{}
+	return v.overlays[k]
+}
+
+// overlay is one curve of a rival on one axis.
+type overlay struct {
+	group     *responseGroup
+	mechanism string
+	line      int
+}
+
+func (v *view) overlay(g *responseGroup, mechanism string, line int) []float64 {
+	own := map[pointOf]ends{}
 	for _, r := range v.measured[v.leader] {
-		own[place{r.Data, r.Row}] = r.ends
+		own[pointOf{r.Data, r.Row}] = r.ends
 	}
 	var low, span, slope, n float64
 	for _, r := range v.measured[mechanism] {
-		if l := own[place{r.Data, r.Row}]; r.line == line && r.LeftOut == nil && !r.blocked && l.span != 0 && g.has(r.Data) {
+		if l := own[pointOf{r.Data, r.Row}]; r.line == line && r.LeftOut == nil && !r.blocked && l.span != 0 && g.has(r.Data) {
 			low += (r.ends.low - l.low) / l.span
 			span += r.ends.span / l.span
 			slope += (r.ends.slope - l.slope) / l.span
 			n++
 		}
 	}
+	c := v.lines[mechanism][line]
 	out := make([]float64, len(c.x))
 	for i := range out {
 		out[i] = (low + span*c.saturation[i] + slope*c.x[i]) / n
@@ -245,22 +266,40 @@ func (v *view) through(mechanism string, lines []int) []bool {
 		}
 		return out
 	}
-	type place struct {
-		data string
-		row  int
-	}
-	own := map[place]bool{}
-	for _, r := range v.measured[v.leader] {
-		if slices.Contains(lines, r.line) {
-			own[place{r.Data, r.Row}] = true
-		}
-	}
-	for _, r := range v.measured[mechanism] {
-		if r.line >= 0 && own[place{r.Data, r.Row}] {
-			out[r.line] = true
+	for pair := range v.crossings(mechanism) {
+		if slices.Contains(lines, pair[0]) {
+			out[pair[1]] = true
 		}
 	}
 	return out
+}
+
+// pointOf finds one measurement, whatever the mechanism beside it.
+type pointOf struct {
+	data string
+	row  int
+}
+
+// crossings are the pairs of a leader's curve and a mechanism's curve that
+// share a measurement.
+func (v *view) crossings(mechanism string) map[[2]int]bool {
+	if pairs, ok := v.crossed[mechanism]; ok {
+		return pairs
+	}
+	own := make(map[pointOf]int, len(v.measured[v.leader]))
+	for _, r := range v.measured[v.leader] {
+		if r.line >= 0 {
+			own[pointOf{r.Data, r.Row}] = r.line
+		}
+	}
+	pairs := map[[2]int]bool{}
+	for _, r := range v.measured[mechanism] {
+		if line, ok := own[pointOf{r.Data, r.Row}]; ok && r.line >= 0 {
+			pairs[[2]int{line, r.line}] = true
+		}
+	}
+	v.crossed[mechanism] = pairs
+	return pairs
 }
 
 // points are the measurements of a group on some of the leader's curves.

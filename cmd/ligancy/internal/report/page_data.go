@@ -128,11 +128,7 @@ func shorts(all []float64) []short {
 
 // pagePoints lists the kept measurements and every mechanism's residuals.
 func (v *view) pagePoints(d *pageData, g *responseGroup) {
-	type place struct {
-		data string
-		row  int
-	}
-	at := map[place]int{}
+	at := map[pointOf]int{}
 	for i := range v.measured[v.leader] {
 		r := &v.measured[v.leader][i]
 		if r.LeftOut != nil || r.blocked || r.line < 0 || !g.has(r.Data) || !finite(r.free) || len(d.Points) == mostMarks {
@@ -146,7 +142,7 @@ func (v *view) pagePoints(d *pageData, g *responseGroup) {
 		if r.Preparation != nil {
 			p.Prep = slices.Index(v.preps, *r.Preparation)
 		}
-		at[place{r.Data, r.Row}] = len(d.Points)
+		at[pointOf{r.Data, r.Row}] = len(d.Points)
 		d.Points = append(d.Points, p)
 	}
 	if len(v.preps) > 0 {
@@ -163,7 +159,7 @@ func (v *view) pagePoints(d *pageData, g *responseGroup) {
 				continue
 			}
 			for _, r := range v.measured[m.Name] {
-				if i, ok := at[place{r.Data, r.Row}]; ok {
+				if i, ok := at[pointOf{r.Data, r.Row}]; ok {
 					t.Residuals[i] = short(r.Residual)
 				}
 			}

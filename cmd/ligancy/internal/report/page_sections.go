@@ -7,6 +7,8 @@ import (
 	"slices"
 	"strconv"
 	"strings"
+	"unicode"
+	"unicode/utf8"
 
 	"ligancy/cmd/ligancy/internal/figure"
 	"ligancy/fit/saturation"
@@ -229,6 +231,9 @@ func (v *view) standSection() (section, error) {
 		s.Blocks = append(s.Blocks, block{Figure: d})
 	}
 	if t := v.standingTable(); t != nil {
+		s.Blocks = append(s.Blocks, block{Table: t})
+	}
+	if t := v.nestedTable(); t != nil {
 		s.Blocks = append(s.Blocks, block{Table: t})
 	}
 	return s, nil
@@ -476,17 +481,127 @@ func (v *view) twinsSection() (section, error) {
 	if len(pairs) > 0 {
 		s.Blocks = append(s.Blocks, block{List: pairs})
 	}
-	if text := v.shallowText(); text != "" {
+	if told := v.factorWords(); len(told) > 0 {
+		s.Blocks = append(s.Blocks, block{Heading: "Could independent sites give these curves?"}, block{List: told})
+	}
+	if t := v.explanationTable(); t != nil {
+		s.Blocks = append(s.Blocks, block{Heading: "Other readings of the slope"}, block{Table: t})
+	} else if text := v.shallowText(); text != "" {
 		s.Blocks = append(s.Blocks, block{Paragraph: prose(text, symbols)})
 	}
 	switch {
-	case len(s.Blocks) > 0:
+	case len(pairs) > 0:
 		s.Blocks = append(s.Blocks, block{Remark: "What could part them: dissociation after dilution with and without excess unlabelled ligand " +
 			"(where rebinding is excluded), a signal that sees one class of sites, an effector or mutation that acts on one of them."})
-	case len(v.ranked) > 1:
+	case len(s.Blocks) == 0 && len(v.ranked) > 1:
 		s.Blocks = append(s.Blocks, block{Paragraph: "No two of the mechanisms tried give the same curves."})
 	}
 	return s, nil
+}
+
+// factorWords says of each of the leader's curves whether independent sites
+// give it too; of another mechanism's where the leader was not asked.
+func (v *view) factorWords() []template.HTML {
+	var out []template.HTML
+	symbols := v.symbols()
+	for i := range v.d.Factors {
+		f := &v.d.Factors[i]
+		if f.Mechanism != v.leader || len(out) == mostPanels {
+			continue
+		}
+		if text := factorText(f); text != "" {
+			if f.Curve != "all" {
+				text = f.Curve + ": " + text
+			}
+			out = append(out, prose(sentence(text), symbols))
+		}
+	}
+	return out
+}
+
+// factorText says whether a binding polynomial factors into independent sites.
+func factorText(f *saturation.FactorRow) string {
+	share := ""
+	if finite(float64(f.Share)) && f.Draws > 0 {
+		in := percentOf(float64(f.Share)) + " %"
+		if f.Share == 0 {
+			in = "none"
+		}
+		share = fmt.Sprintf("; of %d studies simulated from the fit, the polynomial factors in %s", f.Draws, in)
+	}
+	text := ""
+	switch f.Standing {
+	case "factors":
+		text = fmt.Sprintf("yes, %d independent sites cannot be refused", f.Sites)
+		var kd []string
+		for _, k := range f.Kd {
+			if value := significant(float64(k.Value), 3); value != "" {
+				kd = append(kd, value)
+			}
+		}
+		if len(kd) > 0 {
+			text += ", of Kd " + strings.Join(kd, ", ") + " " + unitWord(f.Kd[0].Unit)
+		}
+	case "refused":
+		text = "no set of independent sites gives this curve"
+	case "by construction":
+		return "yes, by construction: the mechanism is one of independent sites"
+	default:
+		return ""
+	}
+	return text + share
+}
+
+// capital begins a text with a capital letter.
+func capital(s string) string {
+	r, n := utf8.DecodeRuneInString(s)
+	if n == 0 {
+		return s
+	}
+	return string(unicode.ToUpper(r)) + s[n:]
+}
+
+// percentOf writes a share in percent, as coarse as it is known.
+func percentOf(share float64) string { return strconv.FormatFloat(100*share, 'f', 0, 64) }
+
+// explanationTable lists what else makes curves steeper or shallower than one
+// site, and the measurement that would decide.
+func (v *view) explanationTable() *table {
+	rows := v.d.Explanations
+	if len(rows) == 0 {
+		return nil
+	}
+	t := &table{Caption: "What else makes a curve steeper or shallower than one site", Head: []string{"reading", "curve", "stands", "AICc behind", "with it", "what would decide, or why it is out"}}
+	curves := map[string]bool{}
+	for i := range rows {
+		curves[rows[i].Curve] = true
+	}
+	for i := range rows[:min(len(rows), mostListed)] {
+		r := &rows[i]
+		behind, with, test := "", "", ""
+		if x := float64(r.AICcBehind); finite(x) {
+			behind = strconv.FormatFloat(x, 'f', 1, 64)
+		}
+		if value := significant(float64(r.Value), 2); value != "" && r.Name != nil {
+			with = strings.TrimSpace(*r.Name + " " + value + " " + unitWord(r.Unit))
+		}
+		if r.Standing != "out" && r.Test != nil {
+			test = *r.Test
+		} else if r.Why != nil {
+			test = *r.Why
+		}
+		row := []entry{{Text: printable(r.Explanation), Head: true}, {Text: printable(r.Slope + ", " + curveLabel(r.Curve))},
+			{Text: printable(explanationStanding(r))}, {Text: behind, Number: true}, {Text: minus(printable(with))}, {Text: printable(test)}}
+		t.Rows = append(t.Rows, row)
+	}
+	if n := len(rows) - mostListed; n > 0 {
+		t.Foot = fmt.Sprintf("and %d more: explanations.csv", n)
+	}
+	if len(curves) == 1 {
+		t.Caption += ": " + t.Rows[0][1].Text
+		t.dropColumn(1)
+	}
+	return t.dropEmpty()
 }
 
 // shallowText reads a slope below 1 as a spread of affinities: a Hill curve of
@@ -510,8 +625,7 @@ func (v *view) shallowText() string {
 	if len(parts) == 0 {
 		return ""
 	}
-	s := strings.Join(parts, "; ")
-	return strings.ToUpper(s[:1]) + s[1:] + " (Sips 1948). Mixed or partly degraded preparations do the same; a shallow slope alone proves neither two classes of sites nor negative cooperativity."
+	return capital(strings.Join(parts, "; ")) + " (Sips 1948). Mixed or partly degraded preparations do the same; a shallow slope alone proves neither two classes of sites nor negative cooperativity."
 }
 
 // reviewerSection answers: what would a referee say?
@@ -524,23 +638,30 @@ func (v *view) reviewerSection() (section, error) {
 			own--
 		}
 	}
-	var numbered []template.HTML
-	for _, c := range v.cautions[:min(max(own, 0), mostCautions)] {
-		numbered = append(numbered, prose(strings.Join(strings.Fields(c.text), " "), symbols))
+	own = max(own, 0)
+	var numbered []term
+	for i, c := range v.cautions[:min(own, mostCautions)] {
+		numbered = append(numbered, term{Number: i + 1, Text: prose(strings.Join(strings.Fields(c.text), " "), symbols)})
 	}
 	if len(numbered) > 0 {
-		s.Blocks = append(s.Blocks, block{Heading: "About these numbers"}, block{Numbered: numbered})
+		s.Blocks = append(s.Blocks, block{Heading: "About these numbers"}, block{Terms: numbered})
 	}
-	for _, group := range objectionGroups {
+	n := own
+	for g, group := range objectionGroups {
 		var terms []term
 		for i := range v.d.Objections {
 			o := &v.d.Objections[i]
-			if o.Group == group && len(terms) < mostListed {
-				terms = append(terms, objectionTerm(o, symbols))
+			if o.Group != group || len(terms) == mostListed {
+				continue
 			}
+			t := objectionTerm(o, symbols)
+			if n++; g < 3 && n <= mostCautions {
+				t.Number = n
+			}
+			terms = append(terms, t)
 		}
 		if len(terms) > 0 {
-			s.Blocks = append(s.Blocks, block{Heading: strings.ToUpper(group[:1]) + group[1:]}, block{Terms: terms})
+			s.Blocks = append(s.Blocks, block{Heading: capital(group)}, block{Terms: terms})
 		}
 	}
 	return s, nil
@@ -552,7 +673,7 @@ func objectionTerm(o *saturation.Objection, symbols map[string]bool) term {
 		t.Text += template.HTML(" ") + prose(sentence(*o.Effect), symbols)
 	}
 	if o.Source != nil {
-		t.Text += template.HTML(` <span class="source">`) + prose(sentence(*o.Source), nil) + "</span>"
+		t.Text += template.HTML(` <span class="source">`) + prose(capital(sentence(*o.Source)), nil) + "</span>"
 	}
 	if o.Remedy != nil {
 		t.Code = printable(*o.Remedy)

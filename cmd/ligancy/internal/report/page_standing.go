@@ -78,3 +78,26 @@ func (v *view) standingTable() *table {
 	}
 	return t
 }
+
+// nestedTable compares mechanisms with freer ones that contain them.
+func (v *view) nestedTable() *table {
+	if len(v.d.Nested) == 0 {
+		return nil
+	}
+	t := &table{Caption: "Mechanisms beside a freer form of themselves: what the freedom gains, and how often studies without it gain as much",
+		Head: []string{"", "freer", "2 Δ ln L", "constants more", "in simulated studies", "by the χ² law"}}
+	for i := range v.d.Nested[:min(len(v.d.Nested), mostBars)] {
+		r := &v.d.Nested[i]
+		num := func(x float64, places int) entry { return entry{Text: fixed(x, places), Number: true} }
+		draws := entry{Number: true}
+		if finite(float64(r.PDraws)) && r.Draws > 0 {
+			draws.Text = fmt.Sprintf("%s %% of %d", percentOf(float64(r.PDraws)), r.Draws)
+		}
+		t.Rows = append(t.Rows, []entry{{Text: printable(r.Special), Head: true}, {Text: printable(r.Freer)}, num(float64(r.Statistic), 1),
+			{Text: strconv.Itoa(r.Freedom), Number: true}, draws, num(float64(r.PChiSquare), 3)})
+	}
+	if n := len(v.d.Nested) - mostBars; n > 0 {
+		t.Foot = fmt.Sprintf("and %d more: nested.csv", n)
+	}
+	return t.dropEmpty()
+}

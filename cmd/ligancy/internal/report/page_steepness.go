@@ -21,10 +21,12 @@ func (v *view) slopeFigure() figure.Figure {
 		return v.slopes(all(len(lines)))
 	}
 	m := &figure.Multiples{Name: "Steepness along each curve"}
-	for i := range lines[:min(len(lines), mostPanels)] {
-		m.Fields = append(m.Fields, v.slopes([]int{i}))
+	for i := range lines[:min(len(lines), mostFields)] {
+		f := v.slopes([]int{i})
+		f.Spare()
+		m.Fields = append(m.Fields, f)
 	}
-	if n := len(lines) - mostPanels; n > 0 {
+	if n := len(lines) - mostFields; n > 0 {
 		m.Remark = fmt.Sprintf("and %d more curves: curves.csv", n)
 	}
 	return m

@@ -29,7 +29,7 @@ type entry struct {
 }
 
 // longText is the number of letters from which an entry may take several lines.
-const longText = 36
+const longText = 30
 
 // Class is the entry's class in the style sheet.
 func (c entry) Class() string {

@@ -65,7 +65,7 @@ func (t *typesetter) text(r []rune) {
 		case unicode.IsDigit(r[i]):
 			t.number(r, &i)
 		case t.run(r, &i, superSigns, superPlain, "sup"), t.run(r, &i, subSigns, subPlain, "sub"):
-		case t.formula && r[i] == '^':
+		case r[i] == '^' && i > 0 && i+1 < len(r) && (t.formula || r[i+1] == '(' || unicode.IsDigit(r[i+1])):
 			i++
 			t.raise(r, &i)
 		case unicode.IsLetter(r[i]):

@@ -14,7 +14,8 @@ import (
 // them is said, with the table that has it.
 const (
 	mostRivals   = 12   // mechanisms that can be shown over the leader
-	mostPanels   = 24   // curves, as small multiples
+	mostPanels   = 24   // curves listed
+	mostFields   = 15   // curves drawn as small multiples
 	mostMarks    = 1500 // measurements drawn with marks of their own
 	mostRows     = 400  // measurements listed
 	mostBars     = 30   // mechanisms drawn
@@ -38,7 +39,12 @@ type view struct {
 	preps     []string
 	boots     map[key][]*saturation.QuantityRow // numbers again, by bootstrap
 	axis      figure.Ligand
-	levels    map[levelKey][]reading // kept measurements of the leader; gathered when asked for
+
+	// Found when asked for, and kept.
+	levels   map[levelKey][]reading     // kept measurements of the leader
+	crossed  map[string]map[[2]int]bool // by mechanism
+	overlays map[overlay][]float64
+	parted   []*responseGroup
 }
 
 func newView(d *Document) *view {
@@ -46,7 +52,7 @@ func newView(d *Document) *view {
 		d: d, leader: d.shown(), rows: d.index(), place: map[*saturation.QuantityRow]int{},
 		sets: map[string]*saturation.Dataset{}, lines: curveLines(d.Curves),
 		responses: map[string][]*saturation.QuantityRow{}, blocked: map[string]map[int]bool{},
-		boots: map[key][]*saturation.QuantityRow{},
+		boots: map[key][]*saturation.QuantityRow{}, crossed: map[string]map[[2]int]bool{}, overlays: map[overlay][]float64{},
 	}
 	v.cautions = d.cautionsOn(v.leader)
 	for i := range d.Quantities {
