@@ -78,69 +78,70 @@ func overlap(a, b []uint64) bool {
 	return false
 }
 
-// moves chooses how far each component is moved: ε^power of its size, which is
-// |yⱼ| and the absolute tolerance over the relative one, but no less than what
-// keeps the rounding of f over a step h far below the tolerance.
-func (d *differencer) moves(fl *flow, y, fy, iw []float64, h, share, guard float64) {
+// moves chooses how far each component is moved: share of its size, which is |yⱼ|
+// and the absolute tolerance over the relative one, but no less than guard times
+// what the rounding of f over a step h is worth.
+func (d *differencer) moves(rtol float64, at place, share, guard float64) {
 	var noise float64
-	for i, v := range fy[:d.n] {
-		noise = max(noise, math.Abs(v)*iw[i])
+	for i, v := range at.f[:d.n] {
+		noise = max(noise, math.Abs(v)*at.iw[i])
 	}
-	noise *= guard * ulp * math.Abs(h)
-	for j, v := range y {
-		m := max(share/fl.rtol, noise) / iw[j]
-		d.move[j] = y[j] + math.Copysign(m, v) - y[j]
+	noise *= guard * ulp * math.Abs(at.h)
+	for j, v := range at.y[:d.n] {
+		m := max(share/rtol, noise) / at.iw[j]
+		d.move[j] = v + math.Copysign(m, v) - v
 	}
 }
 
 // forward uses one evaluation a group.
-func (d *differencer) forward(fl *flow, dst []float64, t float64, y, fy, iw []float64, h float64) (int, error) {
-	d.moves(fl, y, fy, iw, h, math.Sqrt(ulp), 1e3)
+func (d *differencer) forward(fl *flow, dst []float64, at place) error {
+	d.moves(fl.rtol, at, math.Sqrt(ulp), 1e3)
 	for c := range d.groups {
-		d.shift(y, c, 1)
-		if err := fl.sys.Derivs(d.f, t, d.y); err != nil {
-			return c + 1, err
+		if err := d.moved(fl, d.f, at, c, 1); err != nil {
+			return err
 		}
-		for j, cj := range d.colour {
-			for i := 0; cj == c && i < d.n; i++ {
-				if !d.known || d.pat.has(i, j) {
-					dst[i*d.n+j] = (d.f[i] - fy[i]) / d.move[j]
-				}
-			}
-		}
+		d.gather(dst, c, at.f, 1)
 	}
-	return d.groups, nil
+	return nil
 }
 
 // central uses two evaluations a group.
-func (d *differencer) central(fl *flow, dst []float64, t float64, y, fy, iw []float64, h float64) (int, error) {
-	d.moves(fl, y, fy, iw, h, math.Cbrt(ulp), 1e5)
+func (d *differencer) central(fl *flow, dst []float64, at place) error {
+	d.moves(fl.rtol, at, math.Cbrt(ulp), 1e5)
 	for c := range d.groups {
-		d.shift(y, c, 1)
-		if err := fl.sys.Derivs(d.f, t, d.y); err != nil {
-			return 2*c + 1, err
+		if err := d.moved(fl, d.f, at, c, 1); err != nil {
+			return err
 		}
-		d.shift(y, c, -1)
-		if err := fl.sys.Derivs(d.back, t, d.y); err != nil {
-			return 2*c + 2, err
+		if err := d.moved(fl, d.back, at, c, -1); err != nil {
+			return err
 		}
-		for j, cj := range d.colour {
-			for i := 0; cj == c && i < d.n; i++ {
-				if !d.known || d.pat.has(i, j) {
-					dst[i*d.n+j] = (d.f[i] - d.back[i]) / (2 * d.move[j])
-				}
-			}
-		}
+		d.gather(dst, c, d.back, 2)
 	}
-	return 2 * d.groups, nil
+	return nil
 }
 
-// shift sets d.y to y with the components of one colour moved.
-func (d *differencer) shift(y []float64, colour int, by float64) {
-	copy(d.y, y)
+// moved evaluates f with the components of one colour moved.
+func (d *differencer) moved(fl *flow, dst []float64, at place, colour int, by float64) error {
+	copy(d.y, at.y)
 	for j, c := range d.colour {
 		if c == colour {
 			d.y[j] += by * d.move[j]
+		}
+	}
+	fl.stats.Differences++
+	return fl.sys.Derivs(dst, at.t, d.y)
+}
+
+// gather fills the columns of one colour with (d.f − from)/(over·move).
+func (d *differencer) gather(dst []float64, colour int, from []float64, over float64) {
+	for j, c := range d.colour {
+		if c != colour {
+			continue
+		}
+		for i := range d.n {
+			if !d.known || d.pat.has(i, j) {
+				dst[i*d.n+j] = (d.f[i] - from[i]) / (over * d.move[j])
+			}
 		}
 	}
 }

@@ -68,12 +68,12 @@ func TestDifferences(t *testing.T) {
 		fl.bind(sys, false, new(Stats))
 		fl.rtol = 1e-8
 		jac := make([]float64, 81)
-		if err := fl.jacobian(jac, 0.3, y, fy, iw, 1e-3); err != nil {
+		if err := fl.jacobian(jac, place{0.3, y, fy, iw, 1e-3}); err != nil {
 			t.Fatal(err)
 		}
 		compareBand(t, b, jac, y, iw, 2e-6)
 		forward := fl.stats.Differences
-		if err := fl.exactJacobian(jac, 0.3, y, fy, iw, 1e-3); err != nil {
+		if err := fl.exactJacobian(jac, place{0.3, y, fy, iw, 1e-3}); err != nil {
 			t.Fatal(err)
 		}
 		compareBand(t, b, jac, y, iw, 1e-8)

@@ -94,7 +94,7 @@ func (w *watcher) step(t0, h float64, at func(dst []float64, x float64)) ([]cros
 			if d := w.events[i].Direction; d != 0 && (d > 0) != rising {
 				continue
 			}
-			root, err := w.root(i, t0, h, x-1.0/looks, x, before, v, at)
+			root, err := w.root(bracket{i, t0, h, x - 1.0/looks, x, before, v}, at)
 			if err != nil {
 				return nil, err
 			}
@@ -106,43 +106,48 @@ func (w *watcher) step(t0, h float64, at func(dst []float64, x float64)) ([]cros
 	return w.found, nil
 }
 
+// bracket holds a sign change of an event within a step: g is ga at place a and gb
+// at place b.
+type bracket struct {
+	event        int
+	t0, h        float64
+	a, b, ga, gb float64
+}
+
 // root narrows a sign change down to the last places of t: regula falsi with the
-// Illinois weights, and halving where that is slow.
-func (w *watcher) root(i int, t0, h, a, b, ga, gb float64, at func([]float64, float64)) (float64, error) {
-	if gb == 0 {
-		return b, nil
-	}
-	tol := 2 * ulp * max(1, math.Abs(t0/h))
+// Illinois weights, and halving every third time.
+func (w *watcher) root(k bracket, at func(dst []float64, x float64)) (float64, error) {
+	tol := 2 * ulp * max(1, math.Abs(k.t0/k.h))
 	side := 0
-	for n := 0; b-a > tol && n < 200; n++ {
-		x := b - gb*(b-a)/(gb-ga)
-		if n%3 == 2 || !(x > a && x < b) {
-			x = a + (b-a)/2
+	for n := 0; k.gb != 0 && k.b-k.a > tol; n++ {
+		x := k.b - k.gb*(k.b-k.a)/(k.gb-k.ga)
+		if n%3 == 2 || !(x > k.a && x < k.b) {
+			x = k.a + (k.b-k.a)/2
 		}
-		if x == a || x == b {
+		if x == k.a || x == k.b {
 			break
 		}
 		at(w.y, x)
-		v, err := w.value(i, t0+x*h, w.y)
+		v, err := w.value(k.event, k.t0+x*k.h, w.y)
 		if err != nil {
 			return 0, err
 		}
 		switch {
 		case v == 0:
 			return x, nil
-		case (v > 0) == (gb > 0):
-			b, gb = x, v
+		case (v > 0) == (k.gb > 0):
+			k.b, k.gb = x, v
 			if side == 1 {
-				ga /= 2
+				k.ga /= 2
 			}
 			side = 1
 		default:
-			a, ga = x, v
+			k.a, k.ga = x, v
 			if side == -1 {
-				gb /= 2
+				k.gb /= 2
 			}
 			side = -1
 		}
 	}
-	return b, nil
+	return k.b, nil
 }

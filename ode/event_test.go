@@ -23,7 +23,7 @@ func TestRoot(t *testing.T) {
 			events: []Event{{G: func(t float64, _ []float64) float64 { calls++; return c.g(t) }}},
 			y:      make([]float64, 1),
 		}
-		x, err := w.root(0, 0, 1, 0, 1, c.g(0), c.g(1), func([]float64, float64) {})
+		x, err := w.root(bracket{0, 0, 1, 0, 1, c.g(0), c.g(1)}, func([]float64, float64) {})
 		if err != nil || math.Abs(x-c.zero) > 1e-14 && math.Abs(c.g(x)) > 1e-40 {
 			t.Errorf("%s: %.17g, not %g (%v)", c.name, x, c.zero, err)
 		}

@@ -48,21 +48,21 @@ const stableReach = 6.1
 
 func (m *explicit) begin(p *point) error {
 	m.stiff, m.easy, m.seemsStiff, m.ready = 0, 0, false, false
-	return m.derivs(p.f, p.t, p.y, p.iw, 0)
+	return m.derivs(place{p.t, p.y, p.f, p.iw, 0})
 }
 
-// derivs evaluates f and, where asked for, S′.
-func (m *explicit) derivs(dst []float64, t float64, y, iw []float64, h float64) error {
-	if err := m.flow.derivs(dst, t, y); err != nil || m.flow.p == 0 {
+// derivs evaluates f and, where asked for, S′ into at.f.
+func (m *explicit) derivs(at place) error {
+	if err := m.flow.derivs(at.f, at.t, at.y); err != nil || m.flow.p == 0 {
 		return err
 	}
-	if err := m.flow.exactJacobian(m.jac, t, y, dst, iw, h); err != nil {
+	if err := m.flow.exactJacobian(m.jac, at); err != nil {
 		return err
 	}
-	if err := m.flow.paramJacobian(dst[m.n:], t, y); err != nil {
+	if err := m.flow.paramJacobian(at.f[m.n:], at.t, at.y); err != nil {
 		return err
 	}
-	m.flow.variational(dst[m.n:], m.jac, y[m.n:])
+	m.flow.variational(at.f[m.n:], m.jac, at.y[m.n:])
 	return nil
 }
 
@@ -77,7 +77,7 @@ func (m *explicit) try(p *point, h float64) trial {
 	for i := 1; i < explicitStages; i++ {
 		m.stage(h, i, m.arg)
 		plus(m.arg, 1, p.y)
-		if err := m.derivs(m.k[i], p.t+explicitC[i]*h, m.arg, p.iw, h); err != nil {
+		if err := m.derivs(place{p.t + explicitC[i]*h, m.arg, m.k[i], p.iw, h}); err != nil {
 			return m.flow.trouble(err)
 		}
 	}
@@ -134,7 +134,7 @@ func (m *explicit) accept(p *point, h float64) {
 }
 
 func (m *explicit) refresh(p *point) error {
-	if err := m.derivs(p.f, p.t, p.y, p.iw, m.polyH); err != nil {
+	if err := m.derivs(place{p.t, p.y, p.f, p.iw, m.polyH}); err != nil {
 		return err
 	}
 	copy(m.k[explicitStages], p.f)
@@ -174,7 +174,7 @@ func (m *explicit) complete(p *point) error {
 	for i := explicitStages + 1; i < explicitAll; i++ {
 		m.stage(h, i, m.arg)
 		plus(m.arg, 1, m.start)
-		if err := m.derivs(m.k[i], m.startT+explicitC[i]*h, m.arg, p.iw, h); err != nil {
+		if err := m.derivs(place{m.startT + explicitC[i]*h, m.arg, m.k[i], p.iw, h}); err != nil {
 			return err
 		}
 	}

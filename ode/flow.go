@@ -64,32 +64,37 @@ func (f *flow) derivs(dst []float64, t float64, y []float64) error {
 	return f.sys.Derivs(dst[:f.n], t, y[:f.n])
 }
 
-// jacobian writes ∂f/∂y, row-major. Differences need f at the place, and weigh
-// rounding against the step h and the reciprocal weights iw.
-func (f *flow) jacobian(dst []float64, t float64, y, fy, iw []float64, h float64) error {
-	f.stats.Jacobians++
-	dst = dst[:f.n*f.n]
-	clear(dst)
-	if f.jacer != nil {
-		return f.jacer.Jacobian(over(f.jac, dst), t, y[:f.n])
+// place is where derivatives of f are wanted. Differences need f there, and weigh
+// its rounding against the step h and the reciprocal weights iw.
+type place struct {
+	t        float64
+	y, f, iw []float64
+	h        float64
+}
+
+// jacobian writes ∂f/∂y, row-major.
+func (f *flow) jacobian(dst []float64, at place) error {
+	if dst = f.blank(dst); f.jacer != nil {
+		return f.jacer.Jacobian(over(f.jac, dst), at.t, at.y[:f.n])
 	}
-	k, err := f.diff.forward(f, dst, t, y[:f.n], fy, iw, h)
-	f.stats.Differences += k
-	return err
+	return f.diff.forward(f, dst, at)
 }
 
 // exactJacobian is jacobian by central differences where there is no formula:
 // sensitivities are no better than it.
-func (f *flow) exactJacobian(dst []float64, t float64, y, fy, iw []float64, h float64) error {
+func (f *flow) exactJacobian(dst []float64, at place) error {
+	if dst = f.blank(dst); f.jacer != nil {
+		return f.jacer.Jacobian(over(f.jac, dst), at.t, at.y[:f.n])
+	}
+	return f.diff.central(f, dst, at)
+}
+
+// blank counts a Jacobian and clears its memory.
+func (f *flow) blank(dst []float64) []float64 {
 	f.stats.Jacobians++
 	dst = dst[:f.n*f.n]
 	clear(dst)
-	if f.jacer != nil {
-		return f.jacer.Jacobian(over(f.jac, dst), t, y[:f.n])
-	}
-	k, err := f.diff.central(f, dst, t, y[:f.n], fy, iw, h)
-	f.stats.Differences += k
-	return err
+	return dst
 }
 
 // paramJacobian writes ∂f/∂θ, row-major.

@@ -53,20 +53,6 @@ func (s *Solver) integrate(ctx context.Context) error {
 	}
 }
 
-// first chooses the size of the first step.
-func (s *Solver) first() (float64, error) {
-	room := s.end - s.p.t
-	if h := s.Options.FirstStep; h > 0 {
-		return math.Copysign(h, room), nil
-	}
-	h, err := firstStep(&s.flow, &s.p, room, s.m.power(), s.out, s.low)
-	clear(s.low)
-	if err != nil {
-		return 0, s.systemFailed(err)
-	}
-	return h, nil
-}
-
 // fit bounds a step, and stretches it to the end of times where that is near.
 func (s *Solver) fit(h float64) (float64, bool) {
 	if most := s.Options.MaxStep; most > 0 && math.Abs(h) > most {

@@ -32,8 +32,7 @@ func (s *Solver) SolvePhases(ctx context.Context, dst []*Solution, phases []Phas
 	start float64, y0 []float64) ([]*Solution, error) {
 	asked := s.Options.Sensitivity
 	defer func() { s.Options.Sensitivity = asked }()
-	y := slices.Clone(y0)
-	var sens *mat.Dense
+	at := handover{start: start, y: slices.Clone(y0)}
 	if asked != nil {
 		carried := *asked
 		s.Options.Sensitivity = &carried
@@ -43,15 +42,14 @@ func (s *Solver) SolvePhases(ctx context.Context, dst []*Solution, phases []Phas
 			dst = append(dst, new(Solution))
 		}
 		if k == 0 {
-			sens = s.startSensitivity(phases[0].System, len(y0))
+			at.sens = s.startSensitivity(phases[0].System, len(y0))
 		}
-		if err := s.phase(ctx, dst[k], &phases[k], start, y, sens); err != nil {
+		if err := s.phase(ctx, dst[k], &phases[k], &at); err != nil {
 			return dst[:k+1], fmt.Errorf("phase %d: %w", k+1, err)
 		}
 		if dst[k].Ended {
 			return dst[:k+1], nil
 		}
-		start = dst[k].EndTime
 	}
 	return dst[:len(phases)], nil
 }
@@ -70,28 +68,34 @@ func (s *Solver) startSensitivity(sys System, n int) *mat.Dense {
 	return sens
 }
 
-// phase integrates one phase; y and sens go in as left by the one before, and
-// come out at its end.
-func (s *Solver) phase(ctx context.Context, dst *Solution, ph *Phase, start float64,
-	y []float64, sens *mat.Dense) error {
+// handover is what one phase leaves to the next.
+type handover struct {
+	start float64
+	y     []float64
+	sens  *mat.Dense // nil where not asked for
+}
+
+// phase integrates one phase from what the one before has left.
+func (s *Solver) phase(ctx context.Context, dst *Solution, ph *Phase, at *handover) error {
 	if ph.System == nil || len(ph.Times) == 0 {
 		return &Failure{Reason: BadInput, Component: -1, Err: errors.New("no system or no times")}
 	}
 	if ph.Enter != nil {
-		if err := ph.Enter(y, sens); err != nil {
-			return &Failure{Reason: BadInput, Time: start, Component: -1, Err: err}
+		if err := ph.Enter(at.y, at.sens); err != nil {
+			return &Failure{Reason: BadInput, Time: at.start, Component: -1, Err: err}
 		}
 	}
-	if sens != nil {
-		s.Options.Sensitivity.Start = sens
+	if at.sens != nil {
+		s.Options.Sensitivity.Start = at.sens
 	}
-	times := append([]float64{start}, ph.Times...)
-	if _, err := s.Solve(ctx, dst, ph.System, y, times); err != nil {
+	times := append([]float64{at.start}, ph.Times...)
+	if _, err := s.Solve(ctx, dst, ph.System, at.y, times); err != nil {
 		return err
 	}
-	copy(y, dst.EndState)
-	if sens != nil && !dst.Ended {
-		sens.Copy(dst.Sensitivities[len(dst.Sensitivities)-1])
+	at.start = dst.EndTime
+	copy(at.y, dst.EndState)
+	if at.sens != nil && !dst.Ended {
+		at.sens.Copy(dst.Sensitivities[len(dst.Sensitivities)-1])
 	}
 	return nil
 }

@@ -130,7 +130,7 @@ func (m *radau) try(p *point, h float64) trial {
 // factor brings Jacobian and matrices up to date for a step h.
 func (m *radau) factor(p *point, h float64) trial {
 	if m.jacWant && !m.jacNew {
-		if err := m.flow.jacobian(m.jac, p.t, p.y, p.f, p.iw, h); err != nil {
+		if err := m.flow.jacobian(m.jac, place{p.t, p.y, p.f, p.iw, h}); err != nil {
 			return m.flow.trouble(err)
 		}
 		m.mat.see(m.jac)

@@ -72,45 +72,57 @@ func (q *plan) work() int { return len(q.dest) + len(q.elims) }
 
 // newPlan works out the elimination. It costs about n² steps on words.
 func newPlan(p *pattern) *plan {
-	n, w := p.n, p.words
-	rows, cols := make([]uint64, n*w), make([]uint64, n*w)
-	copy(rows, p.bits)
-	for i := range n {
-		rows[i*w+i>>6] |= 1 << (i & 63)
-		for j := range n {
-			if rows[i*w+j>>6]>>(j&63)&1 != 0 {
-				cols[j*w+i>>6] |= 1 << (i & 63)
-			}
-		}
-	}
-	q := &plan{n: n}
-	left := make([]uint64, w)
-	for i := range n {
-		left[i>>6] |= 1 << (i & 63)
-	}
-	for range n {
-		k := cheapest(rows, cols, left, n, w)
+	g := newFilling(p)
+	q := &plan{n: p.n}
+	for range p.n {
+		k := g.cheapest()
 		q.order = append(q.order, int32(k))
-		left[k>>6] &^= 1 << (k & 63)
-		fill(rows, cols, left, k, n, w)
+		g.eliminate(k)
 	}
-	q.lay(rows, n, w)
+	q.lay(&g.rows)
 	q.load(p)
 	q.schedule()
 	return q
 }
 
+// filling is a pattern that fills up as rows and columns are eliminated, with its
+// transpose.
+type filling struct {
+	rows, cols pattern
+	left       []uint64 // not yet eliminated
+}
+
+func newFilling(p *pattern) *filling {
+	g := &filling{left: make([]uint64, p.words)}
+	g.rows.resize(p.n)
+	g.cols.resize(p.n)
+	copy(g.rows.bits, p.bits)
+	for i := range p.n {
+		g.rows.set(i, i)
+		g.left[i>>6] |= 1 << (i & 63)
+		for j := range p.n {
+			if g.rows.has(i, j) {
+				g.cols.set(j, i)
+			}
+		}
+	}
+	return g
+}
+
+func (g *filling) has(k int) bool { return g.left[k>>6]>>(k&63)&1 != 0 }
+
 // cheapest is the row left with the least Markowitz count; the first of equals.
-func cheapest(rows, cols, left []uint64, n, w int) int {
+func (g *filling) cheapest() int {
 	best, at := math.MaxInt, -1
-	for k := range n {
-		if left[k>>6]>>(k&63)&1 == 0 {
+	for k := range g.rows.n {
+		if !g.has(k) {
 			continue
 		}
 		r, c := -1, -1
-		for i := range w {
-			r += bits.OnesCount64(rows[k*w+i] & left[i])
-			c += bits.OnesCount64(cols[k*w+i] & left[i])
+		row, col := g.rows.row(k), g.cols.row(k)
+		for o, v := range g.left {
+			r += bits.OnesCount64(row[o] & v)
+			c += bits.OnesCount64(col[o] & v)
 		}
 		if r*c < best {
 			best, at = r*c, k
@@ -119,31 +131,35 @@ func cheapest(rows, cols, left []uint64, n, w int) int {
 	return at
 }
 
-// fill adds what eliminating k makes of the rows and columns left.
-func fill(rows, cols, left []uint64, k, n, w int) {
-	for i := range n {
-		if left[i>>6]>>(i&63)&1 == 0 {
+// eliminate adds what eliminating k makes of the rows and columns left.
+func (g *filling) eliminate(k int) {
+	g.left[k>>6] &^= 1 << (k & 63)
+	for i := range g.rows.n {
+		if !g.has(i) {
 			continue
 		}
-		if cols[k*w+i>>6]>>(i&63)&1 != 0 {
-			for o := range w {
-				rows[i*w+o] |= rows[k*w+o] & left[o]
-			}
+		if g.rows.has(i, k) {
+			join(g.rows.row(i), g.rows.row(k), g.left)
 		}
-		if rows[k*w+i>>6]>>(i&63)&1 != 0 {
-			for o := range w {
-				cols[i*w+o] |= cols[k*w+o] & left[o]
-			}
+		if g.cols.has(i, k) {
+			join(g.cols.row(i), g.cols.row(k), g.left)
 		}
 	}
 }
 
+// join adds to a the members of b that are left.
+func join(a, b, left []uint64) {
+	for o, v := range b {
+		a[o] |= v & left[o]
+	}
+}
+
 // lay gives every entry of the filled matrix its position.
-func (q *plan) lay(rows []uint64, n, w int) {
-	q.row, q.diag = make([]int32, n+1), make([]int32, n)
+func (q *plan) lay(rows *pattern) {
+	q.row, q.diag = make([]int32, q.n+1), make([]int32, q.n)
 	for k, i := range q.order {
 		for m, j := range q.order {
-			if rows[int(i)*w+int(j)>>6]>>(j&63)&1 == 0 {
+			if !rows.has(int(i), int(j)) {
 				continue
 			}
 			if m == k {

@@ -32,7 +32,7 @@ func (v *variation) resize(fl *flow, o *Options) {
 
 func (v *variation) begin(p *point) error {
 	v.eta = 1
-	if err := v.linearise(0, p.t, p.y, p.f, p.iw, 0); err != nil {
+	if err := v.linearise(0, place{p.t, p.y, p.f, p.iw, 0}); err != nil {
 		return err
 	}
 	v.refresh(p, 0)
@@ -40,11 +40,11 @@ func (v *variation) begin(p *point) error {
 }
 
 // linearise takes the derivatives of f at a stage.
-func (v *variation) linearise(stage int, t float64, y, fy, iw []float64, h float64) error {
-	if err := v.fl.exactJacobian(v.jac[stage], t, y, fy, iw, h); err != nil {
+func (v *variation) linearise(stage int, at place) error {
+	if err := v.fl.exactJacobian(v.jac[stage], at); err != nil {
 		return err
 	}
-	return v.fl.paramJacobian(v.par[stage], t, y)
+	return v.fl.paramJacobian(v.par[stage], at.t, at.y)
 }
 
 // refresh sets S′ in p.f from the derivatives at one stage.
@@ -62,7 +62,7 @@ func (m *radau) vary(p *point, h float64, tr trial) trial {
 		for k, y := range p.y[:n] {
 			m.arg[k] = y + m.z[i][k]
 		}
-		if err := v.linearise(i, p.t+b.c[i]*h, m.arg[:n], m.f[i], p.iw, h); err != nil {
+		if err := v.linearise(i, place{p.t + b.c[i]*h, m.arg, m.f[i], p.iw, h}); err != nil {
 			return m.flow.trouble(err)
 		}
 	}
@@ -94,7 +94,8 @@ func (m *radau) varyError(p *point, h float64) trial {
 	if err < 1 {
 		m.mix(m.arg[:m.all], &b.probeZ, 1)
 		plus(m.arg[:m.all], 1, p.y)
-		if fault := v.linearise(maxStages, p.t+b.probe*h, m.arg[:n], m.f[b.s-1], p.iw, h); fault != nil {
+		at := place{p.t + b.probe*h, m.arg, m.f[b.s-1], p.iw, h}
+		if fault := v.linearise(maxStages, at); fault != nil {
 			return m.flow.trouble(fault)
 		}
 		copy(e, v.par[maxStages])

@@ -138,49 +138,54 @@ func bounded(ctx context.Context, opts ode.Options) error {
 
 func badInput(ctx context.Context, opts ode.Options) error {
 	e := chain()
-	start, times := e.Start, e.Times
-	inf := math.Inf(1)
+	inf, nan := math.Inf(1), math.NaN()
+	set := func(change func(o *ode.Options)) question {
+		o := opts
+		change(&o)
+		return question{e, e.Start, e.Times, o}
+	}
+	at := func(times ...float64) question { return question{e, e.Start, times, opts} }
+	from := func(start ...float64) question { return question{e, start, e.Times, opts} }
+	small := mat.NewDense(2, 2, nil)
 	cases := []struct {
-		what  string
-		sys   ode.System
-		y0, t []float64
-		o     ode.Options
+		what string
+		q    question
 	}{
-		{"no times", e, start, nil, opts},
-		{"times that stand", e, start, []float64{0, 1, 1}, opts},
-		{"times that turn", e, start, []float64{0, 2, 1}, opts},
-		{"an infinite time", e, start, []float64{0, inf}, opts},
-		{"a short start", e, start[:2], times, opts},
-		{"a start that is no number", e, []float64{1, math.NaN(), 0}, times, opts},
-		{"no component", &faulty{}, nil, times, opts},
-		{"a negative tolerance", e, start, times, with(opts, func(o *ode.Options) { o.Rtol = -1e-6 })},
-		{"a tolerance below rounding", e, start, times, with(opts, func(o *ode.Options) { o.Rtol = 1e-16 })},
-		{"a tolerance above one", e, start, times, with(opts, func(o *ode.Options) { o.Rtol = 2 })},
-		{"a negative absolute tolerance", e, start, times, with(opts, func(o *ode.Options) { o.Atol = -1 })},
-		{"too few absolute tolerances", e, start, times, with(opts, func(o *ode.Options) { o.AtolEach = []float64{1} })},
-		{"a zero start without absolute tolerance", e, start, times,
-			with(opts, func(o *ode.Options) { o.AtolEach = []float64{1, 0, 1} })},
-		{"a step that is no number", e, start, times, with(opts, func(o *ode.Options) { o.FirstStep = math.NaN() })},
-		{"a negative step", e, start, times, with(opts, func(o *ode.Options) { o.MaxStep = -1 })},
-		{"an unknown method", e, start, times, with(opts, func(o *ode.Options) { o.Method = 99 })},
-		{"an unknown order", e, start, times, with(opts, func(o *ode.Options) { o.MinOrder = 7 })},
-		{"orders crossed", e, start, times, with(opts, func(o *ode.Options) { o.MinOrder, o.MaxOrder = 13, 5 })},
-		{"a component beyond the last", e, start, times, with(opts, func(o *ode.Options) { o.NonNegative = []int{3} })},
-		{"totals of another size", e, start, times, with(opts, func(o *ode.Options) { o.Totals = mat.NewDense(1, 2, nil) })},
-		{"totals held but not given", e, start, times, with(opts, func(o *ode.Options) { o.HoldTotals = true })},
-		{"an event without function", e, start, times, with(opts, func(o *ode.Options) { o.Events = []ode.Event{{}} })},
-		{"sensitivities without constants", &faulty{n: 3}, start, times,
-			with(opts, func(o *ode.Options) { o.Sensitivity = &ode.Sensitivity{} })},
-		{"sensitivities of another size", e, start, times, with(opts, func(o *ode.Options) {
-			o.Sensitivity = &ode.Sensitivity{Start: mat.NewDense(2, 2, nil)}
-		})},
-		{"a scale of zero", e, start, times, with(opts, func(o *ode.Options) {
-			o.Sensitivity = &ode.Sensitivity{Scale: []float64{1, 0}}
-		})},
+		{"no times", at()},
+		{"times that stand", at(0, 1, 1)},
+		{"times that turn", at(0, 2, 1)},
+		{"an infinite time", at(0, inf)},
+		{"a short start", from(1, 0)},
+		{"a start that is no number", from(1, nan, 0)},
+		{"no component", question{&faulty{}, nil, e.Times, opts}},
+		{"a negative tolerance", set(func(o *ode.Options) { o.Rtol = -1e-6 })},
+		{"a tolerance below rounding", set(func(o *ode.Options) { o.Rtol = 1e-16 })},
+		{"a tolerance above one", set(func(o *ode.Options) { o.Rtol = 2 })},
+		{"a negative absolute tolerance", set(func(o *ode.Options) { o.Atol = -1 })},
+		{"too few absolute tolerances", set(func(o *ode.Options) { o.AtolEach = []float64{1} })},
+		{"an infinite absolute tolerance", set(func(o *ode.Options) { o.AtolEach = []float64{1, 1, inf} })},
+		{"a zero start without tolerance", set(func(o *ode.Options) { o.AtolEach = []float64{1, 0, 1} })},
+		{"a step that is no number", set(func(o *ode.Options) { o.FirstStep = nan })},
+		{"a negative step", set(func(o *ode.Options) { o.MaxStep = -1 })},
+		{"a negative number of steps", set(func(o *ode.Options) { o.MaxSteps = -1 })},
+		{"an unknown method", set(func(o *ode.Options) { o.Method = 99 })},
+		{"an unknown order", set(func(o *ode.Options) { o.MinOrder = 7 })},
+		{"orders crossed", set(func(o *ode.Options) { o.MinOrder, o.MaxOrder = 13, 5 })},
+		{"a component beyond the last", set(func(o *ode.Options) { o.NonNegative = []int{3} })},
+		{"names of another number", set(func(o *ode.Options) { o.Names = []string{"A"} })},
+		{"totals of another size", set(func(o *ode.Options) { o.Totals = mat.NewDense(1, 2, nil) })},
+		{"totals without numbers", set(func(o *ode.Options) { o.Totals = mat.NewDense(1, 3, []float64{1, 1, nan}) })},
+		{"totals held but not given", set(func(o *ode.Options) { o.HoldTotals = true })},
+		{"an event without function", set(func(o *ode.Options) { o.Events = []ode.Event{{}} })},
+		{"sensitivities without constants", question{&faulty{n: 3}, e.Start, e.Times,
+			ode.Options{Method: opts.Method, Sensitivity: &ode.Sensitivity{}}}},
+		{"sensitivities of another size", set(func(o *ode.Options) { o.Sensitivity = &ode.Sensitivity{Start: small} })},
+		{"a scale of zero", set(func(o *ode.Options) { o.Sensitivity = &ode.Sensitivity{Scale: []float64{1, 0}} })},
+		{"a scale too few", set(func(o *ode.Options) { o.Sensitivity = &ode.Sensitivity{Scale: []float64{1}} })},
 	}
 	for _, c := range cases {
-		sol, err := ode.Solve(ctx, c.sys, c.y0, c.t, c.o)
-		if err := failsAs(err, ode.BadInput, math.NaN(), -1); err != nil {
+		sol, err := ode.Solve(ctx, c.q.sys, c.q.start, c.q.times, c.q.opts)
+		if err := failsAs(err, ode.BadInput, nan, -1); err != nil {
 			return fmt.Errorf("%s: %w", c.what, err)
 		}
 		if sol == nil || len(sol.States) > 0 {
@@ -190,8 +195,9 @@ func badInput(ctx context.Context, opts ode.Options) error {
 	return nil
 }
 
-// with is a copy of the options, changed.
-func with(o ode.Options, change func(*ode.Options)) ode.Options {
-	change(&o)
-	return o
+// question is what is put to ode.Solve.
+type question struct {
+	sys          ode.System
+	start, times []float64
+	opts         ode.Options
 }

@@ -66,7 +66,7 @@ func WorkPrecision(ctx context.Context, set Precision) ([]Row, error) {
 		}
 		for _, m := range methods {
 			for _, rtol := range set.Rtols {
-				row := measure(ctx, p, m, rtol, set)
+				row := set.measure(ctx, p, m, rtol)
 				if ctx.Err() != nil {
 					return rows, context.Cause(ctx)
 				}
@@ -78,12 +78,13 @@ func WorkPrecision(ctx context.Context, set Precision) ([]Row, error) {
 }
 
 // measure runs one problem at one tolerance.
-func measure(ctx context.Context, p Problem, m ode.Method, rtol float64, set Precision) Row {
+func (set *Precision) measure(ctx context.Context, p Problem, m ode.Method, rtol float64) Row {
 	s := ode.Solver{Options: set.Options}
 	s.Options.Method, s.Options.Rtol, s.Options.Atol = m, rtol, rtol*p.Floor
 	sys := p.New()
 	sol, err := s.Solve(ctx, nil, sys, p.Start, p.Times)
-	row := Row{Problem: p.Name, Solver: m.String(), Rtol: rtol, Atol: rtol * p.Floor, Err: err, Stats: sol.Stats}
+	row := Row{Problem: p.Name, Solver: m.String(), Rtol: rtol, Atol: rtol * p.Floor, Err: err}
+	row.Stats = sol.Stats
 	if err != nil {
 		return row
 	}
@@ -180,7 +181,9 @@ func (r *Row) cells() []string {
 		cells = append(cells, strconv.FormatFloat(v, 'f', 2, 64))
 	}
 	st := r.Stats
-	for _, v := range []int{st.Steps, st.Evaluations + st.Differences, st.Jacobians, st.Factorisations, st.Iterations} {
+	for _, v := range []int{
+		st.Steps, st.Evaluations + st.Differences, st.Jacobians, st.Factorisations, st.Iterations,
+	} {
 		cells = append(cells, strconv.Itoa(v))
 	}
 	time := ""

@@ -196,7 +196,8 @@ func TestDifferencedProblems(t *testing.T) {
 			continue
 		}
 		sys := p.New()
-		sol, err := ode.Solve(t.Context(), bare{sys}, p.Start, p.Times, ode.Options{Rtol: 1e-7, Atol: 1e-7 * p.Floor})
+		o := ode.Options{Rtol: 1e-7, Atol: 1e-7 * p.Floor}
+		sol, err := ode.Solve(t.Context(), bare{sys}, p.Start, p.Times, o)
 		if err != nil {
 			t.Errorf("%s: %v", p.Name, err)
 			continue
@@ -233,7 +234,8 @@ func TestRows(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	const head = "problem,solver,rtol,atol,status,scd_end,scd_min,mescd_end,mescd_min,steps,rhs,jac,lu,newton,cpu_ms,y1,y2,y3"
+	const head = "problem,solver,rtol,atol,status,scd_end,scd_min,mescd_end,mescd_min," +
+		"steps,rhs,jac,lu,newton,cpu_ms,y1,y2,y3"
 	if got := strings.Join(table[0], ","); got != head {
 		t.Errorf("columns %s", got)
 	}

@@ -75,7 +75,8 @@ func TestNetworkSensitivities(t *testing.T) {
 			for i := range w.n {
 				near, far := a.States[k][i]-b.States[k][i], c.States[k][i]-d.States[k][i]
 				want := (8*near - far) / (12 * h)
-				if e := math.Abs(sol.Sensitivities[k].At(i, j) - want); e > 1e-7*math.Abs(want)+1e-9*sol.States[k][i]+o.Atol {
+				e := math.Abs(sol.Sensitivities[k].At(i, j) - want)
+				if e > 1e-7*math.Abs(want)+1e-9*sol.States[k][i]+o.Atol {
 					t.Errorf("t = %.3g: ∂y%d/∂θ%d is %.10g, by differences %.10g",
 						times[k], i+1, j+1, sol.Sensitivities[k].At(i, j), want)
 				}
