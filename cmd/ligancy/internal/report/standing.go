@@ -2,6 +2,7 @@ package report
 
 import (
 	"cmp"
+	"fmt"
 	"math"
 	"slices"
 	"strconv"
@@ -37,7 +38,7 @@ func (p *page) standing() {
 		p.line("  and %d more: mechanisms.csv", n)
 	}
 	for _, twins := range p.d.Verdict.Twins {
-		p.write(hanging("  ", "The same curves, one story each: "+strings.Join(cutAll(twins, 40), " = ")+"; counted once.", Width))
+		p.write(hanging("  ", "The same curves, one story each: "+twinNames(twins)+"; counted once.", Width))
 	}
 	p.line("")
 }
@@ -96,10 +97,17 @@ func weight(w float64) string {
 	return strconv.FormatFloat(w, 'f', 2, 64)
 }
 
-func cutAll(names []string, w int) []string {
-	out := make([]string, len(names))
-	for i, n := range names {
-		out[i] = cut(n, w)
+const mostTwins = 8
+
+// twinNames writes "two classes = interacting pair".
+func twinNames(names []string) string {
+	shown := make([]string, 0, mostTwins)
+	for _, n := range names[:min(len(names), mostTwins)] {
+		shown = append(shown, cut(n, 40))
 	}
-	return out
+	s := strings.Join(shown, " = ")
+	if n := len(names) - len(shown); n > 0 {
+		s += fmt.Sprintf(" and %d more", n)
+	}
+	return s
 }
