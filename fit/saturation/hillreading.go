@@ -93,7 +93,7 @@ func (f *fitted) readingError(hm *model, r *fit.Result, rows [][2]int, at int) f
 	}
 	n, p, q := len(rows), len(hm.params), len(f.m.params)
 	jPhi, jTheta := mat.NewDense(n, p, nil), mat.NewDense(n, q, nil)
-	i := 0
+	i, predicted := 0, -1
 	for _, b := range hm.blocks {
 		b.predict(r.Theta, true)
 		s := make([]float64, len(b.pts))
@@ -103,7 +103,10 @@ func (f *fitted) readingError(hm *model, r *fit.Result, rows [][2]int, at int) f
 				jPhi.Set(i, k, v/s[j])
 			}
 			src := f.m.blocks[rows[i][0]]
-			src.predict(f.result.Theta, true)
+			if predicted != rows[i][0] {
+				src.predict(f.result.Theta, true)
+				predicted = rows[i][0]
+			}
 			for k, v := range src.work.jHat.RawRowView(src.pts[rows[i][1]].row) {
 				jTheta.Set(i, k, v/s[j])
 			}
