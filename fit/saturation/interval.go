@@ -37,6 +37,9 @@ func (f *fitted) withInterval(ctx context.Context, w wanted, pr *fit.Profiler) Q
 	if w.quick || pr == nil {
 		return f.covarianceRow(row, w, q, level)
 	}
+	if math.IsInf(v, 0) {
+		return f.oneEnded(ctx, row, w, pr, v > 0)
+	}
 	return f.profileRow(ctx, row, w, pr)
 }
 
@@ -77,6 +80,9 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *
 		iv = pr.Parameter(ctx, w.index)
 	} else {
 		iv = pr.Quantity(ctx, w.make())
+		if w.row.Of == "constant" {
+			f.openAtZero(ctx, w, pr, &iv)
+		}
 	}
 	row.Interval, row.Level = iv.Method, Real(iv.Level)
 	low := endOf{value: w.back(iv.Low), open: iv.LowOpen, edge: iv.LowEdge, tried: w.back(iv.Low), side: "lower"}
@@ -95,6 +101,28 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *
 		row.Why = text(why)
 	}
 	return row
+}
+
+// openAtZero takes back ends of a restated constant that lie where rounding puts
+// them: where a fitted constant that it is divided by may be zero, it has no
+// upper end, and where one that it is a multiple of may be zero, no lower end.
+func (f *fitted) openAtZero(ctx context.Context, w wanted, pr *fit.Profiler, iv *fit.Interval) {
+	grad := make([]float64, len(f.m.params))
+	w.make()(f.result.Theta, grad)
+	for j, p := range f.m.params {
+		power := grad[j] * f.result.Theta[j]
+		if p.kind != ofConstant || f.m.consts[p.constant].Scale != mechanisms.Linear || !(math.Abs(power) > 0.5) {
+			continue
+		}
+		if zero := pr.Parameter(ctx, j); !zero.LowEdge {
+			continue
+		}
+		if power < 0 {
+			iv.HighOpen = true
+		} else {
+			iv.LowOpen = true
+		}
+	}
 }
 
 // endOf is one end of an interval on the printed scale.
