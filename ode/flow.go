@@ -3,6 +3,7 @@ package ode
 import (
 	"errors"
 	"math"
+	"slices"
 
 	"gonum.org/v1/gonum/mat"
 )
@@ -156,9 +157,5 @@ func columns(x, iw, sums []float64) float64 {
 			sums[j] += v * v
 		}
 	}
-	var most float64
-	for _, s := range sums {
-		most = max(most, s)
-	}
-	return math.Sqrt(most * float64(p) / float64(len(iw)))
+	return math.Sqrt(slices.Max(sums) * float64(p) / float64(len(iw)))
 }

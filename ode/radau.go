@@ -35,6 +35,7 @@ type radau struct {
 	prevH   float64 // 0: none
 	r       []float64
 	c       [maxStages / 2][]complex128
+	u, v    []float64
 	arg     []float64
 	slope   []float64
 	e       []float64
@@ -68,7 +69,8 @@ func (m *radau) resize(fl *flow, o *Options, rtol float64) {
 	for i := range m.c {
 		m.c[i] = grown(m.c[i], all)
 	}
-	m.r, m.arg, m.e = grown(m.r, all), grown(m.arg, all), grown(m.e, all)
+	m.r, m.u, m.v = grown(m.r, all), grown(m.u, all), grown(m.v, all)
+	m.arg, m.e = grown(m.arg, all), grown(m.e, all)
 	m.slope = grown(m.slope, all)
 	m.kappa = max(50*ulp/rtol, min(0.03, math.Sqrt(rtol)))
 	m.variable.resize(fl, o)
@@ -110,7 +112,7 @@ func (m *radau) try(p *point, h float64) trial {
 	if tr.fate != stepped {
 		return tr
 	}
-	m.guess(h)
+	m.guess(h, 0, m.n)
 	if tr = m.newton(p, h); tr.fate != stepped {
 		m.jacWant, m.refused = true, true
 		return tr
@@ -164,9 +166,9 @@ func (m *radau) factor(p *point, h float64) trial {
 func (m *radau) estimate(p *point, h float64) trial {
 	n, e := m.n, m.e[:m.n]
 	slope := m.slope[:n]
-	m.mix(slope, &m.b.slope, 1/h)
+	combine(slope, &m.b.slope, &m.z, m.b.s, 0)
 	for k, s := range slope {
-		e[k] = p.f[k] - s
+		e[k] = p.f[k] - s/h
 	}
 	m.mat.solveReal(e)
 	err := rms(e, p.iw[:n])
@@ -178,20 +180,20 @@ func (m *radau) estimate(p *point, h float64) trial {
 			return m.flow.trouble(fault)
 		}
 		for k, s := range slope {
-			e[k] -= s
+			e[k] -= s / h
 		}
 		m.mat.solveReal(e)
 		err = rms(e, p.iw[:n])
 	}
 	if err < 1 {
-		m.mix(m.arg[:n], &m.b.probeZ, 1)
+		combine(m.arg[:n], &m.b.probeZ, &m.z, m.b.s, 0)
 		plus(m.arg[:n], 1, p.y[:n])
 		if fault := m.flow.derivs(e, p.t+m.b.probe*h, m.arg); fault != nil {
 			return m.flow.trouble(fault)
 		}
-		m.mix(slope, &m.b.probeSlope, 1/h)
+		combine(slope, &m.b.probeSlope, &m.z, m.b.s, 0)
 		for k, s := range slope {
-			e[k] -= s
+			e[k] -= s / h
 		}
 		m.mat.solveReal(e)
 		err = max(err, rms(e, p.iw[:n]))
@@ -200,22 +202,6 @@ func (m *radau) estimate(p *point, h float64) trial {
 		return trial{fate: unevaluable, shrink: 0.25}
 	}
 	return trial{ratio: err}
-}
-
-// mix writes by·Σ aᵢ Zᵢ for the first len(dst) of the whole state.
-func (m *radau) mix(dst []float64, a *[maxStages]float64, by float64) {
-	if m.b.s == 3 {
-		a0, a1, a2 := by*a[0], by*a[1], by*a[2]
-		z0, z1, z2 := m.z[0][:len(dst)], m.z[1][:len(dst)], m.z[2][:len(dst)]
-		for k := range dst {
-			dst[k] = a0*z0[k] + a1*z1[k] + a2*z2[k]
-		}
-		return
-	}
-	clear(dst)
-	for i := range m.b.s {
-		plus(dst, by*a[i], m.z[i][:len(dst)])
-	}
 }
 
 func (m *radau) accept(_ *point, h float64) {
@@ -236,25 +222,16 @@ func (m *radau) refresh(p *point) error {
 func (m *radau) complete(*point) error { return nil }
 
 func (m *radau) polynomial(dst []float64, x float64) {
-	extrapolate(dst, m.prevB, &m.prev, x)
+	extrapolate(dst, m.prevB, &m.prev, 0, x)
 }
 
-// extrapolate writes u(x) − u(1) of a collocation polynomial.
-func extrapolate(dst []float64, b *tableau, z *[maxStages][]float64, x float64) {
+// extrapolate writes u(x) − u(1) of a collocation polynomial, from an offset of the
+// whole state on.
+func extrapolate(dst []float64, b *tableau, z *[maxStages][]float64, from int, x float64) {
 	var l [maxStages]float64
 	b.basis(&l, x)
 	l[b.s-1]--
-	if b.s == 3 {
-		z0, z1, z2 := z[0][:len(dst)], z[1][:len(dst)], z[2][:len(dst)]
-		for k := range dst {
-			dst[k] = l[0]*z0[k] + l[1]*z1[k] + l[2]*z2[k]
-		}
-		return
-	}
-	clear(dst)
-	for j := range b.s {
-		plus(dst, l[j], z[j][:len(dst)])
-	}
+	combine(dst, &l, z, b.s, from)
 }
 
 func (m *radau) coefficients() (*tableau, [][]float64) {
@@ -274,7 +251,10 @@ func (m *radau) culprit(p *point, f fate) int {
 		}
 		return -1
 	}
-	if k := largest(m.r[:n], p.iw[:n]); k >= 0 {
+	for k, square := range m.r[:n] { // of the last correction
+		m.e[k] = math.Sqrt(square)
+	}
+	if k := largest(m.e[:n], p.iw[:n]); k >= 0 {
 		return k
 	}
 	return largest(p.f[:n], p.iw[:n])

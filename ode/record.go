@@ -63,7 +63,7 @@ func (r *record) read(dst []float64, q piece, t float64, from int) {
 		for i := range q.b.s {
 			z[i] = block(1 + i)
 		}
-		extrapolate(dst, q.b, &z, x)
+		extrapolate(dst, q.b, &z, 0, x)
 	} else {
 		c := nest(x)
 		clear(dst)

@@ -42,7 +42,8 @@ type Solver struct {
 	step     float64 // last size tried
 }
 
-// Solve is like the function Solve, and reuses dst, whose contents are lost; nil allocates.
+// Solve is like the function Solve. It reuses dst, whose contents are lost; nil
+// allocates.
 func (s *Solver) Solve(ctx context.Context, dst *Solution, sys System, y0, times []float64) (*Solution, error) {
 	if dst == nil {
 		dst = new(Solution)

@@ -188,24 +188,26 @@ func probed(all [3]tableau) [3]tableau {
 	return all
 }
 
-// apply sets y = a·x for the s stages.
-func (b *tableau) apply(a *[maxStages][maxStages]float64, x, y *[maxStages]float64) {
-	switch b.s {
-	case 3:
-		for i := range 3 {
-			r := &a[i]
-			y[i] = r[0]*x[0] + r[1]*x[1] + r[2]*x[2]
+// combine writes Σ aᵢ zᵢ over s stages, from an offset of the stages on.
+func combine(dst []float64, a *[maxStages]float64, z *[maxStages][]float64, s, from int) {
+	n := len(dst)
+	z0, z1, z2 := z[0][from:][:n], z[1][from:][:n], z[2][from:][:n]
+	if s == 3 {
+		for k := range dst {
+			dst[k] = a[0]*z0[k] + a[1]*z1[k] + a[2]*z2[k]
 		}
-	case 5:
-		for i := range 5 {
-			r := &a[i]
-			y[i] = (r[0]*x[0] + r[1]*x[1]) + (r[2]*x[2] + r[3]*x[3]) + r[4]*x[4]
+		return
+	}
+	z3, z4 := z[3][from:][:n], z[4][from:][:n]
+	if s == 5 {
+		for k := range dst {
+			dst[k] = (a[0]*z0[k] + a[1]*z1[k]) + (a[2]*z2[k] + a[3]*z3[k]) + a[4]*z4[k]
 		}
-	default:
-		for i := range 7 {
-			r := &a[i]
-			y[i] = (r[0]*x[0] + r[1]*x[1]) + (r[2]*x[2] + r[3]*x[3]) +
-				(r[4]*x[4] + r[5]*x[5]) + r[6]*x[6]
-		}
+		return
+	}
+	z5, z6 := z[5][from:][:n], z[6][from:][:n]
+	for k := range dst {
+		dst[k] = (a[0]*z0[k] + a[1]*z1[k]) + (a[2]*z2[k] + a[3]*z3[k]) +
+			(a[4]*z4[k] + a[5]*z5[k]) + a[6]*z6[k]
 	}
 }

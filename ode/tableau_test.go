@@ -94,17 +94,21 @@ func TestTableTransform(t *testing.T) {
 				close1(t, "T T⁻¹", sum, want, 1e-12)
 			}
 		}
-		var x, y [maxStages]float64
+		var z [maxStages][]float64
+		var x [maxStages]float64
 		for i := range b.s {
 			x[i] = float64(i*i) - 2
+			z[i] = []float64{99, x[i], 2 * x[i]}
 		}
-		b.apply(&b.t, &x, &y)
 		for i := range b.s {
 			var sum float64
 			for j := range b.s {
 				sum += b.t[i][j] * x[j]
 			}
-			close1(t, "apply", y[i], sum, 1e-15)
+			var got [2]float64
+			combine(got[:], &b.t[i], &z, b.s, 1)
+			close1(t, "first", got[0], sum, 1e-15)
+			close1(t, "second", got[1], 2*sum, 1e-15)
 		}
 	}
 }

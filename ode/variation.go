@@ -1,6 +1,9 @@
 package ode
 
-import "math"
+import (
+	"math"
+	"slices"
+)
 
 // variation is what Radau steps need for sensitivities S = ∂y/∂θ. The stages of
 //
@@ -66,7 +69,7 @@ func (m *radau) vary(p *point, h float64, tr trial) trial {
 			return m.flow.trouble(err)
 		}
 	}
-	m.guessRange(h, n, m.all)
+	m.guess(h, n, m.all)
 	if out := m.iterate(p, h); out.fate != stepped {
 		return out
 	}
@@ -84,15 +87,15 @@ func (m *radau) vary(p *point, h float64, tr trial) trial {
 // varyError is estimate for the sensitivities.
 func (m *radau) varyError(p *point, h float64) trial {
 	n, b, v := m.n, m.b, &m.variable
-	e, slope := m.e[n:m.all], m.slope[:m.all]
-	m.mix(slope, &b.slope, 1/h)
-	for k := range e {
-		e[k] = p.f[n+k] - slope[n+k]
+	e, slope := m.e[n:m.all], m.slope[n:m.all]
+	combine(slope, &b.slope, &m.z, b.s, n)
+	for k, s := range slope {
+		e[k] = p.f[n+k] - s/h
 	}
 	m.mat.solveRealMany(e, m.flow.p)
 	err := columns(e, p.iw[n:], v.sums)
 	if err < 1 {
-		m.mix(m.arg[:m.all], &b.probeZ, 1)
+		combine(m.arg[:m.all], &b.probeZ, &m.z, b.s, 0)
 		plus(m.arg[:m.all], 1, p.y)
 		at := place{p.t + b.probe*h, m.arg, m.f[b.s-1], p.iw, h}
 		if fault := v.linearise(maxStages, at); fault != nil {
@@ -100,9 +103,9 @@ func (m *radau) varyError(p *point, h float64) trial {
 		}
 		copy(e, v.par[maxStages])
 		m.flow.variational(e, v.jac[maxStages], m.arg[n:m.all])
-		m.mix(slope, &b.probeSlope, 1/h)
-		for k := range e {
-			e[k] -= slope[n+k]
+		combine(slope, &b.probeSlope, &m.z, b.s, n)
+		for k, s := range slope {
+			e[k] -= s / h
 		}
 		m.mat.solveRealMany(e, m.flow.p)
 		err = max(err, columns(e, p.iw[n:], v.sums))
@@ -128,13 +131,14 @@ func (m *radau) iterate(p *point, h float64) trial {
 			copy(d, v.par[i])
 			m.flow.variational(d, v.jac[i], s)
 		}
-		m.residualRange(h, n, m.all)
+		m.residual(h, n, m.all)
 		m.mat.solveRealMany(m.r[:np], m.flow.p)
 		for i := range b.s / 2 {
 			m.mat.solvePairMany(i, m.c[i][:np], m.flow.p)
 		}
 		before := norm
-		norm = m.updateColumns(p.iw)
+		m.update(n, m.all)
+		norm = m.corrections(p.iw[n:])
 		if !(norm <= math.MaxFloat64) {
 			return trial{fate: unevaluable, shrink: 0.25}
 		}
@@ -153,31 +157,17 @@ func (m *radau) iterate(p *point, h float64) trial {
 	return trial{fate: diverged, shrink: 0.5}
 }
 
-// updateColumns is update for the sensitivities; its norm is that of the column
-// where it is largest.
-func (m *radau) updateColumns(iw []float64) float64 {
-	b, n, p, sums := m.b, m.n, m.flow.p, m.variable.sums
+// corrections is the norm of the last correction of the sensitivities to the
+// constant for which it is largest.
+func (m *radau) corrections(iw []float64) float64 {
+	sums := m.variable.sums
 	clear(sums)
-	var x, y [maxStages]float64
-	for k, at := 0, n; at < m.all; k, at = k+1, at+1 {
-		d := m.r[k]
-		square := d * d
-		x[0] = m.w[0][at] + d
-		for i := range b.s / 2 {
-			re, im := real(m.c[i][k]), imag(m.c[i][k])
-			square += re*re + im*im
-			x[1+2*i] = m.w[1+2*i][at] + re
-			x[2+2*i] = m.w[2+2*i][at] + im
-		}
-		sums[k%p] += square * iw[at] * iw[at]
-		b.apply(&b.t, &x, &y)
-		for i := range b.s {
-			m.w[i][at], m.z[i][at] = x[i], y[i]
+	p := len(sums)
+	for i := 0; i < len(iw); i += p {
+		w := iw[i : i+p]
+		for j, v := range m.r[i : i+p] {
+			sums[j] += v * w[j] * w[j]
 		}
 	}
-	var most float64
-	for _, s := range sums {
-		most = max(most, s)
-	}
-	return math.Sqrt(most / float64(b.s*n))
+	return math.Sqrt(slices.Max(sums) / float64(m.b.s*m.n))
 }
