@@ -71,6 +71,15 @@ func (m *Move) Number() *Number {
 	return m.Old
 }
 
+// Apart says whether both have an interval with two ends, and the two do not meet.
+func (m *Move) Apart() bool {
+	a, b := m.Old, m.New
+	if a == nil || b == nil || a.Low == nil || a.High == nil || b.Low == nil || b.High == nil {
+		return false
+	}
+	return *a.High < *b.Low || *b.High < *a.Low
+}
+
 // Compare finds what differs between two records.
 func Compare(old, now *Record) *Comparison {
 	c := &Comparison{Files: []FileChange{}, Settings: []Change{}, Mechanisms: []MechanismChange{},

@@ -90,3 +90,19 @@ func TestStandingsAreCompared(t *testing.T) {
 		t.Errorf("a file and a version that move no number: %+v", c)
 	}
 }
+
+func TestIntervalsApart(t *testing.T) {
+	for _, c := range []struct {
+		old, now Number
+		apart    bool
+	}{
+		{held(2, 1.9, 2.1), held(2.3, 2.2, 2.4), true},
+		{held(2, 1.9, 2.1), held(1.7, 1.6, 1.8), true},
+		{held(2, 1.9, 2.1), held(2.2, 2.1, 2.4), false},
+		{held(2, 1.9, math.NaN()), held(1, 0.9, 1.1), false},
+	} {
+		if got := Compare(one(c.old), one(c.now)).Numbers[0].Apart(); got != c.apart {
+			t.Errorf("%v → %v: %v", *c.old.Value, *c.now.Value, got)
+		}
+	}
+}

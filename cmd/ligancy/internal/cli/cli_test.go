@@ -33,7 +33,7 @@ func TestWrongUsageExitsTwoAndSaysWhatToWrite(t *testing.T) {
 		{"help nonsense", `there is no command "nonsense"`, "ligancy help"},
 		{"fit", "fit needs the name of a study", "ligancy fit STUDY"},
 		{"check", "check needs the name of a study", "ligancy check STUDY"},
-		{"fit --jsn x", "fit has no option --jsn; it has --json, --print-only, --help", "ligancy fit --help"},
+		{"fit --jsn x", "fit has no option --jsn; it has --json, --print-only, --record, --help", "ligancy fit --help"},
 		{"fit -j x", "fit has no option -j", "ligancy fit --help"},
 		{"fit --json=maybe x", "fit: the option --json cannot be \"maybe\"", "ligancy fit --help"},
 		{"new", "new needs the name of a table", "ligancy new TABLE"},

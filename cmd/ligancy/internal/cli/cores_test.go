@@ -14,9 +14,9 @@ import (
 // The same study gives the same bytes whatever the number of goroutines that
 // share the work: result.json, and the record.
 func TestResultsDoNotDependOnTheNumberOfCores(t *testing.T) {
-	studies := gallery.Names()
-	if testing.Short() {
-		studies = studies[:1]
+	studies := []string{"clam"}
+	if !testing.Short() {
+		studies = append(studies, "crab")
 	}
 	for _, name := range studies {
 		t.Run(name, func(t *testing.T) {

@@ -14,8 +14,10 @@ const overview = `ligancy tells which binding mechanisms saturation data support
   ligancy fit STUDY            fits every mechanism and says what the data say
   ligancy curve STUDY          curves, Hill coefficients and populations from given constants
   ligancy repeat STUDY         fits again and compares with the record that   fit --record   wrote
+  ligancy changes OLD NEW      how two studies, or two records, differ
   ligancy families [NAME]      the families of mechanisms: formula, constants, limits, reference
   ligancy numerics TEST        exact and certified values, reached on this machine
+  ligancy schema               the JSON Schema of study files, for editors
   ligancy version              the program's version
   ligancy completion SHELL     completes commands in bash, zsh, fish or powershell
   ligancy help COMMAND         what a command does, its options and exit codes

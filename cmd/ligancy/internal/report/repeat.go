@@ -1,11 +1,15 @@
 package report
 
 import (
+	"cmp"
 	"fmt"
 	"io"
+	"math"
+	"slices"
 	"strconv"
 	"strings"
 
+	"ligancy/fit/saturation"
 	"ligancy/specs/record"
 )
 
@@ -61,7 +65,7 @@ func (r *Repeat) WriteText(w io.Writer, colour bool) error {
 	} else {
 		p.line("%s", p.ink.bold("SOMETHING MOVED"))
 		p.standingChanges(r.Mechanisms, "record", "now")
-		p.moves(r.Moved.Numbers, "record", "now")
+		p.moves(r.Moved.Numbers, "record", "now", fineCell)
 	}
 	p.write(hanging("  ", r.compared(), Width))
 	_, err := io.WriteString(w, p.b.String())
@@ -114,20 +118,51 @@ func (p *page) standingChanges(all []record.MechanismChange, then, now string) {
 	p.bounded(g)
 }
 
-// moves is the table of numbers that moved.
-func (p *page) moves(all []record.Move, then, now string) {
-	g := &grid{gap: 2, right: []bool{false, false, false, false, false, true}}
-	g.add("mechanism", "curve", "number", then, now, "moved")
-	for i := range all {
-		m := &all[i]
+// moves is the table of numbers that moved, under the names of their mechanisms;
+// cell writes one number with its interval.
+func (p *page) moves(all []record.Move, then, now string, cell func(*record.Number) string) {
+	g := &grid{gap: 2, right: []bool{false, false, false, true}}
+	g.add("", then, now, "moved")
+	all = slices.Clone(all)
+	slices.SortStableFunc(all, func(a, b record.Move) int { return cmp.Compare(ownerOf(&a), ownerOf(&b)) })
+	shown := all[:min(len(all), mostMoves)]
+	var owners []string
+	for i := range shown {
+		m := &shown[i]
 		n := m.Number()
-		name := cut(strings.TrimSpace(n.Name+" "+n.Site), 24)
+		if i == 0 || ownerOf(&shown[i-1]) != ownerOf(m) {
+			owners = append(owners, ownerOf(m))
+			g.add(mark)
+		}
+		name := "  " + cut(strings.TrimSpace(n.Name+" "+n.Site), 24)
 		if unit := unitWord(n.Unit); unit != "" {
 			name += " / " + cut(unit, 12)
 		}
-		g.add(cut(m.Mechanism, 28), cut(n.Curve, 20), name, numberCell(m.Old), numberCell(m.New), movedCell(m))
+		g.add(name, cell(m.Old), cell(m.New), movedCell(m))
 	}
-	p.bounded(g)
+	for _, l := range g.lines(Width - 2) {
+		if l == mark && len(owners) > 0 {
+			l, owners = cut(owners[0], Width-2), owners[1:]
+		}
+		if l != mark {
+			p.line("  %s", l)
+		}
+	}
+	if more := len(all) - len(shown); more > 0 {
+		p.line("  and %d more: --json has them all", more)
+	}
+	p.line("")
+}
+
+// mark stands in a table of moves for the line that names a mechanism and a curve.
+const mark = "\u00a0"
+
+// ownerOf is what a number belongs to: its mechanism, and the curve where it is not of all.
+func ownerOf(m *record.Move) string {
+	if c := m.Number().Curve; c != "all" {
+		return m.Mechanism + ", " + c
+	}
+	return m.Mechanism
 }
 
 // bounded sets a table with a head, if it has rows, cut to what a page bears.
@@ -148,24 +183,49 @@ func (p *page) bounded(g *grid) {
 	p.line("")
 }
 
-// numberCell writes a number with its interval: 2.87 (2.81 to 2.92).
-func numberCell(n *record.Number) string {
+// fineCell writes a number with its interval, with every digit of the record.
+func fineCell(n *record.Number) string {
 	if n == nil || n.Value == nil {
 		return "–"
 	}
-	value := strconv.FormatFloat(*n.Value, 'g', -1, 64)
-	low, high := "open", "open"
-	if n.Low != nil {
-		low = strconv.FormatFloat(*n.Low, 'g', -1, 64)
+	return intervalCell(n, fine(n.Value), fine(n.Low), fine(n.High))
+}
+
+// fine writes every digit; "" for what does not exist.
+func fine(x *float64) string {
+	if x == nil {
+		return ""
 	}
-	if n.High != nil {
-		high = strconv.FormatFloat(*n.High, 'g', -1, 64)
+	return strconv.FormatFloat(*x, 'g', -1, 64)
+}
+
+// coarseCell writes a number with its interval, with the places that it allows.
+func coarseCell(n *record.Number) string {
+	if n == nil || n.Value == nil {
+		return "–"
 	}
-	if n.Low == nil && n.High == nil {
-		if n.Held == "neither" {
-			return value + " (not held)"
+	or := func(x *float64) saturation.Real {
+		if x == nil {
+			return saturation.Real(math.NaN())
 		}
+		return saturation.Real(*x)
+	}
+	value, low, high := rowFigures(&saturation.QuantityRow{Of: n.Of, Curve: n.Curve, Unit: n.Unit,
+		Value: or(n.Value), Low: or(n.Low), High: or(n.High)})
+	return intervalCell(n, value, low, high)
+}
+
+// intervalCell joins a number and its ends: 2.87 (2.81 to 2.92).
+func intervalCell(n *record.Number, value, low, high string) string {
+	switch {
+	case low == "" && high == "" && n.Held == "neither":
+		return value + " (not held)"
+	case low == "" && high == "":
 		return value
+	case low == "":
+		return value + " (up to " + high + ")"
+	case high == "":
+		return value + " (from " + low + ")"
 	}
 	return value + " (" + low + " to " + high + ")"
 }
@@ -179,6 +239,9 @@ func movedCell(m *record.Move) string {
 	case m.New == nil:
 		return "gone"
 	case m.Old.Held != m.New.Held:
+		if m.New.Held == "neither" {
+			return "not held now"
+		}
 		return "held: " + m.New.Held
 	case !finite(v):
 		return "–"
@@ -189,10 +252,11 @@ func movedCell(m *record.Move) string {
 	if v < 0 {
 		sign = "−"
 	}
-	if v < 0 {
-		v = -v
+	cell := sign + significant(math.Abs(v), 2)
+	if m.Apart() {
+		cell += ", apart"
 	}
-	return sign + significant(v, 2)
+	return cell
 }
 
 // orNone writes a dash for what is not there.
