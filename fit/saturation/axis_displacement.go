@@ -37,6 +37,9 @@ func countedMechanism(m mechanisms.Mechanism, d *Dataset) (mechanisms.Mechanism,
 // counted is the free concentration of the ligand that a row's response counts,
 // on a free axis: what nonspecific binding is proportional to.
 func (b *block) counted(q *row) float64 {
+	if b.work != nil && b.work.clock != nil {
+		return b.work.clock.free[q.curve][q.at]
+	}
 	if b.tracer < 0 {
 		return q.x
 	}

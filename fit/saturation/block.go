@@ -26,6 +26,7 @@ type block struct {
 	y      []float64 // per point: what was measured, or simulated in its place
 
 	curves  []curveAt // curves that this data set visits
+	traces  []trace   // of a data set that is followed in time
 	noise   scatterModel
 	noiseAt int // place in Θ of a scatter model's own number
 	pool    pool
@@ -58,6 +59,9 @@ type curveAt struct {
 	cell int
 	lnx  []float64
 	byX  map[float64]int
+
+	moments  []moment // of traces
+	byMoment map[moment]int
 }
 
 // workspace is what one goroutine needs to evaluate a block.
@@ -76,6 +80,8 @@ type workspace struct {
 	oneX, oneY          [1]float64             // one point of what is seen
 	oneGrad             *mat.Dense
 	limitLow, limitHigh []float64
+
+	clock *clock // of traces; nil without
 }
 
 // linear says whether residuals are linear in the ends of the response.
@@ -101,7 +107,10 @@ func (b *block) add(index int, p *Point, cell int) {
 	}
 	c := &b.curves[ci]
 	at, ok := c.byX[p.X]
-	if !ok {
+	switch d := &b.m.a.Data[b.data]; {
+	case d.Trace:
+		at = c.addMoment(d, p)
+	case !ok:
 		at = len(c.lnx)
 		c.byX[p.X] = at
 		c.lnx = append(c.lnx, math.Log(p.X))
@@ -121,7 +130,7 @@ func (b *block) prepare() {
 		if !ok {
 			r = len(b.rows)
 			byPart[q.part] = r
-			b.rows = append(b.rows, row{x: d.Points[q.index].X, part: q.part})
+			b.rows = append(b.rows, row{x: d.atLigand(q.index).X, part: q.part})
 		}
 		q.row = r
 	}
@@ -142,6 +151,7 @@ func (b *block) newWorkspace() *workspace {
 		w.oneGrad = mat.NewDense(1, k, nil)
 		w.limitLow, w.limitHigh = make([]float64, k), make([]float64, k)
 	}
+	w.clock = b.newClock()
 	for _, c := range b.curves {
 		w.s = append(w.s, make([]float64, len(c.lnx)))
 		w.grad = append(w.grad, mat.NewDense(len(c.lnx), k, nil))
@@ -184,6 +194,9 @@ func (b *block) withY(y []float64) *block {
 // Eval implements fit.Block.
 func (b *block) Eval(res []float64, jac *mat.Dense, theta []float64) error {
 	b.predict(theta, jac != nil)
+	if c := b.work.clock; c != nil && c.fault != nil {
+		return c.fault
+	}
 	b.noise.residuals(b, res, jac, theta)
 	if b.m.shift != nil {
 		b.penalty(res, jac, theta)
@@ -194,14 +207,25 @@ func (b *block) Eval(res []float64, jac *mat.Dense, theta []float64) error {
 // predict fills yHat and, where wanted, its gradient jHat.
 func (b *block) predict(theta []float64, gradient bool) {
 	w := b.work
-	if b.m.a.Data[b.data].Total {
+	switch {
+	case w.clock != nil:
+		b.follow(theta, gradient)
+	case b.m.a.Data[b.data].Total:
 		if b.tracer >= 0 {
 			b.predictDisplaced(theta, gradient)
 		} else {
 			b.predictTotal(theta, gradient)
 		}
 		return
+	default:
+		b.predictFree(theta, gradient)
 	}
+	b.respond(theta, gradient)
+}
+
+// predictFree is what is seen on every curve at its free ligand values.
+func (b *block) predictFree(theta []float64, gradient bool) {
+	w := b.work
 	for i := range b.curves {
 		b.bind(theta, b.curves[i].cell)
 		g := w.grad[i]
@@ -210,7 +234,11 @@ func (b *block) predict(theta []float64, gradient bool) {
 		}
 		w.seen.Saturation(w.s[i], b.curves[i].lnx, g)
 	}
-	d := &b.resp
+}
+
+// respond turns what is seen into the response of every row.
+func (b *block) respond(theta []float64, gradient bool) {
+	w, d := b.work, &b.resp
 	for i := range b.rows {
 		q := &b.rows[i]
 		low, span, ns := value(theta, q.low, d.Low), value(theta, q.high, d.High), value(theta, q.ns, d.Nonspecific)
@@ -235,20 +263,17 @@ func (b *block) gradient(i int, s, span float64, theta []float64) {
 	clear(row)
 	if !q.blocked {
 		b.m.chain(row, w.grad[q.curve].RawRowView(q.at), span, q.cell, theta)
+		if w.clock != nil {
+			b.chainRates(row, q, span)
+		}
 	}
 	b.endsGradient(row, q, s, b.counted(q))
 }
 
 // bind sets the workspace's curve to the constants of a cell.
 func (b *block) bind(theta []float64, cell int) {
-	c := &b.m.cells[cell]
-	for k, j := range c.theta {
-		b.work.theta[k] = theta[j]
-	}
-	if c.shift >= 0 {
-		b.m.shiftConstants(b.work.theta, theta[c.shift])
-	}
-	b.work.curve.Bind(b.work.theta, c.env)
+	b.settle(theta, cell)
+	b.work.curve.Bind(b.work.theta, b.m.cells[cell].env)
 }
 
 // chain adds w times a gradient by a cell's constants to one by Θ.

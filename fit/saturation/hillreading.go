@@ -57,6 +57,9 @@ func (f *fitted) hillStudy(cell int) (*Analysis, [][2]int) {
 	var rows [][2]int // block and point, in the order of the new points
 	for bi, b := range f.m.blocks {
 		d := src.Data[b.data]
+		if d.Trace {
+			continue
+		}
 		b.predict(f.result.Theta, false)
 		pts := d.Points
 		d.Points = nil

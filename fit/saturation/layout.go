@@ -18,6 +18,7 @@ const (
 	ofResponse
 	ofNoise
 	ofShift
+	ofRate
 )
 
 // parameter is one fitted number of a model: a constant of the mechanism at one
@@ -50,7 +51,8 @@ type model struct {
 	params []parameter
 	cells  []cell
 	blocks []*block
-	shift  *shift // nil without a shift by preparation
+	shift  *shift  // nil without a shift by preparation
+	timing *timing // nil without traces
 }
 
 // newModel lays out a candidate's parameters over the data.
@@ -84,9 +86,15 @@ func newModel(a *Analysis, c *Candidate) (*model, error) {
 	if m.points() == 0 {
 		return m, errors.New("no points are kept")
 	}
+	if err := m.layRates(); err != nil {
+		return m, err
+	}
 	m.layResponses()
 	m.layNoise()
 	m.setRanges()
+	if err := m.layTraces(); err != nil {
+		return m, err
+	}
 	for _, b := range m.blocks {
 		b.prepare()
 	}

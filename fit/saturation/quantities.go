@@ -43,6 +43,10 @@ func (m *model) parameterWanted(i int) wanted {
 		c := m.consts[p.constant]
 		w.constantRow(m, c)
 		w.back = func(t float64) float64 { return unscaled(c, t) }
+	case ofRate:
+		c := m.timing.rates[p.constant]
+		w.constantRow(m, c)
+		w.row.Unit, w.back = m.a.rateUnit(c), math.Exp
 	case ofResponse:
 		w.row.Of = "response"
 		w.row.Unit = m.responseUnit(p.data, p.quantity)

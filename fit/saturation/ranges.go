@@ -16,6 +16,8 @@ func (m *model) setRanges() {
 			m.setConstantRange(i)
 		case ofResponse:
 			m.setResponseRange(i)
+		case ofRate:
+			m.setRateRange(i)
 		case ofShift:
 			m.params[i].StartLow, m.params[i].StartHigh = 0, 0
 		}
@@ -96,7 +98,7 @@ func (m *model) typical(i int, c mechanisms.Constant) float64 {
 	for _, b := range m.blocks {
 		for _, q := range b.pts {
 			if m.governs(i, q.cell) {
-				pts = append(pts, &m.a.Data[b.data].Points[q.index])
+				pts = append(pts, m.a.Data[b.data].atLigand(q.index))
 				resp = m.a.Data[b.data].Response
 			}
 		}
