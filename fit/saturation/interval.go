@@ -107,22 +107,26 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *
 // them: where a fitted constant that it is divided by may be zero, it has no
 // upper end, and where one that it is a multiple of may be zero, no lower end.
 func (f *fitted) openAtZero(ctx context.Context, w wanted, pr *fit.Profiler, iv *fit.Interval) {
-	grad := make([]float64, len(f.m.params))
-	w.make()(f.result.Theta, grad)
+	low, high := f.zeroWithin(ctx, w, pr)
+	iv.LowOpen, iv.HighOpen = iv.LowOpen || low, iv.HighOpen || high
+}
+
+// zeroWithin says whether fitted constants that may be zero, as far as the data
+// go, leave a restated constant without a lower and without an upper end.
+func (f *fitted) zeroWithin(ctx context.Context, w wanted, pr *fit.Profiler) (noLow, noHigh bool) {
+	at, grad := f.offZero(f.result.Theta), make([]float64, len(f.m.params))
+	w.make()(at, grad)
 	for j, p := range f.m.params {
-		power := grad[j] * f.result.Theta[j]
+		power := grad[j] * at[j]
 		if p.kind != ofConstant || f.m.consts[p.constant].Scale != mechanisms.Linear || !(math.Abs(power) > 0.5) {
 			continue
 		}
-		if zero := pr.Parameter(ctx, j); !zero.LowEdge {
+		if f.result.Theta[j] > 0 && !pr.Parameter(ctx, j).LowEdge {
 			continue
 		}
-		if power < 0 {
-			iv.HighOpen = true
-		} else {
-			iv.LowOpen = true
-		}
+		noLow, noHigh = noLow || power > 0, noHigh || power < 0
 	}
+	return noLow, noHigh
 }
 
 // endOf is one end of an interval on the printed scale.

@@ -17,7 +17,8 @@ const vanishing = 1e-12
 func (f *fitted) oneEnded(ctx context.Context, row QuantityRow, w wanted, pr *fit.Profiler, infinite bool) QuantityRow {
 	iv := pr.Quantity(ctx, f.fromZero(w, infinite))
 	row.Value = nan
-	if iv.HighOpen || !(iv.High > 0) {
+	noLow, noHigh := f.zeroWithin(ctx, w, pr)
+	if iv.HighOpen || !(iv.High > 0) || noLow && noHigh {
 		return row
 	}
 	row.Interval, row.Level = iv.Method, Real(iv.Level)
@@ -33,22 +34,26 @@ func (f *fitted) oneEnded(ctx context.Context, row QuantityRow, w wanted, pr *fi
 // that is zero at the fit.
 func (f *fitted) fromZero(w wanted, reciprocal bool) fit.Quantity {
 	lnK := w.make()
-	at := make([]float64, len(f.m.params))
 	sign := 1.0
 	if reciprocal {
 		sign = -1
 	}
 	return func(theta, grad []float64) float64 {
-		copy(at, theta)
-		for j, p := range f.m.params {
-			if p.kind == ofConstant && f.m.consts[p.constant].Scale == mechanisms.Linear && at[j] == 0 {
-				at[j] = vanishing * p.StartHigh
-			}
-		}
-		v := math.Exp(sign * lnK(at, grad))
+		v := math.Exp(sign * lnK(f.offZero(theta), grad))
 		for j := range grad {
 			grad[j] *= sign * v
 		}
 		return v
 	}
+}
+
+// offZero is θ with what is exactly zero on a linear scale put just off it.
+func (f *fitted) offZero(theta []float64) []float64 {
+	at := append([]float64(nil), theta...)
+	for j, p := range f.m.params {
+		if p.kind == ofConstant && f.m.consts[p.constant].Scale == mechanisms.Linear && at[j] == 0 {
+			at[j] = vanishing * p.StartHigh
+		}
+	}
+	return at
 }
