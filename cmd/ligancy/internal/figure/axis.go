@@ -112,6 +112,9 @@ func (a logAxis) every(step int, within []float64) []float64 {
 // fit says whether numbers stand clear of one another.
 func (a logAxis) fit(all []float64, size float64) bool {
 	end := math.Inf(-1)
+	if finite(a.zero) { // the 0 of no ligand
+		end = a.zero + Words(Sans, "0").Width(size)/2
+	}
 	for _, v := range all {
 		w := concentration(v).Width(size) / 2
 		if a.at(v)-w < end+0.7*size {

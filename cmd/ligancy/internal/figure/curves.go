@@ -26,7 +26,8 @@ type Curves struct {
 	Rulers       bool
 	Places       []int // places of the lines among the leader's curves, for the page
 
-	lead int // place of the first curve's colour
+	lead  int  // place of the first curve's colour
+	field bool // one of several: named, its key above all of them
 }
 
 // Line is one curve of the leader.
@@ -76,8 +77,13 @@ type curvesLayout struct {
 // Draw lays the figure out.
 func (c *Curves) Draw(s Style) *Drawing {
 	l := &curvesLayout{Curves: c, s: s, d: &Drawing{Width: s.Width, Title: c.Name, Description: c.Description}}
-	y := l.keys()
-	y = l.field(y + 2.6*s.Size)
+	y := s.Size
+	if c.field {
+		l.title()
+	} else {
+		y = l.keys()
+	}
+	y = l.draw(y + 2.6*s.Size)
 	if c.Rulers {
 		y = l.rulers(y)
 	}
@@ -88,12 +94,28 @@ func (c *Curves) Draw(s Style) *Drawing {
 	return l.d
 }
 
+// title names a field that is one of several.
+func (l *curvesLayout) title() {
+	for i, line := range l.Lines[:min(len(l.Lines), 1)] {
+		l.d.text(0, l.s.Size, Start, l.s.Size, NameInk(l.lead+i), Words(SansBold, line.Name).Cut(l.s.Size, l.s.Width))
+	}
+}
+
 // keys writes what lines and marks mean.
 func (l *curvesLayout) keys() float64 {
+	entries := l.entries()
+	if len(entries) == 0 {
+		return 0.2 * l.s.Size
+	}
+	return l.d.key(entries, 0, l.s.Size, l.s.Width, l.s)
+}
+
+// entries of the key.
+func (l *curvesLayout) entries() []keyEntry {
 	var entries []keyEntry
 	if len(l.Leader) > 0 && len(l.Lines) > 0 {
 		ink := Text
-		if len(l.Lines) == 1 {
+		if len(l.Lines) == 1 && !l.field {
 			ink = CurveInk(l.lead)
 		}
 		f, w := lineSample(ink, 2.4, nil)
@@ -125,10 +147,7 @@ func (l *curvesLayout) keys() float64 {
 			d.add(&stroke{path: p, fill: Muted})
 		}, width: 8, label: Words(Sans, "blocked")})
 	}
-	if len(entries) == 0 {
-		return 0.2 * l.s.Size
-	}
-	return l.d.key(entries, 0, l.s.Size, l.s.Width, l.s)
+	return entries
 }
 
 // radius of the marks of preparations.
@@ -207,8 +226,8 @@ func (l *curvesLayout) responseRange() (low, high float64, at []float64) {
 	return low - pad, high, at
 }
 
-// field draws the points and the curves from y downwards.
-func (l *curvesLayout) field(y float64) float64 {
+// draw draws the points and the curves from y downwards.
+func (l *curvesLayout) draw(y float64) float64 {
 	low, high, at := l.responseRange()
 	l.margins(tickLabels(at))
 	height := min(max(0.46*(l.x.x1-l.x.x0), 15*l.s.Size), 24*l.s.Size)
@@ -332,28 +351,49 @@ func meanSD(y []float64) (mean, sd float64) {
 	return mean, math.Sqrt(sd / max(float64(len(y)-1), 1))
 }
 
-// cloud draws very many points: one small dot for all that fall on one place.
+// cloud draws very many points: one small dot for all that fall on one place,
+// places so coarse that there are not too many.
 func (l *curvesLayout) cloud(p *panel, value func(Point) float64) {
-	type place struct{ line, x, y int }
+	var dots []place
+	for grain := 1.0; len(dots) == 0 || len(dots) > mostDots; grain *= 1.25 {
+		if dots = l.dots(p, value, grain); len(dots) == 0 {
+			return
+		}
+	}
+	paths := make([]Path, max(len(l.Lines), 1)+1)
+	for _, k := range dots {
+		i := min(max(k.line, -1), len(paths)-2) + 1
+		paths[i].MoveTo(k.x, k.y)
+		paths[i].LineTo(k.x, k.y)
+	}
+	for i, path := range paths {
+		l.d.add(&stroke{path: path, ink: l.lineInk(i - 1), width: 1.6, round: true, opacity: 0.6})
+	}
+}
+
+// place is where a dot of one curve stands.
+type place struct {
+	line int
+	x, y float64
+}
+
+// dots are the places that points take on a grid, in order of the points.
+func (l *curvesLayout) dots(p *panel, value func(Point) float64, grain float64) []place {
+	snap := func(v float64) float64 { return math.Round(math.Round(v/grain)*grain*10) / 10 }
 	seen := map[place]bool{}
-	dots := make([]Path, max(len(l.Lines), 1)+1)
+	var out []place
 	for _, q := range l.Points {
 		v := value(q)
 		if !finite(v) || q.LeftOut || !l.x.inside(q.X) {
 			continue
 		}
-		k := place{q.Line, int(math.Round(l.x.at(q.X))), int(math.Round(p.y.held(v)))}
-		if seen[k] || len(seen) == mostDots {
-			continue
+		k := place{q.Line, snap(l.x.at(q.X)), snap(p.y.held(v))}
+		if !seen[k] {
+			seen[k] = true
+			out = append(out, k)
 		}
-		seen[k] = true
-		i := min(max(q.Line, -1), len(dots)-2) + 1
-		dots[i].MoveTo(float64(k.x), float64(k.y))
-		dots[i].LineTo(float64(k.x), float64(k.y))
 	}
-	for i, path := range dots {
-		l.d.add(&stroke{path: path, ink: l.lineInk(i - 1), width: 1.6, round: true, opacity: 0.6})
-	}
+	return out
 }
 
 // mostDots bounds a field of very many points.
@@ -385,6 +425,9 @@ func (l *curvesLayout) names() {
 func (l *curvesLayout) rulers(y float64) float64 {
 	y += 0.5 * l.s.Size
 	single := l.shortRulers()
+	if l.field && !single {
+		return l.fieldRulers(y)
+	}
 	for i, line := range l.Lines {
 		r := line.Ruler
 		if !finite(r.Half) {
@@ -407,6 +450,17 @@ func (l *curvesLayout) rulers(y float64) float64 {
 		}
 		l.ruler(r, line, middle, i)
 		y = middle + 0.9*l.s.Size
+	}
+	return y
+}
+
+// fieldRulers are the rulers of a field that carries its curve's name already.
+func (l *curvesLayout) fieldRulers(y float64) float64 {
+	for i, line := range l.Lines {
+		if finite(line.Ruler.Half) {
+			l.ruler(line.Ruler, line, y+0.7*l.s.Size, i)
+			y += 1.5 * l.s.Size
+		}
 	}
 	return y
 }

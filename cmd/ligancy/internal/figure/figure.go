@@ -14,18 +14,18 @@ type Multiples struct {
 	Remark            string   // below them
 }
 
-// Draw lays the fields out in as many columns as fit.
+// Draw lays the fields out in as many columns as fit, below one key.
 func (m *Multiples) Draw(s Style) *Drawing {
 	d := &Drawing{Width: s.Width, Title: m.Name, Description: m.Description}
 	columns := max(1, int(s.Width/(25*s.Size)))
 	gap := 1.2 * s.Size
 	small := Style{Width: (s.Width - gap*float64(columns-1)) / float64(columns), Size: s.Size}
-	y, tallest := 0.0, 0.0
+	y, tallest := m.key(d, s), 0.0
 	for i, c := range m.Fields {
 		if i%columns == 0 && i > 0 {
 			y, tallest = y+tallest+1.2*s.Size, 0
 		}
-		f := coloured(c, i).Draw(small)
+		f := oneOf(c, i).Draw(small)
 		d.place(f, float64(i%columns)*(small.Width+gap), y)
 		tallest = max(tallest, f.Height)
 	}
@@ -39,16 +39,34 @@ func (m *Multiples) Draw(s Style) *Drawing {
 	return d
 }
 
-// coloured is a figure whose first curve has the i-th colour.
-func coloured(f Figure, i int) Figure {
+// key writes what the lines and marks of all fields mean.
+func (m *Multiples) key(d *Drawing, s Style) float64 {
+	if len(m.Fields) == 0 {
+		return 0
+	}
+	var entries []keyEntry
+	switch f := oneOf(m.Fields[0], 0).(type) {
+	case *Curves:
+		entries = (&curvesLayout{Curves: f, d: d, s: s}).entries()
+	case *Slope:
+		entries = f.entries()
+	}
+	if len(entries) == 0 {
+		return 0
+	}
+	return d.key(entries, 0, s.Size, s.Width, s) + s.Size
+}
+
+// oneOf is a figure as the i-th field of several.
+func oneOf(f Figure, i int) Figure {
 	switch f := f.(type) {
 	case *Curves:
 		g := *f
-		g.lead = i
+		g.lead, g.field = i, true
 		return &g
 	case *Slope:
 		g := *f
-		g.lead = i
+		g.lead, g.field = i, true
 		return &g
 	}
 	return f

@@ -89,7 +89,9 @@ func (p *panel) xAxis(title bool) (below float64) {
 	for _, v := range p.x.numbers(p.s.Size) {
 		hairs.MoveTo(p.x.at(v), base)
 		hairs.LineTo(p.x.at(v), base+0.55*p.s.Size)
-		p.d.text(p.x.at(v), numbers, Middle, p.s.Size, Text, concentration(v))
+		l := concentration(v)
+		at := min(p.x.at(v), p.x.x1+0.5*p.s.Size-l.Width(p.s.Size)/2) // the last may reach over the field's edge
+		p.d.text(at, numbers, Middle, p.s.Size, Text, l)
 	}
 	p.d.add(&stroke{path: hairs, ink: Hatch, width: 1})
 	if p.ligand.hasZero() {

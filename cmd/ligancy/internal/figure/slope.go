@@ -18,7 +18,8 @@ type Slope struct {
 	Rivals []Rival
 	Places []int // places of the lines among the leader's curves, for the page
 
-	lead int
+	lead  int
+	field bool // one of several: named, its key above all of them
 }
 
 // SlopeLine is n_H along one curve of the leader. What does not exist is NaN.
@@ -33,7 +34,12 @@ type SlopeLine struct {
 // Draw lays the figure out.
 func (f *Slope) Draw(s Style) *Drawing {
 	d := &Drawing{Width: s.Width, Title: f.Name, Description: f.Description}
-	y := f.key(d, s)
+	y := s.Size
+	if f.field && len(f.Lines) > 0 {
+		d.text(0, y, Start, s.Size, NameInk(f.lead), Words(SansBold, f.Lines[0].Name).Cut(s.Size, s.Width))
+	} else {
+		y = d.key(f.entries(), 0, s.Size, s.Width, s)
+	}
 	low, high := f.span()
 	at := ticks(low, high, 4)
 	left := math.Ceil(max(0.9*s.Size+widest(tickLabels(at), s.Size), 3*s.Size))
@@ -76,12 +82,12 @@ func (p *panel) broken(pts []XY, dash []float64) {
 	p.d.add(&stroke{path: path, ink: Muted, width: 1.8, dash: dash, round: true})
 }
 
-// key says what the dots and lines are.
-func (f *Slope) key(d *Drawing, s Style) float64 {
+// entries of the key: what the dots and lines are.
+func (f *Slope) entries() []keyEntry {
 	var entries []keyEntry
 	if len(f.Leader) > 0 {
 		ink := Text
-		if len(f.Lines) == 1 {
+		if len(f.Lines) == 1 && !f.field {
 			ink = CurveInk(f.lead)
 		}
 		draw, w := lineSample(ink, 2.4, nil)
@@ -110,7 +116,7 @@ func (f *Slope) key(d *Drawing, s Style) float64 {
 	if steepest {
 		entries = append(entries, keyEntry{sample: dot(Ground), width: 8, label: Words(Sans, "steepest")})
 	}
-	return d.key(entries, 0, s.Size, s.Width, s)
+	return entries
 }
 
 // span is the range of n_H: what the leader's curves and bands take where they

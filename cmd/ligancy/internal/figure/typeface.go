@@ -79,9 +79,14 @@ type metrics struct {
 
 var measured [faces]metrics
 
-// unknownWidth is the advance of a letter that the face lacks, which a browser
-// takes from another typeface: wide enough for most scripts.
-const unknownWidth = 800
+// unknownWidth guesses the advance of a letter that the face lacks, which a
+// browser takes from another typeface: full for the scripts of East Asia.
+func unknownWidth(r rune) float64 {
+	if r >= 0x1100 {
+		return 1020
+	}
+	return 640
+}
 
 // load reads the advance widths of every letter of the face, once.
 func (f Face) load() *metrics {
@@ -126,7 +131,7 @@ func (f Face) Width(s string, size float64) float64 {
 			w += a
 		case unicode.In(r, unicode.Mn, unicode.Me, unicode.Cf):
 		default:
-			w += unknownWidth
+			w += unknownWidth(r)
 		}
 	}
 	return w * size / 1000
