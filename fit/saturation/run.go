@@ -32,6 +32,9 @@ func (a *Analysis) Run(ctx context.Context, rec Recorder) (*Outcome, error) {
 	report(out, fits, rows)
 	out.Preparations = a.preparationRows(ctx)
 	out.Factors = a.factorRows(ctx, fits)
+	if len(order) > 0 {
+		out.Profiles = a.profileRows(ctx, fits[order[0]])
+	}
 	out.Quantities = append(out.Quantities, a.verdictRows(ctx, out.Quantities, fits, order)...)
 	a.asked(ctx, out, fits, order)
 	out.Interrupted = ctx.Err() != nil
@@ -157,7 +160,7 @@ func (a *Analysis) quantities(ctx context.Context, f *fitted) []QuantityRow {
 			}
 		})
 		if !f.moveTo(ctx, better) {
-			return append(rows, f.readings(ctx)...)
+			return append(append(rows, f.readings(ctx)...), f.combinationRows(ctx)...)
 		}
 	}
 	return nil

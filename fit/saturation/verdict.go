@@ -108,7 +108,7 @@ func (w *verdictWriter) text() string {
 	return paragraphs(
 		join(w.leader(), w.ties(), w.refused(), w.open(), w.twins(), w.notToldApart(), w.failed()),
 		join(w.steepness(), w.contrasts(), w.slopeWords(), w.readings(), w.ends(), w.shifts(), w.explained()),
-		join(w.constants(), w.edges(), w.limits(), w.next()))
+		join(w.constants(), w.tiedWords(), w.edges(), w.limits(), w.next()))
 }
 
 // paragraphs sets non-empty paragraphs apart by a blank line.
