@@ -19,6 +19,7 @@ type guess struct {
 	sigma, sem, n, preparation, blocked, leftOut *columnGuess
 	factors                                      []*columnGuess
 	ignored                                      []string
+	apart                                        *columnGuess // nonspecific binding in a column of its own
 	effectorName, blockedWord, kind, responseWhy string
 	percent                                      bool
 	left                                         []candidate // mechanisms that the points cannot hold
@@ -48,7 +49,7 @@ func newGuess(t *table.Table) *guess {
 			g.all = append(g.all, look(t, i))
 		}
 	}
-	g.preparation = g.take("^(prep|preparation|animal|donor|batch|expt|experiment|individual)([_ .-]|s?$)", func(c *columnGuess) bool { return c.values > 1 })
+	g.preparation = g.take("^(prep|preparation|animal|donor|batch|expt|experiment|individual|präp|präparation|tier|spender|charge|préparation|lot)([_ .-]|s?$)", func(c *columnGuess) bool { return c.values > 1 })
 	g.leftOut = g.take("^(left_out|why|excluded?|exclusion|reason|omit(ted)?)$", nil)
 	g.sem = g.take("^(sem|s\\.?e\\.?m\\.?|std_?err|standard error)([_ .-]|$)|[_ .-](sem)$",
 		isNumeric)
@@ -118,8 +119,8 @@ func (g *guess) findBlocked() {
 }
 
 var (
-	ligandWord   = regexp.MustCompile(`(?i)^(p?o2|oxygen|lig(and)?|conc(entration)?|dose|added|free|total|x|substrate|pressure|log ?(10)?)([_ .(\[-]|$)|conc|pO2`)
-	responseWord = regexp.MustCompile(`(?i)sat|theta|bound|binding|veloc|rate|activity|absorb|fluor|signal|response|counts|cpm|^(y|v|f|od|a)([_ .(\[-]|$)|optical`)
+	ligandWord   = regexp.MustCompile(`(?i)^(p?o2|oxygen|lig(and)?|conc(entration)?|dose|added|free|total|x|substrate|pressure|log ?(10)?|frei|dosis)([_ .(\[-]|$)|conc|konz|pO2`)
+	responseWord = regexp.MustCompile(`(?i)sat|sätt|so2|theta|bound|gebunden|bindung|geschw|aktivit|binding|veloc|rate|activity|absorb|fluor|signal|response|counts|cpm|^(y|v|f|od|a)([_ .(\[-]|$)|optical`)
 )
 
 // findLigand chooses the column that is most like a ligand axis.
@@ -198,13 +199,12 @@ func (g *guess) findResponse() {
 	}
 	g.response = []*columnGuess{best}
 	g.kind, g.percent = kindOf(best)
-	m := numbered.FindStringSubmatch(best.name)
-	if m == nil || m[1] == "" {
+	stem, ok := replicateStem(best)
+	if !ok {
 		return
 	}
 	for _, c := range g.all {
-		if o := numbered.FindStringSubmatch(c.name); !c.taken && c.numeric && o != nil &&
-			o[1] == m[1] {
+		if other, ok := replicateStem(c); !c.taken && c.numeric && ok && other == stem {
 			c.taken = true
 			g.response = append(g.response, c)
 			g.percent = g.percent || c.high > 2 && g.kind == "saturation"
@@ -213,12 +213,27 @@ func (g *guess) findResponse() {
 	slices.SortFunc(g.response, func(a, b *columnGuess) int { return a.index - b.index })
 }
 
+// replicateStem is what numbered columns share: v of v 1 (nkat/mg) and v 2 (nkat/mg).
+func replicateStem(c *columnGuess) (string, bool) {
+	name, u, _ := splitHeader(c.name)
+	if m := numbered.FindStringSubmatch(name); m != nil && m[1] != "" {
+		return m[1] + " in " + u.String(), true
+	}
+	return "", false
+}
+
 var plainWord = regexp.MustCompile(`^[A-Za-z][A-Za-z0-9]*`)
+
+var nonspecificWord = regexp.MustCompile(`(?i)^(nsb|non-? ?specific|unspecific|unspezifisch)`)
 
 // findOthers sorts what is left into an effector, factors, and what is not used.
 func (g *guess) findOthers() {
 	for _, c := range g.all {
 		if c.taken {
+			continue
+		}
+		if g.apart == nil && c.numeric && nonspecificWord.MatchString(c.name) {
+			g.apart = c
 			continue
 		}
 		few := c.values > 1 && c.values <= 12 && c.values*3 <= len(g.t.Rows)

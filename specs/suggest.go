@@ -3,6 +3,7 @@ package specs
 import (
 	"fmt"
 	"path"
+	"regexp"
 	"slices"
 	"strings"
 
@@ -147,7 +148,8 @@ func (g *guess) leftNames() []string {
 
 func (g *guess) writeLigand(line func(string, ...any)) {
 	unit, why := g.ligandUnit()
-	line("ligand: {name: ligand, unit: %s}   # write its name; %s", unit, why)
+	name, whose := g.ligandName()
+	line("ligand: {name: %s, unit: %s}   # %s; %s", name, unit, whose, why)
 	if g.effector != nil {
 		u, why := "1", "write its unit: the header names none"
 		if g.effector.hasUnit {
@@ -160,8 +162,38 @@ func (g *guess) writeLigand(line func(string, ...any)) {
 	line("")
 }
 
+// generic words of headers name no substance.
+var generic = regexp.MustCompile(`(?i)^(.|conc|concentration|konz|konzentration|dose|dosis|added|free|frei|total|lig|ligand|substrate|inhibitor|agonist|pressure|log|log10|lg|column|unnamed|in|of|the|col)$`)
+
+// ligandName is the substance that the header names, and where that comes from.
+func (g *guess) ligandName() (name, why string) {
+	stem, _, _ := splitHeader(g.ligand.name)
+	for _, w := range words.FindAllString(stem, -1) {
+		switch {
+		case strings.EqualFold(w, "pO2"), strings.EqualFold(w, "O2"):
+			return "oxygen, symbol: pO2", "its name is from the header"
+		case generic.MatchString(w), w == g.effectorName,
+			slices.Contains(keyNames(columnKeys()), w):
+			continue
+		}
+		return plainOrQuoted(w), "its name is from the header: check this"
+	}
+	return "ligand", "write its name"
+}
+
+var words = regexp.MustCompile(`[A-Za-z][A-Za-z0-9]*`)
+
+// logarithms says whether the ligand's values must be logarithms, though its
+// header names no unit: most are negative, and all are those of concentrations.
+func (g *guess) logarithms() bool {
+	return !g.ligand.hasUnit && g.ligand.low < -2 && g.ligand.low > -16 && g.ligand.high < 1
+}
+
 func (g *guess) ligandUnit() (unit, why string) {
-	if !g.ligand.hasUnit {
+	switch {
+	case g.logarithms():
+		return "M", "its values are taken for decadic logarithms of M: check this"
+	case !g.ligand.hasUnit:
 		return `"unit not stated"`, "write its unit (uM, torr, …), which the header does not name"
 	}
 	return g.ligand.unit.Linear().String(), "its unit is from the header " + oneLine(g.ligand.name)
@@ -193,7 +225,7 @@ func (g *guess) writeData(line func(string, ...any), base string) {
 		key, what string
 		c         *columnGuess
 	}{{"sem", "standard error of the mean", g.sem}, {"n", "how many values each mean is of", g.n},
-		{"sigma", "standard deviation", g.sigma},
+		{"sigma", "standard deviation of the value in its row; of single values, where the row is a mean: use sem and n", g.sigma},
 		{"preparation", "which preparation a row comes from", g.preparation},
 		{"blocked", "which tubes see only nonspecific binding", g.blocked},
 		{"left_out", "reason for leaving a row out; empty means kept", g.leftOut}} {
@@ -214,6 +246,11 @@ func (g *guess) writeData(line func(string, ...any), base string) {
 		noise, why = "given", "the standard deviations of the table"
 	}
 	line("    noise: %s   # %s", noise, why)
+	if g.apart != nil {
+		line("    # column %s looks like nonspecific binding: write it as rows of their own in column %s,",
+			oneLine(g.apart.name), oneLine(g.response[0].name))
+		line("    # with a further column that says which tubes were blocked, and   blocked: THAT COLUMN   under columns")
+	}
 	if len(g.ignored) > 0 {
 		line("    # columns that are not used: %s", strings.Join(g.ignored, ", "))
 	}
@@ -245,6 +282,8 @@ func (g *guess) column(c *columnGuess) string {
 	switch {
 	case c.hasUnit && c.unit.IsLogarithm():
 		return fmt.Sprintf("{name: %s, unit: %s}", plainOrQuoted(c.name), c.unit)
+	case c == g.ligand && g.logarithms():
+		return fmt.Sprintf("{name: %s, unit: log10 M}", plainOrQuoted(c.name))
 	case slices.Contains(g.response, c) && g.percent:
 		return fmt.Sprintf("{name: %s, unit: percent}", plainOrQuoted(c.name))
 	}
@@ -257,6 +296,8 @@ func (g *guess) responseKind() string {
 	unit := quoteText("unit not stated")
 	if c.hasUnit && !c.unit.IsLogarithm() && !c.unit.IsNumber() {
 		unit = c.unit.String()
+	} else if label := labelInHeader(c.name); label != "" && !c.hasUnit {
+		unit = quoteText(label)
 	}
 	differs := func(what string) string {
 		if g.preparation == nil {
@@ -295,7 +336,7 @@ func kindOf(c *columnGuess) (kind string, percent bool) {
 		unit = c.unit
 	}
 	switch {
-	case has("sat", "theta", "occupan", "fraction") || c.hasUnit && unit.IsPercent() || name == "y":
+	case has("sat", "sätt", "so2", "theta", "occupan", "fraction") || c.hasUnit && unit.IsPercent() || name == "y":
 		if c.high > 2 && c.high <= 150 && c.low > -30 {
 			return "saturation", true
 		}
@@ -303,10 +344,10 @@ func kindOf(c *columnGuess) (kind string, percent bool) {
 			return "saturation", false
 		}
 		return "signal", false
-	case has("veloc", "rate", "activity") || strings.HasPrefix(name, "v_") || name == "v" ||
+	case has("veloc", "rate", "activity", "geschw", "aktivit") || strings.HasPrefix(name, "v_") || name == "v" ||
 		c.hasUnit && strings.HasPrefix(unit.Kind(), "a catalytic activity"):
 		return "velocity", false
-	case has("bound", "binding") || c.hasUnit && unit.Kind() == "an amount per mass":
+	case has("bound", "binding", "gebunden", "bindung") || c.hasUnit && unit.Kind() == "an amount per mass":
 		return "bound", false
 	}
 	return "signal", false

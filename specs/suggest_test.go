@@ -75,6 +75,18 @@ func TestSuggestions(t *testing.T) {
 		{"mean, sem and n", "dose_nM,response,sem,n\n1,2,0.1,3\n3,4,0.1,3\n10,9,0.2,3\n30,15,0.2,3\n100,18,0.1,3\n300,19,0.1,3\n", []string{"sem: sem", "n: n", "noise: given"}},
 		{"few points", "conc_uM,sat\n1,0.1\n2,0.3\n4,0.6\n8,0.8\n",
 			[]string{"Left out, because these points are too few", "Hill equation"}},
+		{"replicates with units in brackets", "[ATP] (mM),v rep1 (nkat/mg),v rep2 (nkat/mg),other\n0.1,1,1.1,5\n0.3,2,2.1,6\n1,4,4.1,7\n3,6,6.2,5\n10,7,7.2,4\n30,8,8.1,8\n",
+			[]string{`response: ["v rep1 (nkat/mg)", "v rep2 (nkat/mg)"]`, "{name: ATP, unit: mM}", "unit: nkat/mg"}},
+		{"umlauts", "Konz. (µM);Sättigung 1;Sättigung 2;Präparation\n0,1;0,05;0,06;A\n0,5;0,2;0,25;A\n2;0,5;0,6;A\n8;0,8;0,9;B\n32;0,95;0,97;B\n128;0,98;0,99;B\n",
+			[]string{`preparation: "Präparation"`, `response: ["Sättigung 1", "Sättigung 2"]`, "kind: saturation"}},
+		{"logarithms in brackets", "Agonist [log M]\tResponse (% of max)\n-9\t1\n-8\t5\n-7\t22\n-6\t60\n-5\t90\n-4\t98\n",
+			[]string{`{name: "Agonist [log M]", unit: log10 M}`, `unit: "% of max"`, "unit: M}"}},
+		{"logarithms unsaid", "dose,y\n-9,1\n-8,5\n-7,22\n-6,60\n-5,90\n-4,98\n",
+			[]string{"{name: dose, unit: log10 M}", "taken for decadic logarithms of M"}},
+		{"oxygen in per cent", "pO2 [kPa],SO2 %,pH\n1,5,7.4\n2,20,7.4\n3,40,7.4\n4,60,7.4\n6,80,7.4\n10,95,7.4\n1,3,7.2\n2,12,7.2\n3,28,7.2\n4,48,7.2\n6,72,7.2\n10,90,7.2\n",
+			[]string{"name: oxygen, symbol: pO2, unit: kPa", `{name: "SO2 %", unit: percent}`, "kind: saturation", "factors: {pH: pH}"}},
+		{"nonspecific in a column", "Added [nM],Total bound (dpm),NSB (dpm)\n0.1,100,10\n0.3,280,30\n1,700,100\n3,1500,300\n10,3000,1000\n30,5500,3000\n",
+			[]string{`unit: "dpm"`, "column NSB (dpm) looks like nonspecific binding", "{name: ligand, unit: nM}"}},
 		{"added ligand", "added_nM,bound_fmol_mg\n1,20\n2,40\n4,70\n8,100\n16,120\n32,130\n",
 			[]string{`the header says "added"`, "kind: bound, unit: fmol/mg"}},
 	} {
@@ -107,7 +119,8 @@ func TestUnitsInHeaders(t *testing.T) {
 		"pO2_torr": "torr", "conc (uM)": "uM", "L / nM": "nM", "conc_ng_per_ml": "ng/mL",
 		"log10_M": "log10 M", "v_nkat_mg": "nkat/mg",
 		"bound [fmol/mg]": "fmol/mg", "saturation_percent": "percent", "sat": "", "pH": "", "K": "",
-		"prep_A": "", "x_m": "", "t_min": "min",
+		"prep_A": "", "x_m": "", "t_min": "min", "SO2 %": "percent", "A [log M]": "log10 M",
+		"log[ATP] (M)": "log10 M", "log(conc) [mM]": "log10 mM", "%": "",
 	} {
 		u, ok := unitInHeader(header)
 		got := ""
