@@ -1,8 +1,11 @@
 package saturation
 
 import (
+	"cmp"
 	"context"
+	"maps"
 	"math"
+	"slices"
 	"sort"
 
 	"ligancy/fit"
@@ -75,8 +78,8 @@ func (f *fitted) rowResiduals(e []float64, group []int) []float64 {
 }
 
 // predictionError is the root mean square residual of concentrations that the
-// constants were not fitted to, each left out in turn from its curve, in the
-// units of the scatter. It does not exist with a shift by preparation, nor with
+// constants were not fitted to, each left out in turn from its curve (of a long
+// recording, each stretch of neighbours), in the units of the scatter. It does not exist with a shift by preparation, nor with
 // two data sets, whose scatters have no common unit.
 func (f *fitted) predictionError(ctx context.Context) Real {
 	if f.m.shift != nil || len(f.m.blocks) != 1 {
@@ -101,9 +104,32 @@ func (f *fitted) predictionError(ctx context.Context) Real {
 			number(q.part, b.rows[q.row].x)
 		}
 	}
+	stretches(group, at)
 	out, err := fit.LeaveOut(ctx, f.problem, f.result, group, fit.RefitSettings{Workers: 1})
 	if err != nil || out.N == 0 {
 		return nan
 	}
 	return Real(out.RootMeanSquare() * math.Sqrt(f.relativeSS(b)/f.result.SS[0]))
+}
+
+// mostLeftOut bounds how often a mechanism is refitted to ask how it foretells.
+const mostLeftOut = 100
+
+// stretches joins neighbouring concentrations of one curve where there are more
+// groups than mostLeftOut, so that each is left out with its neighbours. at
+// holds the group of each cell and concentration.
+func stretches(group []int, at map[[2]float64]int) {
+	if len(at) <= mostLeftOut {
+		return
+	}
+	keys := slices.SortedFunc(maps.Keys(at), func(a, b [2]float64) int {
+		return cmp.Or(cmp.Compare(a[0], b[0]), cmp.Compare(a[1], b[1]))
+	})
+	joined := make([]int, len(at))
+	for rank, key := range keys {
+		joined[at[key]] = rank * mostLeftOut / len(keys)
+	}
+	for i, g := range group {
+		group[i] = joined[g]
+	}
 }

@@ -79,3 +79,38 @@ func TestLackOfFitOfPublishedVelocities(t *testing.T) {
 		t.Errorf("lack of fit p %v, by hand %v (F %v)", f.row.LackOfFitP, want, stat)
 	}
 }
+
+// A long recording is left out by stretches of neighbours on one curve, a short
+// one concentration by concentration.
+func TestStretchesJoinNeighbours(t *testing.T) {
+	at := map[[2]float64]int{}
+	var group []int
+	for i := range 1000 {
+		at[[2]float64{float64(i % 2), float64(1000 - i)}] = i
+		group = append(group, i)
+	}
+	stretches(group, at)
+	cells := map[int]map[int]bool{}
+	for i, g := range group {
+		if g < 0 || g >= mostLeftOut {
+			t.Fatalf("group %d", g)
+		}
+		if cells[g] == nil {
+			cells[g] = map[int]bool{}
+		}
+		cells[g][i%2] = true
+	}
+	if len(cells) != mostLeftOut {
+		t.Errorf("%d groups", len(cells))
+	}
+	for g, c := range cells {
+		if len(c) > 1 {
+			t.Errorf("group %d joins two curves", g)
+		}
+	}
+	few := []int{0, 1, 2}
+	stretches(few, map[[2]float64]int{{0, 1}: 0, {0, 2}: 1, {0, 3}: 2})
+	if few[0] != 0 || few[1] != 1 || few[2] != 2 {
+		t.Errorf("%v", few)
+	}
+}
