@@ -187,6 +187,8 @@ func (p *page) slopeRows(mechanism string, curves []string) [][]string {
 		halves = append(halves, p.rows[key{mechanism, c, "position", "x_half"}])
 		slopes = append(slopes, p.rows[key{mechanism, c, "hill", "n_H_half"}])
 	}
+	totals, totalSlopes := p.d.againstTotal(mechanism)
+	halves, slopes = append(halves, totals...), append(slopes, totalSlopes...)
 	ratios := p.d.contrastsOf(mechanism, "x_half")
 	ratios = ratios[:min(len(ratios), mostCurves)]
 	halfCells, slopeCells := stacked(append(halves, ratios...)), stacked(slopes)
@@ -195,10 +197,47 @@ func (p *page) slopeRows(mechanism string, curves []string) [][]string {
 		rows = append(rows, []string{cut(curveLabel(c), labelColumns), halfCells[i], slopeCells[i],
 			p.steepest(mechanism, c), p.hillReading(mechanism, c)})
 	}
+	for i, q := range totals {
+		at := len(curves) + i
+		rows = append(rows, []string{cut(totalLabel(q), labelColumns), halfCells[at], slopeCells[at]})
+	}
 	for i, q := range ratios {
-		rows = append(rows, []string{cut(shortContrast(q.Curve), labelColumns), halfCells[len(curves)+i]})
+		rows = append(rows, []string{cut(shortContrast(q.Curve), labelColumns), halfCells[len(halves)+i]})
 	}
 	return rows
+}
+
+// againstTotal is half saturation and n_H against total ligand, or the IC50
+// against added ligand, where the axis is total; a slope that is not given is nil.
+func (d *Document) againstTotal(mechanism string) (halves, slopes []*saturation.QuantityRow) {
+	for i := range d.Quantities {
+		q := &d.Quantities[i]
+		if q.Mechanism != mechanism || q.Interval == "bootstrap" || q.Name != "x_half_total" && q.Name != "IC50_total" {
+			continue
+		}
+		halves = append(halves, q)
+		var slope *saturation.QuantityRow
+		for j := range d.Quantities {
+			if n := &d.Quantities[j]; n.Name == "n_H_half_total" && n.Mechanism == mechanism && n.Curve == q.Curve && n.Interval != "bootstrap" {
+				slope = n
+			}
+		}
+		slopes = append(slopes, slope)
+	}
+	return halves[:min(len(halves), mostCurves)], slopes[:min(len(slopes), mostCurves)]
+}
+
+// totalLabel says that a row speaks of total ligand, and of which curve.
+func totalLabel(q *saturation.QuantityRow) string {
+	switch {
+	case q.Name == "IC50_total" && q.Curve == "all":
+		return "IC50, added"
+	case q.Name == "IC50_total":
+		return "IC50, " + q.Curve
+	case q.Curve == "all":
+		return "against total"
+	}
+	return "total, " + q.Curve
 }
 
 // differences writes what else was asked for between curves, one line a number.
