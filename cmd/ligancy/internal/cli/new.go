@@ -3,6 +3,7 @@ package cli
 import (
 	"errors"
 	"fmt"
+	"io"
 	"io/fs"
 	"os"
 	"path/filepath"
@@ -14,6 +15,7 @@ import (
 	"ligancy/specs"
 	"ligancy/specs/diag"
 	"ligancy/specs/gallery"
+	"ligancy/specs/table"
 )
 
 const newHelp = `ligancy new TABLE
@@ -58,22 +60,22 @@ func (p *program) newCommand() *cobra.Command {
 	return c
 }
 
-// newStudy writes TABLE's base name with .yaml beside it.
-func (p *program) newStudy(table string) error {
-	study := strings.TrimSuffix(table, filepath.Ext(table)) + ".yaml"
-	if study == table {
-		return &usageError{problem: table + " is a study's name, not a table's", write: "ligancy new TABLE"}
+// newStudy writes the study of a table beside it: its name with .yaml.
+func (p *program) newStudy(name string) error {
+	study := strings.TrimSuffix(name, filepath.Ext(name)) + ".yaml"
+	if study == name {
+		return &usageError{problem: name + " is a study's name, not a table's", write: "ligancy new TABLE"}
 	}
 	if err := p.absent(study); err != nil {
 		return err
 	}
-	content, err := os.ReadFile(p.path(table))
+	content, err := readTable(p.path(name))
 	if err != nil {
-		return fmt.Errorf("%s cannot be read: %w", table, bare(err))
+		return fmt.Errorf("%s cannot be read: %w", name, bare(err))
 	}
-	text, complaints := specs.Suggest(filepath.Base(table), content)
+	text, complaints := specs.Suggest(filepath.Base(name), content)
 	for i := range complaints {
-		complaints[i].File = filepath.Join(filepath.Dir(table), complaints[i].File)
+		complaints[i].File = filepath.Join(filepath.Dir(name), complaints[i].File)
 	}
 	if err := diag.WriteText(p.Stderr, complaints); err != nil {
 		return err
@@ -86,6 +88,16 @@ func (p *program) newStudy(table string) error {
 	}
 	fmt.Fprintf(p.out, "written   %s\nnext      read it, mend what was guessed wrongly, then   ligancy check %s\n", study, study)
 	return nil
+}
+
+// readTable reads a file, but no more of it than shows that it is too large.
+func readTable(path string) ([]byte, error) {
+	f, err := os.Open(path)
+	if err != nil {
+		return nil, err
+	}
+	defer f.Close()
+	return io.ReadAll(io.LimitReader(f, table.MaxBytes+1))
 }
 
 // newExample writes the files of a gallery study, all or none.
