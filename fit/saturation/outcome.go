@@ -27,6 +27,7 @@ type Outcome struct {
 	Nested       []NestedRow      `json:"nested"`
 	Preparations []PreparationRow `json:"preparations"`
 	Factors      []FactorRow      `json:"factors"`
+	Profiles     []ProfileRow     `json:"profiles"` // of the leader's constants
 	Objections   []Objection      `json:"objections"`
 	Explanations []ExplanationRow `json:"explanations"`
 	Verdict      Verdict          `json:"verdict"`
