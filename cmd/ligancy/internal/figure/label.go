@@ -77,7 +77,7 @@ func Symbol(name string) Label {
 			l = append(l, Run{Text: index, Face: Serif, Rise: Sub})
 		}
 	}
-	return l.And(Words(Serif, rest))
+	return l.And(Prose(Serif, rest))
 }
 
 // Prose sets words in a face, with quantities among them as the trade prints
@@ -98,14 +98,18 @@ func Prose(f Face, s string) Label {
 			l = append(l, Run{Text: base, Face: SerifItalic}, Run{Text: part(2), Face: f, Rise: Sub})
 			continue
 		}
+		if power := part(5) + part(6); power != "" {
+			l = append(l, Run{Text: minus(power), Face: f, Rise: Super})
+			continue
+		}
 		l = append(l, Run{Text: part(3) + "\u2009·\u200910", Face: f}, Run{Text: minus(part(4)), Face: f, Rise: Super})
 	}
 	return append(l, Words(f, rest)...)
 }
 
 // quantities in running text: a symbol of at most three letters with an index,
-// or a number with an exponent.
-var quantities = regexp.MustCompile(`\b([A-Za-zα-ωΔ]{1,3})_([A-Za-z0-9]+(?:\.[0-9]+)?)\b|\b([0-9]+(?:\.[0-9]+)?)e(-?[0-9]+)\b`)
+// a number with an exponent, or a power.
+var quantities = regexp.MustCompile(`\b([A-Za-zα-ωΔ]{1,3})_([A-Za-z0-9]+(?:\.[0-9]+)?)\b|\b([0-9]+(?:\.[0-9]+)?)e(-?[0-9]+)\b|\^\(([^)]*)\)|\^(-?[0-9.]+)`)
 
 func isKd(s string) bool { return strings.HasPrefix(s, "Kd") && onlyDigits(s[2:]) }
 

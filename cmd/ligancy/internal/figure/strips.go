@@ -97,6 +97,11 @@ func (f *Strips) reach() float64 {
 		} else {
 			open = true
 		}
+		for _, q := range r.Ridge {
+			if q.X > 0 && q.X < 30 && q.X > 1./30 {
+				reach = max(reach, q.X, 1/q.X)
+			}
+		}
 	}
 	if open {
 		reach = max(reach*1.5, 3)

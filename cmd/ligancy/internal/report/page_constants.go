@@ -1,10 +1,13 @@
 package report
 
 import (
+	"cmp"
 	"fmt"
 	"math"
 	"slices"
 	"strings"
+
+	"gonum.org/v1/gonum/stat/distuv"
 
 	"ligancy/cmd/ligancy/internal/figure"
 	"ligancy/fit/saturation"
@@ -42,6 +45,9 @@ func (v *view) strips() figure.Figure {
 		}
 	}
 	f.Description = strings.Join(told, "; ")
+	if len(v.d.Profiles) > 0 && f.Remark == "" {
+		f.Remark = "The ridge is the profile of the likelihood, 1 at the best value."
+	}
 	return f
 }
 
@@ -73,12 +79,43 @@ func (v *view) strip(q *saturation.QuantityRow) (figure.Strip, bool) {
 	if finite(high) {
 		s.High = high / value
 	}
+	s.Ridge = v.ridge(q)
 	text, _, _ := rowFigures(q)
 	s.Value = strings.TrimSpace(minus(text) + " " + printable(unitWord(q.Unit)))
 	if h := held(q); h != "" {
 		s.Value += ", " + h
 	}
 	return s, true
+}
+
+// ridge is the profile of a constant as a ridge over its best value: at each
+// end of an interval the relative likelihood exp(−z²/2), z the normal quantile
+// of the interval's level. Nothing where no profile was sampled.
+func (v *view) ridge(q *saturation.QuantityRow) []figure.XY {
+	value := float64(q.Value)
+	same := func(a, b *string) bool { return a == b || a != nil && b != nil && *a == *b }
+	height := func(level float64) float64 {
+		z := distuv.UnitNormal.Quantile(0.5 + level/2)
+		return math.Exp(-z * z / 2)
+	}
+	var out []figure.XY
+	for i := range v.d.Profiles {
+		r := &v.d.Profiles[i]
+		if q.Of == "constant" && r.Mechanism == q.Mechanism && r.Curve == q.Curve && r.Name == q.Name && same(r.Ligand, q.Ligand) && same(r.Site, q.Site) && r.Value > 0 {
+			out = append(out, figure.XY{X: float64(r.Value) / value, Y: height(float64(r.Level))})
+		}
+	}
+	if len(out) == 0 {
+		return nil
+	}
+	out = append(out, figure.XY{X: 1, Y: 1})
+	for _, end := range []saturation.Real{q.Low, q.High} {
+		if q.Interval == "profile" && end > 0 && finite(float64(end)) {
+			out = append(out, figure.XY{X: float64(end) / value, Y: height(float64(q.Level))})
+		}
+	}
+	slices.SortFunc(out, func(a, b figure.XY) int { return cmp.Compare(a.X, b.X) })
+	return out
 }
 
 // quantity is a constant's symbol with the levels it holds for.
