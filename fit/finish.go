@@ -36,7 +36,7 @@ func (s *solver) result(end ending) *Result {
 	r.Status = s.status(end)
 	switch end {
 	case stalled:
-		r.warn("no step lowers the objective, although it is not stationary (relative offset %.2g)", r.Offset)
+		r.warn("no step lowers the objective, yet it is not stationary (relative offset %.2g)", r.Offset)
 	case exhausted:
 		r.warn("out of iterations (relative offset %.2g)", r.Offset)
 	case interrupted:
@@ -89,7 +89,8 @@ func (r *Result) count(runs []run, slack float64) {
 		}
 	}
 	if r.Starts >= 10 && r.Agreeing <= r.Starts/20 {
-		r.warn("only %d of %d starts reached this minimum: there may be a lower one", r.Agreeing, r.Starts)
+		r.warn("only %d of %d starts reached this minimum: there may be a lower one",
+			r.Agreeing, r.Starts)
 	}
 }
 

@@ -60,7 +60,9 @@ func (f *Profiler) flat(last, next station, times float64) bool {
 // advance turns the guide to the next dial, from where the last two stations
 // point to and from the last one, and keeps the lower of the two: with the
 // parameter held there may be several minima.
-func (f *Profiler) advance(ctx context.Context, g guide, before, last station, dial float64) (station, bool) {
+func (f *Profiler) advance(ctx context.Context, g guide, before, last station,
+	dial float64) (station, bool) {
+
 	f.ahead = append(f.ahead[:0], last.theta...)
 	if last.dial != before.dial {
 		share := (dial - last.dial) / (last.dial - before.dial)
@@ -131,7 +133,9 @@ func (f *Profiler) scale(t target, at station, d float64) (step float64, behind 
 // between finds the end between a station below and one above the limit: by
 // regula falsi on the dial (the Illinois variant) with a refit at each, and a
 // leap once that is near.
-func (f *Profiler) between(ctx context.Context, t target, g guide, below, above station, d float64) end {
+func (f *Profiler) between(ctx context.Context, t target, g guide, below, above station,
+	d float64) end {
+
 	goal := math.Sqrt(f.limit - f.result.Objective)
 	a, b := f.root(below)-goal, f.root(above)-goal
 	for n, side := 0, 0.0; n < 100 && ctx.Err() == nil; n++ {
@@ -146,7 +150,8 @@ func (f *Profiler) between(ctx context.Context, t target, g guide, below, above 
 			return end{value: at.value}
 		}
 		if n == 1 || n == 11 {
-			if value, ok := f.land(t, d, at); ok && d*(value-below.value) >= 0 && d*(above.value-value) >= 0 {
+			value, ok := f.land(t, d, at)
+			if ok && d*(value-below.value) >= 0 && d*(above.value-value) >= 0 {
 				return end{value: value}
 			}
 		}

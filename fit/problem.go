@@ -101,7 +101,8 @@ func (p *Problem) Check() error {
 	}
 	for i, s := range p.Starts {
 		if len(s) != len(p.Parameters) {
-			errs = append(errs, fmt.Errorf("start %d has %d values for %d parameters", i+1, len(s), len(p.Parameters)))
+			errs = append(errs, fmt.Errorf("start %d has %d values for %d parameters",
+				i+1, len(s), len(p.Parameters)))
 		}
 		if !allFinite(s) {
 			errs = append(errs, fmt.Errorf("start %d is not finite", i+1))

@@ -17,7 +17,9 @@ type region struct {
 }
 
 func newRegion(most int) *region {
-	return &region{most: most, u: make([]float64, most*most), v: make([]float64, most), w: make([]float64, most)}
+	return &region{
+		most: most, u: make([]float64, most*most), v: make([]float64, most), w: make([]float64, most),
+	}
 }
 
 // solve writes t and returns λ. The rows of s are stride apart.

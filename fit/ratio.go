@@ -51,7 +51,9 @@ type Contest struct {
 //
 // The probability cannot be below 1/(1 + draws). Davison AC & Hinkley DV (1997)
 // Bootstrap Methods and their Application, ch. 4.
-func (c *Contest) LikelihoodRatio(ctx context.Context, seed uint64, set RefitSettings) (Ratio, error) {
+func (c *Contest) LikelihoodRatio(ctx context.Context, seed uint64,
+	set RefitSettings) (Ratio, error) {
+
 	a, okA := c.SpecialResult.Likelihood(c.Special)
 	b, okB := c.FreerResult.Likelihood(c.Freer)
 	if !okA || !okB {
@@ -69,7 +71,8 @@ func (c *Contest) LikelihoodRatio(ctx context.Context, seed uint64, set RefitSet
 	if err != nil {
 		return r, err
 	}
-	freer, err := Refit(ctx, c.Freer, append([][]float64{c.FreerResult.Theta}, c.FreerStarts...), data, set)
+	starts := append([][]float64{c.FreerResult.Theta}, c.FreerStarts...)
+	freer, err := Refit(ctx, c.Freer, starts, data, set)
 	if err != nil {
 		return r, err
 	}

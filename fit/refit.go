@@ -55,7 +55,8 @@ func Refit(ctx context.Context, p *Problem, starts [][]float64, data Replicates,
 	}
 	for _, t := range starts {
 		if len(t) != len(p.Parameters) {
-			return nil, fmt.Errorf("fit: a start has %d values for %d parameters", len(t), len(p.Parameters))
+			return nil, fmt.Errorf("fit: a start has %d values for %d parameters",
+				len(t), len(p.Parameters))
 		}
 	}
 	if _, own := data.(Started); len(starts) == 0 && !own {
@@ -71,7 +72,7 @@ func Refit(ctx context.Context, p *Problem, starts [][]float64, data Replicates,
 	var telling sync.Mutex
 	work := func(s *solver) {
 		defer func() { evals.Add(int64(s.evals)) }()
-		rep := &Replicate{Shift: make([]float64, s.rows[len(s.blocks)]), Within: make([]float64, len(s.blocks))}
+		rep := s.blank()
 		for i := int(next.Add(1)) - 1; i < set.Draws && ctx.Err() == nil; i = int(next.Add(1)) - 1 {
 			data.Draw(i, rep)
 			s.adopt(rep)
@@ -109,6 +110,12 @@ func (set RefitSettings) filled(p *Problem) RefitSettings {
 		set.Workers = 1
 	}
 	return set
+}
+
+// blank is a replicate to be filled.
+func (s *solver) blank() *Replicate {
+	n := len(s.blocks)
+	return &Replicate{Shift: make([]float64, s.rows[n]), Within: make([]float64, n)}
 }
 
 // adopt puts replicate data in place of the data.

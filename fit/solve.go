@@ -142,21 +142,25 @@ func (s *solver) one(ctx context.Context, theta []float64, most int) run {
 		return run{evals: s.evals, fault: s.fault}
 	}
 	end := s.descend(ctx.Done(), rough, most)
-	return run{end: end, theta: append([]float64(nil), s.cur.theta...), obj: s.cur.obj, evals: s.evals}
+	at := append([]float64(nil), s.cur.theta...)
+	return run{end: end, theta: at, obj: s.cur.obj, evals: s.evals}
 }
 
 // nothing says why no start gave a number.
 func nothing(ctx context.Context, runs []run) (*Result, error) {
 	if ctx.Err() != nil {
-		return &Result{Status: NoAnswer, Warnings: []string{"interrupted before the first start had ended"}}, nil
+		return &Result{
+			Status:   NoAnswer,
+			Warnings: []string{"interrupted before the first start had ended"},
+		}, nil
 	}
 	for _, r := range runs {
 		if r.fault != nil {
 			return nil, fmt.Errorf("fit: no start can be evaluated: %w", r.fault)
 		}
 	}
-	return nil, errors.New("fit: no start can be evaluated: residuals or their derivatives are not finite " +
-		"(a standard deviation of zero does that)")
+	return nil, errors.New("fit: no start can be evaluated: residuals or their derivatives " +
+		"are not finite (a standard deviation of zero does that)")
 }
 
 // finish takes the best run on to where rounding ends it.
