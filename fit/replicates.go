@@ -12,12 +12,14 @@ type Replicate struct {
 	// Shift is added to the residuals of blocks that are not Observed: replicate
 	// data differ from the data by a constant, and so do their residuals.
 	Shift []float64
-	// Data are replicate responses for blocks that are Observed.
+	// Data are replicate responses for blocks that are Observed, valid until the
+	// next draw.
 	Data []float64
 	// Weight multiplies each residual: the root of how often its row was drawn.
 	// nil leaves all as they are.
 	Weight []float64
-	// Within is the sum of squares within collapsed rows, per block.
+	// Within is the sum of squares within collapsed rows, per block; it takes the
+	// place of what Pooled says.
 	Within []float64
 }
 
