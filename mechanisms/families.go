@@ -15,6 +15,7 @@ func init() {
 		{Name: "conformations", Doc: conformationsDoc,
 			Keys: []string{"conformations", "effectors", "turnover", "sees", "constants"}, Build: buildConformations},
 		{Name: "states", Doc: statesDoc, Keys: []string{"states", "effectors", "turnover", "sees", "constants"}, Build: buildStates},
+		{Name: "cycle", Doc: cycleDoc, Keys: []string{"states", "steps", "effectors", "constants"}, Build: buildCycle},
 		{Name: "mixture", Doc: mixtureDoc, Keys: []string{"parts", "constants"}, Build: buildMixture},
 		{Name: "assembly", Doc: assemblyDoc, Keys: []string{"small", "large", "constants"}, Build: buildAssembly},
 	}

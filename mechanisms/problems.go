@@ -36,6 +36,7 @@ func (d Definition) filled() []string {
 	say("large", d.Large != nil)
 	say("conformations", len(d.Conformations) > 0)
 	say("states", len(d.States) > 0)
+	say("steps", len(d.Steps) > 0)
 	say("constants", len(d.Constants) > 0)
 	return keys
 }

@@ -15,6 +15,8 @@ type view struct {
 	turnover bool
 	weight   []float64 // per conformation
 	constant []int     // index of the constant where the weight is free, else −1
+
+	rates [][]int // of a cycle: the rate constants, on ln scale, that yield product from each state
 }
 
 // views complains of what turnover and sees say.

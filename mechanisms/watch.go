@@ -112,6 +112,15 @@ func (w *watch) scale() {
 func (v *view) observe(e *ensemble, of []int, theta []float64, n int) {
 	clear(e.do)
 	for s, c := range of {
+		if v.rates != nil {
+			e.o[s] = 0
+			for _, k := range v.rates[c] {
+				rate := math.Exp(theta[k])
+				e.o[s] += rate
+				e.do[s*e.k+k] += rate
+			}
+			continue
+		}
 		unit := 1.0
 		if v.turnover {
 			unit = float64(e.ligation[s]) / float64(n)
