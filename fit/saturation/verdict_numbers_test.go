@@ -16,8 +16,9 @@ var (
 )
 
 // checkNumbers holds that every number of a verdict stands in a row of the
-// outcome: the number, or its hundredfold where a share is written in per cent,
-// agrees with a row to the places that the text gives.
+// outcome: the number, its hundredfold where a share is written in per cent, or
+// the factor √(high/low) within which a row holds it, to the places that the text
+// gives.
 func checkNumbers(t *testing.T, out *Outcome) {
 	t.Helper()
 	known := numbersOf(out)
@@ -79,6 +80,9 @@ func numbersOf(out *Outcome) []float64 {
 	}
 	for _, q := range out.Quantities {
 		add(q.Value, q.Low, q.High, q.Level)
+		if q.Low > 0 {
+			add(Real(math.Sqrt(float64(q.High / q.Low))))
+		}
 	}
 	for _, f := range out.Factors {
 		add(f.Share, f.P, f.Behind)
@@ -95,13 +99,16 @@ func numbersOf(out *Outcome) []float64 {
 	return known
 }
 
-// labelsOf are the curves' labels, which may hold figures of their own, and the
-// words of edges, which a row of the mechanisms holds whole.
+// labelsOf are the curves' labels and the names of combinations, which may hold
+// figures of their own, and the words of edges, which a row of the mechanisms holds whole.
 func labelsOf(out *Outcome) []string {
 	var labels []string
 	for _, q := range out.Quantities {
 		if q.Curve != "all" {
 			labels = append(labels, q.Curve)
+		}
+		if q.Of == "combination" {
+			labels = append(labels, q.Name)
 		}
 	}
 	for _, m := range out.Mechanisms {
