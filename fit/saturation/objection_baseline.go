@@ -4,6 +4,7 @@ import (
 	"context"
 	"fmt"
 	"math"
+	"slices"
 )
 
 const (
@@ -19,8 +20,11 @@ func (r *review) asksBaseline(context.Context) {
 			continue
 		}
 		var a answer
-		for _, c := range list {
-			if a = r.baselineOf(c); a.group != foundGood {
+		for _, shared := range r.byEnd(list, lowEnd) {
+			best := slices.MaxFunc(shared, func(a, b *reading) int {
+				return len(r.pointsBelow(a)) - len(r.pointsBelow(b))
+			})
+			if a = r.baselineOf(best); a.group != foundGood {
 				break
 			}
 		}

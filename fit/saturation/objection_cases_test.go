@@ -216,7 +216,15 @@ func TestObjectionsToTheCurve(t *testing.T) {
 		{"set, and not reached", "plateau", over(-2, 0.3, 10, nil), sayInPaper,
 			[]string{"was set, not measured"}},
 		{"reached", "plateau", over(-2, 2, 10, free), foundGood, []string{"99 %"}},
-		{"unreadable", "plateau", over(-2, -1.9, 10, free), sayInPaper, []string{"cannot be asked"}},
+		{"unreadable", "unread-curves", over(-2, -1.9, 10, free), sayInPaper, []string{"cannot be asked"}},
+		{"readable", "unread-curves", over(-2, 2, 10, free), foundGood, nil},
+		{"a trace", "unread-curves", over(-2, 2, 10, func(a *Analysis) { a.Data[0].Trace = true }), forCompleteness,
+			[]string{"followed in time"}},
+		{"nothing kept", "unread-curves", over(-2, 2, 10, func(a *Analysis) {
+			for i := range a.Data[0].Points {
+				a.Data[0].Points[i].LeftOut = "why"
+			}
+		}), settleFirst, []string{"No point is kept"}},
 
 		{"extrapolated", "baseline", over(-0.5, 2, 12, free), settleFirst,
 			[]string{"extrapolation", "measure without ligand"}},

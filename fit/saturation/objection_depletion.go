@@ -55,9 +55,9 @@ func (r *review) sitesOn(c *reading) float64 {
 func (r *review) depletionUnknown(di int) {
 	a := answer{id: "ligand-depletion-unknown", group: settleFirst, source: depletionSource,
 		text: r.where(di) +
-			"The concentration of sites is not stated: whether bound ligand was taken from the free " +
+			"The concentration of sites (not of molecules) is not stated: whether bound ligand was taken from the free " +
 			"ligand on the axis cannot be judged.",
-		remedy: "sites_present: 5 " + r.a.Ligand.Unit + "   (sites, in the assay)"}
+		remedy: "sites_present: 5 " + r.a.Ligand.Unit}
 	if r.a.Data[di].Response.Kind == "velocity" {
 		a.group = forCompleteness
 		a.text = r.where(di) +

@@ -30,6 +30,32 @@ func (r *review) asksLigandScatter(context.Context) {
 const steepCurve = 1.5
 
 func (r *review) ligandScatterOn(c *reading) {
+	list := r.slopesAndSquares(c)
+	if len(list) < 10 {
+		r.add(answer{id: "ligand-scatter", group: forCompleteness, source: ligandScatterSource,
+			text: fmt.Sprintf("%sWhether the ligand values scatter cannot be asked of %d points on a "+
+				"steep curve.", r.where(c.data), len(list))})
+		return
+	}
+	sx, over := ligandScatter(list)
+	a := answer{id: "ligand-scatter", group: foundGood, source: ligandScatterSource,
+		text: fmt.Sprintf("%sPoints do not scatter more where the curve%s is steep: ligand values are "+
+			"good enough.", r.where(c.data), r.onCurve(c))}
+	if over > chi2One99 {
+		a.group = sayInPaper
+		a.text = fmt.Sprintf("%sPoints scatter more where the curve%s is steep (likelihood ratio %s): "+
+			"the ligand values themselves scatter, by about %s.",
+			r.where(c.data), r.onCurve(c), figures(over, 2), percent(sx))
+		a.effect = fmt.Sprintf("Such scatter takes an n_H of %s to %s.", figures(c.h, 3),
+			figures(flattened(c.h, sx), 3))
+		a.remedy = "measure the ligand in every sample, or prepare samples from one series"
+	}
+	r.add(a)
+}
+
+// slopesAndSquares is, for every point of a curve, the slope dy/d ln x and the
+// squared residual (as mean and variance), both in units of the scatter.
+func (r *review) slopesAndSquares(c *reading) []group {
 	d := &r.a.Data[c.data]
 	y, sd := r.predictions(c.data)
 	high, _, _ := r.hills[c.data].end(c, highEnd, highSetting)
@@ -49,36 +75,21 @@ func (r *review) ligandScatterOn(c *reading) {
 		e := (d.Points[i].Y - y[i]) / sd[i]
 		list = append(list, group{mean: slope, variance: e * e, freedom: 1})
 	}
-	if len(list) < 10 {
-		r.add(answer{id: "ligand-scatter", group: forCompleteness, source: ligandScatterSource,
-			text: fmt.Sprintf("%sWhether the ligand values scatter cannot be asked of %d points on a "+
-				"steep curve.",
-				r.where(c.data), len(list))})
-		return
-	}
+	return list
+}
+
+// ligandScatter is the standard deviation of ln x under σ² = σ₀²[(1−λ) + λq²], q
+// the slope relative to the steepest, and the likelihood ratio against λ = 0.
+func ligandScatter(list []group) (sx, over float64) {
 	top := 0.0
 	for _, g := range list {
 		top = math.Max(top, g.mean*g.mean)
 	}
-	lambda, over, _ := twoLaws(list, func(group) float64 { return 1 },
-		func(g group) float64 { return g.mean*g.mean/top + 1e-6 })
-	a := answer{id: "ligand-scatter", group: foundGood, source: ligandScatterSource,
-		text: fmt.Sprintf("%sPoints do not scatter more where the curve%s is steep: ligand values are "+
-			"good enough.",
-			r.where(c.data), r.onCurve(c))}
-	if over > chi2One99 {
-		ratio := 0.0
-		for _, g := range list {
-			ratio += g.variance / ((1 - lambda) + lambda*(g.mean*g.mean/top+1e-6)) / float64(len(list))
-		}
-		sx := math.Sqrt(ratio * lambda / top)
-		a.group = sayInPaper
-		a.text = fmt.Sprintf("%sPoints scatter more where the curve%s is steep (likelihood ratio %s): "+
-			"the ligand values themselves scatter, by about %s.",
-			r.where(c.data), r.onCurve(c), figures(over, 2), percent(sx))
-		a.effect = fmt.Sprintf("Such scatter takes an n_H of %s to %s.", figures(c.h, 3),
-			figures(flattened(c.h, sx), 3))
-		a.remedy = "measure the ligand in every sample, or prepare samples from one series"
+	relative := func(g group) float64 { return g.mean*g.mean/top + 1e-6 }
+	lambda, over, _ := twoLaws(list, func(group) float64 { return 1 }, relative)
+	variance := 0.0
+	for _, g := range list {
+		variance += g.variance / ((1 - lambda) + lambda*relative(g)) / float64(len(list))
 	}
-	r.add(a)
+	return math.Sqrt(variance * lambda / top), over
 }

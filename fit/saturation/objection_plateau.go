@@ -18,22 +18,41 @@ func (r *review) asksPlateau(context.Context) {
 			continue
 		}
 		list := r.readings(di)
-		if why := r.unread(di); why != "" {
-			r.add(answer{id: "plateau", group: sayInPaper, source: plateauSource,
-				remedy: "measure on both sides of half saturation",
-				text:   r.where(di) + "Whether the upper end was reached cannot be asked:" + " " + why + "."})
-		}
 		if len(list) == 0 {
 			continue
 		}
-		worst, least := list[0], 1.0
-		for _, c := range list {
-			if s := r.topSaturation(c); s < least {
-				worst, least = c, s
+		worst, least := list[0], math.Inf(1)
+		for _, shared := range r.byEnd(list, highEnd) {
+			best, top := shared[0], -1.0
+			for _, c := range shared {
+				if s := r.topSaturation(c); s > top {
+					best, top = c, s
+				}
+			}
+			if top < least {
+				worst, least = best, top
 			}
 		}
 		r.plateauOf(worst, least)
 	}
+}
+
+// byEnd gathers curves that share a fitted end: one of them is enough to hold it.
+// A curve whose end is set stands alone.
+func (r *review) byEnd(list []*reading, pick func(*datum) int) [][]*reading {
+	var groups [][]*reading
+	at := map[int]int{} // place of the end in Θ → group
+	for _, c := range list {
+		_, _, end := r.hills[c.data].end(c, pick, highSetting)
+		g, ok := at[end]
+		if !ok || end < 0 {
+			g = len(groups)
+			at[end] = g
+			groups = append(groups, nil)
+		}
+		groups[g] = append(groups[g], c)
+	}
+	return groups
 }
 
 // topSaturation is the saturation at the highest ligand of a curve: by the

@@ -54,6 +54,29 @@ func (a *Analysis) curveByCurve(di int) *Analysis {
 	return &b
 }
 
+// asksReadable says of which curves nothing can be asked that needs half
+// saturation and steepness, and why.
+func (r *review) asksReadable(context.Context) {
+	for di := range r.a.Data {
+		a := answer{id: "unread-curves", group: foundGood, source: fromPractice,
+			text: r.where(di) + "Every curve can be read by a Hill equation."}
+		switch why := r.unread(di); {
+		case len(r.hills[di].readings) == 0:
+			a.group, a.remedy = settleFirst, "keep some of the points"
+			a.text = r.where(di) + "No point is kept: nothing can be asked of its curves."
+		case why != "":
+			a.group = sayInPaper
+			a.text = r.where(di) + "What is asked of half saturation and steepness cannot be asked: " + why + "."
+			if r.binds(di) {
+				a.remedy = "measure on both sides of half saturation"
+			} else {
+				a.group = forCompleteness
+			}
+		}
+		r.add(a)
+	}
+}
+
 // trimEach is a label of a curve as results print it.
 func trimEach(label string) string { return strings.TrimPrefix(label, eachCurve+" ") }
 
@@ -228,16 +251,22 @@ func (c *reading) lnFree(d *Dataset, i int) float64 {
 // at is the saturation that the reading gives at ln x.
 func (c *reading) at(lnx float64) float64 { return expit(c.h * (lnx - c.lnK)) }
 
-// levels lists the distinct nonzero free ligand values of a curve, rising.
+// levels lists ln of the free ligand of a curve, rising, one for every nonzero
+// value on the axis: on a total axis the mean over the points of that value.
 func (c *reading) levels(d *Dataset) []float64 {
-	var list []float64
+	sum, n := map[float64]float64{}, map[float64]float64{}
 	for _, i := range c.points {
-		if l := c.lnFree(d, i); !math.IsInf(l, -1) {
-			list = append(list, l)
+		if x := d.Points[i].X; x > 0 {
+			sum[x] += c.lnFree(d, i)
+			n[x]++
 		}
 	}
+	list := make([]float64, 0, len(n))
+	for x := range n {
+		list = append(list, sum[x]/n[x])
+	}
 	slices.Sort(list)
-	return slices.Compact(list)
+	return list
 }
 
 // end is a number of the response for a curve: as fitted, or as set. Where it

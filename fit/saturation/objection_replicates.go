@@ -18,6 +18,11 @@ func (r *review) replicateGroups(di int) []group {
 	if list := groupsBy(d, func(p *Point) string { return p.Preparation }, r.a); freedom(list) >= 10 {
 		return list
 	}
+	for _, key := range d.Response.Differs {
+		if key == byPreparation { // then preparations do not see one prediction
+			return groupsBy(d, func(p *Point) string { return p.Preparation }, r.a)
+		}
+	}
 	return groupsBy(d, func(*Point) string { return "" }, r.a)
 }
 

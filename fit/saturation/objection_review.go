@@ -58,6 +58,7 @@ type review struct {
 
 // questions are asked in this order; each adds what it finds.
 var questions = []func(*review, context.Context){
+	(*review).asksReadable,
 	(*review).asksDepletion,
 	(*review).asksDissociation,
 	(*review).asksIncubation,
@@ -163,13 +164,29 @@ func (r *review) readings(di int) []*reading {
 
 // unread says why the curves of a data set could not be read; "" where all could.
 func (r *review) unread(di int) string {
-	var why []string
+	by := map[string][]string{} // reason → curves
+	var reasons []string
 	for _, c := range r.hills[di].readings {
-		if c.why != "" {
-			why = append(why, strings.TrimPrefix(r.onCurve(&c), " at ")+" "+c.why)
+		if c.why == "" {
+			continue
 		}
+		if by[c.why] == nil {
+			reasons = append(reasons, c.why)
+		}
+		by[c.why] = append(by[c.why], c.curve)
 	}
-	return strings.TrimSpace(strings.Join(why, "; "))
+	var s []string
+	for _, why := range reasons {
+		who := "each of " + countWord(len(by[why])) + " curves"
+		switch {
+		case by[why][0] == "all":
+			who = "the curve"
+		case len(by[why]) <= 2:
+			who = "the curve at " + strings.Join(by[why], " and that at ")
+		}
+		s = append(s, who+" "+why)
+	}
+	return strings.Join(s, "; ")
 }
 
 // binds says whether a data set is one of binding at equilibrium that a Hill

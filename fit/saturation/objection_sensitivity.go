@@ -80,8 +80,42 @@ func (r *review) withoutOuterPoints(ctx context.Context) {
 
 // sensitive adds the answer: the omission that moves half saturation or n_H most.
 func (r *review) sensitive(ctx context.Context, a answer, omissions []omission) {
-	var failed []string
-	worst, what := move{ratio: -1}, ""
+	worst, what, failed := r.omit(ctx, omissions)
+	a.group = foundGood
+	switch {
+	case worst.ratio < 0 && len(failed) == 0:
+		return // no curve is left to compare
+	case worst.ratio < 0:
+		a.group = sayInPaper
+		a.text = "Without " + list(failed) + " there is no fit: what hangs on it cannot be asked."
+		r.add(a)
+		return
+	case !worst.compared:
+		a.group = forCompleteness
+		a.text = "What hangs on " + omittedWords[a.id] +
+			" cannot be judged: neither half saturation nor n_H has an interval that ends on both sides."
+	case worst.ratio > 1:
+		a.group = sayInPaper
+		if worst.ratio > farOut {
+			a.group = settleFirst
+		}
+		a.text = fmt.Sprintf("Without %s a result%s moves by more than its interval.", what,
+			onCurve(worst.curve))
+		a.remedy = "print the fit without it beside the fit with it"
+	default:
+		a.text = fmt.Sprintf("No result hangs on %s: half saturation and n_H stay within their "+
+			"intervals without it.", omittedWords[a.id])
+	}
+	a.effect = fmt.Sprintf("Most without %s: %s.", what, worst.inWords())
+	if len(failed) > 0 {
+		a.text += " There is no fit without " + list(failed) + "."
+	}
+	r.add(a)
+}
+
+// omit makes the refits: the one that moves a result most, and those that failed.
+func (r *review) omit(ctx context.Context, omissions []omission) (worst move, what string, failed []string) {
+	worst.ratio = -1
 	for _, o := range omissions {
 		g := r.lead.refit(ctx, func(b *Analysis, _ *Candidate) {
 			for di := range b.Data {
@@ -97,33 +131,5 @@ func (r *review) sensitive(ctx context.Context, a answer, omissions []omission) 
 			worst, what = m, o.what
 		}
 	}
-	a.group = foundGood
-	switch {
-	case worst.ratio < 0:
-		a.group = sayInPaper
-		a.text = "Without " + list(failed) + " there is no fit: what hangs on it cannot be asked."
-		r.add(a)
-		return
-	case !worst.compared:
-		a.group = forCompleteness
-		a.text = "What hangs on " + omittedWords[a.id] +
-			" cannot be judged: neither half saturation nor n_H has an interval that ends on both sides."
-	case worst.ratio > 1:
-		a.group = sayInPaper
-		a.text = fmt.Sprintf("Without %s a result%s moves by more than its interval.", what,
-			onCurve(worst.curve))
-		a.remedy = "print the fit without it beside the fit with it"
-		if worst.ratio > farOut {
-			a.group = settleFirst
-		}
-	default:
-		a.text = fmt.Sprintf("No result hangs on %s: half saturation and n_H stay within their "+
-			"intervals without it.",
-			omittedWords[a.id])
-	}
-	a.effect = fmt.Sprintf("Most without %s: %s.", what, worst.inWords())
-	if len(failed) > 0 {
-		a.text += " There is no fit without " + list(failed) + "."
-	}
-	r.add(a)
+	return worst, what, failed
 }

@@ -78,5 +78,8 @@ func (r *review) behindWithSites(ctx context.Context, f *fitted, n int) float64 
 	if g.result == nil {
 		return math.NaN()
 	}
-	return float64(g.row.AICc - f.row.AICc)
+	if d := float64(g.row.AICc - f.row.AICc); !math.IsInf(d, 0) {
+		return d
+	}
+	return math.NaN() // a perfect fit
 }

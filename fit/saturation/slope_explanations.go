@@ -162,7 +162,7 @@ func (e *explainer) fit(ctx context.Context, x *explanation) {
 		}
 		f := b.fitCandidate(ctx, &t.candidate, fit.Settings{Starts: explanationStarts,
 			Seed: b.Settings.Seed, Workers: b.Settings.Workers})
-		if f.answered() && (x.best == nil || f.row.AICc < x.best.row.AICc) {
+		if f.answered() && !math.IsInf(float64(f.row.AICc), 0) && (x.best == nil || f.row.AICc < x.best.row.AICc) {
 			x.best = f
 		}
 	}
@@ -215,6 +215,9 @@ func (e *explainer) weigh(ctx context.Context) []ExplanationRow {
 func (e *explainer) bestTried() *fitted {
 	var best *fitted
 	for _, f := range e.rivals {
+		if math.IsInf(float64(f.row.AICc), 0) {
+			continue // a perfect fit
+		}
 		if best == nil || f.row.AICc < best.row.AICc {
 			best = f
 		}
@@ -240,7 +243,7 @@ func (e *explainer) judge(ctx context.Context, x *explanation, lead *fitted) {
 	f, own := x.best, e.own(x)
 	if own != nil && own.row.Standing != "out" {
 		x.standing, x.why = "open", quoted(own.row.Name)+" is this, and is not out"
-		if lead == e.bestTried() {
+		if lead == e.bestTried() || len(e.rivals) == 0 {
 			return
 		}
 		if f == nil || own.row.AICc < f.row.AICc {
@@ -279,8 +282,8 @@ func (e *explainer) judge(ctx context.Context, x *explanation, lead *fitted) {
 // own is the first of the study's mechanisms that is this explanation: the best
 // of them, in the order of AICc.
 func (e *explainer) own(x *explanation) *fitted {
-	for _, f := range e.rivals {
-		if x.mine != nil && x.mine(f) {
+	for _, i := range e.r.order {
+		if f := e.r.fits[i]; x.mine != nil && x.mine(f) {
 			return f
 		}
 	}
@@ -294,8 +297,8 @@ func (e *explainer) twin(x *explanation, i int) *string {
 		return nil
 	}
 	f, own := x.best, e.own(x)
-	if f == nil {
-		f = own
+	if f == nil && len(e.rivals) > 0 {
+		f = own // over the same points
 	}
 	if f == nil {
 		return nil

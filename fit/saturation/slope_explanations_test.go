@@ -13,10 +13,10 @@ import (
 )
 
 const (
-	xUnlike     = "unlike classes of sites on each molecule"
+	xUnlike     = "unlike classes among two sites of a molecule"
 	xTwo        = "two populations of molecules"
-	xSteps      = "negative cooperativity between steps"
-	xContact    = "negative cooperativity between sites in contact"
+	xSteps      = "stepwise negative cooperativity of two sites"
+	xContact    = "negative cooperativity of two sites in contact"
 	xSpread     = "a spread of affinities (Sips)"
 	xLine       = "one site with nonspecific binding"
 	xEnds       = "one site with an end not reached or set wrongly"

@@ -28,14 +28,14 @@ const (
 func (e *explainer) shallow(ctx context.Context) []*explanation {
 	n := max(e.r.mostSites(), 2)
 	list := []*explanation{
-		{text: "unlike classes of sites on each molecule", test: testClass, tries: unlikeClasses(n),
+		{text: "unlike classes among " + sitesWords(n) + " of a molecule", test: testClass, tries: unlikeClasses(n),
 			mine: severalClasses},
 		{text: "two populations of molecules", test: testSeparation, tries: attempts("mixture", twoParts()),
 			mine: ofFamily("mixture")},
-		{text: "negative cooperativity between steps", test: testDilution,
+		{text: "stepwise negative cooperativity of " + sitesWords(min(n, maxStepwise)), test: testDilution,
 			tries: attempts("adair", mechanisms.Definition{Sites: min(n, maxStepwise)}),
 			mine:  ofFamily("adair")},
-		{text: "negative cooperativity between sites in contact", test: testDilution, tries: inContact(n),
+		{text: "negative cooperativity of " + sitesWords(n) + " in contact", test: testDilution, tries: inContact(n),
 			mine: ofFamily("sequential")},
 		{text: "a spread of affinities (Sips)", test: testSpread,
 			tries: attempts("hill", mechanisms.Definition{}), mine: ofFamily("hill"),
@@ -140,13 +140,25 @@ func (e *explainer) nonspecific() []*explanation {
 	if c, err := simpleCandidate("independent", oneSite()); err == nil {
 		x.tries = []attempt{{candidate: c, change: withLine}}
 	}
-	x.mine = func(f *fitted) bool { return oneSiteWith(f) && f.m.blocks[0].pts[0].ns >= 0 }
+	x.mine = func(f *fitted) bool { return oneSiteWith(f) && hasLine(f) }
 	return []*explanation{x}
 }
 
 // oneSiteWith recognises the study's one-site mechanisms.
 func oneSiteWith(f *fitted) bool {
 	return f.m.shift == nil && f.row.Family == "independent" && f.row.Sites == 1
+}
+
+// hasLine says whether a fit has a line with the free ligand.
+func hasLine(f *fitted) bool {
+	for _, b := range f.m.blocks {
+		for i := range b.pts {
+			if b.pts[i].ns >= 0 {
+				return true
+			}
+		}
+	}
+	return false
 }
 
 // withLine lets a response have a line with the free ligand. Its upper number
