@@ -78,6 +78,7 @@ var complaintCases = []struct {
 	name         string
 	study, table []edit
 }{
+	{name: "a sheet of a text file", study: []edit{{"file: clam.csv", "file: clam.csv\n    sheet: day 1"}}},
 	// YAML's silent slips.
 	{name: "comma ended a name", study: []edit{{"{name: chloride,", "{name: 2,3-BPG,"}}},
 	{name: "comma ended a number",
@@ -390,6 +391,7 @@ func TestEveryComplaintHasACase(t *testing.T) {
 		"binary-file", "file-too-large", "line-too-long", "not-utf-8", "utf-16", // TestFilesThatAreNoStudies
 		"no-curve",                                                                                  // TestNothingToSuggest
 		"hidden-row", "no-header", "no-rows", "quotation-mark", "too-many-columns", "too-many-rows", // package table
+		"truth-value", "formula-error", "which-sheet", "long-cell", "merged-cells", // package table, of workbooks
 	} {
 		seen[elsewhere] = true
 	}

@@ -19,6 +19,8 @@ type guess struct {
 	sigma, sem, n, preparation, blocked, leftOut *columnGuess
 	factors                                      []*columnGuess
 	ignored                                      []string
+	sheets                                       []string // of a workbook
+	sheet                                        string
 	apart                                        *columnGuess // nonspecific binding in a column of its own
 	effectorName, blockedWord, kind, responseWhy string
 	percent                                      bool

@@ -135,7 +135,7 @@ func (b *builder) beside(i int) {
 	if d.File == "" || !b.isBeside(at, d.File) {
 		return
 	}
-	f := b.tableOnce(at, path.Join(path.Dir(b.study.File), d.File))
+	f := b.tableOnce(i, path.Join(path.Dir(b.study.File), d.File))
 	if f.table == nil {
 		return
 	}
@@ -175,15 +175,21 @@ func (b *builder) isBeside(at, file string) bool {
 }
 
 // tableOnce reads a table, or remembers it; what is wrong is said the first time.
-func (b *builder) tableOnce(at, name string) file {
-	f, ok := b.files[name]
+func (b *builder) tableOnce(i int, name string) file {
+	p, sheet := indexed("data", i), b.study.Data[i].Sheet
+	at, once := p+".file", name+"\x00"+sheet
+	f, ok := b.files[once]
 	if ok {
 		return f
 	}
-	f = b.readTable(name)
-	b.files[name] = f
+	f = b.readTable(name, sheet)
+	b.files[once] = f
 	for _, c := range f.complaints {
 		if c.Line == 0 && c.Cell == "" { // about the file as a whole: said where the study names it
+			if c.Code == "missing-sheet" {
+				b.fault(p+".sheet", c.Code, c.Problem, c.Notes, c.Remedies...)
+				continue
+			}
 			b.fault(at, c.Code, c.Problem, c.Notes, c.Remedies...)
 			continue
 		}
@@ -207,7 +213,7 @@ func (b *builder) linkIn(name string) string {
 	return ""
 }
 
-func (b *builder) readTable(name string) file {
+func (b *builder) readTable(name, sheet string) file {
 	if _, err := fs.Stat(b.fsys, name); errors.Is(err, fs.ErrNotExist) {
 		return file{}
 	}
@@ -216,7 +222,7 @@ func (b *builder) readTable(name string) file {
 		return file{complaints: complaints}
 	}
 	sum := sha256.Sum256(data)
-	t, complaints := table.Read(name, data)
+	t, complaints := table.ReadSheet(name, sheet, data)
 	for _, c := range complaints {
 		if slices.Contains([]string{"one-column", "no-header", "repeated-column"}, c.Code) {
 			t = nil // nothing can be said of its columns

@@ -49,6 +49,7 @@ type Substance struct {
 // Data is one table, or part of one, read for one response.
 type Data struct {
 	Name, File   string
+	Sheet        string // of a workbook
 	Decimal      string // "comma", "point", or "" to find out
 	Columns      Columns
 	Factors      []Named[string] // factor → column

@@ -16,15 +16,29 @@ import (
 // guessed from its header and its values, and every guess is said in a comment.
 // Where the table cannot be read there is no study, only complaints.
 func Suggest(name string, data []byte) ([]byte, diag.List) {
-	t, complaints := table.Read(name, data)
-	if t == nil || complaints.HasErrors() {
+	var g *guess
+	var complaints diag.List
+	sheets := table.Sheets(name, data)
+	for _, sheet := range append(sheets, "")[:max(1, len(sheets))] { // of a workbook the first with a curve
+		t, c := table.ReadSheet(name, sheet, data)
+		if complaints == nil {
+			complaints = c
+		}
+		if t == nil || c.HasErrors() {
+			continue
+		}
+		if g = newGuess(t); g.ligand != nil && len(g.response) > 0 {
+			g.sheets, g.sheet = sheets, sheet
+			break
+		}
+	}
+	if g == nil {
 		return nil, complaints
 	}
-	g := newGuess(t)
 	if g.ligand == nil || len(g.response) == 0 {
 		return nil, diag.List{{Code: "no-curve", Position: diag.Position{File: name},
 			Problem:  name + " has no two columns of numbers that could be a curve",
-			Notes:    []string{"Its columns are: " + shortList(t.Header(), 40) + "."},
+			Notes:    []string{"Its columns are: " + shortList(g.t.Header(), 40) + "."},
 			Remedies: []diag.Remedy{{Say: "Write the ligand and the response as two columns of numbers."}}}}
 	}
 	for {
@@ -203,6 +217,9 @@ func (g *guess) writeData(line func(string, ...any), base string) {
 	line("data:")
 	line("  - name: %s", plainOrQuoted(base))
 	line("    file: %s", plainOrQuoted(path.Base(g.t.Name)))
+	if len(g.sheets) > 1 {
+		line("    sheet: %s   # of %s", plainOrQuoted(g.sheet), oneLine(strings.Join(g.sheets, ", ")))
+	}
 	for _, n := range g.t.Notes {
 		line("    # recognised in the table: %s", n)
 	}

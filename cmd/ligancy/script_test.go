@@ -1,6 +1,7 @@
 package main
 
 import (
+	"encoding/csv"
 	"fmt"
 	"os"
 	"strconv"
@@ -8,6 +9,7 @@ import (
 	"testing"
 
 	"github.com/rogpeppe/go-internal/testscript"
+	"github.com/xuri/excelize/v2"
 )
 
 // The program runs as a command of its own inside the scripts.
@@ -21,8 +23,9 @@ func TestScript(t *testing.T) {
 	testscript.Run(t, testscript.Params{
 		Dir: "testdata/script",
 		Cmds: map[string]func(*testscript.TestScript, bool, []string){
-			"exits":  exits,
-			"repeat": repeat,
+			"exits":    exits,
+			"repeat":   repeat,
+			"workbook": workbook,
 		},
 		Setup: func(e *testscript.Env) error {
 			return os.CopyFS(e.WorkDir+"/gallery", os.DirFS("../../specs/gallery/studies"))
@@ -69,4 +72,36 @@ func repeat(ts *testscript.TestScript, neg bool, args []string) {
 	}
 	content := fmt.Sprint(plain(args[1]), strings.Repeat(plain(args[3]), n), plain(args[4]))
 	ts.Check(os.WriteFile(ts.MkAbs(args[0]), []byte(content), 0o666))
+}
+
+// workbook FILE SHEET=TABLE… writes an XLSX workbook, one sheet from each CSV
+// table; what reads as a number is one.
+func workbook(ts *testscript.TestScript, neg bool, args []string) {
+	if neg || len(args) < 2 {
+		ts.Fatalf("usage: workbook FILE SHEET=TABLE…")
+	}
+	f := excelize.NewFile()
+	for i, a := range args[1:] {
+		sheet, table, _ := strings.Cut(a, "=")
+		if i == 0 {
+			ts.Check(f.SetSheetName("Sheet1", sheet))
+		} else {
+			_, err := f.NewSheet(sheet)
+			ts.Check(err)
+		}
+		rows, err := csv.NewReader(strings.NewReader(ts.ReadFile(table))).ReadAll()
+		ts.Check(err)
+		for r, row := range rows {
+			for c, text := range row {
+				at, err := excelize.CoordinatesToCellName(c+1, r+1)
+				ts.Check(err)
+				if v, err := strconv.ParseFloat(text, 64); err == nil {
+					ts.Check(f.SetCellValue(sheet, at, v))
+				} else {
+					ts.Check(f.SetCellValue(sheet, at, text))
+				}
+			}
+		}
+	}
+	ts.Check(f.SaveAs(ts.MkAbs(args[0])))
 }

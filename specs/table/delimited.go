@@ -252,6 +252,11 @@ func (d *delimited) judge() {
 		}
 		return
 	case len(d.Columns) == 1:
+		if d.separator == 0 {
+			d.complain(d.Columns[0], "one-column", "the sheet has only one column", nil,
+				diag.Remedy{Say: "Write the ligand and the response in columns of their own."})
+			return
+		}
 		d.complain(d.Columns[0], "one-column", d.Name+" has only one column",
 			[]string{"Columns are set apart by commas, semicolons or tabs."},
 			diag.Remedy{Say: "Save the table again with one of these between the columns."})

@@ -21,8 +21,11 @@ func (c Cell) IsEmpty() bool { return c.Text == "" || c.Text == "NA" }
 
 // Number reads a cell as a number; column is the name to complain under.
 func (t *Table) Number(c Cell, column string) (float64, *diag.Diagnostic) {
+	if d := t.otherKind(c, column); d != nil {
+		return 0, d
+	}
 	text := c.Text
-	if t.Decimal == Comma {
+	if t.Decimal == Comma && c.kind != plainNumber {
 		if strings.Contains(text, ".") {
 			d := t.Complain(c, "not-a-number",
 				fmt.Sprintf("column %s: %q has a point, but decimals are written with commas here",
@@ -38,6 +41,30 @@ func (t *Table) Number(c Cell, column string) (float64, *diag.Diagnostic) {
 	}
 	d := t.notNumber(c, column, err.(*units.SyntaxError))
 	return 0, &d
+}
+
+// otherKind complains of a cell of a workbook that holds no number whatever its text.
+func (t *Table) otherKind(c Cell, column string) *diag.Diagnostic {
+	var d diag.Diagnostic
+	switch c.kind {
+	case date:
+		d = t.Complain(c, "date", fmt.Sprintf("column %s: this cell holds a date or time, %s", column, c.Text),
+			[]string{"Spreadsheet programs make dates of what looks like one, such as 1-3 or 1.3."},
+			diag.Remedy{Say: "Format the cell as a number and write the number again."})
+	case truth:
+		d = t.Complain(c, "truth-value", fmt.Sprintf("column %s: %s is a truth value, not a number", column, c.Text),
+			nil, diag.Remedy{Say: "Write the number."})
+	case fault:
+		d = t.Complain(c, "formula-error", fmt.Sprintf("column %s: %s is the error of a formula", column, c.Text),
+			nil, diag.Remedy{Say: "Mend the formula, or write the number."})
+	case formulaOnly:
+		d = t.Complain(c, "formula", fmt.Sprintf("column %s: this formula was never worked out", column),
+			[]string{"Formulas are not worked out here: their stored values are read."},
+			diag.Remedy{Say: "Open the workbook in a spreadsheet program and save it."})
+	default:
+		return nil
+	}
+	return &d
 }
 
 // withComma writes 0.83 as 0,83 and 1.234,5 as 1234,5.
@@ -86,6 +113,9 @@ func (t *Table) FindDecimal(columns []int) {
 	commas, points := 0, 0
 	for _, r := range t.Rows {
 		for _, i := range columns {
+			if r.Cells[i].kind != someText {
+				continue
+			}
 			s := r.Cells[i].Text
 			if _, err := units.ParseNumber(s); err == nil {
 				if strings.Contains(s, ".") {

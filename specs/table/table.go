@@ -33,7 +33,7 @@ type Table struct {
 	// Study names the study in remedies; "" where there is none.
 	Study string
 
-	separator rune
+	separator rune // 0 of a workbook
 }
 
 // Row is one row; its cells are as many as the table has columns.
@@ -47,7 +47,20 @@ type Cell struct {
 	Text         string
 	line, column int32  // from 1
 	ref          string // address in a spreadsheet
+	kind         kind
 }
+
+// kind is what a cell of a workbook holds; cells of text files hold text.
+type kind uint8
+
+const (
+	someText kind = iota
+	plainNumber
+	date
+	truth
+	fault       // the error of a formula, as #DIV/0!
+	formulaOnly // a formula without a stored value
+)
 
 // Column finds a column by its header.
 func (t *Table) Column(name string) (int, bool) {

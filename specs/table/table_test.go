@@ -235,8 +235,13 @@ func TestComplaints(t *testing.T) {
        |   ‾
    Export it as plain text from the program that wrote it.
 `},
-		{"workbook", "PK\x03\x04...", `t.csv   t.csv is a spreadsheet workbook, which cannot be read yet
-   Save the sheet as CSV (UTF-8) beside the study, and write   file: t.csv
+		{"workbook", "PK\x03\x04...", `t.csv   t.csv is a damaged archive
+   Save it as XLSX without a password.
+   Or save the sheet as CSV (UTF-8) beside the study, and write   file: t.csv
+`},
+		{"older workbook", "\xd0\xcf\x11\xe0...", `t.csv   t.csv is an older workbook, or one with a password, and is not read
+   Save it as XLSX without a password.
+   Or save the sheet as CSV (UTF-8) beside the study, and write   file: t.csv
 `},
 	} {
 		t.Run(c.name, func(t *testing.T) {
