@@ -219,7 +219,11 @@ func TestPageInABrowser(t *testing.T) {
 	chromium(t)
 	for _, name := range []string{"clam", "oyster", "crab"} {
 		html := pageOf(t, galleryDocument(t, name))
-		for _, width := range []int64{360, 800, 1600} {
+		widths := []int64{360, 800, 1600}
+		if name != "clam" { // at 1600 figures are those of 800
+			widths = widths[:2]
+		}
+		for _, width := range widths {
 			t.Run(fmt.Sprintf("%s at %d", name, width), func(t *testing.T) {
 				b := open(t, html, width, 900, false)
 				if w := eval[float64](b, "document.documentElement.scrollWidth"); w > float64(width) {

@@ -65,7 +65,7 @@ func (t *typesetter) text(r []rune) {
 		case unicode.IsDigit(r[i]):
 			t.number(r, &i)
 		case t.run(r, &i, superSigns, superPlain, "sup"), t.run(r, &i, subSigns, subPlain, "sub"):
-		case r[i] == '^' && i > 0 && i+1 < len(r) && (t.formula || r[i+1] == '(' || unicode.IsDigit(r[i+1])):
+		case r[i] == '^' && i > 0 && i+1 < len(r) && (t.formula || strings.ContainsRune("(-0123456789", r[i+1])):
 			i++
 			t.raise(r, &i)
 		case unicode.IsLetter(r[i]):
@@ -146,13 +146,18 @@ func (t *typesetter) raise(r []rune, i *int) {
 		}
 		*i = min(to+1, len(r))
 	} else {
-		for to < len(r) && (unicode.IsLetter(r[to]) || unicode.IsDigit(r[to]) || r[to] == '_') {
+		if to < len(r) && strings.ContainsRune("-−", r[to]) {
+			to++
+		}
+		for to < len(r) && (unicode.IsLetter(r[to]) || unicode.IsDigit(r[to]) || r[to] == '_' ||
+			r[to] == '.' && to+1 < len(r) && unicode.IsDigit(r[to+1])) {
 			to++
 		}
 		*i = to
 	}
+	exponent := []rune(strings.ReplaceAll(string(r[from:to]), "-", "−"))
 	t.b.WriteString("<sup>")
-	t.text(r[from:to])
+	t.text(exponent)
 	t.b.WriteString("</sup>")
 }
 
