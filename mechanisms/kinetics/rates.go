@@ -32,10 +32,14 @@ type Problem struct {
 }
 
 func (p *Problem) Error() string {
-	if p.Key == "" {
-		return p.Problem
+	s := p.Problem
+	if p.Key != "" {
+		s = "rates." + p.Key + ": " + s
 	}
-	return "rates." + p.Key + ": " + p.Problem
+	if p.Write != "" {
+		s += "; write " + p.Write
+	}
+	return s
 }
 
 // Model is a mechanism with rates. It is immutable and safe for concurrent use.
@@ -197,9 +201,15 @@ func (a *assignment) take(e int, key string, names, rate int, back bool) {
 
 // connected complains of states that no rates join to the others of their molecule.
 func (a *assignment) connected() {
-	for _, s := range a.net.Unreached(nil, func(e int) bool { return a.of[e] >= 0 }) {
-		a.complain("", fmt.Sprintf("no rate leads to the state %q: it is cut off from the others", a.net.States[s].Name), a.missing(s))
+	cut := a.net.Unreached(nil, func(e int) bool { return a.of[e] >= 0 })
+	if len(cut) == 0 {
+		return
 	}
+	words := fmt.Sprintf("no rate leads to the state %q: it is cut off from the others", a.net.States[cut[0]].Name)
+	if n := len(cut) - 1; n > 0 {
+		words += fmt.Sprintf(", as are %d more", n)
+	}
+	a.complain("", words, a.missing(cut[0]))
 }
 
 // missing is the rate that would join a state.
