@@ -12,7 +12,7 @@ package fit
 type brisk struct {
 	m     int
 	a     [8][8]float64 // upper triangle of A
-	l     [8][8]float64 // its damped factors L·D·Lᵀ: L_ki at [i][k], 1/D_i at [i][i]
+	l     [8][8]float64 // its damped factors L·D·Lᵀ, L_ki at [i][k]
 	g     [8]float64
 	delta [8]float64
 }
@@ -39,10 +39,10 @@ func (s *solver) descendBriskly(tol float64) bool {
 	b.gather(s.cur)
 	lambda, up := briskDamp, 2.0
 	for range briskSteps {
-		if !b.factor(lambda) {
+		gain, ok := b.solve(lambda)
+		if !ok {
 			return false
 		}
-		gain := b.solve() // gᵀ(A + λ diag A)⁻¹g
 		if gain <= tol*tol*s.cur.obj {
 			if lambda == 0 {
 				return true
@@ -130,45 +130,34 @@ func (b *brisk) gatherFour(pt *point) {
 	b.a[3] = [8]float64{0, 0, 0, a33}
 }
 
-// factor takes A + λ·diag A apart, and says whether it is well enough
+// solve writes δ and returns −gᵀδ. ok says whether the damped A is well enough
 // conditioned.
-func (b *brisk) factor(lambda float64) bool {
+func (b *brisk) solve(lambda float64) (gain float64, ok bool) {
+	if b.m == 4 {
+		return b.solveFour(lambda)
+	}
 	m := b.m & 7
+	x := b.g
 	for i := range m {
 		b.l[i] = b.a[i]
 		b.l[i][i] *= 1 + lambda
 	}
 	for i := range m {
 		row := &b.l[i]
-		d := row[i]
-		if !(d > briskPivots*b.a[i][i]) {
-			return false
+		if !(row[i] > briskPivots*b.a[i][i]) {
+			return 0, false
 		}
-		inv := 1 / d
+		inv, v := 1/row[i], x[i]
 		for k := i + 1; k < m; k++ {
-			f := row[k] * inv
-			to := &b.l[k]
+			f, to := row[k]*inv, &b.l[k]
 			for j := k; j < m; j++ {
 				to[j] -= f * row[j]
 			}
+			x[k] -= f * v
 			row[k] = f
 		}
-		row[i] = inv
-	}
-	return true
-}
-
-// solve writes δ and returns −gᵀδ.
-func (b *brisk) solve() (gain float64) {
-	m := b.m & 7
-	x := b.g
-	for i := range m {
-		v, row := x[i], &b.l[i]
-		for k := i + 1; k < m; k++ {
-			x[k] -= row[k] * v
-		}
-		gain += v * v * row[i]
-		b.delta[i] = -v * row[i]
+		gain += v * v * inv
+		b.delta[i] = -v * inv
 	}
 	for i := m - 1; i >= 0; i-- {
 		v, row := b.delta[i&7], &b.l[i&7]
@@ -177,7 +166,37 @@ func (b *brisk) solve() (gain float64) {
 		}
 		b.delta[i&7] = v
 	}
-	return gain
+	return gain, true
+}
+
+// solveFour is solve for four parameters, in registers.
+func (b *brisk) solveFour(lambda float64) (gain float64, ok bool) {
+	a, g, t := &b.a, &b.g, 1+lambda
+	d0 := a[0][0] * t
+	i0 := 1 / d0
+	l1, l2, l3 := a[0][1]*i0, a[0][2]*i0, a[0][3]*i0
+	d1 := a[1][1]*t - l1*a[0][1]
+	e2, e3 := a[1][2]-l1*a[0][2], a[1][3]-l1*a[0][3]
+	i1 := 1 / d1
+	m2, m3 := e2*i1, e3*i1
+	d2 := a[2][2]*t - l2*a[0][2] - m2*e2
+	f3 := a[2][3] - l2*a[0][3] - m2*e3
+	i2 := 1 / d2
+	n3 := f3 * i2
+	d3 := a[3][3]*t - l3*a[0][3] - m3*e3 - n3*f3
+	if !(d0 > 0 && d1 > briskPivots*a[1][1] && d2 > briskPivots*a[2][2] && d3 > briskPivots*a[3][3]) {
+		return 0, false
+	}
+	x0 := g[0]
+	x1 := g[1] - l1*x0
+	x2 := g[2] - l2*x0 - m2*x1
+	x3 := g[3] - l3*x0 - m3*x1 - n3*x2
+	s3 := x3 / d3
+	s2 := x2*i2 - n3*s3
+	s1 := x1*i1 - m2*s2 - m3*s3
+	s0 := x0*i0 - l1*s1 - l2*s2 - l3*s3
+	b.delta = [8]float64{-s0, -s1, -s2, -s3}
+	return x0*x0*i0 + x1*x1*i1 + x2*x2*i2 + x3*s3, true
 }
 
 // damped is δᵀ·diag A·δ.

@@ -122,10 +122,10 @@ func TestBriskSolve(t *testing.T) {
 		b := &brisk{m: m}
 		b.gather(pt)
 		const lambda = 0.3
-		if !b.factor(lambda) {
+		gain, ok := b.solve(lambda)
+		if !ok {
 			t.Fatal("ill conditioned")
 		}
-		gain := b.solve()
 		j := mat.NewDense(rows, m, pt.jraw)
 		var a mat.Dense
 		a.Mul(j.T(), j)

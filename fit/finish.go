@@ -76,7 +76,7 @@ func (r *Result) warn(format string, a ...any) {
 }
 
 // count says how many runs reached the minimum of r, up to slack.
-func (r *Result) count(runs []run, slack float64) {
+func (r *Result) count(runs []*run, slack float64) {
 	r.Evals = 0
 	for _, a := range runs {
 		if a.end == failed && a.evals == 0 {

@@ -22,10 +22,13 @@ type run struct {
 // Solve finds the best minimum of a problem from many starts.
 //
 // A start that cannot be evaluated is passed over; where none can, the error
-// says why. Cancelling ctx returns the best so far, with status Stopped (or
-// NoAnswer before the first start has ended). Which starts are tried, and every
-// digit of the result, depend on the problem and on Settings.Starts, Seed and
-// MaxIter alone.
+// says why. A start that is still under way after 150 steps goes on only if its
+// sum of squares is below ten times that of the best that has arrived.
+//
+// Cancelling ctx returns the best so far, with status Stopped (or NoAnswer
+// before the first start has ended). Which starts are tried, and every digit of
+// the result, depend on the problem and on Settings.Starts, Seed and MaxIter
+// alone.
 //
 // Blocks that are no Cloner are evaluated by one worker.
 func Solve(ctx context.Context, p *Problem, set Settings) (*Result, error) {
@@ -36,13 +39,16 @@ func Solve(ctx context.Context, p *Problem, set Settings) (*Result, error) {
 	all := starts(p, set.Starts, set.Seed)
 	s := newSolver(p, false)
 	s.setFloor(all[0])
-	runs := descendAll(ctx, s, set, all)
-	best := -1
-	for i, r := range runs {
-		if r.end != failed && (best < 0 || r.obj < runs[best].obj) {
-			best = i
-		}
+	runs := make([]*run, len(all))
+	for i, theta := range all {
+		runs[i] = &run{theta: theta}
 	}
+	descendAll(ctx, s, set, runs, min(set.MaxIter, patience))
+	if set.MaxIter > patience {
+		set.Progress = nil
+		descendAll(ctx, s, set, s.promising(runs), set.MaxIter-patience)
+	}
+	best := lowest(runs, func(*run) bool { return true })
 	if best < 0 {
 		return nothing(ctx, runs)
 	}
@@ -98,30 +104,64 @@ func (set Settings) filled(p *Problem) Settings {
 	return set
 }
 
-// descendAll runs every start; what each came to stands at its own index.
-func descendAll(ctx context.Context, first *solver, set Settings, all [][]float64) []run {
-	runs := make([]run, len(all))
+// patience is the number of steps after which a start has to be promising.
+const patience = 150
+
+// promising are the runs that are still under way and may yet be the best.
+func (s *solver) promising(runs []*run) []*run {
+	best := lowest(runs, func(r *run) bool { return r.end == stationary || r.end == rounding })
+	var some []*run
+	for i := range runs {
+		if r := runs[i]; r.end == exhausted && (best < 0 || r.obj < s.tenfold(runs[best].obj)) {
+			some = append(some, r)
+		}
+	}
+	return some
+}
+
+// tenfold is the objective at ten times the sums of squares.
+func (s *solver) tenfold(obj float64) float64 {
+	if s.joint {
+		return obj + math.Ln10*sum(s.count)
+	}
+	return 10 * obj
+}
+
+// lowest is the index of the lowest run of those that are eligible, −1 for none.
+func lowest(runs []*run, eligible func(*run) bool) int {
+	best := -1
+	for i, r := range runs {
+		if r.end != failed && eligible(r) && (best < 0 || r.obj < runs[best].obj) {
+			best = i
+		}
+	}
+	return best
+}
+
+// descendAll takes every run further, in at most so many steps; what each came
+// to depends on itself alone.
+func descendAll(ctx context.Context, first *solver, set Settings, runs []*run, most int) {
 	var next, ended atomic.Int64
 	var telling sync.Mutex
 	work := func(s *solver) {
 		for {
 			i := int(next.Add(1)) - 1
-			if i >= len(all) || ctx.Err() != nil {
+			if i >= len(runs) || ctx.Err() != nil {
 				return
 			}
-			runs[i] = s.one(ctx, all[i], set.MaxIter)
+			s.one(ctx, runs[i], most)
 			done := int(ended.Add(1))
 			if set.Progress != nil {
 				telling.Lock()
-				set.Progress(done, len(all))
+				set.Progress(done, len(runs))
 				telling.Unlock()
 			}
 		}
 	}
-	workers := min(set.Workers, len(all))
-	if workers == 1 {
+	workers := min(set.Workers, len(runs))
+	if workers <= 1 {
 		work(first)
-		return runs
+		return
 	}
 	var wg sync.WaitGroup
 	for range workers {
@@ -132,22 +172,22 @@ func descendAll(ctx context.Context, first *solver, set Settings, all [][]float6
 		})
 	}
 	wg.Wait()
-	return runs
 }
 
-// one descends from one start.
-func (s *solver) one(ctx context.Context, theta []float64, most int) run {
+// one descends from where a run is.
+func (s *solver) one(ctx context.Context, r *run, most int) {
 	s.evals, s.fault = 0, nil
-	if !s.begun(theta) {
-		return run{evals: s.evals, fault: s.fault}
+	if s.begun(r.theta) {
+		r.end = s.descend(ctx.Done(), rough, most)
+		r.obj = s.cur.obj
+		r.theta = append([]float64(nil), s.cur.theta...)
 	}
-	end := s.descend(ctx.Done(), rough, most)
-	at := append([]float64(nil), s.cur.theta...)
-	return run{end: end, theta: at, obj: s.cur.obj, evals: s.evals}
+	r.evals += s.evals
+	r.fault = s.fault
 }
 
 // nothing says why no start gave a number.
-func nothing(ctx context.Context, runs []run) (*Result, error) {
+func nothing(ctx context.Context, runs []*run) (*Result, error) {
 	if ctx.Err() != nil {
 		return &Result{
 			Status:   NoAnswer,
@@ -164,7 +204,7 @@ func nothing(ctx context.Context, runs []run) (*Result, error) {
 }
 
 // finish takes the best run on to where rounding ends it.
-func (s *solver) finish(ctx context.Context, r run, most int) ending {
+func (s *solver) finish(ctx context.Context, r *run, most int) ending {
 	s.begun(r.theta)
 	end := r.end
 	if end == stationary {
