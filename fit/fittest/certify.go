@@ -5,6 +5,7 @@ package fittest
 import (
 	"context"
 	"encoding/csv"
+	"errors"
 	"fmt"
 	"io"
 	"math"
@@ -113,6 +114,25 @@ func worst(q, c []float64, most float64) float64 {
 		d = min(d, Digits(q[i], c[i], most))
 	}
 	return d
+}
+
+// Conform runs a solver on every set from both starts and returns what is wrong
+// with it: runs that fail, or claim success elsewhere, and parameters or their
+// standard deviations with fewer than eight digits. Lanczos1 leaves residuals of
+// 1e-13, which are rounding: its deviations are not asked for.
+func Conform(ctx context.Context, solve Solver) error {
+	var errs []error
+	for _, r := range Certify(ctx, "", solve) {
+		switch {
+		case !r.Right():
+			errs = append(errs, fmt.Errorf("%s from start %d: %s, %.1f digits",
+				r.Dataset, r.Start, r.Status, r.Digits))
+		case r.Digits < 8 || r.DeviationDigits < 8 && r.Dataset != "Lanczos1":
+			errs = append(errs, fmt.Errorf("%s from start %d: %.1f digits, deviations %.1f",
+				r.Dataset, r.Start, r.Digits, r.DeviationDigits))
+		}
+	}
+	return errors.Join(errs...)
 }
 
 // Columns are the headings of Record.

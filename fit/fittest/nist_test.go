@@ -12,6 +12,18 @@ import (
 	"ligancy/fit"
 )
 
+func TestConformance(t *testing.T) {
+	if err := Conform(context.Background(), Default); err != nil {
+		t.Error(err)
+	}
+	lazy := func(_ context.Context, p *fit.Problem) (*fit.Result, error) {
+		return &fit.Result{Theta: p.Starts[0], Status: fit.Converged}, nil
+	}
+	if err := Conform(context.Background(), lazy); err == nil || strings.Count(err.Error(), "\n") < 50 {
+		t.Errorf("a solver that does nothing conforms: %v", err)
+	}
+}
+
 // Source: NIST Statistical Reference Datasets. Every run from both certified
 // starts, with default settings, has to be right.
 func TestCertified(t *testing.T) {
