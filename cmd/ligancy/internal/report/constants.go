@@ -153,7 +153,7 @@ func held(q *saturation.QuantityRow) string {
 	low, high := float64(q.Low), float64(q.High)
 	hasLow, hasHigh := finite(low), finite(high)
 	switch {
-	case hasLow && hasHigh && low > 0:
+	case hasLow && hasHigh && low > 0 && high >= low:
 		return "a factor " + factor(low, high)
 	case hasLow && hasHigh:
 		u := (high - low) / 2
