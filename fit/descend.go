@@ -71,7 +71,7 @@ func (s *solver) place(theta []float64) {
 // trust region whose axes are scaled by the longest that each column of the
 // Jacobian has been. It ends at a relative offset of tol.
 //
-// Moré JJ (1978) Lecture Notes in Mathematics 630, 105–116.
+// Moré JJ (1978), in Numerical Analysis, Dundee 1977 (Springer), 105–116.
 func (s *solver) descend(done <-chan struct{}, tol float64, most int) ending {
 	radius := -1.0
 	for iter := 0; ; iter++ {

@@ -10,7 +10,7 @@ import "math"
 // column), by Newton's iteration on 1/Δ − 1/‖t(λ)‖ with
 // (SᵀS + λI)·t(λ) = −Sᵀz, factored by rotations so that SᵀS is never formed.
 //
-// Moré JJ (1978) Lecture Notes in Mathematics 630, 105–116.
+// Moré JJ (1978), in Numerical Analysis, Dundee 1977 (Springer), 105–116.
 type region struct {
 	most    int
 	u, v, w []float64 // rotated triangle, right-hand side, row being rotated in
