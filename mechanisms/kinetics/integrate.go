@@ -29,8 +29,13 @@ func (b *Bound) integrate(ctx context.Context, p *Program, times []float64, grad
 	if err != nil {
 		return nil, r.blame(err)
 	}
-	for i, sol := range parts {
-		if err := r.take(i, sol, gradient); err != nil {
+	for k := range times {
+		sol, at := parts[r.c.Phase[k]], r.place[k]
+		var sens *mat.Dense
+		if gradient {
+			sens = sol.Sensitivities[at]
+		}
+		if err := r.show(k, sol.Times[at], sol.States[at], sens); err != nil {
 			return nil, err
 		}
 	}
@@ -45,7 +50,7 @@ type run struct {
 	y      []float64
 	sens   *mat.Dense
 	solver ode.Solver
-	wanted [][]int // per phase: place of each time wanted among the integrator's
+	place  []int // of each time wanted, in the solution of its phase
 }
 
 // options of the integration: a tolerance of its own for shares and for ligand.
@@ -169,41 +174,55 @@ func (m *massAction) freeOf(total float64) (float64, error) {
 
 // phases lays the program out for the integrator.
 func (r *run) phases(p *Program, times []float64) []ode.Phase {
-	begin, next, sites := 0.0, 0, p.Sites
+	plan := schedule(r.c, p, times)
+	r.place = plan.place
 	if r.sens != nil {
 		r.solver.Options.Sensitivity.Start = r.sens
 	}
-	var list []ode.Phase
+	sites := p.Sites
+	list := make([]ode.Phase, len(p.Phases))
 	for i := range p.Phases {
 		ph := p.Phases[i]
-		end := begin + ph.Seconds
 		if ph.Action == Dilute {
 			sites /= ph.Amount
 		}
 		m := newMassAction(r.b, sites, r.m.tagged)
-		q := ode.Phase{System: m}
+		list[i] = ode.Phase{System: m, Times: plan.times[i]}
 		if ph.Action != Wait {
-			q.Enter = func(y []float64, sens *mat.Dense) error { return m.enter(&ph, y, sens) }
+			list[i].Enter = func(y []float64, sens *mat.Dense) error { return m.enter(&ph, y, sens) }
 		}
-		var wanted []int
-		for next < len(times) && (times[next] <= end || i == len(p.Phases)-1) {
-			r.c.Phase[next] = i
-			if t := times[next]; t <= begin+rounding(begin) || len(q.Times) > 0 && t <= q.Times[len(q.Times)-1] {
-				wanted = append(wanted, len(q.Times)) // a place already there
-			} else {
-				q.Times = append(q.Times, math.Min(t, end))
-				wanted = append(wanted, len(q.Times))
-			}
-			next++
-		}
-		if len(q.Times) == 0 || q.Times[len(q.Times)-1] < end {
-			q.Times = append(q.Times, end)
-		}
-		r.wanted = append(r.wanted, wanted)
-		list = append(list, q)
-		begin = end
 	}
 	return list
+}
+
+// plan is where the times wanted lie among those of the integrator.
+type plan struct {
+	times [][]float64 // of each phase, after its start; the last ends it
+	place []int       // of each time wanted, in the solution of its phase
+}
+
+// schedule lays the times out over the phases, and writes in which each lies.
+func schedule(c *Course, p *Program, times []float64) plan {
+	out := plan{place: make([]int, len(times))}
+	begin, next := 0.0, 0
+	for i, ph := range p.Phases {
+		end := begin + ph.Seconds
+		var list []float64
+		for ; next < len(times) && (times[next] <= end || i == len(p.Phases)-1); next++ {
+			c.Phase[next] = i
+			t := math.Min(times[next], end)
+			if t > begin+rounding(begin) && (len(list) == 0 || t > list[len(list)-1]) {
+				list = append(list, t)
+			}
+			out.place[next] = len(list)
+		}
+		if len(list) == 0 || list[len(list)-1] < end {
+			list = append(list, end)
+		}
+		out.times = append(out.times, list)
+		begin = end
+	}
+	return out
 }
 
 // enter changes the free ligand at the beginning of a phase. What is bound stays.
@@ -285,28 +304,6 @@ func (m *massAction) each(f func(place int, w float64)) {
 			f(s, float64(state.Ligands)/float64(state.Sites))
 		}
 	}
-}
-
-// take writes what one phase has shown.
-func (r *run) take(i int, sol *ode.Solution, gradient bool) error {
-	first := 0
-	for k := range r.c.Phase {
-		if r.c.Phase[k] == i {
-			first = k
-			break
-		}
-	}
-	for j, at := range r.wanted[i] {
-		y := sol.States[at]
-		var sens *mat.Dense
-		if gradient {
-			sens = sol.Sensitivities[at]
-		}
-		if err := r.show(first+j, sol.Times[at], y, sens); err != nil {
-			return err
-		}
-	}
-	return nil
 }
 
 // show writes one time.
