@@ -59,7 +59,7 @@ func (r *review) withoutOuterPoints(ctx context.Context) {
 	for di := range r.a.Data {
 		for i := range r.a.Data[di].Points {
 			p := &r.a.Data[di].Points[i]
-			if p.LeftOut != "" || p.X <= 0 || p.Blocked {
+			if p.LeftOut != "" || p.X <= 0 || p.Blocked || r.a.Data[di].Trace {
 				continue
 			}
 			k := key(di, p)
@@ -69,12 +69,15 @@ func (r *review) withoutOuterPoints(ctx context.Context) {
 			highest[k] = math.Max(highest[k], p.X)
 		}
 	}
+	if len(lowest) == 0 {
+		return // nothing but traces
+	}
 	r.sensitive(ctx, answer{id: "without-the-outermost", source: sensitivitySource}, []omission{
 		{"the lowest ligand value", func(di int, p *Point) bool {
 			return p.X > 0 &&
 				p.X == lowest[key(di, p)]
 		}},
-		{"the highest ligand value", func(di int, p *Point) bool { return p.X == highest[key(di, p)] }},
+		{"the highest ligand value", func(di int, p *Point) bool { return p.X > 0 && p.X == highest[key(di, p)] }},
 	})
 }
 
