@@ -77,6 +77,9 @@ func (w *wanted) constantRow(m *model, c mechanisms.Constant) {
 	if c.Protomers != 0 {
 		w.row.Unit = power(m.proteinUnit(), c.Protomers)
 	}
+	if _, ok := m.c.Mechanism.(mechanisms.Driven); ok {
+		w.row.Unit = rateUnit(unit, -c.Dimension)
+	}
 }
 
 // power writes a unit to a whole power: "torr", "torr^-2", "1".

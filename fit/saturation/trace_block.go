@@ -65,7 +65,7 @@ func compare(a, b float64) int {
 
 // clock is a workspace's share of traces.
 type clock struct {
-	bound *kinetics.Bound
+	bound kinetics.Follower
 	phi   []float64
 	grad  []*mat.Dense // per curve: places × rates
 	free  [][]float64  // per curve: free ligand at each place
@@ -78,7 +78,7 @@ func (b *block) newClock() *clock {
 		return nil
 	}
 	t := b.m.timing
-	w := &clock{bound: t.kinetics.Bound(), phi: make([]float64, len(t.rates))}
+	w := &clock{bound: t.follower(), phi: make([]float64, len(t.rates))}
 	for _, c := range b.curves {
 		w.grad = append(w.grad, mat.NewDense(len(c.lnx), max(1, len(t.rates)), nil))
 		w.free = append(w.free, make([]float64, len(c.lnx)))

@@ -10,9 +10,11 @@ import (
 	"ligancy/mechanisms/kinetics"
 )
 
-// timing is a model's rates: what of Θ they are. Rates are shared by all curves.
+// timing is a model's rates: what of Θ they are. Rates are shared by all curves. Of a
+// cycle, whose constants are rates, there are none beside them.
 type timing struct {
-	kinetics *kinetics.Model
+	kinetics *kinetics.Model   // of binding
+	driven   mechanisms.Driven // of catalysis; nil else
 	rates    []mechanisms.Constant
 	at       []int // rate → Θ
 }
@@ -20,6 +22,10 @@ type timing struct {
 // layRates adds the rates to the parameters where traces ask for them.
 func (m *model) layRates() error {
 	if !m.a.hasTraces() {
+		return nil
+	}
+	if d, ok := m.c.Mechanism.(mechanisms.Driven); ok {
+		m.timing = &timing{driven: d}
 		return nil
 	}
 	k, err := m.c.Kinetics()
@@ -36,6 +42,14 @@ func (m *model) layRates() error {
 			Parameter: fit.Parameter{Name: displayName(c), StartLow: math.NaN(), StartHigh: math.NaN()}})
 	}
 	return nil
+}
+
+// follower makes a workspace that follows traces.
+func (t *timing) follower() kinetics.Follower {
+	if t.driven != nil {
+		return kinetics.NewProgress(t.driven)
+	}
+	return t.kinetics.Bound()
 }
 
 // Bounds and starts of a rate about the value that the study gives, as factors.

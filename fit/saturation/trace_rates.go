@@ -92,16 +92,21 @@ func (c *Candidate) givenRates(m *kinetics.Model) ([]float64, error) {
 
 // rateUnit writes the unit of a rate constant.
 func (a *Analysis) rateUnit(c mechanisms.Constant) string {
-	if c.Dimension == 0 {
-		return "1/s"
-	}
 	unit := a.Ligand.Unit
 	for _, e := range a.Effectors {
 		if c.Ligand != "" && (e.Name == c.Ligand || e.Symbol == c.Ligand) {
 			unit = e.Unit
 		}
 	}
-	return "1/(" + unit + " s)"
+	return rateUnit(unit, -c.Dimension)
+}
+
+// rateUnit is the unit of a rate of so many ligands taken up.
+func rateUnit(unit string, ligands int) string {
+	if ligands == 0 {
+		return "1/s"
+	}
+	return "1/(" + power(unit, ligands) + " s)"
 }
 
 // program is what is done with the sample of one trace. A ligand column tells what
