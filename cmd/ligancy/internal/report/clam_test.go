@@ -115,6 +115,8 @@ func clamQuantities() []saturation.QuantityRow {
 	nan := math.NaN()
 	add("all", "constant", "K_R", "torr", 0.901, 0.794, 1.009)
 	add("all", "constant", "c", "1", 0.0116, 0.0101, 0.0131)
+	add("all", "combination", "K_R · (L, pH 7.6)^(1/4)", "torr", 5.642, 5.568, 5.718)
+	add("all", "combination", "stiffest: K_R · (L, pH 7.0)^0.15 · (L, pH 7.6)^0.12", "torr", 7.124, 7.073, 7.174)
 	add("pH 7.6", "constant", "L", "1", 1540, 1010, 2490)
 	add("pH 7.0", "constant", "L", "1", 9410, 6210, 15100)
 	for _, c := range []struct {

@@ -4,6 +4,7 @@ import (
 	"math"
 	"slices"
 	"strconv"
+	"strings"
 
 	"ligancy/fit/saturation"
 )
@@ -12,7 +13,7 @@ import (
 // its constants, the ends of the response that were fitted, combinations that
 // are held better than their parts, and ratios between curves.
 func (p *page) constants(mechanism string) {
-	rows := p.constantRows(mechanism)
+	rows, combinations := apart(p.constantRows(mechanism))
 	if len(rows) == 0 {
 		return
 	}
@@ -28,6 +29,9 @@ func (p *page) constants(mechanism string) {
 	if n := len(rows) - mostConstants; n > 0 {
 		p.line("  and %d more: quantities.csv", n)
 	}
+	for _, q := range combinations[:min(len(combinations), mostCombinations)] {
+		p.write(hanging("  ", p.combination(q), Width))
+	}
 	if p.bootstrapped(mechanism) {
 		p.line("  Bootstrap intervals of the same numbers are in quantities.csv.")
 	}
@@ -40,6 +44,45 @@ func (p *page) bootstrapped(mechanism string) bool {
 	return slices.ContainsFunc(p.d.Quantities, func(q saturation.QuantityRow) bool {
 		return q.Mechanism == mechanism && q.Interval == "bootstrap"
 	})
+}
+
+// mostCombinations below the table of constants.
+const mostCombinations = 6
+
+// combination says how firmly a product of powers of constants is held:
+// "Held together: K_R · L^(1/4) = 5.64 torr, a factor 1.01."
+func (p *page) combination(q *saturation.QuantityRow) string {
+	words, name := "Held together: ", q.Name
+	for prefix, w := range map[string]string{"stiffest: ": "Held best: ", "loosest: ": "Held least: "} {
+		if rest, ok := strings.CutPrefix(name, prefix); ok {
+			words, name = w, rest
+		}
+	}
+	v, _, _ := rowFigures(q)
+	if v == "" {
+		v = "–"
+	}
+	text := words + cut(name, 2*Width) + " = " + v
+	if unit := unitWord(q.Unit); unit != "" {
+		text += " " + unit
+	}
+	if h := held(q); h != "" {
+		text += ", " + h
+	}
+	return strings.TrimRight(text+"  "+p.marks(q), " ")
+}
+
+// apart takes combinations with long names out of the table.
+func apart(all []*saturation.QuantityRow) (rows, combinations []*saturation.QuantityRow) {
+	const short = 16
+	for _, q := range all {
+		if q.Of == "combination" && width(q.Name) > short {
+			combinations = append(combinations, q)
+		} else {
+			rows = append(rows, q)
+		}
+	}
+	return rows, combinations
 }
 
 // constantRows collects the rows of the table: contrasts of a constant follow

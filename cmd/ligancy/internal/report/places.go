@@ -143,7 +143,7 @@ func shortExponent(form string) string {
 // by which an interval that is symmetrical in the logarithm goes either way.
 // Close to 1 what matters is the distance from 1: one digit of that is shown.
 func factor(low, high float64) string {
-	f := math.Sqrt(high / low)
+	f := math.Exp((math.Log(high) - math.Log(low)) / 2)
 	switch {
 	case f >= 1.2:
 		return significant(f, 2)
