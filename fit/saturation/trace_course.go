@@ -61,7 +61,8 @@ type CourseOutcome struct {
 // timed is a candidate with constants and rates, ready to be followed.
 type timed struct {
 	c      *Candidate
-	model  *kinetics.Model
+	model  *kinetics.Model   // nil for a cycle
+	driven mechanisms.Driven // a cycle of catalysis
 	theta  []float64
 	phi    []float64
 	status string
@@ -78,14 +79,17 @@ func (a *Analysis) Follow(ctx context.Context, rec Recorder) (*CourseOutcome, er
 	var list []*timed
 	for i := range a.Candidates {
 		t, err := a.timed(ctx, &a.Candidates[i], rec)
-		if err == nil {
+		if err == nil && t.driven != nil {
+			err = a.followCycle(ctx, t, out)
+		} else if err == nil {
 			err = a.followOne(ctx, t, out)
 		}
-		if err != nil {
+		switch {
+		case err != nil:
 			all = append(all, err)
-			continue
+		case t.model != nil:
+			list = append(list, t)
 		}
-		list = append(list, t)
 	}
 	if err := a.part(ctx, list, out); err != nil {
 		all = append(all, err)
@@ -95,18 +99,12 @@ func (a *Analysis) Follow(ctx context.Context, rec Recorder) (*CourseOutcome, er
 
 // timed settles one candidate's constants and rates.
 func (a *Analysis) timed(ctx context.Context, c *Candidate, rec Recorder) (*timed, error) {
-	m, err := c.Kinetics()
-	if err != nil {
+	t := &timed{c: c, status: "given", noise: math.NaN()}
+	if err := t.rates(a); err != nil {
 		return nil, err
 	}
-	if m == nil {
-		return nil, fmt.Errorf("mechanism %q has no rates: write rates: {k_on: …}", c.Name)
-	}
-	t := &timed{c: c, model: m, status: "given", noise: math.NaN()}
-	if t.phi, err = c.givenRates(m); err != nil && !a.hasTraces() {
-		return nil, err
-	}
-	if t.theta, err = c.givenTheta(); err == nil && t.phi != nil {
+	var err error
+	if t.theta, err = c.givenTheta(); err == nil && (t.phi != nil || t.driven != nil) {
 		return t, nil
 	}
 	if len(a.Data) == 0 {
@@ -116,6 +114,25 @@ func (a *Analysis) timed(ctx context.Context, c *Candidate, rec Recorder) (*time
 		rec.Progress("fitting "+c.Name, 0, 1)
 	}
 	return t, t.fitted(ctx, a)
+}
+
+// rates settles what makes a candidate move: its rates, or the cycle that it is.
+func (t *timed) rates(a *Analysis) error {
+	if d, ok := t.c.Mechanism.(mechanisms.Driven); ok {
+		t.driven = d
+		return nil
+	}
+	var err error
+	if t.model, err = t.c.Kinetics(); err != nil {
+		return err
+	}
+	if t.model == nil {
+		return fmt.Errorf("mechanism %q has no rates: write rates: {k_on: …}", t.c.Name)
+	}
+	if t.phi, err = t.c.givenRates(t.model); err != nil && !a.hasTraces() {
+		return err
+	}
+	return nil
 }
 
 // fitted takes the constants from a fit, the rates too where there are traces. Where
@@ -168,8 +185,6 @@ func (a *Analysis) followOne(ctx context.Context, t *timed, out *CourseOutcome) 
 	if err := b.Bind(t.theta, t.phi, env); err != nil {
 		return fmt.Errorf("mechanism %q: %w", t.c.Name, err)
 	}
-	row := MechanismRow{Name: t.c.Name, Family: t.c.Family, Sites: t.c.Mechanism.Sites(), Status: t.status, SumOfSquares: nan, Scatter: nan,
-		LogLikelihood: nan, AICc: nan, AICcBehind: nan, AICcWeight: nan, BIC: nan, LackOfFitP: nan, RunsP: nan, PredictionError: nan}
 	p := a.courseProgram()
 	if p != nil {
 		c, err := b.Run(ctx, p, a.courseTimes(p), false)
@@ -185,9 +200,15 @@ func (a *Analysis) followOne(ctx context.Context, t *timed, out *CourseOutcome) 
 		return fmt.Errorf("mechanism %q: %w", t.c.Name, err)
 	}
 	a.readings(t, b, label, out)
-	out.Mechanisms = append(out.Mechanisms, row)
+	out.Mechanisms = append(out.Mechanisms, t.row())
 	a.courseConstants(t, out)
 	return nil
+}
+
+// row is how the mechanism stands: with its constants as given or as fitted.
+func (t *timed) row() MechanismRow {
+	return MechanismRow{Name: t.c.Name, Family: t.c.Family, Sites: t.c.Mechanism.Sites(), Status: t.status, SumOfSquares: nan, Scatter: nan,
+		LogLikelihood: nan, AICc: nan, AICcBehind: nan, AICcWeight: nan, BIC: nan, LackOfFitP: nan, RunsP: nan, PredictionError: nan}
 }
 
 // courseConstants lists the constants and rates in force.
@@ -202,6 +223,9 @@ func (a *Analysis) courseConstants(t *timed, out *CourseOutcome) {
 		w := wanted{row: QuantityRow{Mechanism: t.c.Name, Curve: "all"}}
 		w.constantRow(m, k)
 		add(w, unscaled(k, t.theta[i]))
+	}
+	if t.model == nil {
+		return
 	}
 	for i, k := range t.model.Rates() {
 		w := wanted{row: QuantityRow{Mechanism: t.c.Name, Curve: "all"}}

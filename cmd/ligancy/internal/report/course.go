@@ -113,9 +113,9 @@ func (c *Course) times(p *page, mechanism string) {
 			last = max(last, r.Phase)
 		}
 	}
-	g := &grid{gap: 3, right: []bool{false, true, true, true, true, true}}
-	g.add("phase", "time", "saturation", "labelled", "free "+cut(c.analysis.Ligand.Unit, 12), "unlabelled "+cut(c.analysis.Ligand.Unit, 12))
-	blocked := false
+	g := &grid{gap: 3, right: []bool{false, true, true, true, true, true, true}}
+	g.add("phase", "time", "saturation", "product", "labelled", "free "+cut(c.analysis.Ligand.Unit, 12), "unlabelled "+cut(c.analysis.Ligand.Unit, 12))
+	blocked, bound := false, false
 	for ph := 1; ph <= last; ph++ {
 		rows := byPhase[ph]
 		n := min(len(rows), timesShown)
@@ -129,13 +129,19 @@ func (c *Course) times(p *page, mechanism string) {
 				name = c.phaseName(ph)
 			}
 			blocked = blocked || r.Unlabelled > 0
-			g.add(name, timeWords(float64(r.Seconds)), share(float64(r.Saturation)), share(float64(r.Labelled)), significant(float64(r.Free), 3),
-				significant(float64(r.Unlabelled), 3))
+			bound = bound || finite(float64(r.Saturation))
+			g.add(name, timeWords(float64(r.Seconds)), share(float64(r.Saturation)), significant(float64(r.Response), 4), share(float64(r.Labelled)),
+				significant(float64(r.Free), 3), significant(float64(r.Unlabelled), 3))
 		}
 	}
 	if !blocked {
 		g.without("labelled")
 		g.without("unlabelled")
+	}
+	if bound {
+		g.without("product")
+	} else {
+		g.without("saturation")
 	}
 	p.table("Course", g)
 }
