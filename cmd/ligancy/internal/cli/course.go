@@ -15,12 +15,12 @@ const courseHelp = `ligancy course STUDY
 Follows every mechanism that has rates (rates: {k_on: 1e6 1/(M s), exchange: 10 1/s}) against time:
 through the phases of the block
 
-  course: {phases: [{add: 10 nM, for: 30 min}, {dilute: 100, for: 60 min}, {block: 1 uM, for: 60 min}]}
+  course: {phases: [{add: 10 nM, for: 30 min}, {dilute: 100, for: 60 min}, {wash: true, for: 1 h}]}
 
-Prints the course, the relaxation times over the ligand, how long to wait for 99 %, what a curve would
-read after the incubation, and where dissociation, with unlabelled ligand and without, would part the
-mechanisms. Constants are those of the study (constants: {K_R: {value: 0.9}}) or, where it gives none,
-those that fit its data. Nothing is written.
+Prints the course, the relaxation times over the ligand, how long to wait for 99 %, what a curve
+would read after the incubation, and where dissociation, with unlabelled ligand and without, would
+part the mechanisms. Constants are those of the study (constants: {K_R: {value: 0.9}}) or, where it
+gives none, those that fit its data. Nothing is written.
 
   --json   prints one JSON document instead, with every time
 
