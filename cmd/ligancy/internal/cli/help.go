@@ -18,6 +18,7 @@ const overview = `ligancy tells which binding mechanisms saturation data support
   ligancy changes OLD NEW      how two studies, or two records, differ
   ligancy families [NAME]      the families of mechanisms: formula, constants, limits, reference
   ligancy numerics TEST        exact and certified values, reached on this machine
+  ligancy sbml STUDY           a mechanism with rates as SBML, for programs that integrate networks
   ligancy schema               the JSON Schema of study files, for editors
   ligancy version              the program's version
   ligancy completion SHELL     completes commands in bash, zsh, fish or powershell
