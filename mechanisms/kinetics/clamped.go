@@ -30,7 +30,8 @@ type clamped struct {
 	v, w   []float64   // n
 	dv, dw [][]float64 // per slot, n
 
-	up, down   []float64   // rates of the steps
+	from, to   []int       // of the steps
+	up, down   []float64   // their rates
 	dUp, dDown [][]float64 // per slot
 }
 
@@ -49,6 +50,7 @@ func (b *Bound) clamp(x, usual float64, slots []int) *clamped {
 		up: make([]float64, steps), down: b.down}
 	out := make([]float64, n)
 	for e, s := range net.Steps {
+		c.from, c.to = append(c.from, s.From), append(c.to, s.To)
 		c.up[e] = b.carried(e, x)
 		out[s.From] += c.up[e]
 		out[s.To] += b.down[e]
@@ -105,20 +107,21 @@ func (c *clamped) push(w, v []float64, t float64) {
 	for s, l := range c.leave {
 		w[s] = l * t * v[s]
 	}
-	for e, s := range c.b.m.net.Steps {
-		w[s.To] += c.up[e] * t * v[s.From]
-		w[s.From] += c.down[e] * t * v[s.To]
+	for e, i := range c.from {
+		j := c.to[e]
+		w[j] += c.up[e] * t * v[i]
+		w[i] += c.down[e] * t * v[j]
 	}
 }
 
 // lean adds ∂Q t v by one slot to w.
 func (c *clamped) lean(w, v []float64, slot int, t float64) {
 	up, down := c.dUp[slot], c.dDown[slot]
-	for e, s := range c.b.m.net.Steps {
-		if f := (up[e]*v[s.From] - down[e]*v[s.To]) * t; f != 0 {
-			w[s.To] += f
-			w[s.From] -= f
-		}
+	for e, i := range c.from {
+		j := c.to[e]
+		f := (up[e]*v[i] - down[e]*v[j]) * t
+		w[j] += f
+		w[i] -= f
 	}
 }
 
@@ -133,8 +136,10 @@ func (c *clamped) series(v []float64, dv [][]float64, t float64) {
 	for k := range dv {
 		dTerm[k] = append([]float64(nil), dv[k]...)
 	}
-	for j := 1; j <= terms; j++ {
+	left := 1.0 // bound of the term, by the norm μt of (Q + μI)t
+	for j := 1; j <= terms && left > 1e-19; j++ {
 		step := t / float64(j)
+		left *= c.mu * step
 		for k := range dv {
 			c.push(c.dw[k], dTerm[k], step)
 			c.lean(c.dw[k], term, k, step)
