@@ -108,7 +108,12 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *
 // upper end, and where one that it is a multiple of may be zero, no lower end.
 func (f *fitted) openAtZero(ctx context.Context, w wanted, pr *fit.Profiler, iv *fit.Interval) {
 	low, high := f.zeroWithin(ctx, w, pr)
-	iv.LowOpen, iv.HighOpen = iv.LowOpen || low, iv.HighOpen || high
+	if low {
+		iv.Low, iv.LowOpen = math.Inf(-1), true
+	}
+	if high {
+		iv.High, iv.HighOpen = math.Inf(1), true
+	}
 }
 
 // zeroWithin says whether fitted constants that may be zero, as far as the data
