@@ -14,14 +14,15 @@ import (
 
 const sbmlHelp = `ligancy sbml STUDY
 
-Prints a mechanism that has rates (rates: {k_on: 1e6 1/(M s)}) as SBML Level 3 Version 1, for programs
-that integrate reaction networks: its states, its steps, its constants and, following from them, the
-rate constants of both directions. Constants are those of the study (constants: {K_R: {value: 0.9}})
-or, where it gives none, those that fit its data. Nothing is written.
+Prints a mechanism that has rates (rates: {k_on: 1e6 1/(M s)}) as SBML Level 3 Version 1, for
+programs that integrate reaction networks: its states, its steps, its constants and, following from
+them, the rate constants of both directions. Constants are those of the study (constants: {K_R:
+{value: 0.9}}) or, where it gives none, those that fit its data. Nothing is written.
 
   --mechanism NAME   which one, where several have rates
 
-Exit codes: 0 printed, 1 something to mend or no mechanism with rates, 2 wrong usage, 130 interrupted.
+Exit codes: 0 printed, 1 something to mend or no mechanism with rates, 2 wrong usage,
+130 interrupted.
 `
 
 func (p *program) sbmlCommand() *cobra.Command {
