@@ -2,7 +2,6 @@ package saturation
 
 import (
 	"context"
-	"fmt"
 	"math"
 	"math/rand/v2"
 	"strings"
@@ -222,5 +221,5 @@ func TestTraceSpeed(t *testing.T) {
 	if err != nil {
 		t.Fatal(err)
 	}
-	t.Log(fmt.Sprintf("%v, %d evaluations, %d of %d starts agree", time.Since(begin), r.Evals, r.Agreeing, r.Starts))
+	t.Logf("%v, %d evaluations, %d of %d starts agree", time.Since(begin), r.Evals, r.Agreeing, r.Starts)
 }

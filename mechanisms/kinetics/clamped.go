@@ -3,8 +3,6 @@ package kinetics
 import (
 	"math"
 
-	"gonum.org/v1/gonum/mat"
-
 	"ligancy/mechanisms"
 )
 
@@ -304,14 +302,5 @@ func (c *clamped) advance(v []float64, dv [][]float64, t, rounding float64) {
 	}
 	if t > rounding {
 		c.series(v, dv, t)
-	}
-}
-
-// gather writes the derivatives to the columns of their slots.
-func (c *clamped) gather(grad *mat.Dense, dv [][]float64) {
-	for k, slot := range c.slots {
-		for s, d := range dv[k] {
-			grad.Set(s, slot, d)
-		}
 	}
 }

@@ -100,3 +100,24 @@ func TestCutOffAtConstants(t *testing.T) {
 	err = m.Bound().Bind([]float64{1, 1}, []float64{800}, mechanisms.Environment{})
 	complains(t, err, `"0 bound"`, "+Inf")
 }
+
+// An integration that is stopped is an error that says so, and no course.
+func TestStoppedIntegration(t *testing.T) {
+	b := bound(t, build(t, site), []float64{1}, []float64{1})
+	ctx, stop := context.WithCancel(context.Background())
+	stop()
+	p := &kinetics.Program{Sites: 1, Phases: []kinetics.Phase{{Action: kinetics.Add, Amount: 1, Seconds: 10}}}
+	c, err := b.Run(ctx, p, []float64{1, 10}, false)
+	if c != nil {
+		t.Error("a course in spite of it")
+	}
+	complains(t, err, "phase 1", "stopped")
+}
+
+// A tolerance beyond rounding is refused, not approximated.
+func TestUnreachableTolerance(t *testing.T) {
+	b := bound(t, build(t, site), []float64{1}, []float64{1})
+	p := &kinetics.Program{Sites: 1, Tolerance: 1e-20, Phases: []kinetics.Phase{{Action: kinetics.Add, Amount: 1, Seconds: 10}}}
+	_, err := b.Run(context.Background(), p, []float64{1, 10}, false)
+	complains(t, err, "cannot be followed", "tolerance 1e-20")
+}
