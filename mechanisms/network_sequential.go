@@ -2,6 +2,7 @@ package mechanisms
 
 import (
 	"fmt"
+	"iter"
 	"math"
 	"math/bits"
 	"slices"
@@ -243,48 +244,66 @@ func (p *patterns) followed(net *Network, all []marked, group map[marked]int, gr
 		one[group[q]] = q
 		size[group[q]]++
 	}
-	type pair struct{ from, to int }
-	stepAt, up := map[pair]int{}, map[int]int{}
-	for e, s := range net.Steps {
-		stepAt[pair{s.From, s.To}] = e
-		m := p.members[s.From][0]
-		for i := range p.n {
-			if m>>i&1 == 0 && p.group[m|1<<i] == s.To {
-				up[e]++
-			}
-		}
-	}
-	for t, q := range one {
-		net.Tags = append(net.Tags, Tag{State: p.group[q.pattern],
-			Number: float64(size[t]) / float64(len(p.members[p.group[q.pattern]]))})
-	}
 	for t, q := range one {
 		own := p.group[q.pattern]
+		net.Tags = append(net.Tags, Tag{State: own, Number: float64(size[t]) / float64(len(p.members[own]))})
+	}
+	at, up := p.stepsByEnds(net)
+	for t, q := range one {
+		p.moves(net, t, q, group, at, up)
+	}
+	for e, s := range net.Steps {
+		into := map[int]int{}
+		for m, i := range p.fillings(s) {
+			into[group[marked{m, i}]]++
+		}
+		for _, t := range sortedInts(into) {
+			net.Gains = append(net.Gains, TagGain{Step: e, To: t, Factor: float64(into[t]) / up[e]})
+		}
+	}
+}
+
+// fillings are the ways of a step from one pattern: the pattern after, and the site
+// that fills.
+func (p *patterns) fillings(s NetworkStep) iter.Seq2[uint32, int] {
+	m := p.members[s.From][0]
+	return func(yield func(uint32, int) bool) {
 		for i := range p.n {
-			r := marked{q.pattern ^ 1<<i, q.site}
-			switch {
-			case i == q.site:
-				e := stepAt[pair{p.group[r.pattern], own}]
-				net.Moves = append(net.Moves, TagMove{Step: e, Down: true, From: t, To: -1, Factor: 1 / net.Steps[e].Back})
-			case q.pattern>>i&1 == 0:
-				e := stepAt[pair{own, p.group[r.pattern]}]
-				net.Moves = append(net.Moves, TagMove{Step: e, From: t, To: group[r], Factor: 1 / float64(up[e])})
-			default:
-				e := stepAt[pair{p.group[r.pattern], own}]
-				net.Moves = append(net.Moves, TagMove{Step: e, Down: true, From: t, To: group[r], Factor: 1 / net.Steps[e].Back})
+			if m>>i&1 == 0 && p.group[m|1<<i] == s.To && !yield(m|1<<i, i) {
+				return
 			}
 		}
 	}
+}
+
+// stepsByEnds finds a step by its states, and counts its ways up.
+func (p *patterns) stepsByEnds(net *Network) (at map[[2]int]int, up []float64) {
+	at, up = map[[2]int]int{}, make([]float64, len(net.Steps))
 	for e, s := range net.Steps {
-		m := p.members[s.From][0]
-		into := map[int]int{}
-		for i := range p.n {
-			if m>>i&1 == 0 && p.group[m|1<<i] == s.To {
-				into[group[marked{m | 1<<i, i}]]++
-			}
+		at[[2]int{s.From, s.To}] = e
+		for range p.fillings(s) {
+			up[e]++
 		}
-		for _, t := range sortedInts(into) {
-			net.Gains = append(net.Gains, TagGain{Step: e, To: t, Factor: float64(into[t]) / float64(up[e])})
+	}
+	return at, up
+}
+
+// moves adds what happens to a followed ligand: its own leaving, and the filling and
+// emptying of the other sites.
+func (p *patterns) moves(net *Network, t int, q marked, group map[marked]int, at map[[2]int]int, up []float64) {
+	own := p.group[q.pattern]
+	for i := range p.n {
+		r := marked{q.pattern ^ 1<<i, q.site}
+		other := p.group[r.pattern]
+		if q.pattern>>i&1 == 0 {
+			e := at[[2]int{own, other}]
+			net.Moves = append(net.Moves, TagMove{Step: e, From: t, To: group[r], Factor: 1 / up[e]})
+			continue
 		}
+		e, to := at[[2]int{other, own}], -1
+		if i != q.site {
+			to = group[r]
+		}
+		net.Moves = append(net.Moves, TagMove{Step: e, Down: true, From: t, To: to, Factor: 1 / net.Steps[e].Back})
 	}
 }

@@ -67,30 +67,14 @@ func (g *Progress) Run(ctx context.Context, p *Program, times []float64, gradien
 		return nil, errors.New("unlabelled ligand in a cycle of catalysis cannot be followed")
 	}
 	n, k := len(g.m.StateNames()), len(g.theta)
-	y := make([]float64, n+2)
-	var sens *mat.Dense
-	before := mat.NewDense(n, k, nil)
-	g.m.Before(y[:n], before, g.theta, g.env)
-	y[n] = p.Loaded
+	y, sens := g.start(p.Loaded, gradient)
 	solver := ode.Solver{Options: g.options(p)}
 	if gradient {
-		sens = mat.NewDense(n+2, k, nil)
-		sens.Slice(0, n, 0, k).(*mat.Dense).Copy(before)
 		solver.Options.Sensitivity = &ode.Sensitivity{Start: sens}
 	}
 	c := newCourse(times, n, k, gradient)
 	plan := schedule(c, p, times)
-	sites := p.Sites
-	phases := make([]ode.Phase, len(p.Phases))
-	for i := range p.Phases {
-		ph := &p.Phases[i]
-		if ph.Action == Dilute {
-			sites /= ph.Amount
-		}
-		f := &progressFlow{Progress: g, sites: sites, n: n}
-		phases[i] = ode.Phase{System: f, Times: plan.times[i], Enter: func(y []float64, sens *mat.Dense) error { return f.enter(ph, y, sens) }}
-	}
-	parts, err := solver.SolvePhases(ctx, nil, phases, 0, y)
+	parts, err := solver.SolvePhases(ctx, nil, g.phases(p, plan), 0, y)
 	if err != nil {
 		return nil, fmt.Errorf("the progress cannot be followed: %w", err)
 	}
@@ -102,6 +86,36 @@ func (g *Progress) Run(ctx context.Context, p *Program, times []float64, gradien
 		}
 	}
 	return c, nil
+}
+
+// start is the enzyme at steady state without substrate, before the loaded one is there.
+func (g *Progress) start(loaded float64, gradient bool) (y []float64, sens *mat.Dense) {
+	n, k := len(g.m.StateNames()), len(g.theta)
+	y = make([]float64, n+2)
+	before := mat.NewDense(n, k, nil)
+	g.m.Before(y[:n], before, g.theta, g.env)
+	y[n] = loaded
+	if gradient {
+		sens = mat.NewDense(n+2, k, nil)
+		sens.Slice(0, n, 0, k).(*mat.Dense).Copy(before)
+	}
+	return y, sens
+}
+
+// phases lays the program out for the integrator.
+func (g *Progress) phases(p *Program, plan plan) []ode.Phase {
+	n, sites := len(g.m.StateNames()), p.Sites
+	list := make([]ode.Phase, len(p.Phases))
+	for i := range p.Phases {
+		ph := &p.Phases[i]
+		if ph.Action == Dilute {
+			sites /= ph.Amount
+		}
+		f := &progressFlow{Progress: g, sites: sites, n: n}
+		list[i] = ode.Phase{System: f, Times: plan.times[i],
+			Enter: func(y []float64, sens *mat.Dense) error { return f.enter(ph, y, sens) }}
+	}
+	return list
 }
 
 func (g *Progress) show(c *Course, t int, y []float64, n int) {
