@@ -75,6 +75,7 @@ type timed struct {
 func (a *Analysis) Follow(ctx context.Context, rec Recorder) (*CourseOutcome, error) {
 	a = a.withDefaults()
 	out := &CourseOutcome{}
+	a.heldLigand(out)
 	var all []error
 	var list []*timed
 	for i := range a.Candidates {
@@ -261,10 +262,29 @@ func (a *Analysis) courseProgram() *kinetics.Program {
 		return nil
 	}
 	p := &kinetics.Program{Phases: programPhases(a.Course.Phases)}
-	if len(a.Data) > 0 && a.Data[0].Total {
-		p.Sites = a.Data[0].SitesPresent.Value
+	if sites, ok := a.courseSites(); ok {
+		p.Sites = sites
 	}
 	return p
+}
+
+// courseSites is the concentration of sites in a course; false where ligand is taken as
+// not used up.
+func (a *Analysis) courseSites() (float64, bool) {
+	if len(a.Data) == 0 || !a.Data[0].Total {
+		return 0, false
+	}
+	s := a.Data[0].SitesPresent
+	return s.Value, s.Value > 0 && (s.Unit == "" || s.Unit == a.Ligand.Unit)
+}
+
+// heldLigand is the caution that goes with a course whose ligand is not used up though
+// the data say that it is.
+func (a *Analysis) heldLigand(out *CourseOutcome) {
+	if _, ok := a.courseSites(); !ok && len(a.Data) > 0 && a.Data[0].Total {
+		out.Cautions = append(out.Cautions, "The data are on a total axis, but the concentration of sites is no number in "+
+			a.Ligand.Unit+": here ligand is taken as not used up. Write sites_present with its unit.")
+	}
 }
 
 // coursePoints is the number of times of a phase where the study leaves it open.

@@ -137,3 +137,25 @@ func TestFollowComplains(t *testing.T) {
 		}
 	}
 }
+
+// A total axis whose sites are no concentration of the ligand's is said to be held.
+func TestCourseSaysThatLigandIsHeld(t *testing.T) {
+	a := courseStudy(t)
+	a.Data = []Dataset{{Name: "curve", Total: true, SitesPresent: SitesPresent{FromBmax: 2}, Incubation: math.NaN()}}
+	out, err := a.Follow(context.Background(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if all := strings.Join(out.Cautions, " "); !strings.Contains(all, "taken as not used up") {
+		t.Errorf("no caution: %q", all)
+	}
+	a.Data[0].SitesPresent = SitesPresent{Value: 5, Unit: "nM"}
+	if out, err = a.Follow(context.Background(), nil); err != nil {
+		t.Fatal(err)
+	}
+	for _, r := range out.Course {
+		if r.Phase == 1 && math.Abs(float64(r.Free)+5*float64(r.Saturation)-10) > 1e-6 {
+			t.Errorf("at %g s ligand is lost: %g free, %g bound", r.Seconds, r.Free, 5*r.Saturation)
+		}
+	}
+}

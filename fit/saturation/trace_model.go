@@ -133,7 +133,7 @@ func (m *model) layTraces() error {
 		if !d.Trace {
 			continue
 		}
-		if d.Total && (d.SitesPresent.FromBmax > 0 || b.ends.nonspecific != "" && b.resp.Nonspecific.Free) {
+		if d.Total && (!(d.SitesPresent.Value > 0) || d.SitesPresent.FromBmax > 0 || b.ends.nonspecific != "" && b.resp.Nonspecific.Free) {
 			all = append(all, fmt.Errorf("data %q: a trace that uses up its ligand needs sites_present as a number and no free nonspecific", d.Name))
 			continue
 		}
