@@ -55,10 +55,9 @@ type tubes struct {
 
 // displaced is a solved tube.
 type displaced struct {
-	lnx, lnt   float64
-	yV, mV     float64    // ∂Ȳ/∂ln t and ∂(⟨m⟩/n)/∂ln t
-	j          [4]float64 // Jacobian of both balances by (ln x, ln t)
-	gradY, grM []float64
+	lnx, lnt float64
+	yV, mV   float64    // ∂Ȳ/∂ln t and ∂(⟨m⟩/n)/∂ln t
+	j        [4]float64 // Jacobian of both balances by (ln x, ln t)
 }
 
 // solveDisplaced finds both free concentrations: the tracer's by Newton's
