@@ -92,7 +92,7 @@ func (p *program) root() *cobra.Command {
 		SilenceErrors: true, SilenceUsage: true,
 		SuggestionsMinimumDistance: 2,
 	}
-	root.AddCommand(p.newCommand(), p.checkCommand(), p.fitCommand(), p.curveCommand(), p.courseCommand(), p.repeatCommand(), p.changesCommand(), p.sbmlCommand(), p.schemaCommand(), p.familiesCommand(), p.numericsCommand(),
+	root.AddCommand(p.newCommand(), p.checkCommand(), p.fitCommand(), p.curveCommand(), p.courseCommand(), p.planCommand(), p.repeatCommand(), p.changesCommand(), p.sbmlCommand(), p.schemaCommand(), p.familiesCommand(), p.numericsCommand(),
 		p.versionCommand(), p.completionCommand())
 	root.SetArgs(p.Args)
 	root.SetOut(p.out)

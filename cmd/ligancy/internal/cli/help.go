@@ -14,6 +14,7 @@ const overview = `ligancy tells which binding mechanisms saturation data support
   ligancy fit STUDY            fits every mechanism and says what the data say
   ligancy curve STUDY          curves, Hill coefficients and populations from given constants
   ligancy course STUDY         binding against time: relaxation, how long to wait, dissociation
+  ligancy plan STUDY           what to measure next, to part mechanisms or to hold constants
   ligancy repeat STUDY         fits again and compares with the record that   fit --record   wrote
   ligancy changes OLD NEW      how two studies, or two records, differ
   ligancy families [NAME]      the families of mechanisms: formula, constants, limits, reference
