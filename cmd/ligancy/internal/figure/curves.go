@@ -435,7 +435,7 @@ func (l *curvesLayout) rulers(y float64) float64 {
 		}
 		decades := ""
 		if r.X10 > 0 && finite(r.X90) && r.X90 >= r.X10 {
-			decades = strconv.FormatFloat(math.Log10(r.X90/r.X10), 'f', 2, 64) + " decades"
+			decades = strconv.FormatFloat(math.Log10(r.X90)-math.Log10(r.X10), 'f', 2, 64) + " decades"
 		}
 		middle := y + 0.8*l.s.Size
 		if single {

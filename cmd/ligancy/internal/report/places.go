@@ -100,7 +100,10 @@ func atPlace(x float64, place int, sci bool) string {
 		return ""
 	}
 	scale := math.Pow(10, float64(place))
-	rounded := math.RoundToEven(x/scale) * scale
+	rounded := x
+	if q := x / scale; finite(q) && scale > 0 {
+		rounded = math.RoundToEven(q) * scale
+	}
 	switch {
 	case rounded == 0:
 		return strconv.FormatFloat(0, 'f', max(0, -place), 64)

@@ -78,7 +78,7 @@ func (p *page) ruler(mechanism string, curves []string) {
 		}
 		decades := ""
 		if r := reaches[i]; finite(r.x10) && finite(r.x90) && r.x10 > 0 {
-			decades = strconv.FormatFloat(math.Log10(r.x90/r.x10), 'f', 2, 64) + " decades"
+			decades = strconv.FormatFloat(math.Log10(r.x90)-math.Log10(r.x10), 'f', 2, 64) + " decades"
 		}
 		bar := pad(a.bar(reaches[i]), a.columns)
 		p.line("  %s  %s  %s", pad(cut(curveLabel(c), labelColumns), label), p.ink.curve(i, bar), decades)
