@@ -28,6 +28,7 @@ type Outcome struct {
 	Preparations []PreparationRow `json:"preparations"`
 	Factors      []FactorRow      `json:"factors"`
 	Profiles     []ProfileRow     `json:"profiles"` // of the leader's constants
+	Conditions   []ConditionRow   `json:"conditions"`
 	Objections   []Objection      `json:"objections"`
 	Explanations []ExplanationRow `json:"explanations"`
 	Verdict      Verdict          `json:"verdict"`
@@ -128,6 +129,14 @@ type Objection struct {
 	Remedy *string `json:"remedy"`
 	Effect *string `json:"effect"` // size of its effect on n_H
 	Source *string `json:"source"`
+}
+
+// ConditionRow is one condition of a study: of those that STRENDA level 1A asks
+// for, adapted to binding, or another that the study states; null is not stated.
+type ConditionRow struct {
+	Condition string  `json:"condition"`
+	Asked     bool    `json:"asked"`
+	Stated    *string `json:"stated"`
 }
 
 // Verdict is the answer in words.

@@ -109,8 +109,11 @@ func TestEmptyOutcomeHasEveryList(t *testing.T) {
 			t.Errorf("%s is %s", k, doc[k])
 		}
 	}
-	if bytes.Contains(b.Bytes(), []byte("null")) {
-		t.Errorf("null in\n%s", b.String())
+	for k, v := range doc {
+		// A condition that is asked for and not stated is null, in a list that is there.
+		if k != "conditions" && bytes.Contains(v, []byte("null")) || string(v) == "null" {
+			t.Errorf("null in %s: %s", k, v)
+		}
 	}
 	if err := d.WriteText(&b, false); err != nil {
 		t.Error(err)

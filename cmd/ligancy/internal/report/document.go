@@ -72,6 +72,7 @@ type Source struct {
 // one, so that each is written as a list.
 func New(a *saturation.Analysis, o *saturation.Outcome, src Source) *Document {
 	rows := *o
+	rows.Conditions = conditionsOf(a)
 	for _, l := range lists(&rows) {
 		if l.rows.IsNil() {
 			l.rows.Set(reflect.MakeSlice(l.rows.Type(), 0, 0))

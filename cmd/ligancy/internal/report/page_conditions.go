@@ -6,6 +6,8 @@ import (
 	"math"
 	"slices"
 	"strings"
+
+	"ligancy/fit/saturation"
 )
 
 // asked is one condition that a reader of an equilibrium or rate study looks
@@ -33,18 +35,17 @@ var conditionsAsked = []asked{
 	{name: "initial rates", words: []string{"initial rates", "proportionality"}, rates: true},
 }
 
-// conditionsTable says under which conditions the study was made; what it does
-// not say is "not stated".
-func (v *view) conditionsTable() *table {
-	a := v.d.analysis
-	t := &table{Caption: "Conditions, as the study states them", Head: []string{"condition", "stated"}}
+// conditionsOf lists the conditions that are asked for, each as the study or
+// its data state it, then what else the study states.
+func conditionsOf(a *saturation.Analysis) []saturation.ConditionRow {
 	stated := map[string]string{}
 	for k, s := range a.Conditions {
 		stated[strings.ToLower(strings.ReplaceAll(k, "_", " "))] = s
 	}
-	v.fromData(stated)
+	statedByData(a, stated)
+	var rows []saturation.ConditionRow
 	used := map[string]bool{}
-	rates := v.kind() == "velocity"
+	rates := len(a.Data) > 0 && a.Data[0].Response.Kind == "velocity"
 	for _, c := range conditionsAsked {
 		if c.rates && !rates {
 			continue
@@ -56,37 +57,40 @@ func (v *view) conditionsTable() *table {
 				used[w] = true
 			}
 		}
-		text := entry{Text: printable(strings.Join(found, "; "))}
-		if len(found) == 0 {
-			text = entry{Text: "not stated", Colour: -1}
+		row := saturation.ConditionRow{Condition: c.name, Asked: true}
+		if len(found) > 0 {
+			text := strings.Join(found, "; ")
+			row.Stated = &text
 		}
-		t.Rows = append(t.Rows, []entry{{Text: c.name, Head: true}, text})
+		rows = append(rows, row)
 	}
 	for _, k := range slices.Sorted(maps.Keys(stated)) {
-		if !used[k] {
-			t.Rows = append(t.Rows, []entry{{Text: printable(k), Head: true}, {Text: printable(stated[k])}})
+		if text := stated[k]; !used[k] {
+			rows = append(rows, saturation.ConditionRow{Condition: k, Stated: &text})
 		}
+	}
+	return rows
+}
+
+// conditionsTable shows them; what is not stated is said to be so.
+func (v *view) conditionsTable() *table {
+	t := &table{Caption: "Conditions, as the study states them", Head: []string{"condition", "stated"}}
+	for _, c := range v.d.Conditions {
+		text := entry{Text: "not stated", Colour: -1}
+		if c.Stated != nil {
+			text = entry{Text: printable(*c.Stated)}
+		}
+		t.Rows = append(t.Rows, []entry{{Text: printable(c.Condition), Head: true}, text})
 	}
 	return t
 }
 
-func (v *view) kind() string {
-	if len(v.d.analysis.Data) == 0 {
-		return ""
+// statedByData adds what the data themselves state.
+func statedByData(a *saturation.Analysis, stated map[string]string) {
+	if text := ligandRange(a); text != "" {
+		stated[a.Ligand.Name+", range"] = text
 	}
-	return v.d.analysis.Data[0].Response.Kind
-}
-
-// fromData adds what the data themselves state.
-func (v *view) fromData(stated map[string]string) {
-	a := v.d.analysis
-	if from, to := span(v.axis.Tested); from <= to {
-		text := fmt.Sprintf("%s to %s %s", axisNumber(roundTo(math.Pow(10, from), 3)), axisNumber(roundTo(math.Pow(10, to), 3)), unitWord(a.Ligand.Unit))
-		if v.axis.Tested[0] == 0 {
-			text += ", and none"
-		}
-		stated[a.Ligand.Name+", range"] = strings.TrimSpace(text)
-	}
+	preparations := map[string]bool{}
 	for i := range a.Data {
 		set := &a.Data[i]
 		for k, f := range set.Factors {
@@ -101,6 +105,11 @@ func (v *view) fromData(stated map[string]string) {
 				stated[name] = "varied: " + strings.Join(levels, ", ")
 			}
 		}
+		for _, p := range set.Points {
+			if p.Preparation != "" && p.LeftOut == "" {
+				preparations[p.Preparation] = true
+			}
+		}
 		if s := set.SitesPresent; s.Value > 0 {
 			stated["sites present"] = significant(s.Value, 4) + " " + unitWord(a.Ligand.Unit) + " of sites"
 		} else if s.FromBmax > 0 {
@@ -110,9 +119,33 @@ func (v *view) fromData(stated map[string]string) {
 			stated["incubation"] = duration(set.Incubation)
 		}
 	}
-	if n := len(v.preps); n > 0 {
+	if n := len(preparations); n > 0 {
 		stated["independent preparations"] = fmt.Sprint(n)
 	}
+}
+
+// ligandRange is the lowest and highest ligand value used; "" without any.
+func ligandRange(a *saturation.Analysis) string {
+	low, high, none := math.Inf(1), math.Inf(-1), false
+	for i := range a.Data {
+		for _, p := range a.Data[i].Points {
+			switch {
+			case p.LeftOut != "":
+			case p.X == 0:
+				none = true
+			default:
+				low, high = math.Min(low, p.X), math.Max(high, p.X)
+			}
+		}
+	}
+	if !(low <= high) {
+		return ""
+	}
+	text := strings.TrimSpace(axisNumber(roundTo(low, 3)) + " to " + axisNumber(roundTo(high, 3)) + " " + unitWord(a.Ligand.Unit))
+	if none {
+		text += ", and none"
+	}
+	return text
 }
 
 // duration writes seconds in the unit that fits.
