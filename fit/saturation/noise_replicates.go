@@ -67,22 +67,34 @@ func (b *block) replicateGroups() []replicates {
 	return out
 }
 
-// bestShare is the λ in [0, 1] of greatest likelihood, by golden section after
-// a coarse scan; 0 without replicates.
+// bestShare is the λ in [0, 1] of greatest likelihood; 0 without replicates.
 func bestShare(groups []replicates, l mixedLaw) float64 {
 	if len(groups) == 0 {
 		return 0
 	}
-	cost := func(lambda float64) float64 {
-		nu, ratio, lnG := 0.0, 0.0, 0.0
-		for _, g := range groups {
-			g2 := l.square(g.mean, lambda)
-			nu += g.freedom
-			ratio += g.freedom * g.variance / g2
-			lnG += g.freedom * math.Log(g2)
-		}
-		return nu*math.Log(ratio/nu) + lnG
+	return leastShare(func(lambda float64) float64 {
+		return replicateCost(len(groups), func(i int) (freedom, variance, square float64) {
+			return groups[i].freedom, groups[i].variance, l.square(groups[i].mean, lambda)
+		})
+	})
+}
+
+// replicateCost is −2 ln L, but for a constant, of n replicate variances whose
+// expectation is proportional to square: (n−1)·v/σ² ~ χ²(n−1), one σ within.
+func replicateCost(n int, group func(i int) (freedom, variance, square float64)) float64 {
+	nu, ratio, lnG := 0.0, 0.0, 0.0
+	for i := range n {
+		freedom, variance, square := group(i)
+		nu += freedom
+		ratio += freedom * variance / square
+		lnG += freedom * math.Log(square)
 	}
+	return nu*math.Log(ratio/nu) + lnG
+}
+
+// leastShare is where a cost is least over shares from 0 to 1, by golden
+// section after a coarse scan.
+func leastShare(cost func(float64) float64) float64 {
 	const scan = 64
 	best := 0
 	for i := 1; i <= scan; i++ {
@@ -90,15 +102,5 @@ func bestShare(groups []replicates, l mixedLaw) float64 {
 			best = i
 		}
 	}
-	low, high := math.Max(0, float64(best-1)/scan), math.Min(1, float64(best+1)/scan)
-	const ratio = 0.6180339887498949
-	for range 60 {
-		a, b := high-ratio*(high-low), low+ratio*(high-low)
-		if cost(a) < cost(b) {
-			high = b
-		} else {
-			low = a
-		}
-	}
-	return (low + high) / 2
+	return goldenSection(cost, math.Max(0, float64(best-1)/scan), math.Min(1, float64(best+1)/scan))
 }

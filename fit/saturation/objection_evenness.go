@@ -17,23 +17,12 @@ const (
 // and to λ = 1.
 func twoLaws(list []group, a, b func(group) float64) (lambda, overFirst, overSecond float64) {
 	cost := func(l float64) float64 {
-		nu, ratio, lnG := 0.0, 0.0, 0.0
-		for _, g := range list {
-			g2 := (1-l)*a(g) + l*b(g)
-			nu += g.freedom
-			ratio += g.freedom * g.variance / g2
-			lnG += g.freedom * math.Log(g2)
-		}
-		return nu*math.Log(ratio/nu) + lnG
+		return replicateCost(len(list), func(i int) (freedom, variance, square float64) {
+			g := list[i]
+			return g.freedom, g.variance, (1-l)*a(g) + l*b(g)
+		})
 	}
-	const scan = 64
-	best := 0
-	for i := 1; i <= scan; i++ {
-		if cost(float64(i)/scan) < cost(float64(best)/scan) {
-			best = i
-		}
-	}
-	lambda = goldenSection(cost, math.Max(0, float64(best-1)/scan), math.Min(1, float64(best+1)/scan))
+	lambda = leastShare(cost)
 	least := math.Min(cost(lambda), math.Min(cost(0), cost(1)))
 	return lambda, cost(0) - least, cost(1) - least
 }
