@@ -84,6 +84,9 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *
 			f.openAtZero(ctx, w, pr, &iv)
 		}
 	}
+	if w.back(0) == 1 { // found as a logarithm
+		f.openFarOff(ctx, w, pr, &iv)
+	}
 	row.Interval, row.Level = iv.Method, Real(iv.Level)
 	low := endOf{value: w.back(iv.Low), open: iv.LowOpen, edge: iv.LowEdge, tried: w.back(iv.Low), side: "lower"}
 	high := endOf{value: w.back(iv.High), open: iv.HighOpen, edge: iv.HighEdge, tried: w.back(iv.High), side: "upper"}
@@ -114,6 +117,34 @@ func (f *fitted) openAtZero(ctx context.Context, w wanted, pr *fit.Profiler, iv 
 	if high {
 		iv.High, iv.HighOpen = math.Inf(1), true
 	}
+}
+
+// openFarOff takes back ends that only the box of the search makes: an end more
+// than farOff-fold away, where the data let a constant run to its own bound.
+func (f *fitted) openFarOff(ctx context.Context, w wanted, pr *fit.Profiler, iv *fit.Interval) {
+	v := w.make()(f.result.Theta, make([]float64, len(f.m.params)))
+	low, high := v-iv.Low > math.Log(farOff), iv.High-v > math.Log(farOff)
+	if !low && !high || !f.runsToABound(ctx, pr) {
+		return
+	}
+	iv.LowOpen, iv.HighOpen = iv.LowOpen || low, iv.HighOpen || high
+}
+
+// runsToABound says whether the profile of any logarithmic constant reaches a
+// bound that the study did not set.
+func (f *fitted) runsToABound(ctx context.Context, pr *fit.Profiler) bool {
+	for j, p := range f.m.params {
+		if p.kind != ofConstant || p.fixed || f.m.consts[p.constant].Scale == mechanisms.Linear {
+			continue
+		}
+		if g := f.m.given(p.constant); g.Low != nil || g.High != nil {
+			continue
+		}
+		if iv := pr.Parameter(ctx, j); iv.LowEdge || iv.HighEdge || iv.LowOpen || iv.HighOpen {
+			return true
+		}
+	}
+	return false
 }
 
 // zeroWithin says whether fitted constants that may be zero, as far as the data
