@@ -3,6 +3,7 @@ package saturation
 import (
 	"context"
 	"math"
+	"math/rand/v2"
 	"testing"
 
 	"ligancy/mechanisms"
@@ -37,5 +38,33 @@ func TestEndsThatTheBoxMakesAreOpen(t *testing.T) {
 	}
 	if open < 2 {
 		t.Errorf("%d numbers without an upper end", open)
+	}
+}
+
+// A constant on its own bound keeps the end that it has: exclusive binding
+// (c near zero) is held at its high end only.
+func TestAConstantOnItsBoundKeepsItsOtherEnd(t *testing.T) {
+	c := &coverageTruths[2]
+	mech := build(t, "mwc", mechanisms.Definition{Sites: 4})
+	curve := mech.Curve()
+	curve.Bind(c.theta(mech), mechanisms.Environment{})
+	d := Dataset{Name: "one", Noise: Constant, Response: Response{Kind: "saturation", High: Setting{Value: 1}}}
+	rng := rand.New(rand.NewPCG(3, 77))
+	for i := range 24 {
+		l := math.Log(c.low) + math.Log(c.high/c.low)*float64(i)/23
+		var y [1]float64
+		curve.Saturation(y[:], []float64{l}, nil)
+		for range 3 {
+			d.Points = append(d.Points, Point{X: math.Exp(l), Y: y[0] + 0.01*rng.NormFloat64()})
+		}
+	}
+	a := &Analysis{Ligand: Substance{Name: "ligand", Unit: "uM"}, Kelvin: math.NaN(), Data: []Dataset{d}, Settings: Settings{Seed: 1, Starts: 12},
+		Candidates: []Candidate{{Name: "concerted", Family: "mwc", Mechanism: mech}}}
+	out, err := a.Run(context.Background(), nil)
+	if err != nil {
+		t.Fatal(err)
+	}
+	if q := quantity(t, out, "concerted", "constant", "c"); q.Held != "high end only" || !(q.High > 1e-4 && q.High < 0.1) {
+		t.Errorf("c %v (%v to %v), %s", q.Value, q.Low, q.High, q.Held)
 	}
 }

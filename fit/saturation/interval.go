@@ -84,7 +84,7 @@ func (f *fitted) profileRow(ctx context.Context, row QuantityRow, w wanted, pr *
 			f.openAtZero(ctx, w, pr, &iv)
 		}
 	}
-	if w.back(0) == 1 { // found as a logarithm
+	if w.index < 0 && w.back(0) == 1 { // found as a logarithm, and no constant with bounds of its own
 		f.openFarOff(ctx, w, pr, &iv)
 	}
 	row.Interval, row.Level = iv.Method, Real(iv.Level)
