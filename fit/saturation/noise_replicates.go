@@ -102,5 +102,5 @@ func leastShare(cost func(float64) float64) float64 {
 			best = i
 		}
 	}
-	return goldenSection(cost, math.Max(0, float64(best-1)/scan), math.Min(1, float64(best+1)/scan))
+	return goldenSection(cost, math.Max(0, float64(best-1)/scan), math.Min(1, float64(best+1)/scan), goldenSteps)
 }

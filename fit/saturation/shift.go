@@ -154,16 +154,7 @@ func (f *fitted) settleShift(ctx context.Context, r *fit.Result) (*fit.Result, e
 	for i := range lambdaScan + 1 {
 		try(lnLambdaLow+float64(i)*width, r)
 	}
-	low, high := bestU-width, bestU+width
-	const ratio = 0.6180339887498949
-	for range lambdaSteps {
-		a, b := high-ratio*(high-low), low+ratio*(high-low)
-		if try(a, best) < try(b, best) {
-			high = b
-		} else {
-			low = a
-		}
-	}
+	goldenSection(func(u float64) float64 { return try(u, best) }, bestU-width, bestU+width, lambdaSteps)
 	f.m.shift.lambda = math.Exp(bestU)
 	n := float64(f.m.points())
 	f.m.shift.tau = f.m.shift.lambda * math.Sqrt(best.SS[0]/n)

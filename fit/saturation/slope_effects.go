@@ -127,7 +127,7 @@ func twoClassFit(rho float64) (h, rms float64) {
 		}
 		return math.Sqrt(ss / twoClassPoints)
 	}
-	h = goldenSection(misfit, 0.05, 1)
+	h = goldenSection(misfit, 0.05, 1, goldenSteps)
 	return h, misfit(h)
 }
 
@@ -150,22 +150,3 @@ func hiddenRatio(h float64) float64 {
 }
 
 func expit(u float64) float64 { return 1 / (1 + math.Exp(-u)) }
-
-// goldenSection finds the least value of f between a and b.
-func goldenSection(f func(float64) float64, a, b float64) float64 {
-	const ratio = 0.6180339887498949
-	c, d := b-ratio*(b-a), a+ratio*(b-a)
-	fc, fd := f(c), f(d)
-	for range 60 {
-		if fc < fd {
-			b, d, fd = d, c, fc
-			c = b - ratio*(b-a)
-			fc = f(c)
-		} else {
-			a, c, fc = c, d, fd
-			d = a + ratio*(b-a)
-			fd = f(d)
-		}
-	}
-	return (a + b) / 2
-}

@@ -148,7 +148,7 @@ func (e *explainer) sitesNeeded(ctx context.Context, c Candidate) (float64, *fit
 	for u := -4.0; u <= 6; u += 2 {
 		try(u)
 	}
-	goldenFew(try, at-2, at+2, 10)
+	goldenSection(try, at-2, at+2, 10)
 	if best == nil {
 		return 0, nil
 	}
@@ -217,22 +217,4 @@ func (e *explainer) unbound(least float64) *explanation {
 			why: "it gives any slope; n_H of a signal is empirical"}
 	}
 	return nil
-}
-
-// goldenFew is a golden section of few steps, for costly functions.
-func goldenFew(f func(float64) float64, a, b float64, steps int) {
-	const ratio = 0.6180339887498949
-	c, d := b-ratio*(b-a), a+ratio*(b-a)
-	fc, fd := f(c), f(d)
-	for range steps {
-		if fc < fd {
-			b, d, fd = d, c, fc
-			c = b - ratio*(b-a)
-			fc = f(c)
-		} else {
-			a, c, fc = c, d, fd
-			d = a + ratio*(b-a)
-			fd = f(d)
-		}
-	}
 }
