@@ -7,7 +7,6 @@ import (
 	"github.com/spf13/cobra"
 
 	"ligancy/cmd/ligancy/internal/report"
-	"ligancy/specs/diag"
 )
 
 const courseHelp = `ligancy course STUDY
@@ -41,14 +40,8 @@ func (p *program) courseCommand() *cobra.Command {
 }
 
 func (p *program) course(ctx context.Context, name string, json bool) error {
-	o := p.open(name)
-	if o.analysis == nil {
-		if err := o.refuse(p.Stderr, "Nothing was calculated."); err != nil {
-			return err
-		}
-		return exit(Unusable)
-	}
-	if err := diag.WriteText(p.Stderr, o.complaints); err != nil {
+	o, err := p.ready(name, "Nothing was calculated.")
+	if err != nil {
 		return err
 	}
 	r := p.newProgress()

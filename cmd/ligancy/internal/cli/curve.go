@@ -6,7 +6,6 @@ import (
 	"github.com/spf13/cobra"
 
 	"ligancy/cmd/ligancy/internal/report"
-	"ligancy/specs/diag"
 )
 
 const curveHelp = `ligancy curve STUDY
@@ -33,14 +32,8 @@ func (p *program) curveCommand() *cobra.Command {
 }
 
 func (p *program) curve(name string, json bool) error {
-	o := p.open(name)
-	if o.analysis == nil {
-		if err := o.refuse(p.Stderr, "Nothing was calculated."); err != nil {
-			return err
-		}
-		return exit(Unusable)
-	}
-	if err := diag.WriteText(p.Stderr, o.complaints); err != nil {
+	o, err := p.ready(name, "Nothing was calculated.")
+	if err != nil {
 		return err
 	}
 	outcome, err := o.analysis.Given()

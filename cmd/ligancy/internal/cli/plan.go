@@ -7,7 +7,6 @@ import (
 	"github.com/spf13/cobra"
 
 	"ligancy/cmd/ligancy/internal/report"
-	"ligancy/specs/diag"
 )
 
 const planHelp = `ligancy plan STUDY
@@ -39,14 +38,8 @@ func (p *program) planCommand() *cobra.Command {
 }
 
 func (p *program) plan(ctx context.Context, name string, json bool) error {
-	o := p.open(name)
-	if o.analysis == nil {
-		if err := o.refuse(p.Stderr, "Nothing was planned."); err != nil {
-			return err
-		}
-		return exit(Unusable)
-	}
-	if err := diag.WriteText(p.Stderr, o.complaints); err != nil {
+	o, err := p.ready(name, "Nothing was planned.")
+	if err != nil {
 		return err
 	}
 	progress := p.newProgress()

@@ -9,7 +9,6 @@ import (
 
 	"ligancy/cmd/ligancy/internal/sbml"
 	"ligancy/fit/saturation"
-	"ligancy/specs/diag"
 )
 
 const sbmlHelp = `ligancy sbml STUDY
@@ -38,14 +37,8 @@ func (p *program) sbmlCommand() *cobra.Command {
 }
 
 func (p *program) sbml(ctx context.Context, name, mechanism string) error {
-	o := p.open(name)
-	if o.analysis == nil {
-		if err := o.refuse(p.Stderr, "Nothing was printed."); err != nil {
-			return err
-		}
-		return exit(Unusable)
-	}
-	if err := diag.WriteText(p.Stderr, o.complaints); err != nil {
+	o, err := p.ready(name, "Nothing was printed.")
+	if err != nil {
 		return err
 	}
 	r := p.newProgress()

@@ -26,6 +26,19 @@ type opened struct {
 	digests    map[string]string // of the data files
 }
 
+// ready opens a study that can be used and says what it warns of. One that
+// cannot is refused with all its complaints, and the exit code says so.
+func (p *program) ready(name, notDone string) (*opened, error) {
+	o := p.open(name)
+	if o.analysis == nil {
+		if err := o.refuse(p.Stderr, notDone); err != nil {
+			return nil, err
+		}
+		return nil, exit(Unusable)
+	}
+	return o, diag.WriteText(p.Stderr, o.complaints)
+}
+
 // open reads a study and its tables. No file outside the study's folder is
 // read, not by ".." and not by a link.
 func (p *program) open(name string) *opened {
